@@ -1,0 +1,445 @@
+package analysis
+
+// Schema names the layout of a Result; within one major number fields are only
+// added.
+const Schema = "thinward.result/1"
+
+// Result is every number a report shows, as plain data. Not-a-number stands for
+// "not estimable" and is explained by the Why beside it; an infinite end is an
+// interval open to that side.
+type Result struct {
+	Schema        string           `json:"schema"`
+	Series        string           `json:"series"`
+	Seed          uint64           `json:"seed"`
+	Inputs        []InputResult    `json:"inputs"`
+	Intake        []IntakeResult   `json:"intake"`
+	Scaling       []ScalingResult  `json:"scaling"`
+	Contrasts     []ContrastResult `json:"contrasts"`
+	Forbidden     []Forbidden      `json:"forbidden"`
+	Crystals      *CrystalsResult  `json:"crystals,omitempty"`
+	Thickness     *ThicknessResult `json:"thickness,omitempty"`
+	Controls      []ControlResult  `json:"controls,omitempty"`
+	Ledger        []LedgerEntry    `json:"ledger"`
+	Specification []Specification  `json:"specification,omitempty"`
+	Expectation   *Expectation     `json:"expectation,omitempty"`
+	Matters       []Matters        `json:"matters,omitempty"`
+	Answers       []Answer         `json:"answers"`
+	Warnings      []WarningResult  `json:"warnings"`
+	Environment   *Environment     `json:"environment,omitempty"`
+	Timing        []StepTime       `json:"timing,omitempty"`
+}
+
+// InputResult is one file with what came out of it.
+type InputResult struct {
+	Path         string         `json:"path"`
+	SHA256       string         `json:"sha256"`
+	Crystal      string         `json:"crystal"`
+	Position     string         `json:"position"`
+	Rows         int            `json:"rows"`
+	Observations int            `json:"observations"`
+	SetAside     map[string]int `json:"set_aside,omitempty"`
+}
+
+// IntakeResult describes one position before any scaling.
+type IntakeResult struct {
+	Crystal      string    `json:"crystal"`
+	Position     string    `json:"position"`
+	ThicknessNM  float64   `json:"thickness_nm"`
+	Rows         int       `json:"rows"`
+	Observations int       `json:"observations"`
+	RowsAs       string    `json:"rows_as"`
+	Unique       int       `json:"unique"`
+	Multiplicity float64   `json:"multiplicity"`
+	Completeness float64   `json:"completeness"`
+	DMin         float64   `json:"d_min_a"`
+	DMax         float64   `json:"d_max_a"`
+	AngleLo      float64   `json:"angle_lo_deg"`
+	AngleHi      float64   `json:"angle_hi_deg"`
+	AngleGap     float64   `json:"angle_gap_deg"`
+	MeanISigma   float64   `json:"mean_i_over_sigma"`
+	Negative     []int     `json:"negative_observed"`
+	NegativeExp  []float64 `json:"negative_expected"`
+	RMeas        float64   `json:"r_meas"`
+	RPim         float64   `json:"r_pim"`
+	CCHalf       float64   `json:"cc_half"`
+	Overlap      float64   `json:"overlap_with_thinnest"`
+	Excluded     int       `json:"excluded"`
+	Truncated    string    `json:"truncated,omitempty"`
+	Why          string    `json:"why,omitempty"`
+}
+
+// ScalingResult is the scale and the noise model of one position. LnK is the
+// mean of ln K over its observations, B in square angstrom; both relative to the
+// thinnest position. A multiplies the reported sigma, BNoise is the part of the
+// error that is proportional to the intensity.
+type ScalingResult struct {
+	Crystal   string    `json:"crystal"`
+	Position  string    `json:"position"`
+	B         float64   `json:"b"`
+	BSE       float64   `json:"b_se"`
+	LnK       float64   `json:"lnk"`
+	A         float64   `json:"a"`
+	ALo       float64   `json:"a_lo"`
+	AHi       float64   `json:"a_hi"`
+	BNoise    float64   `json:"b_noise"`
+	BNoiseLo  float64   `json:"b_noise_lo"`
+	BNoiseHi  float64   `json:"b_noise_hi"`
+	Rejected  int       `json:"rejected"`
+	Constant  bool      `json:"constant"`
+	CurveDeg  []float64 `json:"curve_deg,omitempty"`
+	CurveLnK  []float64 `json:"curve_lnk,omitempty"`
+	ChiBefore float64   `json:"chi2_before"`
+	ChiAfter  float64   `json:"chi2_after"`
+	Why       string    `json:"why,omitempty"`
+}
+
+// Interval is an estimate with the ends of its interval.
+type Interval struct {
+	Value float64 `json:"value"`
+	Lo    float64 `json:"lo"`
+	Hi    float64 `json:"hi"`
+	Why   string  `json:"why,omitempty"`
+}
+
+// ContrastResult is everything about one pair of positions.
+type ContrastResult struct {
+	Crystal       string           `json:"crystal"`
+	ThickCrystal  string           `json:"thick_crystal,omitempty"`
+	Thin          string           `json:"thin"`
+	Thick         string           `json:"thick"`
+	ThicknessNM   [2]float64       `json:"thickness_nm"`
+	Primary       bool             `json:"primary"`
+	Pairs         int              `json:"pairs"`
+	Matched       bool             `json:"matched"`
+	StrengthAxis  string           `json:"strength_axis"`
+	AxisAgreement float64          `json:"axis_correlation"`
+	Correlation   Correlation      `json:"correlation"`
+	MomentRatio   MomentRatio      `json:"moment_ratio"`
+	Strength      Curve            `json:"strength"`
+	Resolution    Resolution       `json:"resolution"`
+	Classes       Classes          `json:"classes"`
+	Exchange      Exchange         `json:"exchange"`
+	Curb          Curb             `json:"curb"`
+	Offset        Offset           `json:"offset"`
+	OverIdent     OverIdent        `json:"over_identification"`
+	Models        []Model          `json:"models"`
+	Giants        []Giant          `json:"giants"`
+	CurbForms     []CurbForm       `json:"curb_forms,omitempty"`
+	Bracket       Bracket          `json:"bracket"`
+	MinimumM      float64          `json:"minimum_m"`
+	Naive         map[string]Naive `json:"naive"`
+	Axes          []AxisResult     `json:"axes"`
+	PairNoise     float64          `json:"pair_noise"`
+	Warnings      []WarningResult  `json:"warnings"`
+}
+
+// Correlation is the true correlation of intensities between two positions,
+// noise removed by halves.
+type Correlation struct {
+	R   float64 `json:"r"`
+	Lo  float64 `json:"lo"`
+	Hi  float64 `json:"hi"`
+	Why string  `json:"why,omitempty"`
+}
+
+// MomentRatio is 1 - sqrt(V_thick/V_thin) with V the signal variance of
+// normalised intensities.
+type MomentRatio struct {
+	M   float64 `json:"m"`
+	Lo  float64 `json:"lo"`
+	Hi  float64 `json:"hi"`
+	Why string  `json:"why,omitempty"`
+}
+
+// Curve is a banded curve over strength. Mean and its bands are in eps units.
+type Curve struct {
+	Grid   []float64 `json:"grid"`
+	Mean   []float64 `json:"mean"`
+	Lo     []float64 `json:"lo"`
+	Hi     []float64 `json:"hi"`
+	LoSim  []float64 `json:"lo_sim"`
+	HiSim  []float64 `json:"hi_sim"`
+	P      float64   `json:"p"`
+	Window int       `json:"window"`
+	Level  float64   `json:"level"`
+	Why    string    `json:"why,omitempty"`
+}
+
+// Resolution is ln(<I_thick>/<I_thin>) by shell of 1/d^2 with one overall scale,
+// and the difference of B that a straight line through it means.
+type Resolution struct {
+	D         []float64 `json:"d_a"`
+	LogRatio  []float64 `json:"log_ratio"`
+	Lo        []float64 `json:"lo"`
+	Hi        []float64 `json:"hi"`
+	DeltaB    float64   `json:"delta_b"`
+	DeltaBLo  float64   `json:"delta_b_lo"`
+	DeltaBHi  float64   `json:"delta_b_hi"`
+	Share     float64   `json:"share_of_b"`
+	Remainder []float64 `json:"remainder"`
+	Why       string    `json:"why,omitempty"`
+}
+
+// Classes are the three classes of strength.
+type Classes struct {
+	Floor  Class `json:"floor"`
+	Middle Class `json:"middle"`
+	Top    Class `json:"top"`
+}
+
+// Class is one class: N pairs of mean true strength Strength, their contrast
+// Eps, and the exchange that this contrast alone would mean.
+type Class struct {
+	N        int     `json:"n"`
+	Strength float64 `json:"strength"`
+	Eps      float64 `json:"eps"`
+	Lo       float64 `json:"lo"`
+	Hi       float64 `json:"hi"`
+	M        float64 `json:"m"`
+	MLo      float64 `json:"m_lo"`
+	MHi      float64 `json:"m_hi"`
+	Why      string  `json:"why,omitempty"`
+}
+
+// Exchange is the fraction of intensity moved from strong to weak.
+type Exchange struct {
+	M     float64 `json:"m"`
+	Lo    float64 `json:"lo"`
+	Hi    float64 `json:"hi"`
+	SE    float64 `json:"se"`
+	Model string  `json:"model"`
+	F     float64 `json:"f"`
+	Why   string  `json:"why,omitempty"`
+}
+
+// Curb is the loss of the strongest that grows with their intensity.
+type Curb struct {
+	Q   float64 `json:"q"`
+	Lo  float64 `json:"lo"`
+	Hi  float64 `json:"hi"`
+	Why string  `json:"why,omitempty"`
+}
+
+// Offset is an additive constant in the thick position.
+type Offset struct {
+	O   float64 `json:"o"`
+	Lo  float64 `json:"lo"`
+	Hi  float64 `json:"hi"`
+	Why string  `json:"why,omitempty"`
+}
+
+// OverIdent is the test whether the fitted numbers describe the curve.
+type OverIdent struct {
+	J  float64 `json:"j"`
+	DF int     `json:"df"`
+	P  float64 `json:"p"`
+}
+
+// Model is one of the fits (instrument), (m), (m,q), (m,q,o).
+type Model struct {
+	Model string   `json:"model"`
+	M     Interval `json:"m"`
+	Q     Interval `json:"q"`
+	O     Interval `json:"o"`
+	JP    float64  `json:"over_identification_p"`
+	F     float64  `json:"f"`
+}
+
+// Giant is m with the strongest reflections left out.
+type Giant struct {
+	Above float64  `json:"above"`
+	N     int      `json:"n"`
+	M     Interval `json:"m"`
+}
+
+// CurbForm is the curb under one of its three forms.
+type CurbForm struct {
+	Form string   `json:"form"`
+	Q    Interval `json:"q"`
+	J    float64  `json:"j"`
+	Why  string   `json:"why,omitempty"`
+}
+
+// Bracket holds the two estimates of m from halves of one position: Hi with half
+// of the thin one (errs upward), Lo with half of the thick one (errs downward).
+type Bracket struct {
+	Lo    float64  `json:"lo"`
+	Hi    float64  `json:"hi"`
+	Thin  Interval `json:"half_of_thin"`
+	Thick Interval `json:"half_of_thick"`
+	Why   string   `json:"why,omitempty"`
+}
+
+// Naive is what a naive axis shows and what noise alone would show on it: the
+// mean square of the z-scores of 20 bins by that axis, 1 when flat.
+type Naive struct {
+	Score       float64   `json:"score"`
+	GhostScore  float64   `json:"ghost_score"`
+	Correlation float64   `json:"ghost_correlation"`
+	Explained   float64   `json:"ghost_share"`
+	Grid        []float64 `json:"grid"`
+	Mean        []float64 `json:"mean"`
+	Ghost       []float64 `json:"ghost"`
+}
+
+// AxisResult is m on one strength axis, beside the leading one.
+type AxisResult struct {
+	Axis   string   `json:"axis"`
+	N      int      `json:"n"`
+	M      Interval `json:"m"`
+	Delta  Interval `json:"difference_from_leading"`
+	P      float64  `json:"p"`
+	Tip    float64  `json:"tipping_ratio"`
+	Remark string   `json:"remark,omitempty"`
+}
+
+// Forbidden is the mean intensity of reflections that symmetry forbids, over
+// the local mean of the allowed ones, for one symmetry element ("all" for the
+// whole). N is 0 and Why says so when the list has none.
+type Forbidden struct {
+	Crystal  string  `json:"crystal"`
+	Position string  `json:"position"`
+	Element  string  `json:"element"`
+	N        int     `json:"n"`
+	Ratio    float64 `json:"ratio"`
+	SU       float64 `json:"su"`
+	Z        float64 `json:"z"`
+	MeanIS   float64 `json:"mean_i_over_sigma"`
+	Why      string  `json:"why,omitempty"`
+}
+
+// CrystalsResult joins the primary contrasts of all crystals.
+type CrystalsResult struct {
+	N         int      `json:"n"`
+	InThese   Interval `json:"in_these_crystals"`
+	LikeThese Interval `json:"in_crystals_like_these"`
+	Q         float64  `json:"q"`
+	QP        float64  `json:"q_p"`
+	Tau2      float64  `json:"tau2"`
+	I2        float64  `json:"i2"`
+	SameSign  int      `json:"same_sign"`
+	SignP     float64  `json:"sign_p"`
+	SmallestP float64  `json:"smallest_sign_p"`
+	LeaveOut  []Left   `json:"leave_one_out"`
+	Why       string   `json:"why,omitempty"`
+	PageL     float64  `json:"page_l"`
+	PageP     float64  `json:"page_p"`
+	PageBest  float64  `json:"smallest_page_p"`
+	MeanAgree float64  `json:"correlation_between_crystals"`
+}
+
+// Left is the pooled estimate without one crystal.
+type Left struct {
+	Without string   `json:"without"`
+	M       Interval `json:"m"`
+}
+
+// ThicknessResult is the growth of mu = -ln(1-m) with thickness.
+type ThicknessResult struct {
+	Lines []ThicknessLine `json:"lines"`
+	Slope Interval        `json:"slope_per_100nm"`
+	Why   string          `json:"why,omitempty"`
+}
+
+// ThicknessLine is one crystal's line through its positions.
+type ThicknessLine struct {
+	Crystal string    `json:"crystal"`
+	T       []float64 `json:"thickness_nm"`
+	Mu      []float64 `json:"mu"`
+	MuSE    []float64 `json:"mu_se"`
+	Slope   Interval  `json:"slope_per_100nm"`
+	Chi2    float64   `json:"chi2"`
+	DF      int       `json:"df"`
+	Why     string    `json:"why,omitempty"`
+}
+
+// ControlResult is one control with what it can and cannot see.
+type ControlResult struct {
+	Control  string   `json:"control"`
+	Crystal  string   `json:"crystal"`
+	M        Interval `json:"m"`
+	Expected float64  `json:"expected"`
+	P        float64  `json:"p"`
+	Passed   bool     `json:"passed"`
+	Can      string   `json:"can_see"`
+	Cannot   string   `json:"cannot_see"`
+	Why      string   `json:"why,omitempty"`
+}
+
+// LedgerEntry is one confounder with a figure and a verdict: fine, caution,
+// fails, or not known.
+type LedgerEntry struct {
+	Check   string  `json:"check"`
+	Where   string  `json:"where,omitempty"`
+	Value   float64 `json:"value"`
+	Unit    string  `json:"unit,omitempty"`
+	Verdict string  `json:"verdict"`
+	Why     string  `json:"why"`
+}
+
+// Specification is m under one set of choices.
+type Specification struct {
+	Crystal string   `json:"crystal"`
+	Choice  string   `json:"choice"`
+	Level   string   `json:"level"`
+	M       Interval `json:"m"`
+	Q       Interval `json:"q"`
+	Leading bool     `json:"leading"`
+}
+
+// Expectation is what scattering physics leads one to expect; an aid to
+// interpretation, never a prediction of m.
+type Expectation struct {
+	WavelengthA    float64  `json:"wavelength_a"`
+	InteractionVnm float64  `json:"interaction_rad_per_v_nm"`
+	ElasticMFPNM   float64  `json:"elastic_mean_free_path_nm"`
+	InelasticMFPNM float64  `json:"inelastic_mean_free_path_nm"`
+	Uncertainty    float64  `json:"relative_uncertainty"`
+	Budget         []Budget `json:"budget"`
+	Why            string   `json:"why,omitempty"`
+}
+
+// Budget is the share of electrons of each fate at one thickness.
+type Budget struct {
+	ThicknessNM float64 `json:"thickness_nm"`
+	Unscattered float64 `json:"unscattered"`
+	Kinematic   float64 `json:"kinematic"`
+	Multiple    float64 `json:"multiply_elastic"`
+	Inelastic   float64 `json:"inelastic"`
+}
+
+// Matters is what the fitted exchange would do to a refinement.
+type Matters struct {
+	Crystal        string  `json:"crystal"`
+	M              float64 `json:"m"`
+	AgreementShift float64 `json:"agreement_factor_shift"`
+	WeakShift      float64 `json:"weak_amplitude_shift"`
+}
+
+// Answer is one sentence of the report's first section.
+type Answer struct {
+	Question string `json:"question"`
+	Text     string `json:"text"`
+	Verdict  string `json:"verdict"`
+	Section  string `json:"section"`
+}
+
+// WarningResult is a warning as plain data.
+type WarningResult struct {
+	Code  string `json:"code"`
+	Where string `json:"where,omitempty"`
+	Text  string `json:"text"`
+}
+
+// Environment says what made the result.
+type Environment struct {
+	Go       string            `json:"go"`
+	Thinward string            `json:"thinward"`
+	Modules  map[string]string `json:"modules"`
+}
+
+// StepTime is how long a step took.
+type StepTime struct {
+	Step    string  `json:"step"`
+	Seconds float64 `json:"seconds"`
+}
