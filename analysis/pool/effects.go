@@ -1,0 +1,214 @@
+package pool
+
+import (
+	"errors"
+	"fmt"
+	"math"
+
+	"gonum.org/v1/gonum/stat/distuv"
+)
+
+// Effects joins k estimates of one number.
+type Effects struct {
+	K int
+	// Fixed answers "in these": the inverse-variance mean.
+	Fixed, FixedSE, FixedLo, FixedHi float64
+	// Random answers "in others like these": the mean with between-variance Tau2
+	// and the interval of Hartung and Knapp with k-1 degrees of freedom.
+	Random, RandomSE, RandomLo, RandomHi float64
+	// NormalSE is the plain standard error of Random, without Hartung and Knapp.
+	NormalSE float64
+	// Q is Cochran's heterogeneity with K-1 degrees of freedom and tail QP.
+	Q, QP float64
+	// Tau2 is the DerSimonian-Laird between-variance, I2 = max(0, (Q-df)/Q).
+	// Both are computed from two estimates on, but say little below five (see
+	// Estimable).
+	Tau2, I2 float64
+	// Birge is sqrt(Q/df).
+	Birge float64
+	// Estimable is false below five estimates: then Tau2 and I2 are not to be shown.
+	Estimable bool
+	Level     float64
+}
+
+// fewest is the number of crystals from which on a between-variance is shown
+// (common practice, no source; with fewer its interval reaches from 0 to far
+// beyond the estimates).
+const fewest = 5
+
+// Join pools the estimates y with standard errors se at the given confidence
+// level (0 = 0.95).
+//
+//	fixed: mu = sum w y / sum w, w = 1/se^2, SE = 1/sqrt(sum w)
+//	Q = sum w (y-mu)^2, tau^2 = max(0, (Q-df)/(sum w - sum w^2/sum w))   (DerSimonian & Laird 1986)
+//	random: w* = 1/(se^2+tau^2), SE^2 = sum w* (y-mu*)^2 / ((k-1) sum w*) (Hartung & Knapp 2001; Knapp & Hartung 2003)
+//
+// One estimate gives its own fixed effect and an unbounded random interval. An
+// empty list, unequal lengths, a value that is not finite and se <= 0 are errors.
+func Join(y, se []float64, level float64) (*Effects, error) {
+	if err := checkPairs(y, se); err != nil {
+		return nil, err
+	}
+	if level == 0 {
+		level = 0.95
+	}
+	if !(level > 0 && level < 1) {
+		return nil, fmt.Errorf("pool: level %g is not between 0 and 1", level)
+	}
+	k := len(y)
+	e := &Effects{K: k, Level: level, Estimable: k >= fewest}
+	var sw, sw2 float64
+	for _, s := range se {
+		w := 1 / (s * s)
+		sw += w
+		sw2 += w * w
+	}
+	e.Fixed = weightedMean(y, se, 0)
+	e.FixedSE = 1 / math.Sqrt(sw)
+	z := distuv.UnitNormal.Quantile((1 + level) / 2)
+	e.FixedLo, e.FixedHi = e.Fixed-z*e.FixedSE, e.Fixed+z*e.FixedSE
+	df := float64(k - 1)
+	if k == 1 {
+		e.QP, e.I2, e.Tau2, e.Birge = 1, math.NaN(), math.NaN(), math.NaN()
+		e.Random, e.RandomSE, e.NormalSE = e.Fixed, math.Inf(1), math.Inf(1)
+		e.RandomLo, e.RandomHi = math.Inf(-1), math.Inf(1)
+		return e, nil
+	}
+	for i := range y {
+		d := y[i] - e.Fixed
+		e.Q += d * d / (se[i] * se[i])
+	}
+	e.QP = distuv.ChiSquared{K: df}.Survival(e.Q)
+	e.Birge = math.Sqrt(e.Q / df)
+	e.Tau2 = math.Max(0, (e.Q-df)/(sw-sw2/sw))
+	if e.Q > 0 {
+		e.I2 = math.Max(0, (e.Q-df)/e.Q)
+	}
+	e.Random = weightedMean(y, se, e.Tau2)
+	var ws, spread float64
+	for i := range y {
+		w := 1 / (se[i]*se[i] + e.Tau2)
+		d := y[i] - e.Random
+		ws += w
+		spread += w * d * d
+	}
+	e.NormalSE = 1 / math.Sqrt(ws)
+	e.RandomSE = math.Sqrt(spread / (df * ws))
+	t := distuv.StudentsT{Mu: 0, Sigma: 1, Nu: df}.Quantile((1 + level) / 2)
+	e.RandomLo, e.RandomHi = e.Random-t*e.RandomSE, e.Random+t*e.RandomSE
+	return e, nil
+}
+
+// LeaveOneOut returns the fixed effect without each estimate in turn; nil for
+// fewer than two.
+func LeaveOneOut(y, se []float64, level float64) ([]*Effects, error) {
+	if err := checkPairs(y, se); err != nil {
+		return nil, err
+	}
+	if len(y) < 2 {
+		return nil, nil
+	}
+	out := make([]*Effects, len(y))
+	for i := range y {
+		var a, b []float64
+		for j := range y {
+			if j != i {
+				a, b = append(a, y[j]), append(b, se[j])
+			}
+		}
+		e, err := Join(a, b, level)
+		if err != nil {
+			return nil, err
+		}
+		out[i] = e
+	}
+	return out, nil
+}
+
+// PauleMandel returns the between-variance at which the generalised Q equals
+// its degrees of freedom (Paule & Mandel 1982), 0 when Q is below them already.
+func PauleMandel(y, se []float64) (float64, error) {
+	if err := checkPairs(y, se); err != nil {
+		return 0, err
+	}
+	df := float64(len(y) - 1)
+	q := func(tau2 float64) float64 {
+		mu := weightedMean(y, se, tau2)
+		var s float64
+		for i := range y {
+			d := y[i] - mu
+			s += d * d / (se[i]*se[i] + tau2)
+		}
+		return s
+	}
+	if q(0) <= df {
+		return 0, nil
+	}
+	lo, hi := 0.0, 1.0
+	for q(hi) > df {
+		hi *= 2
+	}
+	for range 200 {
+		mid := (lo + hi) / 2
+		if q(mid) > df {
+			lo = mid
+		} else {
+			hi = mid
+		}
+	}
+	return (lo + hi) / 2, nil
+}
+
+// Signs counts how many estimates lie on the side of the majority, the
+// two-sided p of the sign test for it, and the smallest p that so many estimates
+// can reach at all: 2^(1-k).
+func Signs(y []float64) (same int, p, smallest float64) {
+	positive, k := 0, 0
+	for _, v := range y {
+		if v == 0 || math.IsNaN(v) {
+			continue
+		}
+		k++
+		if v > 0 {
+			positive++
+		}
+	}
+	if k == 0 {
+		return 0, 1, 1
+	}
+	same = max(positive, k-positive)
+	tail := 0.0
+	b := distuv.Binomial{N: float64(k), P: 0.5}
+	for i := same; i <= k; i++ {
+		tail += b.Prob(float64(i))
+	}
+	return same, math.Min(1, 2*tail), math.Min(1, 2*math.Pow(0.5, float64(k)))
+}
+
+func weightedMean(y, se []float64, tau2 float64) float64 {
+	var sw, s float64
+	for i := range y {
+		w := 1 / (se[i]*se[i] + tau2)
+		sw += w
+		s += w * y[i]
+	}
+	return s / sw
+}
+
+func checkPairs(y, se []float64) error {
+	if len(y) == 0 {
+		return errors.New("pool: no estimate")
+	}
+	if len(y) != len(se) {
+		return fmt.Errorf("pool: %d estimates but %d standard errors", len(y), len(se))
+	}
+	for i := range y {
+		if math.IsNaN(y[i]) || math.IsInf(y[i], 0) {
+			return fmt.Errorf("pool: estimate %d is %g", i, y[i])
+		}
+		if !(se[i] > 0) || math.IsInf(se[i], 0) {
+			return fmt.Errorf("pool: standard error %d is %g: it must be positive and finite", i, se[i])
+		}
+	}
+	return nil
+}
