@@ -1,0 +1,3 @@
+package bindings
+
+func Bound() []string { return nil }
