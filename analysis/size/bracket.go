@@ -1,15 +1,60 @@
 package size
 
-import "errors"
+import (
+	"fmt"
+	"math"
+)
 
-// BracketEnds holds m by halves of one crystal's own positions.
+// BracketEnds holds m by halves of one crystal's own positions. Lo and Hi reach
+// from the lower end of FromThick to the upper end of FromThin, whichever is
+// farther.
+//
+// It is a bracket of the truth only when the deviations of the two positions
+// from any law of strength are unrelated; within one wedge they are alike and
+// both ends err downward.
 type BracketEnds struct {
-	FromThin  *Instrument // axis: halves of the thin position, errs upward
-	FromThick *Instrument // axis: halves of the thick position, errs downward
-	Lo, Hi    float64     // lower end of FromThick and upper end of FromThin
+	FromThin  *Instrument // axis: halves of the thin position; errs upward
+	FromThick *Instrument // axis: halves of the thick position; errs downward
+	Lo, Hi    float64
 }
 
-// Bracket estimates m with each half as the axis of the other, cross-fitted.
+// Bracket estimates m with each half as the axis, cross-fitted: half A of the
+// thin position is the axis for half B against the whole thick position and the
+// reverse, and likewise with the halves of the thick position. Thin and thick
+// are whole positions on the common scale, NaN where there is none; a
+// reflection without a half takes no part where it is needed. Errors as in
+// ExchangeWith.
 func Bracket(h *Halves, thin, thick []float64, w []float64, set *Settings) (*BracketEnds, error) {
-	return nil, errors.New("size: Bracket: to be filled in")
+	if _, err := h.check("Bracket", w); err != nil {
+		return nil, err
+	}
+	if len(thin) != len(h.Shell) || len(thick) != len(h.Shell) {
+		panic(fmt.Sprintf("size: Bracket: thin has length %d, thick %d, halves %d", len(thin), len(thick), len(h.Shell)))
+	}
+	leg := func(z, thin, thick []float64) *Input {
+		return &Input{Z: z, Thin: absentWithout(z, thin), Thick: thick, Shell: h.Shell, Shells: h.Shells}
+	}
+	var out BracketEnds
+	var err error
+	if out.FromThin, err = ExchangeCross([]*Input{leg(h.ThinA, h.ThinB, thick), leg(h.ThinB, h.ThinA, thick)}, w, set); err != nil {
+		return nil, fmt.Errorf("axis from halves of the thin position: %w", err)
+	}
+	if out.FromThick, err = ExchangeCross([]*Input{leg(h.ThickA, thin, h.ThickB), leg(h.ThickB, thin, h.ThickA)}, w, set); err != nil {
+		return nil, fmt.Errorf("axis from halves of the thick position: %w", err)
+	}
+	out.Lo = math.Min(out.FromThick.Lo, out.FromThin.Lo)
+	out.Hi = math.Max(out.FromThick.Hi, out.FromThin.Hi)
+	return &out, nil
+}
+
+// absentWithout marks as absent what has no axis, so that a reflection of a
+// single half has the same weight, none, in the shell means of both legs.
+func absentWithout(z, v []float64) []float64 {
+	out := append([]float64(nil), v...)
+	for i := range out {
+		if math.IsNaN(z[i]) {
+			out[i] = math.NaN()
+		}
+	}
+	return out
 }

@@ -1,0 +1,314 @@
+package size
+
+import (
+	"math"
+
+	"gonum.org/v1/gonum/mat"
+)
+
+// solution is the two-step estimate of a system.
+type solution struct {
+	theta []float64
+	cov   *mat.Dense // without the small-sample factor
+	j     float64
+	df    int
+	omega *mat.SymDense // sum of psi psi' at the first step
+	shell [][]float64   // weights of shells; nil for ones
+}
+
+// weighted holds the weighted, centred functions and the linear moment sums
+// g - a theta.
+type weighted struct {
+	f [][][]float64 // by leg, function, row
+	u [][]float64   // by leg, row
+	a *mat.Dense
+	g *mat.VecDense
+	b *mat.SymDense // sum of (u f)(u f)'
+}
+
+// solve is nil when the parameters cannot be told apart.
+func (s *system) solve(flat bool) *solution {
+	var shell [][]float64
+	m := s.sums(nil)
+	theta := linear(m.a, m.b, m.g)
+	if theta == nil {
+		return nil
+	}
+	if !flat {
+		shell = s.shellWeights(theta)
+		m = s.sums(shell)
+		if theta = linear(m.a, m.b, m.g); theta == nil {
+			return nil
+		}
+	}
+	omega := s.covarianceOfMoments(m, theta)
+	sol := s.secondStep(m, theta, omega)
+	if sol != nil {
+		sol.shell = shell
+	}
+	return sol
+}
+
+// secondStep weights the moments by the inverse of omega. Where omega is
+// nothing beside the functions the model fits without residue, theta stands and
+// J is 0.
+func (s *system) secondStep(m *weighted, theta []float64, omega *mat.SymDense) *solution {
+	k, p := m.a.Dims()
+	sol := &solution{theta: theta, df: k - p, omega: omega}
+	weight := omega
+	exact := true
+	for i := range k {
+		exact = exact && omega.At(i, i) <= 1e-20*m.b.At(i, i)
+	}
+	if exact {
+		weight = m.b
+	} else if sol.theta = linear(m.a, omega, m.g); sol.theta == nil {
+		return nil
+	}
+	var ch mat.Cholesky
+	ch.Factorize(weight)
+	var wa, awa mat.Dense
+	if err := ch.SolveTo(&wa, m.a); err != nil {
+		return nil
+	}
+	awa.Mul(m.a.T(), &wa)
+	var bread, meat, half mat.Dense
+	if err := bread.Inverse(&awa); err != nil {
+		return nil
+	}
+	last := s.covarianceOfMoments(m, sol.theta)
+	half.Mul(wa.T(), last)
+	meat.Mul(&half, &wa)
+	half.Reset()
+	half.Mul(&bread, &meat)
+	sol.cov = mat.NewDense(p, p, nil)
+	sol.cov.Mul(&half, &bread)
+	if !exact {
+		sol.j = distance(m, sol.theta, &ch)
+	}
+	return sol
+}
+
+// distance is (g - a theta)' W^-1 (g - a theta).
+func distance(m *weighted, theta []float64, ch *mat.Cholesky) float64 {
+	var r, wr mat.VecDense
+	r.MulVec(m.a, mat.NewVecDense(len(theta), theta))
+	r.SubVec(m.g, &r)
+	if err := ch.SolveVecTo(&wr, &r); err != nil {
+		return math.NaN()
+	}
+	return mat.Dot(&r, &wr)
+}
+
+// linear minimises (g - a theta)' weight^-1 (g - a theta); nil when singular.
+func linear(a *mat.Dense, weight *mat.SymDense, g *mat.VecDense) []float64 {
+	k, p := a.Dims()
+	if k < p {
+		return nil
+	}
+	var ch mat.Cholesky
+	if !ch.Factorize(weight) {
+		return nil
+	}
+	var wa mat.Dense
+	if err := ch.SolveTo(&wa, a); err != nil {
+		return nil
+	}
+	var n mat.Dense
+	n.Mul(a.T(), &wa)
+	// Parameters have different units, so the condition is judged on the
+	// normal matrix with unit diagonal.
+	d := make([]float64, p)
+	for i := range d {
+		if d[i] = math.Sqrt(n.At(i, i)); !(d[i] > 0) {
+			return nil
+		}
+	}
+	sym := mat.NewSymDense(p, nil)
+	for i := range p {
+		for j := i; j < p; j++ {
+			sym.SetSym(i, j, n.At(i, j)/(d[i]*d[j]))
+		}
+	}
+	var cn mat.Cholesky
+	if !cn.Factorize(sym) || cn.Cond() > 1e10 {
+		return nil
+	}
+	var rhs, th mat.VecDense
+	rhs.MulVec(wa.T(), g)
+	for i := range p {
+		rhs.SetVec(i, rhs.AtVec(i)/d[i])
+	}
+	if err := cn.SolveVecTo(&th, &rhs); err != nil {
+		return nil
+	}
+	out := make([]float64, p)
+	for i := range out {
+		out[i] = th.AtVec(i) / d[i]
+	}
+	return out
+}
+
+// sums builds the moments; shell, when not nil, multiplies the weights by leg
+// and shell. Functions that repeat the ones before them are left out.
+func (s *system) sums(shell [][]float64) *weighted {
+	m := &weighted{}
+	for l, c := range s.legs {
+		u := append([]float64(nil), c.u...)
+		if shell != nil {
+			for i, sh := range c.in.Shell {
+				u[i] *= shell[l][sh]
+			}
+		}
+		f := make([][]float64, len(c.f))
+		for k := range f {
+			f[k] = c.centred(c.f[k])
+		}
+		m.u = append(m.u, u)
+		m.f = append(m.f, f)
+	}
+	full := s.gram(m, func(l, k, i int) float64 { return m.u[l][i] * m.f[l][k][i] })
+	keep := independent(full)
+	for l := range m.f {
+		var f [][]float64
+		for _, k := range keep {
+			f = append(f, m.f[l][k])
+		}
+		m.f[l] = f
+	}
+	k, p := len(keep), s.parameters()
+	m.b = mat.NewSymDense(max(k, 1), nil)
+	for i := range keep {
+		for j := i; j < k; j++ {
+			m.b.SetSym(i, j, full.At(keep[i], keep[j]))
+		}
+	}
+	m.a, m.g = mat.NewDense(max(k, 1), p, nil), mat.NewVecDense(max(k, 1), nil)
+	for l, c := range s.legs {
+		for kk, f := range m.f[l] {
+			a := make([]float64, p+1)
+			for i, w := range c.w {
+				wf := w * m.u[l][i] * f[i]
+				if wf == 0 {
+					continue
+				}
+				for j := range p {
+					a[j] += wf * c.x[j][i]
+				}
+				a[p] += wf * (c.y1[i] - c.y2[i])
+			}
+			for j := range p {
+				m.a.Set(kk, j, m.a.At(kk, j)+a[j])
+			}
+			m.g.SetVec(kk, m.g.AtVec(kk)+a[p])
+		}
+	}
+	return m
+}
+
+// gram sums products over legs within a reflection, so that legs of one
+// reflection count as one.
+func (s *system) gram(m *weighted, v func(l, k, i int) float64) *mat.SymDense {
+	n := len(m.f[0])
+	out := mat.NewSymDense(n, nil)
+	data := make([]float64, n*n)
+	row := make([]float64, n)
+	frames := s.frames()
+	for i := range s.legs[0].w {
+		w := rowWeight(frames, i)
+		if w == 0 {
+			continue
+		}
+		for k := range row {
+			row[k] = 0
+			for l := range s.legs {
+				row[k] += v(l, k, i)
+			}
+		}
+		for k := range row {
+			for j := k; j < n; j++ {
+				data[k*n+j] += w * row[k] * row[j]
+			}
+		}
+	}
+	for k := range n {
+		for j := k; j < n; j++ {
+			out.SetSym(k, j, data[k*n+j])
+		}
+	}
+	return out
+}
+
+// independent picks rows of a Gram matrix in order, leaving out those that the
+// picked ones explain to 1e-8 of their square.
+func independent(g *mat.SymDense) []int {
+	n := g.SymmetricDim()
+	rest := mat.NewDense(n, n, nil)
+	rest.Copy(g)
+	var keep []int
+	for k := range n {
+		if !(rest.At(k, k) > 1e-8*g.At(k, k)) {
+			continue
+		}
+		keep = append(keep, k)
+		pivot := rest.At(k, k)
+		col := mat.Col(nil, k, rest)
+		for i := range n {
+			for j := range n {
+				rest.Set(i, j, rest.At(i, j)-col[i]*col[j]/pivot)
+			}
+		}
+	}
+	return keep
+}
+
+// shellWeights is the inverse of the weighted residual variance of each shell
+// over the mean of these; ones where there is no residue.
+func (s *system) shellWeights(theta []float64) [][]float64 {
+	out := make([][]float64, len(s.legs))
+	for l, c := range s.legs {
+		r := c.residual(theta)
+		sum, n := make([]float64, c.in.Shells), make([]float64, c.in.Shells)
+		for i, sh := range c.in.Shell {
+			if c.u[i] > 0 {
+				sum[sh] += c.w[i] * c.u[i] * r[i] * r[i]
+				n[sh] += c.w[i]
+			}
+		}
+		out[l] = make([]float64, c.in.Shells)
+		for sh := range out[l] {
+			out[l][sh] = 1
+			if v := sum[sh] / n[sh]; v > 1e-20 {
+				// A shell of a few reflections must not outweigh all others by chance.
+				out[l][sh] = (n[sh] - 1) / (n[sh] + 1) / v
+			}
+		}
+	}
+	return out
+}
+
+// covarianceOfMoments is the sum over reflections of psi psi' about its mean.
+func (s *system) covarianceOfMoments(m *weighted, theta []float64) *mat.SymDense {
+	n := len(s.legs[0].w)
+	psi := make([][]float64, len(m.f[0]))
+	mean := make([]float64, len(psi))
+	frames := s.frames()
+	for k := range psi {
+		psi[k] = make([]float64, n)
+	}
+	for l, c := range s.legs {
+		c.influence(psi, m.f[l], m.u[l], theta)
+	}
+	for k := range psi {
+		for i := range psi[k] {
+			mean[k] += rowWeight(frames, i) * psi[k][i]
+		}
+		mean[k] /= s.present
+	}
+	return s.gram(m, func(l, k, i int) float64 {
+		if l > 0 {
+			return 0
+		}
+		return psi[k][i] - mean[k]
+	})
+}

@@ -1,0 +1,230 @@
+package size
+
+import (
+	"fmt"
+	"math"
+	"sort"
+)
+
+// system is the set of linear moment conditions of one model over its legs.
+type system struct {
+	legs       []*conditions
+	model      Model
+	curb       CurbForm
+	ref1, ref2 float64 // mean of thin and thick over the lowest third in s^2
+	rate       float64 // mean count rate of the thin intensity there
+	used       float64
+	present    float64
+	shells     int
+}
+
+// conditions are the columns of one leg: x[p][i] multiplies parameter p.
+type conditions struct {
+	*frame
+	x       [][]float64
+	t       []float64 // h Q
+	tMean   []float64 // by shell
+	power   float64   // t goes as mean1^-power
+	f       [][]float64
+	inverse []float64 // by shell: reference over mean2
+}
+
+func (s *system) parameters() int { return int(s.model) + 1 }
+
+func (s *system) frames() []*frame {
+	f := make([]*frame, len(s.legs))
+	for i, l := range s.legs {
+		f[i] = l.frame
+	}
+	return f
+}
+
+func newSystem(legs []*frame, model Model, curb CurbForm) (*system, error) {
+	s := &system{model: model, curb: curb}
+	s.used, s.present, s.shells = counts(legs)
+	s.references(legs)
+	for _, f := range legs {
+		c := &conditions{frame: f}
+		m := make([]float64, len(f.w))
+		for i := range m {
+			m[i] = f.y1[i] - 1
+		}
+		c.x = append(c.x, m)
+		if model >= MQ {
+			if err := s.addCurb(c); err != nil {
+				return nil, err
+			}
+		}
+		if model == MQO {
+			o := make([]float64, len(f.w))
+			c.inverse = make([]float64, f.in.Shells)
+			for sh, mean := range f.mean2 {
+				c.inverse[sh] = s.ref2 / mean
+			}
+			for i, sh := range f.in.Shell {
+				o[i] = c.inverse[sh] * (f.y1[i] - 1)
+			}
+			c.x = append(c.x, o)
+		}
+		s.legs = append(s.legs, c)
+	}
+	return s, nil
+}
+
+// references finds the means over the lowest third in s^2, pooled over the legs.
+func (s *system) references(legs []*frame) {
+	var n, n1, n2, nr float64
+	for _, f := range legs {
+		limit := math.Inf(1)
+		if f.in.S2 != nil {
+			sorted := append([]float64(nil), f.in.S2...)
+			sort.Float64s(sorted)
+			limit = sorted[(len(sorted)-1)/3]
+		}
+		for i, w := range f.w {
+			if w == 0 || (f.in.S2 != nil && f.in.S2[i] > limit) {
+				continue
+			}
+			n += w
+			n1 += w * f.in.Thin[i]
+			n2 += w * f.in.Thick[i]
+			if f.in.Exposure != nil {
+				nr += w * f.in.Thin[i] * f.in.Exposure[i]
+			}
+		}
+	}
+	s.ref1, s.ref2, s.rate = n1/n, n2/n, nr/n
+}
+
+// addCurb appends the column h Q - <h Q> y1.
+func (s *system) addCurb(c *conditions) error {
+	in := c.in
+	halves := in.ThinA != nil && in.ThinB != nil
+	if !halves && in.VarThin == nil {
+		return fmt.Errorf("size: Moments: the curb needs VarThin, or ThinA and ThinB")
+	}
+	if s.curb == CurbRate && in.Exposure == nil {
+		return fmt.Errorf("size: Moments: the curb by count rate needs Exposure")
+	}
+	c.power = 1
+	if s.curb == CurbStrength {
+		c.power = 2
+	}
+	c.t = make([]float64, len(c.w))
+	c.tMean = make([]float64, in.Shells)
+	for i, sh := range in.Shell {
+		if c.w[i] == 0 {
+			continue
+		}
+		var q float64
+		if halves {
+			q = in.ThinA[i] * in.ThinB[i]
+		} else {
+			q = in.Thin[i]*in.Thin[i] - in.VarThin[i]
+		}
+		mean := c.mean1[sh]
+		switch s.curb {
+		case CurbCommon:
+			c.t[i] = q / (mean * s.ref1)
+		case CurbStrength:
+			c.t[i] = q / (mean * mean)
+		case CurbRate:
+			c.t[i] = q * in.Exposure[i] / (mean * s.rate)
+		}
+		c.tMean[sh] += c.w[i] * c.t[i] / c.sum[sh]
+	}
+	x := make([]float64, len(c.w))
+	for i, sh := range in.Shell {
+		if c.w[i] > 0 {
+			x[i] = c.t[i] - c.tMean[sh]*c.y1[i]
+		}
+	}
+	c.x = append(c.x, x)
+	return nil
+}
+
+// addFunctions appends min(z, knot), times factor where that is not nil.
+func (s *system) addFunctions(knots []float64, factor func(c *conditions, i int) float64) {
+	for _, c := range s.legs {
+		for _, k := range knots {
+			f := make([]float64, len(c.w))
+			for i, z := range c.z {
+				f[i] = math.Min(z, k)
+				if factor != nil {
+					f[i] *= factor(c, i)
+				}
+			}
+			c.f = append(c.f, f)
+		}
+	}
+}
+
+// inverseMean is the reference over the shell mean of the thick position.
+func (s *system) inverseMean(c *conditions, i int) float64 { return s.ref2 / c.mean2[c.in.Shell[i]] }
+
+// shellLevel is the shell mean of the thin position over the reference.
+func (s *system) shellLevel(c *conditions, i int) float64 { return c.mean1[c.in.Shell[i]] / s.ref1 }
+
+func exposure(c *conditions, i int) float64 { return c.in.Exposure[i] }
+
+// residual is y1 - y2 less the model.
+func (c *conditions) residual(theta []float64) []float64 {
+	r := make([]float64, len(c.w))
+	for i := range r {
+		if c.w[i] == 0 {
+			continue
+		}
+		r[i] = c.y1[i] - c.y2[i]
+		for p, th := range theta {
+			r[i] -= th * c.x[p][i]
+		}
+	}
+	return r
+}
+
+// influence adds to psi[k][i] what reflection i contributes to moment k at
+// theta: its own product, and the moment's change through the shell means of
+// y1, y2 and t, whose relative errors i makes up.
+func (c *conditions) influence(psi [][]float64, f [][]float64, u, theta []float64) {
+	r := c.residual(theta)
+	var q, o float64
+	if len(theta) > 1 {
+		q = theta[1]
+	}
+	if len(theta) > 2 {
+		o = theta[2]
+	}
+	shells := c.in.Shells
+	for k := range f {
+		g1, g2, gt := make([]float64, shells), make([]float64, shells), make([]float64, shells)
+		for j, s := range c.in.Shell {
+			wf := c.w[j] * u[j] * f[k][j]
+			if wf == 0 {
+				continue
+			}
+			y1, y2 := c.y1[j], c.y2[j]
+			d1 := -y1 + theta[0]*y1
+			d2 := y2
+			if len(theta) > 1 {
+				d1 -= q * (-c.power*c.t[j] + (c.power+1)*c.tMean[s]*y1)
+				gt[s] += wf * q * y1
+			}
+			if len(theta) > 2 {
+				d1 += o * c.inverse[s] * y1
+				d2 += o * c.x[2][j]
+			}
+			g1[s] += wf * d1
+			g2[s] += wf * d2
+		}
+		for i, s := range c.in.Shell {
+			if c.w[i] == 0 {
+				continue
+			}
+			p := u[i]*f[k][i]*r[i] + (g1[s]*(c.y1[i]-1)+g2[s]*(c.y2[i]-1))/c.sum[s]
+			if len(theta) > 1 {
+				p += gt[s] * (c.t[i] - c.tMean[s]) / c.sum[s]
+			}
+			psi[k][i] += p
+		}
+	}
+}
