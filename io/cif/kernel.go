@@ -1,0 +1,307 @@
+package cif
+
+import (
+	"bytes"
+	"fmt"
+	"math"
+	"strings"
+
+	"thinward/io/internal/text"
+)
+
+// firstRoom is the number of rows after which the length of the columns is
+// estimated from the bytes a row took.
+const firstRoom = 2048
+
+// plainStart marks the bytes with which a value begins that is certainly an
+// unquoted word and no heading or keyword.
+var plainStart = func() *[256]bool {
+	var t [256]bool
+	for c := 33; c < 127; c++ {
+		t[c] = !strings.ContainsRune("\"#$'_[]{;dDlLsSgG", rune(c))
+	}
+	return &t
+}()
+
+var neverPlain [256]bool
+
+// reflections reads the rows of a loop from its first value, p.tok, into columns.
+// Numbers and words that stand in the usual form are taken straight from the
+// bytes; everything else (quotes, text fields, comments, nulls, the end) goes
+// through the lexer.
+func (p *parser) reflections(loop *Loop, pl *plan) error {
+	l := &list{file: p.file, block: p.block, plan: pl, names: loop.Names, twinRow: -1}
+	p.file.lists = append(p.file.lists, l)
+	p.i = p.tok.at
+	n, err := p.readRows(l)
+	if err != nil {
+		return err
+	}
+	l.finish(n)
+	loop.Rows = n
+	return nil
+}
+
+func (p *parser) readRows(l *list) (int, error) {
+	roles, cls, plain := l.plan.roles, p.class, plainStart
+	if p.version == "2.0" {
+		plain = &neverPlain
+	}
+	d, i, start := p.data, p.i, p.i
+	room := firstRoom
+	l.grow(room)
+	for n := 0; ; n++ {
+		if n == room {
+			room = max(n+n/2, int(float64(p.src.SizeHint()-start)/float64(i-start)*float64(n)*1.01)+64)
+			l.grow(room)
+		}
+		if n%rowsPerMark == 0 {
+			l.marks = append(l.marks, i)
+		}
+		for c, r := range roles {
+			for i < len(d) && cls[d[i]] == blank {
+				i++
+			}
+			if i < len(d) {
+				if j := l.quick(d, i, n, r, cls, plain); j > 0 {
+					i = j
+					continue
+				}
+			}
+			p.i = i
+			tok, err := p.next()
+			if err != nil {
+				return 0, err
+			}
+			d = p.data
+			if tok.kind != tokValue {
+				p.tok = tok
+				if c != 0 {
+					return 0, p.wrongCount(&Loop{Names: l.names}, n*len(roles)+c)
+				}
+				return n, nil
+			}
+			if err := p.slowly(l, n, c, tok); err != nil {
+				return 0, err
+			}
+			i = p.i
+		}
+	}
+}
+
+// quick stores the value that begins at d[i] as row n of role r and returns the
+// offset behind it, or 0 when it is not in the usual form or not complete.
+func (l *list) quick(d []byte, i, n int, r role, cls *[256]uint8, plain *[256]bool) int {
+	switch r {
+	case roleH, roleK, roleL:
+		x, j, ok := text.FastInt(d, i)
+		if !ok || j >= len(d) || cls[d[j]] != blank || x < -math.MaxInt16 || x > math.MaxInt16 {
+			return 0
+		}
+		switch r {
+		case roleH:
+			l.raw.H[n] = int16(x)
+		case roleK:
+			l.raw.K[n] = int16(x)
+		default:
+			l.raw.L[n] = int16(x)
+		}
+		return j
+	case roleIntensity, roleSigma, rolePhi, rolePartiality:
+		x, j, ok := text.FastFloat(d, i)
+		if !ok || j >= len(d) || cls[d[j]] != blank {
+			return 0
+		}
+		switch r {
+		case roleIntensity:
+			l.raw.I[n] = x
+		case roleSigma:
+			l.raw.Sigma[n] = x
+		case rolePhi:
+			l.raw.Phi[n] = x
+		default:
+			l.raw.Partiality[n] = x
+		}
+		return j
+	case roleFrame, roleScaleGroup:
+		x, j, ok := text.FastInt(d, i)
+		if !ok || x < 0 || j >= len(d) {
+			return 0
+		}
+		if cls[d[j]] == blank {
+			l.raw.Frame[n] = int32(x)
+			if r == roleScaleGroup {
+				l.scale.of[n] = -1
+			}
+			return j
+		}
+		return 0
+	case roleIntensitySU, roleScaleSet:
+		return 0
+	}
+	if !plain[d[i]] {
+		return 0
+	}
+	j := i + 1
+	for j < len(d) && cls[d[j]] == ordinary {
+		j++
+	}
+	if j == len(d) || cls[d[j]] != blank {
+		return 0
+	}
+	switch r {
+	case roleDataSet:
+		if j == i+1 && (d[i] == '?' || d[i] == '.') {
+			return 0
+		}
+		l.dataSet.of[n] = l.dataSet.id(d[i:j])
+	case roleStatus:
+		if j > i+1 {
+			return 0
+		}
+		l.setStatus(n, d[i:j])
+	}
+	return j
+}
+
+// slowly stores any value of the loop.
+func (p *parser) slowly(l *list, n, c int, tok token) error {
+	r := l.plan.roles[c]
+	w := p.data[tok.start:tok.end]
+	null := tok.span.kind == Unknown || tok.span.kind == Inapplicable
+	if null && r != roleSkip && r != roleStatus {
+		l.nulls++
+	}
+	switch r {
+	case roleH, roleK, roleL:
+		return p.slowIndex(l, n, c, tok, null)
+	case roleIntensity, roleIntensitySU, roleSigma, rolePhi, rolePartiality:
+		x, su := math.NaN(), math.NaN()
+		if !null {
+			var ok bool
+			if x, su, ok = text.ParseNumber(w); !ok || tok.span.kind == TextField {
+				return p.notNumber(l, c, tok)
+			}
+		}
+		switch r {
+		case roleIntensity:
+			l.raw.I[n] = x
+		case roleIntensitySU:
+			l.raw.I[n], l.raw.Sigma[n] = x, su
+			if !math.IsNaN(su) {
+				l.plainSU++
+			}
+		case roleSigma:
+			l.raw.Sigma[n] = x
+		case rolePhi:
+			l.raw.Phi[n] = x
+		default:
+			l.raw.Partiality[n] = x
+		}
+	case roleFrame:
+		l.raw.Frame[n] = text.NullFrame
+		if !null {
+			x, ok := text.ParseIndex(w)
+			if !ok || x < 0 {
+				p.item = l.names[c]
+				return p.fault(tok.at, "the image number "+text.Shown(w)+" is not a whole number from 0 up", "give the number of the image, or ? where it is not known")
+			}
+			l.raw.Frame[n] = int32(x)
+		}
+	case roleScaleGroup, roleScaleSet:
+		l.scaleCode(n, w, null, r == roleScaleGroup)
+	case roleDataSet:
+		l.dataSet.of[n] = -1
+		if !null {
+			l.dataSet.of[n] = l.dataSet.id(w)
+		}
+	case roleStatus:
+		if null {
+			w = []byte("o")
+		}
+		l.setStatus(n, w)
+	}
+	return nil
+}
+
+func (p *parser) slowIndex(l *list, n, c int, tok token, null bool) error {
+	w := p.data[tok.start:tok.end]
+	x, ok := text.NullIndex, true
+	if !null {
+		x, ok = text.ParseIndex(w)
+		if !ok || tok.span.kind == TextField {
+			p.item = l.names[c]
+			return p.fault(tok.at, "the index "+text.Shown(w)+" is not a whole number", "indices must be integers; look for a shifted column or a value too many in the rows before")
+		}
+		if x < -math.MaxInt16 || x > math.MaxInt16 {
+			p.item = l.names[c]
+			return p.fault(tok.at, fmt.Sprintf("the index %d is out of range", x), "indices lie within -32767 and 32767; look for columns that touch")
+		}
+	}
+	switch l.plan.roles[c] {
+	case roleH:
+		l.raw.H[n] = int16(x)
+	case roleK:
+		l.raw.K[n] = int16(x)
+	default:
+		l.raw.L[n] = int16(x)
+	}
+	return nil
+}
+
+func (p *parser) notNumber(l *list, c int, tok token) error {
+	p.item = l.names[c]
+	w := p.data[tok.start:tok.end]
+	return p.fault(tok.at, text.Shown(w)+" is not a number", numberRemedy(w))
+}
+
+func numberRemedy(w []byte) string {
+	low := strings.ToLower(string(bytes.TrimLeft(w, "+-")))
+	switch {
+	case strings.Contains(low, ","):
+		return "write a decimal point, not a comma"
+	case low == "nan" || strings.HasPrefix(low, "inf"):
+		return "write ? for a value that is not known"
+	case strings.Contains(low, "("):
+		return "a standard uncertainty is digits in parentheses behind the whole number, as in 12.3(4)"
+	case strings.Contains(low, "d"):
+		return "write the exponent with e"
+	}
+	return "write it in decimal digits, as 12.5 or 1.2e-3"
+}
+
+// scaleCode takes 12 as a frame, 12%3 as frame 12 of set 3 and anything else as a
+// set without frames.
+func (l *list) scaleCode(n int, w []byte, null, frames bool) {
+	frame, set := text.NullFrame, int32(-1)
+	if !null {
+		frame = noFrame
+		number, name, two := bytes.Cut(w, []byte("%"))
+		x, ok := text.ParseIndex(number)
+		switch {
+		case ok && x >= 0 && two && len(name) > 0:
+			frame, set = x, l.scale.id(name)
+		case ok && x >= 0 && !two:
+			frame = x
+		default:
+			set = l.scale.id(w)
+		}
+	}
+	l.scale.of[n] = set
+	if frames {
+		l.raw.Frame[n] = int32(frame)
+	}
+}
+
+func (l *list) setStatus(n int, w []byte) {
+	l.status[n] = statusKeep
+	switch {
+	case len(w) == 1 && w[0] == '-':
+		l.status[n] = statusAbsent
+	case len(w) == 1 && w[0] == 'x':
+		l.status[n] = statusUnreliable
+	case len(w) == 1 && strings.IndexByte("o<hlf.?", w[0]) >= 0:
+	case l.odd == "":
+		l.odd = text.Shown(w)
+	}
+}

@@ -1,0 +1,151 @@
+package text
+
+import (
+	"bytes"
+	"errors"
+	"fmt"
+	"io"
+	"os"
+
+	"github.com/klauspost/compress/gzip"
+)
+
+const inflateStep = 1 << 20
+
+// Source is a text that may still be growing: Bytes is what is there, More waits
+// for the next piece. Gzip data inflate in one goroutine while the caller reads,
+// which is the one place in io where a goroutine starts; a panic in it is caught
+// and becomes Err. The prefix already seen never changes, though Bytes may move.
+type Source struct {
+	name   string
+	buf    []byte
+	pieces chan []byte
+	stop   chan struct{}
+	fault  error // written by the goroutine before it closes pieces
+	err    error
+	hint   int
+}
+
+// OpenSource reads the file at path, inflating it when its first bytes say gzip.
+// The name in errors is path. Close must be called when reading stops early.
+func OpenSource(path string) (*Source, error) {
+	data, err := os.ReadFile(path)
+	if err != nil {
+		var pe *os.PathError
+		cause := err
+		if errors.As(err, &pe) {
+			cause = pe.Err
+		}
+		return nil, &Error{File: path, Problem: "cannot be read: " + cause.Error(), Remedy: "check the path and the access rights"}
+	}
+	return NewSource(path, data), nil
+}
+
+// NewSource is OpenSource for data in memory; data are not changed and must not
+// be changed while the source is in use.
+func NewSource(name string, data []byte) *Source {
+	if len(data) < 2 || data[0] != 0x1f || data[1] != 0x8b {
+		return &Source{name: name, buf: data, hint: len(data)}
+	}
+	s := &Source{name: name, pieces: make(chan []byte, 64), stop: make(chan struct{})}
+	s.hint = inflatedSize(data)
+	go s.inflate(data, make([]byte, s.hint+512))
+	return s
+}
+
+// inflatedSize trusts the length in the last four bytes only as far as deflate
+// can expand; a wrong guess costs time, never correctness.
+func inflatedSize(data []byte) int {
+	tail := data[len(data)-min(4, len(data)):]
+	size := 0
+	for i := len(tail) - 1; i >= 0; i-- {
+		size = size<<8 | int(tail[i])
+	}
+	if limit := 1032 * len(data); size > limit || size < len(data)/2 {
+		size = min(limit, 4*len(data))
+	}
+	return size
+}
+
+func (s *Source) inflate(data, dst []byte) {
+	defer close(s.pieces)
+	defer func() {
+		if r := recover(); r != nil {
+			s.fault = fmt.Errorf("panic while inflating: %v", r)
+		}
+	}()
+	z, err := gzip.NewReader(bytes.NewReader(data))
+	if err != nil {
+		s.fault = err
+		return
+	}
+	n := 0
+	for {
+		if n == len(dst) {
+			grown := make([]byte, 2*len(dst)+inflateStep)
+			copy(grown, dst)
+			dst = grown
+		}
+		end := min(n+inflateStep, len(dst))
+		m, err := io.ReadFull(z, dst[n:end])
+		n += m
+		if m > 0 {
+			select {
+			case s.pieces <- dst[:n]:
+			case <-s.stop:
+				return
+			}
+		}
+		switch {
+		case err == nil:
+		case err == io.EOF, err == io.ErrUnexpectedEOF && m > 0 && atEnd(z):
+			return
+		default:
+			s.fault = err
+			return
+		}
+	}
+}
+
+// atEnd tells the short last piece that ReadFull reports from data cut off in the
+// middle: only a reader that is properly finished keeps answering io.EOF.
+func atEnd(z *gzip.Reader) bool {
+	var one [1]byte
+	_, err := z.Read(one[:])
+	return err == io.EOF
+}
+
+// Bytes returns the text that is there so far.
+func (s *Source) Bytes() []byte { return s.buf }
+
+// SizeHint is the expected length of the whole text, 0 when it is not known.
+func (s *Source) SizeHint() int { return max(s.hint, len(s.buf)) }
+
+// More waits until Bytes has grown and reports whether it has; false is the end of
+// the text or a failure, told apart by Err.
+func (s *Source) More() bool {
+	if s.pieces == nil {
+		return false
+	}
+	buf, ok := <-s.pieces
+	if !ok {
+		s.pieces = nil
+		if s.fault != nil {
+			s.err = &Error{File: s.name, Problem: "gzip data are damaged or cut off: " + s.fault.Error(), Remedy: "copy the file again, or unpack it and look at what is there"}
+		}
+		return false
+	}
+	s.buf = buf
+	return true
+}
+
+// Err returns the failure that ended the text early, nil when there is none.
+func (s *Source) Err() error { return s.err }
+
+// Close ends the inflating when its result is not wanted any more.
+func (s *Source) Close() {
+	if s.stop != nil {
+		close(s.stop)
+		s.stop = nil
+	}
+}
