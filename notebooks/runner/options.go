@@ -15,6 +15,7 @@ type Options struct {
 	CapValue   int               // bytes of one shown value; 0 means 8 MB
 	AllowShell bool              // let cells run lines that start with $
 	Grace      time.Duration     // from interrupt to kill; 0 means 5 s
+	Kill       <-chan struct{}   // closed, it kills the kernel at once; nil means never
 }
 
 // EventKind says what an Event tells.
