@@ -3,6 +3,9 @@ package resample
 import (
 	"context"
 	"errors"
+	"fmt"
+	"math"
+	"slices"
 
 	"thinward/analysis/intensity"
 )
@@ -14,7 +17,7 @@ type ScalarBoot struct {
 	// with NoBCa). An interval the data cannot support is -Inf, +Inf.
 	Lo, Hi, LoBCa, HiBCa []float64
 	// Z0 and Accel are the bias correction and the acceleration of BCa; JackSE and
-	// JackBias the jackknife's own error and bias.
+	// JackBias the jackknife's own error and bias (nil when it was not run).
 	Z0, Accel, JackSE, JackBias []float64
 	// Cov is the covariance of the draws, Cov[i][j].
 	Cov [][]float64
@@ -32,20 +35,367 @@ type ScalarBoot struct {
 	Warnings   []intensity.Warning
 }
 
-// Scalars bootstraps stat, a function of n element weights. weights must not be
-// kept or changed; stat is called from several goroutines at once. An error or a
-// NaN from stat at the plain weights is returned; in a replicate it makes that
-// replicate a failed one.
+// Scalars bootstraps stat, a function of n element weights.
+//
+// stat must be a ratio or a function of ratios: multiplying all weights by one
+// number must not change it. weights must not be kept or changed; stat is called
+// from several goroutines at once, and its result is copied. Weights are drawn as
+// in Bands; with Settings.Blocks the elements of a block share one weight.
+//
+// Lo, Hi: percentile interval, (R+1)p-th ordered draws. LoBCa, HiBCa: Efron 1987
+// (J. Am. Stat. Assoc. 82:171); z0 from the share of draws below the estimate plus
+// half of those equal to it, acceleration by leaving out one unit, or one of
+// Settings.JackknifeGroups groups of units when there are more units than that
+// (unit i is in group i modulo the number; the acceleration then has a random
+// error of about 0.4/sqrt(groups)), or from Settings.Accel.
+//
+// An error, a panic-free NaN or an infinity from stat at the plain weights is an
+// error here; in a replicate it makes the replicate a failed one, which counts
+// against both ends of every interval and is reported. With fewer units than
+// UnitsNeeded(Level) intervals are infinite. It is an error when n < 1, when more
+// than half of the replicates fail, or when a leave-out evaluation fails.
 func Scalars(ctx context.Context, n int, stat func(weights []float64) ([]float64, error), o *Settings) (*ScalarBoot, error) {
-	return nil, errors.New("resample: Scalars has no body yet")
+	s, err := o.filled()
+	if err != nil {
+		return nil, err
+	}
+	if n < 1 {
+		return nil, errors.New("resample: Scalars: no elements")
+	}
+	u := unitsOf(n, s.Blocks)
+	k, estimate, err := plainEstimate(n, stat)
+	if err != nil {
+		return nil, err
+	}
+	if s.Accel != nil && len(s.Accel) != k {
+		panic(fmt.Sprintf("resample: Settings.Accel: %d accelerations for %d statistics", len(s.Accel), k))
+	}
+	m := newSampler(u.n, s.Seed.At("scalars"), &s, maxExactDraws/max(k, 1))
+	b := &ScalarBoot{
+		Estimate: estimate, Draws: make([][]float64, m.total), Prob: m.prob,
+		Level: s.Level, Replicates: m.total, Scheme: m.scheme, Units: u.n,
+	}
+	scratch := func() *scalarScratch { return &scalarScratch{units: newPacked(u.n), weights: make([]float64, n)} }
+	err = eachReplicate(ctx, m.total, &s, scratch, func(t *scalarScratch, r int) error {
+		m.fill(r, t.units)
+		t.expand(u, m.table)
+		if v, err := stat(t.weights); err == nil && len(v) == k && finite(v) {
+			b.Draws[r] = slices.Clone(v)
+		}
+		return nil
+	})
+	if err != nil {
+		return nil, err
+	}
+	if err := b.summarise(); err != nil {
+		return nil, err
+	}
+	if !s.NoBCa {
+		if err := b.accelerate(ctx, u, n, stat, &s); err != nil {
+			return nil, err
+		}
+		b.bca()
+	}
+	b.warn()
+	return b, nil
 }
 
-// BandsOf makes pointwise and simultaneous bands of a curve from the draws of
-// Scalars.
-func BandsOf(b *ScalarBoot) (*BandSet, error) {
-	return nil, errors.New("resample: BandsOf has no body yet")
+type scalarScratch struct {
+	units   packed
+	weights []float64
 }
 
-// PoissonWeights fills dst with bootstrap weights of mean and variance exactly 1.
-func PoissonWeights(s *Stream, dst []float64) {
+func (t *scalarScratch) expand(u units, table *[256]float64) {
+	for i := range t.weights {
+		j := i
+		if u.of != nil {
+			j = int(u.of[i])
+		}
+		t.weights[i] = table[t.units.at(j)]
+	}
+}
+
+func plainEstimate(n int, stat func([]float64) ([]float64, error)) (int, []float64, error) {
+	ones := make([]float64, n)
+	for i := range ones {
+		ones[i] = 1
+	}
+	v, err := stat(ones)
+	if err != nil {
+		return 0, nil, fmt.Errorf("resample: Scalars: at the plain weights: %w", err)
+	}
+	for i := range v {
+		if math.IsNaN(v[i]) || math.IsInf(v[i], 0) {
+			return 0, nil, fmt.Errorf("resample: Scalars: statistic %d at the plain weights is %g", i, v[i])
+		}
+	}
+	return len(v), slices.Clone(v), nil
+}
+
+func finite(v []float64) bool {
+	for _, x := range v {
+		if math.IsNaN(x) || math.IsInf(x, 0) {
+			return false
+		}
+	}
+	return true
+}
+
+// column returns the draws of statistic j, NaN where they failed.
+func (b *ScalarBoot) column(j int) []float64 {
+	x := make([]float64, len(b.Draws))
+	for r, d := range b.Draws {
+		if d == nil {
+			x[r] = math.NaN()
+		} else {
+			x[r] = d[j]
+		}
+	}
+	return x
+}
+
+func (b *ScalarBoot) summarise() error {
+	for _, d := range b.Draws {
+		if d == nil {
+			b.Failed++
+		}
+	}
+	if 2*b.Failed > b.Replicates {
+		return fmt.Errorf("resample: Scalars: the statistic failed in %d of %d replicates", b.Failed, b.Replicates)
+	}
+	alpha := (1 - b.Level) / 2
+	means := make([]float64, len(b.Estimate))
+	for j, e := range b.Estimate {
+		l := newLaw(b.column(j), b.Prob)
+		mean, sd := l.moments()
+		means[j] = mean
+		b.Bias, b.SE = append(b.Bias, mean-e), append(b.SE, sd)
+		lo, hi := l.lower(alpha), l.upper(1-alpha)
+		if b.Units < UnitsNeeded(b.Level) {
+			lo, hi = math.Inf(-1), math.Inf(1)
+		}
+		b.Lo, b.Hi = append(b.Lo, lo), append(b.Hi, hi)
+		b.Achieved = append(b.Achieved, l.share(lo, hi))
+	}
+	b.covariance(means)
+	return nil
+}
+
+func (b *ScalarBoot) covariance(means []float64) {
+	k := len(means)
+	b.Cov = make([][]float64, k)
+	for i := range b.Cov {
+		b.Cov[i] = make([]float64, k)
+	}
+	total := 0.0
+	for r, d := range b.Draws {
+		if d == nil {
+			continue
+		}
+		p := 1.0
+		if b.Prob != nil {
+			p = b.Prob[r]
+		}
+		total += p
+		for i := range d {
+			for j := 0; j <= i; j++ {
+				b.Cov[i][j] += float64(p * float64((d[i]-means[i])*(d[j]-means[j])))
+			}
+		}
+	}
+	if b.Prob == nil {
+		total--
+	}
+	for i := range b.Cov {
+		for j := 0; j <= i; j++ {
+			b.Cov[i][j] /= total
+			b.Cov[j][i] = b.Cov[i][j]
+		}
+	}
+}
+
+// accelerate runs the jackknife over units or groups of units.
+func (b *ScalarBoot) accelerate(ctx context.Context, u units, n int, stat func([]float64) ([]float64, error), s *Settings) error {
+	if s.Accel != nil {
+		b.Accel = slices.Clone(s.Accel)
+		return nil
+	}
+	k := len(b.Estimate)
+	groups := min(u.n, s.JackknifeGroups)
+	b.Accel = make([]float64, k)
+	if groups < 2 {
+		return nil
+	}
+	left := make([][]float64, groups)
+	quiet := *s
+	quiet.Progress = nil
+	scratch := func() []float64 { return make([]float64, n) }
+	err := eachReplicate(ctx, groups, &quiet, scratch, func(w []float64, g int) error {
+		for i := range w {
+			j := i
+			if u.of != nil {
+				j = int(u.of[i])
+			}
+			w[i] = 1
+			if j%groups == g {
+				w[i] = 0
+			}
+		}
+		v, err := stat(w)
+		if err == nil && (len(v) != k || !finite(v)) {
+			err = errors.New("not finite")
+		}
+		if err != nil {
+			return fmt.Errorf("resample: Scalars: without group %d of %d: %w", g, groups, err)
+		}
+		left[g] = slices.Clone(v)
+		return nil
+	})
+	if err != nil {
+		return err
+	}
+	b.JackSE, b.JackBias = make([]float64, k), make([]float64, k)
+	influence := make([]float64, groups)
+	for j := range k {
+		mean := 0.0
+		for _, v := range left {
+			mean += (v[j] - b.Estimate[j]) / float64(groups)
+		}
+		ss := 0.0
+		for g, v := range left {
+			influence[g] = mean + b.Estimate[j] - v[j]
+			ss += float64(influence[g] * influence[g])
+		}
+		f := float64(groups - 1)
+		b.JackSE[j] = math.Sqrt(f / float64(groups) * ss)
+		b.JackBias[j] = f * mean
+		b.Accel[j] = Acceleration(influence)
+	}
+	return nil
+}
+
+// Acceleration returns a = sum l^3 / (6 (sum l^2)^1.5) of centred influence
+// values l (Efron 1987, eq. 6.6), 0 when they are all 0. For a weighted mean
+// sum(w y)/sum(w) the influence values are l_i = w_i (y_i - mean).
+func Acceleration(influence []float64) float64 {
+	scale := 0.0
+	for _, l := range influence {
+		scale = math.Max(scale, math.Abs(l))
+	}
+	if !(scale > 0) {
+		return 0
+	}
+	var two, three float64
+	for _, l := range influence {
+		x := l / scale
+		two += float64(x * x)
+		three += float64(float64(x*x) * x)
+	}
+	return three / (6 * math.Pow(two, 1.5))
+}
+
+func (b *ScalarBoot) bca() {
+	alpha := (1 - b.Level) / 2
+	for j, e := range b.Estimate {
+		l := newLaw(b.column(j), b.Prob)
+		z0 := normQuantile(l.below(e, 1e-10*b.SE[j]))
+		p1, p2 := bcaLevels(z0, b.Accel[j], alpha)
+		lo, hi := l.lower(p1), l.upper(p2)
+		if b.Units < UnitsNeeded(b.Level) || math.IsInf(z0, 0) {
+			lo, hi = math.Inf(-1), math.Inf(1)
+		}
+		b.Z0 = append(b.Z0, z0)
+		b.LoBCa, b.HiBCa = append(b.LoBCa, lo), append(b.HiBCa, hi)
+	}
+}
+
+// below returns the share of draws under e, those within tol of it by half.
+func (l law) below(e, tol float64) float64 {
+	sum, total := 0.0, 0.0
+	for i, v := range l.x {
+		p := 1.0
+		if l.prob != nil {
+			p = l.prob[i]
+		}
+		total += p
+		switch {
+		case math.Abs(v-e) <= tol:
+			sum += p / 2
+		case v < e:
+			sum += p
+		}
+	}
+	return sum / total
+}
+
+// bcaLevels are the levels of the BCa interval with tails alpha: Efron &
+// Tibshirani 1993, eq. 14.10. Where 1 - a(z0 + z) is not positive the level runs
+// to the end.
+func bcaLevels(z0, a, alpha float64) (lo, hi float64) {
+	level := func(z float64) float64 {
+		d := 1 - a*(z0+z)
+		if d <= 0 {
+			if z < 0 {
+				return 0
+			}
+			return 1
+		}
+		return normCDF(z0 + (z0+z)/d)
+	}
+	z := normQuantile(1 - alpha)
+	return level(-z), level(z)
+}
+
+func (b *ScalarBoot) warn() {
+	if need := UnitsNeeded(b.Level); b.Units < need {
+		b.Warnings = append(b.Warnings, warning(CodeFewUnits, fmt.Sprintf(
+			"%d units cannot carry an interval at %g %%, which needs %d; it is infinite", b.Units, 100*b.Level, need), "scalars"))
+		return
+	}
+	if b.Failed > 0 {
+		b.Warnings = append(b.Warnings, warning(CodeFailedDraws, fmt.Sprintf(
+			"the statistic failed in %d of %d replicates; they count against both ends of the interval", b.Failed, b.Replicates), "scalars"))
+	}
+	open := 0
+	for _, list := range [][]float64{b.Lo, b.Hi, b.LoBCa, b.HiBCa} {
+		for _, v := range list {
+			if math.IsInf(v, 0) {
+				open++
+			}
+		}
+	}
+	if open > 0 {
+		b.Warnings = append(b.Warnings, warning(CodeFewDraws, fmt.Sprintf(
+			"%d interval ends lie beyond what %d replicates can show and are infinite", open, b.Replicates), "scalars"))
+	}
+}
+
+// BandsOf reads the K statistics of b as one curve and returns its pointwise and
+// simultaneous bands, made as in Bands from the draws of b. N is nil; Units is the
+// number of units of b at each point.
+func BandsOf(ctx context.Context, b *ScalarBoot, o *Settings) (*BandSet, error) {
+	s, err := o.filled()
+	if err != nil {
+		return nil, err
+	}
+	k := len(b.Estimate)
+	out := &BandSet{Mean: slices.Clone(b.Estimate), Level: s.Level, Replicates: b.Replicates, Scheme: b.Scheme, Units: make([]int, k)}
+	draws := make([]float64, b.Replicates*k)
+	for r := range b.Replicates {
+		row := draws[r*k : (r+1)*k]
+		if b.Draws[r] != nil {
+			copy(row, b.Draws[r])
+			continue
+		}
+		for j := range row {
+			row[j] = math.NaN()
+		}
+	}
+	for j := range out.Units {
+		out.Units[j] = b.Units
+	}
+	if err := out.summarise(ctx, draws, b.Prob, &s); err != nil {
+		return nil, err
+	}
+	return out, nil
 }
