@@ -62,8 +62,7 @@ func FromOperators(ops []Op) (*Group, error) {
 	if err != nil {
 		return nil, err
 	}
-	g.setting, g.shift = identify(g)
-	return g, nil
+	return g.settle(identify(g)), nil
 }
 
 func incomplete(kept, all []Op, given map[Op]bool) error {
@@ -132,8 +131,15 @@ func newGroup(ops []Op) (*Group, error) {
 		return nil, err
 	}
 	g.prepare()
-	g.elements = findElements(g)
 	return g, nil
+}
+
+// settle records the tabulated setting and names the elements, which follow the
+// symbol of the setting where it leaves a choice.
+func (g *Group) settle(s Setting, shift [3]int) *Group {
+	g.setting, g.shift = s, shift
+	g.elements = findElements(g)
+	return g
 }
 
 // Number is the number of the space-group type in International Tables, 1 to

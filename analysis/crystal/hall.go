@@ -19,8 +19,7 @@ func FromHall(symbol string) (*Group, error) {
 	if err != nil {
 		return nil, fmt.Errorf("Hall symbol %q: %w", symbol, err)
 	}
-	g.setting, g.shift = identify(g)
-	return g, nil
+	return g.settle(identify(g)), nil
 }
 
 // expandHall is FromHall without the search of the table.

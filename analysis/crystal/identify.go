@@ -38,10 +38,11 @@ var expanded = sync.OnceValue(func() (e struct {
 	e.byOps = map[string]int{}
 	all := table()
 	for _, i := range preferred(all) {
-		g, err := all[i].Group()
+		g, err := expandHall(all[i].Hall)
 		if err != nil {
 			panic("crystal: settings.tsv: " + err.Error())
 		}
+		g.setting = all[i]
 		f := fingerprint(g.ops)
 		if _, taken := e.byOps[f]; !taken {
 			e.byOps[f] = len(e.groups)

@@ -89,8 +89,7 @@ func (s Setting) Group() (*Group, error) {
 	if err != nil {
 		return nil, fmt.Errorf("setting %d %s: %w", s.Number, s.Choice, err)
 	}
-	g.setting = s
-	return g, nil
+	return g.settle(s, [3]int{}), nil
 }
 
 // shortSymbol drops from a full symbol the axes that its planes imply: all but
