@@ -9,6 +9,7 @@ import (
 // defaults filled in.
 type Series struct {
 	Plan       Plan
+	Group      *crystal.Group
 	Wavelength float64 // angstrom
 	Truth      Truth
 	Specimens  []Specimen

@@ -1,0 +1,116 @@
+package simulate
+
+import "fmt"
+
+// Flaw is one thing wrong with an otherwise sound series, or one true effect of
+// thickness, each made to trip one entry of the ledger.
+type Flaw int
+
+const (
+	FlawOffset     Flaw = iota // 3 % additive constant in the thick positions
+	FlawCopies                 // every observation stands on three frames
+	FlawDeviations             // deviations of 10, 20, 30 %
+	FlawNegatives              // negative observations removed
+	FlawDeadCounts             // strong reflections lose counts by rate in the thick positions
+	FlawBleed                  // 3 % of lattice neighbours' signal in the thick positions
+	FlawTilt                   // exchange of 25 % that grows as 1/cos of the tilt
+	FlawScale                  // thick positions twice as intense as their thickness says
+	FlawScatter                // equivalents disagree by 25 % in the thick positions
+	FlawDose                   // dose in step with thickness in all crystals, with damage
+	FlawSigma                  // sigmas of the thin positions reported 1.5 times too small
+	FlawIndexing               // one position indexed the other way in an ambiguous group
+	FlawCoverage               // thick positions measured over a third of the tilt range
+	FlawIce                    // ice rings in the thick positions
+	FlawOneCrystal             // one crystal only
+	FlawJitter                 // 20 % jitter between frames of the thick positions
+	FlawForbidden              // forbidden reflections not recorded
+	FlawExchange               // a true exchange of 2, 6 and 12 %
+	FlawCurb                   // a true curb of 0, 0.01 and 0.03
+	flaws
+)
+
+var flawNames = [flaws]string{
+	"offset", "copies", "deviations", "negatives", "dead counts", "bleed", "tilt", "scale", "scatter", "dose",
+	"sigma", "indexing", "coverage", "ice", "one crystal", "jitter", "forbidden", "exchange", "curb",
+}
+
+// String returns the flaw in a word or two.
+func (f Flaw) String() string {
+	if f < 0 || f >= flaws {
+		return fmt.Sprintf("Flaw(%d)", int(f))
+	}
+	return flawNames[f]
+}
+
+// Flaws lists every flaw in order.
+func Flaws() []Flaw {
+	out := make([]Flaw, flaws)
+	for i := range out {
+		out[i] = Flaw(i)
+	}
+	return out
+}
+
+// Flawed returns the plan of Sound(seed) with one flaw. It panics for an unknown flaw.
+func Flawed(f Flaw, seed uint64) *Plan {
+	if f < 0 || f >= flaws {
+		panic("simulate: Flawed: unknown flaw")
+	}
+	p := Sound(seed)
+	p.Title = "Series with a flaw: " + f.String()
+	if f == FlawIndexing {
+		p.SpaceGroup, p.Cell.B = "P 41", p.Cell.A
+		p.Crystals[1].Positions[2].Reindex = "k,h,-l"
+	}
+	if f == FlawOneCrystal {
+		p.Crystals = p.Crystals[:1]
+	}
+	for i := range p.Crystals {
+		for j := range p.Crystals[i].Positions {
+			spoil(f, j, &p.Crystals[i].Positions[j])
+		}
+	}
+	return p
+}
+
+// spoil changes position j of a crystal, 0 the thinnest and 2 the thickest.
+func spoil(f Flaw, j int, q *Position) {
+	thick := j == 2
+	switch {
+	case f == FlawCopies:
+		q.Copies = 3
+	case f == FlawDeviations:
+		q.Deviation = 0.1 * float64(j+1)
+	case f == FlawNegatives:
+		cut := 0.0
+		q.CutBelow = &cut
+	case f == FlawTilt:
+		q.Exchange, q.TiltThickens = 0.25, true
+	case f == FlawDose:
+		q.Order, q.Dose, q.DoseB = j+1, 3*float64(j+1), 0.25
+	case f == FlawForbidden:
+		q.OmitForbidden = true
+	case f == FlawExchange:
+		q.Exchange = []float64{0.02, 0.06, 0.12}[j]
+	case f == FlawCurb:
+		q.Curb = []float64{0, 0.01, 0.03}[j]
+	case f == FlawSigma && j == 0:
+		q.SigmaFactor = 1 / 1.5
+	case f == FlawOffset && thick:
+		q.Offset = 0.03
+	case f == FlawDeadCounts && thick:
+		q.CurbForm, q.Curb = CurbRate, 0.03
+	case f == FlawBleed && thick:
+		q.Bleed = 0.03
+	case f == FlawScale && thick:
+		q.LnScale = 0.7
+	case f == FlawScatter && thick:
+		q.Scatter = 0.25
+	case f == FlawCoverage && thick:
+		q.TiltDeg = []float64{-20, 20}
+	case f == FlawIce && thick:
+		q.Ice = 0.5
+	case f == FlawJitter && thick:
+		q.FrameJitter = 0.2
+	}
+}
