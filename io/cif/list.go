@@ -88,45 +88,36 @@ func (c *codes) sets() []Set {
 // grow makes room for n rows in every column the plan uses.
 func (l *list) grow(n int) {
 	has := func(r role) bool { return l.plan.item[r] != "" }
-	l.raw.H, l.raw.K, l.raw.L = grown(l.raw.H, n), grown(l.raw.K, n), grown(l.raw.L, n)
-	l.raw.I, l.raw.Sigma = grown(l.raw.I, n), grown(l.raw.Sigma, n)
+	l.raw.H, l.raw.K, l.raw.L = text.Grown(l.raw.H, n), text.Grown(l.raw.K, n), text.Grown(l.raw.L, n)
+	l.raw.I, l.raw.Sigma = text.Grown(l.raw.I, n), text.Grown(l.raw.Sigma, n)
 	if has(rolePhi) {
-		l.raw.Phi = grown(l.raw.Phi, n)
+		l.raw.Phi = text.Grown(l.raw.Phi, n)
 	}
 	if has(rolePartiality) {
-		l.raw.Partiality = grown(l.raw.Partiality, n)
+		l.raw.Partiality = text.Grown(l.raw.Partiality, n)
 	}
 	if has(roleFrame) || has(roleScaleGroup) {
-		l.raw.Frame = grown(l.raw.Frame, n)
+		l.raw.Frame = text.Grown(l.raw.Frame, n)
 	}
 	if has(roleScaleGroup) || has(roleScaleSet) {
-		l.scale.of = grown(l.scale.of, n)
+		l.scale.of = text.Grown(l.scale.of, n)
 	}
 	if has(roleDataSet) {
-		l.dataSet.of = grown(l.dataSet.of, n)
+		l.dataSet.of = text.Grown(l.dataSet.of, n)
 	}
 	if has(roleStatus) || l.plan.amplitude {
-		l.status = grown(l.status, n)
+		l.status = text.Grown(l.status, n)
 	}
-}
-
-func grown[T any](x []T, n int) []T {
-	if cap(x) >= n {
-		return x[:n]
-	}
-	y := make([]T, n)
-	copy(y, x)
-	return y
 }
 
 // finish cuts the columns to n rows and turns amplitudes into intensities.
 func (l *list) finish(n int) {
 	l.rows = n
 	r := &l.raw
-	r.H, r.K, r.L = cut(r.H, n), cut(r.K, n), cut(r.L, n)
-	r.I, r.Sigma, r.Phi, r.Partiality = cut(r.I, n), cut(r.Sigma, n), cut(r.Phi, n), cut(r.Partiality, n)
-	r.Frame, l.status = cut(r.Frame, n), cut(l.status, n)
-	l.scale.of, l.dataSet.of = cut(l.scale.of, n), cut(l.dataSet.of, n)
+	r.H, r.K, r.L = text.Cut(r.H, n), text.Cut(r.K, n), text.Cut(r.L, n)
+	r.I, r.Sigma, r.Phi, r.Partiality = text.Cut(r.I, n), text.Cut(r.Sigma, n), text.Cut(r.Phi, n), text.Cut(r.Partiality, n)
+	r.Frame, l.status = text.Cut(r.Frame, n), text.Cut(l.status, n)
+	l.scale.of, l.dataSet.of = text.Cut(l.scale.of, n), text.Cut(l.dataSet.of, n)
 	if !l.plan.amplitude {
 		return
 	}
@@ -136,16 +127,6 @@ func (l *list) finish(n int) {
 		}
 		r.I[i], r.Sigma[i] = f*f, 2*f*r.Sigma[i]
 	}
-}
-
-func cut[T any](x []T, n int) []T {
-	if x == nil {
-		return nil
-	}
-	if cap(x) > n+n/4+64 {
-		return append(make([]T, 0, n), x[:n]...)
-	}
-	return x[:n:n]
 }
 
 // offset returns where row i begins, from the nearest mark before it.
