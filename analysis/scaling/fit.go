@@ -1,8 +1,8 @@
 package scaling
 
 import (
-	"context"
-	"errors"
+	"fmt"
+	"math"
 
 	"gonum.org/v1/gonum/mat"
 
@@ -43,6 +43,10 @@ type Fit struct {
 	OutlierShare  []float64 // share of listed observations per position
 	Warnings      []intensity.Warning
 	Settings      Settings // as used, defaults filled in
+
+	curve []curveAxis
+	covAt []int // start of each position in Cov
+	order []int32
 }
 
 // Outlier is one observation whose relative weight fell below the threshold. It
@@ -57,29 +61,40 @@ type Outlier struct {
 	Weight                float64
 }
 
-// LnKAt returns ln K of position p at angle phi in degrees; beyond the measured
-// range the value at its end. It panics when p is no position.
-func (f *Fit) LnKAt(p int, phi float64) float64 { return 0 }
-
-// LnKSEAt returns the standard error of LnKAt.
-func (f *Fit) LnKSEAt(p int, phi float64) float64 { return 0 }
-
-// Estimate fits the scale of one crystal: separable robust least squares in
-// which Gauss-Newton moves K and B while J is eliminated in closed form
-// (variable projection: Golub & Pereyra 1973; Kaufman 1975), with the weights of
-// a Student-t likelihood (Lange, Little & Taylor 1989). Observations of one raw
-// index in several positions share a deviation in the weights, so that relative
-// curves d_p rest on matched indices and the common curve c on equivalents at
-// other angles. Gauge: position 0 has mean ln K = 0 over its observations and
-// B = 0. settings may be nil. Errors: columns of unequal length, values that are
-// not finite, variances not positive (with the row), cancellation.
-func Estimate(ctx context.Context, in Input, settings *Settings) (*Fit, error) {
-	return nil, errors.New("scaling: not built yet")
+// LnKAt returns ln K of position p at angle phi in degrees (at the frame number
+// where frames stand for the angle); beyond the measured range the value at its
+// end. It panics when p is no position.
+func (f *Fit) LnKAt(p int, phi float64) float64 {
+	at, b := f.basisAt(p, phi)
+	sum := 0.0
+	for i, x := range b {
+		sum += x * f.LnK[p][at+i]
+	}
+	return sum
 }
 
-// Variants fits every combination of the given models and anchors, models
-// outermost, other settings alike. nil models mean all four, nil anchors all
-// five.
-func Variants(ctx context.Context, in Input, models []Model, anchors []Anchor, settings *Settings) ([]*Fit, error) {
-	return nil, errors.New("scaling: not built yet")
+// LnKSEAt returns the standard error of LnKAt, 0 where the gauge fixes it.
+func (f *Fit) LnKSEAt(p int, phi float64) float64 {
+	at, b := f.basisAt(p, phi)
+	at += f.covAt[p]
+	sum := 0.0
+	for i, x := range b {
+		for j, y := range b {
+			sum += x * y * f.Cov.At(at+i, at+j)
+		}
+	}
+	return math.Sqrt(math.Max(sum, 0))
+}
+
+func (f *Fit) basisAt(p int, phi float64) (at int, b []float64) {
+	if p < 0 || p >= len(f.curve) {
+		panic(fmt.Sprintf("scaling: LnKAt: position %d of %d", p, len(f.curve)))
+	}
+	c := f.curve[p]
+	if c.flat {
+		return 0, []float64{1}
+	}
+	at, u := c.locate(phi)
+	b0, b1, b2, b3 := cubicBasis(u)
+	return at, []float64{b0, b1, b2, b3}
 }

@@ -1,0 +1,343 @@
+package scaling
+
+import (
+	"context"
+	"fmt"
+	"math"
+
+	"gonum.org/v1/gonum/mat"
+
+	"thinward/analysis/intensity"
+)
+
+// Estimate fits the scale of one crystal: separable robust least squares in
+// which Gauss-Newton moves K and B while J is eliminated in closed form
+// (variable projection: Golub & Pereyra 1973; Kaufman 1975), with the weights of
+// a Student-t likelihood (Lange, Little & Taylor 1989). Observations of one raw
+// index in several positions share a deviation in the weights, so that relative
+// curves d_p rest on matched indices and the common curve c on equivalents at
+// other angles. Gauge: position 0 has mean ln K = 0 over its observations and
+// B = 0; c is the curve of the first position with angles, and there d_p = 0.
+// settings may be nil. Errors: columns of unequal length, values that are not
+// finite, variances not positive (with the row), cancellation.
+func Estimate(ctx context.Context, in Input, settings *Settings) (*Fit, error) {
+	set, err := settings.filled()
+	if err != nil {
+		return nil, err
+	}
+	if err := in.check(); err != nil {
+		return nil, err
+	}
+	curve, warn := planCurves(&in, &set)
+	if err := ctx.Err(); err != nil {
+		return nil, err
+	}
+	t, err := newTable(ctx, &in, curve, fitLaws(&in), set.Workers)
+	if err != nil {
+		return nil, err
+	}
+	f := newFitter(t, &in, &set, warn)
+	if err := f.run(ctx); err != nil {
+		return nil, err
+	}
+	if set.Anchor != AnchorAll {
+		t.used = t.anchor(set.Anchor, f.s.j)
+		f.restart()
+		if err := f.run(ctx); err != nil {
+			return nil, err
+		}
+	}
+	return f.finish(ctx)
+}
+
+// Variants fits every combination of the given models and anchors, models
+// outermost, other settings alike. nil models mean all four, nil anchors all
+// five.
+func Variants(ctx context.Context, in Input, models []Model, anchors []Anchor, settings *Settings) ([]*Fit, error) {
+	if models == nil {
+		models = []Model{Full, PhiOnly, BOnly, Constant}
+	}
+	if anchors == nil {
+		anchors = []Anchor{AnchorAll, AnchorWeak, AnchorStrong, AnchorLow, AnchorHigh}
+	}
+	var out []*Fit
+	for _, m := range models {
+		for _, a := range anchors {
+			var set Settings
+			if settings != nil {
+				set = *settings
+			}
+			set.Model, set.Anchor = m, a
+			f, err := Estimate(ctx, in, &set)
+			if err != nil {
+				return nil, fmt.Errorf("%v, anchor %v: %w", m, a, err)
+			}
+			out = append(out, f)
+		}
+	}
+	return out, nil
+}
+
+// noiseRounds is the number of passes in which the noise model inside the
+// weights may still move; then it stands, so that the fit can come to rest.
+const noiseRounds = 12
+
+// minOwnDF is the number of degrees of freedom from equivalents below which a
+// position's noise in the weights is taken from residuals of all positions.
+const minOwnDF = 30
+
+// fitter carries one fit.
+type fitter struct {
+	in   *Input
+	set  *Settings
+	t    *table
+	s    *state
+	red  reductionInput
+	free freedom
+	r    *reduction
+
+	joint   []bool
+	normal  *mat.SymDense
+	inverse *reducedSystem
+	kappa   float64
+	last    *sums
+
+	soft         float64
+	round, noise int
+	shift        float64
+	converged    bool
+	warn, fixed  []intensity.Warning
+}
+
+func newFitter(t *table, in *Input, set *Settings, warn []intensity.Warning) *fitter {
+	f := &fitter{in: in, set: set, t: t, s: newState(t, set), warn: warn, kappa: 1}
+	over := t.overlap()
+	f.red = reductionInput{table: t, state: f.s, use: t.usage(), over: over, set: set}
+	f.warn = append(f.warn, over.warnings(set.MinOverlap)...)
+	f.warn = append(f.warn, gaps(t, f.red.use)...)
+	f.joint = make([]bool, in.Positions)
+	for p, df := range t.ownDF() {
+		f.joint[p] = df < minOwnDF
+	}
+	for p, k := range over.start() {
+		n := t.curve[p].width()
+		if t.curve[p].flat {
+			n = 1
+		}
+		for i := range n {
+			f.s.theta[f.s.off[p]+i] = k
+		}
+	}
+	f.t.firstJ(f.s)
+	f.restart()
+	return f
+}
+
+// restart frees all curves and begins the count of rounds again.
+func (f *fitter) restart() {
+	f.free = freedom{common: true, relative: make([]bool, f.in.Positions)}
+	for p := range f.free.relative {
+		f.free.relative[p] = true
+	}
+	f.r = f.red.build(f.free)
+	f.fixed = nil
+	f.soft = math.NaN()
+	f.round, f.noise = 0, noiseRounds
+	f.normal, f.inverse = nil, nil
+	f.converged = false
+}
+
+// run iterates until the largest shift is below the tolerance.
+func (f *fitter) run(ctx context.Context) error {
+	fresh := 0
+	for f.round < f.set.MaxIter {
+		f.round++
+		kind := passKind{hessian: f.normal == nil || fresh < 4 || fresh%6 == 0, noise: f.noise > 0 && !f.s.report}
+		fresh++
+		n, err := f.t.pass(ctx, f.s, kind, f.joint, f.set.Workers)
+		if err != nil {
+			return err
+		}
+		if kind.hessian {
+			f.renewNormal(n)
+		}
+		f.step(n)
+		change := 0.0
+		if kind.noise {
+			change = f.s.renewNoise(n, f.red.over.matched)
+			f.noise--
+		}
+		if fresh == 4 && f.fixSoft() {
+			fresh = 0
+			continue
+		}
+		if f.shift < f.set.Tolerance && change < 1e-3 && fresh > 1 {
+			if fresh > 4 && !f.fixSoft() {
+				f.converged = true
+				return nil
+			}
+			if f.normal == nil {
+				fresh = 0
+			}
+		}
+	}
+	return nil
+}
+
+func (f *fitter) renewNormal(n *sums) {
+	f.kappa = math.Max(0.2, n.curvature/math.Max(n.weight, 1e-300))
+	if !(n.weight > 0) {
+		f.kappa = 1
+	}
+	f.normal = f.t.normal(f.s, n)
+	f.normal.ScaleSym(f.kappa, f.normal)
+	f.inverse = nil
+}
+
+// step moves theta and notes the largest shift over its standard error.
+func (f *fitter) step(n *sums) {
+	f.shift = 0
+	if f.r.t == nil {
+		return
+	}
+	if f.inverse == nil {
+		f.inverse = invert(f.r.reduce(f.withPrior(), 0))
+	}
+	g := f.t.gradientOf(f.s, n)
+	theta := mat.NewVecDense(f.s.size(), f.s.theta)
+	var pull mat.VecDense
+	pull.MulVec(f.r.prior, theta)
+	g.SubVec(g, &pull)
+	var eta, down, shift mat.VecDense
+	down.MulVec(f.r.t.T(), g)
+	eta.MulVec(f.inverse.inverse, &down)
+	for i := range eta.Len() {
+		if v := f.inverse.inverse.At(i, i); v > 0 {
+			f.shift = math.Max(f.shift, math.Abs(eta.AtVec(i))/math.Sqrt(v))
+		}
+	}
+	shift.MulVec(f.r.t, &eta)
+	most := 0.0
+	for p, c := range f.t.curve {
+		for i := range c.width() {
+			most = math.Max(most, math.Abs(shift.AtVec(f.s.off[p]+i)))
+		}
+		most = math.Max(most, math.Abs(shift.AtVec(f.s.indexB(f.t, p)))*0.2)
+	}
+	if most > 1 {
+		shift.ScaleVec(1/most, &shift)
+	}
+	theta.AddVec(theta, &shift)
+}
+
+func (f *fitter) withPrior() *mat.SymDense {
+	var a mat.SymDense
+	a.AddSym(f.normal, f.r.prior)
+	return &a
+}
+
+// fixSoft sets curves to a constant that the data do not determine, and reports
+// whether there were any. Common curves are judged before relative ones.
+func (f *fitter) fixSoft() bool {
+	if f.r.t == nil || f.normal == nil {
+		return false
+	}
+	se := f.red.softness(f.r, f.normal)
+	bad := false
+	for i, b := range f.r.blocks {
+		if b.kind == commonCurve && !(se[i] <= f.soft) {
+			f.soft = se[i]
+		}
+		if b.kind != commonCurve || !(se[i] > f.set.MaxLnKSE) || !f.free.common {
+			continue
+		}
+		bad = true
+		f.free.common = false
+		f.flattenCommon()
+		f.note("curve-constant", "", "equivalents at other angles do not fix the common scale curve: standard error of ln K %s along its softest direction, more than %.3g; it was set to a constant (curves between positions are still fitted)", se[i], f.set.MaxLnKSE)
+	}
+	if !bad {
+		for i, b := range f.r.blocks {
+			if b.kind == commonCurve || !(se[i] > f.set.MaxLnKSE) {
+				continue
+			}
+			bad = true
+			p := b.positions[0]
+			f.free.relative[p] = false
+			f.flatten(p)
+			f.note("relative-constant", where(p), "the data do not fix the scale curve of this position: standard error of ln K %s along its softest direction, more than %.3g; it was set to a constant", se[i], f.set.MaxLnKSE)
+		}
+	}
+	if bad {
+		f.r = f.red.build(f.free)
+		f.normal, f.inverse = nil, nil
+	}
+	return bad
+}
+
+func (f *fitter) note(code, at, text string, se, limit float64) {
+	shown := fmt.Sprintf("%.2g", se)
+	if se > 10 {
+		shown = "without bound"
+	}
+	f.fixed = append(f.fixed, intensity.Warning{Code: code, Where: at, Text: fmt.Sprintf(text, shown, limit)})
+}
+
+// flattenCommon takes c(phi) out of all curves, leaving d_p.
+func (f *fitter) flattenCommon() {
+	for _, b := range f.r.blocks {
+		if b.kind != commonCurve {
+			continue
+		}
+		c := f.centred(b.positions[0])
+		for _, p := range b.positions {
+			for i := range c {
+				f.s.theta[f.s.off[p]+i] -= c[i]
+			}
+		}
+	}
+}
+
+// flatten makes the curve of p parallel to the reference, or constant where it
+// stands alone.
+func (f *fitter) flatten(p int) {
+	off := f.s.off[p]
+	ref := make([]float64, f.t.curve[p].functions())
+	if r := f.reference(p); r >= 0 {
+		copy(ref, f.s.theta[f.s.off[r]:])
+	}
+	mean := 0.0
+	for i, m := range f.red.use[p].mean {
+		mean += m * (f.s.theta[off+i] - ref[i])
+	}
+	for i := range ref {
+		f.s.theta[off+i] = ref[i] + mean
+	}
+}
+
+// reference is the position whose curve is c in the set of p, -1 for none.
+func (f *fitter) reference(p int) int {
+	if f.t.curve[p].frames {
+		return -1
+	}
+	for q, c := range f.t.curve {
+		if f.red.over.component[q] == f.red.over.component[p] && !c.flat && !c.frames && f.red.over.n[q] > 0 {
+			return q
+		}
+	}
+	return -1
+}
+
+func (f *fitter) centred(p int) []float64 {
+	u := f.red.use[p].mean
+	off := f.s.off[p]
+	mean := 0.0
+	for i, m := range u {
+		mean += m * f.s.theta[off+i]
+	}
+	out := make([]float64, len(u))
+	for i := range out {
+		out[i] = f.s.theta[off+i] - mean
+	}
+	return out
+}
