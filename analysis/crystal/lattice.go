@@ -1,0 +1,265 @@
+package crystal
+
+import (
+	"cmp"
+	"math"
+	"slices"
+)
+
+// rational is a matrix of whole numbers over a common positive denominator, in
+// lowest terms.
+type rational struct {
+	num matrix
+	den int
+}
+
+func newRational(num matrix, den int) rational {
+	g := den
+	for i := range 3 {
+		for j := range 3 {
+			g = gcd(g, num[i][j])
+		}
+	}
+	if den < 0 {
+		g = -abs(g)
+	}
+	r := rational{den: den / g}
+	for i := range 3 {
+		for j := range 3 {
+			r.num[i][j] = num[i][j] / g
+		}
+	}
+	return r
+}
+
+func (r rational) times(q rational) rational {
+	return newRational(r.num.times(q.num), r.den*q.den)
+}
+
+// primitiveBasis is a basis of the lattice with these centring translations:
+// columns in 24ths of the edges of the cell.
+func primitiveBasis(lattice [][3]int) matrix {
+	rows := [][3]int{{Twentyfourths, 0, 0}, {0, Twentyfourths, 0}, {0, 0, Twentyfourths}}
+	rows = append(rows, lattice...)
+	// Whole-number elimination; the rows that are left span the same lattice.
+	for col := range 3 {
+		for {
+			at := -1
+			for i := col; i < len(rows); i++ {
+				if rows[i][col] != 0 && (at < 0 || abs(rows[i][col]) < abs(rows[at][col])) {
+					at = i
+				}
+			}
+			rows[col], rows[at] = rows[at], rows[col]
+			clean := true
+			for i := col + 1; i < len(rows); i++ {
+				q := rows[i][col] / rows[col][col]
+				for j := range 3 {
+					rows[i][j] -= q * rows[col][j]
+				}
+				clean = clean && rows[i][col] == 0
+			}
+			if clean {
+				break
+			}
+		}
+	}
+	var b matrix
+	for i := range 3 {
+		for j := range 3 {
+			b[i][j] = rows[j][i]
+		}
+	}
+	if det(b) < 0 {
+		for i := range 3 {
+			b[i][0] = -b[i][0]
+		}
+	}
+	return b
+}
+
+// reduce shortens the basis b by whole-number combinations until none of the
+// three vectors can be made shorter by adding the others (Buerger 1957), with g
+// the metric of the cell that b refers to.
+func reduce(b matrix, g [3][3]float64) matrix {
+	column := func(j int) [3]int { return [3]int{b[0][j], b[1][j], b[2][j]} }
+	for range 1000 {
+		changed := false
+		for j := range 3 {
+			shortest, length := column(j), squared(g, column(j))
+			for p := -1; p <= 1; p++ {
+				for q := -1; q <= 1; q++ {
+					v, u, w := column(j), column((j+1)%3), column((j+2)%3)
+					for i := range 3 {
+						v[i] += p*u[i] + q*w[i]
+					}
+					if s := squared(g, v); s < length*(1-1e-9) {
+						shortest, length, changed = v, s, true
+					}
+				}
+			}
+			for i := range 3 {
+				b[i][j] = shortest[i]
+			}
+		}
+		if !changed {
+			break
+		}
+	}
+	return b
+}
+
+func squared(g [3][3]float64, v [3]int) float64 {
+	s := 0.0
+	for i := range 3 {
+		for j := range 3 {
+			s += float64(v[i]) * g[i][j] * float64(v[j])
+		}
+	}
+	return s
+}
+
+// twofold is a rotation by 180 degrees that nearly leaves a lattice as it is.
+type twofold struct {
+	m         matrix
+	obliquity float64 // degrees between its axis and the normal of its net
+}
+
+// twofolds finds the twofold axes of a reduced lattice with metric g: a direct
+// direction u and a reciprocal one h with u h = 1 or 2 and the angle between them
+// within the tolerance (Le Page 1982, J. Appl. Cryst. 15, 255), least oblique
+// first.
+func twofolds(g [3][3]float64, toleranceDeg float64) []twofold {
+	inverse := inverted(g)
+	var small [][3]int
+	for a := -2; a <= 2; a++ {
+		for b := -2; b <= 2; b++ {
+			for c := -2; c <= 2; c++ {
+				if gcd(gcd(a, b), c) == 1 {
+					small = append(small, [3]int{a, b, c})
+				}
+			}
+		}
+	}
+	var found []twofold
+	for _, u := range small {
+		if primitive(u) != u {
+			continue
+		}
+		for _, h := range small {
+			dot := u[0]*h[0] + u[1]*h[1] + u[2]*h[2]
+			if dot != 1 && dot != 2 {
+				continue
+			}
+			cosine := float64(dot) / math.Sqrt(squared(g, u)*squared(inverse, h))
+			angle := math.Acos(math.Min(1, cosine)) * 180 / math.Pi
+			if !(angle <= toleranceDeg) {
+				continue
+			}
+			t := twofold{obliquity: angle}
+			for i := range 3 {
+				for j := range 3 {
+					t.m[i][j] = 2 / dot * u[i] * h[j]
+				}
+				t.m[i][i]--
+			}
+			found = append(found, t)
+		}
+	}
+	slices.SortStableFunc(found, func(a, b twofold) int {
+		// Rounding must not decide the order among exact axes.
+		return cmp.Compare(math.Round(a.obliquity*1e6), math.Round(b.obliquity*1e6))
+	})
+	return found
+}
+
+func inverted(g [3][3]float64) [3][3]float64 {
+	var out [3][3]float64
+	d := 0.0
+	for i := range 3 {
+		for j := range 3 {
+			p, q := (j+1)%3, (j+2)%3
+			r, s := (i+1)%3, (i+2)%3
+			out[i][j] = g[p][r]*g[q][s] - g[p][s]*g[q][r]
+		}
+	}
+	for j := range 3 {
+		d += g[0][j] * out[j][0]
+	}
+	for i := range 3 {
+		for j := range 3 {
+			out[i][j] /= d
+		}
+	}
+	return out
+}
+
+// latticeRotations returns the rotations of the lattice of g in the cell c, in
+// the basis of the cell, that fit within the tolerance: identity first. The
+// metric is first averaged over the Laue class, whose own rotations so are always
+// among them. Twofold axes are taken from the least oblique on, as long as they
+// generate one of the lattice point groups; rotations of all of these are
+// generated by twofold ones.
+func latticeRotations(g *Group, c Cell, toleranceDeg float64) []rational {
+	var mean [3][3]float64
+	metric := c.Metric()
+	for _, o := range g.coset {
+		m := congruent(metric, widen(o.R))
+		for i := range 3 {
+			for j := range 3 {
+				mean[i][j] += m[i][j] / float64(len(g.coset))
+			}
+		}
+	}
+	basis := reduce(primitiveBasis(g.lattice), mean)
+	// The angle of an exact axis is only as small as rounding lets it be.
+	axes := twofolds(congruent(mean, basis), max(toleranceDeg, 1e-5))
+	rotations := []matrix{{{1, 0, 0}, {0, 1, 0}, {0, 0, 1}}}
+	var own []matrix
+	for _, o := range g.coset {
+		p, _, _ := properPart(widen(o.R))
+		// The Laue class acts on the reduced basis by whole numbers.
+		r := newRational(adjugate(basis).times(p).times(basis), det(basis))
+		own = append(own, r.num)
+	}
+	if grown, ok := generate(rotations, own); ok {
+		rotations = grown
+	}
+	for _, t := range axes {
+		if slices.Contains(rotations, t.m) {
+			continue
+		}
+		if grown, ok := generate(rotations, []matrix{t.m}); ok {
+			rotations = grown
+		}
+	}
+	out := make([]rational, len(rotations))
+	for i, m := range rotations {
+		out[i] = newRational(basis.times(m).times(adjugate(basis)), det(basis))
+	}
+	return out
+}
+
+// generate returns the group that the rotations and the new ones generate, and
+// false when it is more than the 24 rotations of the largest lattice.
+func generate(rotations, added []matrix) ([]matrix, bool) {
+	all := append([]matrix(nil), rotations...)
+	for _, m := range added {
+		if !slices.Contains(all, m) {
+			all = append(all, m)
+		}
+	}
+	for i := 0; i < len(all); i++ {
+		for j := 0; j < len(all); j++ {
+			p := all[i].times(all[j])
+			if slices.Contains(all, p) {
+				continue
+			}
+			if len(all) == 24 || order(p[0][0]+p[1][1]+p[2][2]) == 0 {
+				return nil, false
+			}
+			all = append(all, p)
+		}
+	}
+	return all, true
+}
