@@ -1,6 +1,7 @@
 package simulate
 
 import (
+	"context"
 	"fmt"
 	"math"
 	"slices"
@@ -12,7 +13,7 @@ import (
 // placeAtoms draws the atoms of one asymmetric unit uniformly in the cell, each
 // at least MinDistance from all atoms and symmetry copies before it and from its
 // own copies, so none lies on a special position.
-func placeAtoms(o *Structure, cell crystal.Cell, group *crystal.Group, rnd *resample.Stream) ([]Atom, error) {
+func placeAtoms(ctx context.Context, o *Structure, cell crystal.Cell, group *crystal.Group, rnd *resample.Stream) ([]Atom, error) {
 	const tries = 2000
 	ops := group.Operators()
 	kinds := o.Atoms
@@ -20,11 +21,14 @@ func placeAtoms(o *Structure, cell crystal.Cell, group *crystal.Group, rnd *resa
 		n := max(6, int(cell.Volume()/(18*float64(len(ops)))))
 		kinds = []AtomKind{{Element: "C", Number: n - 2*(n/6)}, {Element: "N", Number: n / 6}, {Element: "O", Number: n / 6}}
 	}
-	basis := cartesianBasis(cell)
+	basis := cell.Orthogonal()
 	var atoms []Atom
 	var taken [][3]float64
 	for _, kind := range kinds {
 		for range kind.Number {
+			if err := ctx.Err(); err != nil {
+				return nil, err
+			}
 			placed := false
 			for range tries {
 				x := [3]float64{rnd.Float64(), rnd.Float64(), rnd.Float64()}
@@ -95,18 +99,9 @@ func apply(op crystal.Op, x [3]float64) [3]float64 {
 	return out
 }
 
-// cartesianBasis has the cell axes as columns: a along x, b in the xy plane.
-func cartesianBasis(c crystal.Cell) [3][3]float64 {
-	const rad = math.Pi / 180
-	ca, cb := math.Cos(c.Alpha*rad), math.Cos(c.Beta*rad)
-	sg, cg := math.Sincos(c.Gamma * rad)
-	cx, cy := c.C*cb, c.C*(ca-cb*cg)/sg
-	return [3][3]float64{{c.A, c.B * cg, cx}, {0, c.B * sg, cy}, {0, 0, math.Sqrt(c.C*c.C - cx*cx - cy*cy)}}
-}
-
-// reciprocalBasis has a*, b*, c* as columns in the frame of cartesianBasis.
+// reciprocalBasis has a*, b*, c* as columns in the frame of Cell.Orthogonal.
 func reciprocalBasis(c crystal.Cell) [3][3]float64 {
-	m := cartesianBasis(c)
+	m := c.Orthogonal()
 	var out [3][3]float64
 	for j := range 3 {
 		p, q := (j+1)%3, (j+2)%3

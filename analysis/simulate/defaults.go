@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"math"
 	"reflect"
-	"slices"
 )
 
 // filled returns a copy of the plan in which every default stands.
@@ -19,16 +18,16 @@ func (p *Plan) filled() Plan {
 		fill(angle, 90)
 	}
 	fill(&out.Structure.MinDistance, 1.2)
-	out.Structure.Atoms = slices.Clone(p.Structure.Atoms)
-	out.Structure.Given = slices.Clone(p.Structure.Given)
-	out.Crystals = slices.Clone(p.Crystals)
+	out.Structure.Atoms = clone(p.Structure.Atoms)
+	out.Structure.Given = clone(p.Structure.Given)
+	out.Crystals = clone(p.Crystals)
 	for i := range out.Crystals {
 		c := &out.Crystals[i]
 		if c.Name == "" {
 			c.Name = fmt.Sprintf("L%d", i+1)
 		}
-		c.Euler = slices.Clone(c.Euler)
-		c.Positions = slices.Clone(c.Positions)
+		c.Euler = clone(c.Euler)
+		c.Positions = clone(c.Positions)
 		if len(c.Positions) == 0 && c.Wedge != nil {
 			c.Positions = c.Wedge.positions()
 		}
@@ -39,6 +38,10 @@ func (p *Plan) filled() Plan {
 	}
 	return out
 }
+
+// clone copies a slice; an empty one becomes nil, so that a plan read from a file
+// equals one written in Go.
+func clone[T any](v []T) []T { return append([]T(nil), v...) }
 
 func fill(v *float64, otherwise float64) {
 	if *v == 0 {
@@ -55,8 +58,8 @@ func (p Position) over(common *Position) Position {
 			f.Set(shared.Field(i))
 		}
 	}
-	p.TiltDeg, p.GapDeg = slices.Clone(p.TiltDeg), slices.Clone(p.GapDeg)
-	p.Cos, p.Sin = slices.Clone(p.Cos), slices.Clone(p.Sin)
+	p.TiltDeg, p.GapDeg = clone(p.TiltDeg), clone(p.GapDeg)
+	p.Cos, p.Sin = clone(p.Cos), clone(p.Sin)
 	if p.CutBelow != nil {
 		cut := *p.CutBelow
 		p.CutBelow = &cut

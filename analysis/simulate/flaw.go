@@ -11,7 +11,7 @@ const (
 	FlawCopies                 // every observation stands on three frames
 	FlawDeviations             // deviations of 10, 20, 30 %
 	FlawNegatives              // negative observations removed
-	FlawDeadCounts             // strong reflections lose counts by rate in the thick positions
+	FlawDeadCounts             // dead-time-like loss in the thick positions, 6 % at unit intensity
 	FlawBleed                  // 3 % of lattice neighbours' signal in the thick positions
 	FlawTilt                   // exchange of 25 % that grows as 1/cos of the tilt
 	FlawScale                  // thick positions twice as intense as their thickness says
@@ -99,7 +99,7 @@ func spoil(f Flaw, j int, q *Position) {
 	case f == FlawOffset && thick:
 		q.Offset = 0.03
 	case f == FlawDeadCounts && thick:
-		q.CurbForm, q.Curb = CurbRate, 0.03
+		q.DeadCounts = 1e-4
 	case f == FlawBleed && thick:
 		q.Bleed = 0.03
 	case f == FlawScale && thick:

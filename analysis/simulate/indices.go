@@ -1,6 +1,7 @@
 package simulate
 
 import (
+	"context"
 	"fmt"
 	"math"
 	"slices"
@@ -35,25 +36,26 @@ func (x *indices) lookup(h crystal.HKL) int32 {
 
 // enumerate lists the indices and fills the HKL, S2, Epsilon, Centric and Absent
 // of the truth.
-func enumerate(cell crystal.Cell, group *crystal.Group, dMin float64) (*indices, *Truth, error) {
-	x := &indices{reach: [3]int{int(cell.A / dMin), int(cell.B / dMin), int(cell.C / dMin)}}
-	box := 1.0
-	for _, r := range x.reach {
-		box *= float64(2*r + 1)
-	}
-	if box > mostIndices {
+func enumerate(ctx context.Context, cell crystal.Cell, group *crystal.Group, dMin float64) (*indices, *Truth, error) {
+	box := (2*cell.A/dMin + 1) * (2*cell.B/dMin + 1) * (2*cell.C/dMin + 1)
+	if !(box <= mostIndices) {
 		return nil, nil, fmt.Errorf("simulate: d_min %g leaves %.3g lattice points, more than %d; raise d_min or shrink the cell", dMin, box, mostIndices)
 	}
+	x := &indices{reach: [3]int{int(cell.A / dMin), int(cell.B / dMin), int(cell.C / dMin)}}
 	x.at = make([]int32, 0, int(box))
 	limit := 1 / (dMin * dMin)
 	translations := centrings(group)
 	number := map[crystal.HKL]int32{}
 	t := &Truth{}
+	metric := cell.ReciprocalMetric()
 	for h := -x.reach[0]; h <= x.reach[0]; h++ {
+		if err := ctx.Err(); err != nil {
+			return nil, nil, err
+		}
 		for k := -x.reach[1]; k <= x.reach[1]; k++ {
 			for l := -x.reach[2]; l <= x.reach[2]; l++ {
 				hkl := crystal.HKL{H: h, K: k, L: l}
-				q := cell.InvD2(hkl)
+				q := crystal.InvD2(metric, hkl)
 				if q > limit || (h == 0 && k == 0 && l == 0) {
 					x.at = append(x.at, -1)
 					continue
@@ -64,7 +66,7 @@ func enumerate(cell crystal.Cell, group *crystal.Group, dMin float64) (*indices,
 					u = int32(len(t.HKL))
 					number[rep] = u
 					t.HKL = append(t.HKL, rep)
-					t.S2 = append(t.S2, cell.InvD2(rep)/4)
+					t.S2 = append(t.S2, crystal.InvD2(metric, rep)/4)
 				}
 				x.at = append(x.at, int32(len(x.raw)))
 				x.raw = append(x.raw, hkl)

@@ -30,7 +30,7 @@ func Invent(ctx context.Context, plan *Plan) (*Series, error) {
 	}
 	cell := crystal.Cell(p.Cell)
 	seed := resample.NewSeed(p.Seed).At("invent")
-	list, truth, err := enumerate(cell, group, p.DMin)
+	list, truth, err := enumerate(ctx, cell, group, p.DMin)
 	if err != nil {
 		return nil, err
 	}

@@ -37,10 +37,11 @@ func KinematicIntensities(ctx context.Context, cell crystal.Cell, group *crystal
 		ends[i] = len(sites)
 	}
 	waves := newWaves(sites, hkl)
+	metric := cell.ReciprocalMetric()
 	out := make([]float64, len(hkl))
 	err := parallel.For(ctx, (len(hkl)+block-1)/block, 0, func(_ context.Context, b int) error {
 		for i := b * block; i < min(len(hkl), (b+1)*block); i++ {
-			s2 := cell.InvD2(hkl[i]) / 4
+			s2 := crystal.InvD2(metric, hkl[i]) / 4
 			re, im, from := 0.0, 0.0, 0
 			for k, kind := range kinds {
 				f, err := ScatteringFactor(kind.element, math.Sqrt(s2))

@@ -44,11 +44,11 @@ func TestAbsencesAreZeroAndEquivalentsEqual(t *testing.T) {
 			t.Fatal(err)
 		}
 		group, cell := lookup(t, symbol), crystal.Cell(f.Cell)
-		list, truth, err := enumerate(cell, group, f.DMin)
+		list, truth, err := enumerate(context.Background(), cell, group, f.DMin)
 		if err != nil {
 			t.Fatal(err)
 		}
-		atoms, err := placeAtoms(&f.Structure, cell, group, resample.NewSeed(5).Stream(0))
+		atoms, err := placeAtoms(context.Background(), &f.Structure, cell, group, resample.NewSeed(5).Stream(0))
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -133,11 +133,11 @@ func localMean(tr *Truth, centric bool) []float64 {
 func TestAtomsKeepTheirDistance(t *testing.T) {
 	cell := crystal.Cell{A: 6, B: 7, C: 8, Alpha: 75, Beta: 100, Gamma: 110}
 	group := lookup(t, "P -1")
-	atoms, err := placeAtoms(&Structure{MinDistance: 1.3}, cell, group, resample.NewSeed(2).Stream(0))
+	atoms, err := placeAtoms(context.Background(), &Structure{MinDistance: 1.3}, cell, group, resample.NewSeed(2).Stream(0))
 	if err != nil {
 		t.Fatal(err)
 	}
-	m := cartesianBasis(cell)
+	m := cell.Orthogonal()
 	var all [][3]float64
 	for _, a := range atoms {
 		for _, op := range group.Operators() {
@@ -163,7 +163,7 @@ func TestAtomsKeepTheirDistance(t *testing.T) {
 	if !(math.Sqrt(least) >= 1.3-1e-9) {
 		t.Errorf("two atoms are %g angstrom apart", math.Sqrt(least))
 	}
-	if _, err := placeAtoms(&Structure{MinDistance: 5, Atoms: []AtomKind{{Element: "C", Number: 40}}}, cell, group, resample.NewSeed(2).Stream(0)); err == nil {
+	if _, err := placeAtoms(context.Background(), &Structure{MinDistance: 5, Atoms: []AtomKind{{Element: "C", Number: 40}}}, cell, group, resample.NewSeed(2).Stream(0)); err == nil {
 		t.Error("forty atoms 5 angstrom apart found room")
 	}
 }

@@ -71,6 +71,22 @@ func Sound(seed uint64) *Plan {
 	return p
 }
 
+// Replicates returns Sound(seed) with a second place of the thinnest thickness in every
+// crystal, "again", declared a replicate of "thin": the full null. Its deviations
+// are as related to its neighbours' as those of any two places.
+func Replicates(seed uint64) *Plan {
+	p := Sound(seed)
+	p.Title = "Series with replicates"
+	for i := range p.Crystals {
+		c := &p.Crystals[i]
+		again := c.Positions[0]
+		again.Name, again.ReplicateOf, again.Order = "again", "thin", 4
+		again.Dose = 1.2 * float64(again.Order)
+		c.Positions = append(c.Positions[:1:1], append([]Position{again}, c.Positions[1:]...)...)
+	}
+	return p
+}
+
 // Kinematic returns the twin of a plan in which thickness changes nothing: no
 // exchange, curb, offset or deviation, and no Law. Structure, orientations, scale, B
 // and noise settings stay.

@@ -101,6 +101,17 @@ func TestNullHasNoEffectOfThickness(t *testing.T) {
 	}
 }
 
+func TestReplicatesShareTheirThickness(t *testing.T) {
+	s := invent(t, Replicates(2))
+	for _, x := range s.Specimens {
+		a, b := x.Positions[0], x.Positions[1]
+		if len(x.Positions) != 4 || b.Plan.ReplicateOf != a.Plan.Name || b.Plan.ThicknessNM != a.Plan.ThicknessNM || reflect.DeepEqual(a.Rows.I, b.Rows.I) {
+			t.Errorf("%s: got %+v", x.Name, b.Plan)
+		}
+		floatcmp.CheckSlice(t, "law", b.Law, a.Law, 0, 0)
+	}
+}
+
 func TestWithExchange(t *testing.T) {
 	p := Null(1).WithExchange(0.01, 0.03)
 	for _, c := range p.Crystals {

@@ -19,7 +19,7 @@ func (t *Truth) intensities(ctx context.Context, p *Plan, group *crystal.Group, 
 		t.Atoms = p.Structure.Given
 		if len(t.Atoms) == 0 {
 			var err error
-			if t.Atoms, err = placeAtoms(&p.Structure, cell, group, rnd); err != nil {
+			if t.Atoms, err = placeAtoms(ctx, &p.Structure, cell, group, rnd); err != nil {
 				return err
 			}
 		}
