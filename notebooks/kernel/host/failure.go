@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"path"
+	"regexp"
 	"strings"
 
 	"thinward/notebooks/session"
@@ -48,7 +49,7 @@ func (c *CodeFault) Error() string { return c.Text }
 // interpreter's compiler refused the cell.
 func Describe(recovered any, stack []byte, fromCompiler bool) *Failure {
 	frames := ourFrames(string(stack))
-	f := &Failure{Name: CodeError, Value: fmt.Sprint(recovered)}
+	f := &Failure{Name: CodeError, Value: place.ReplaceAllString(fmt.Sprint(recovered), "line $1: ")}
 	err, isError := recovered.(error)
 	var step *session.Error
 	switch {
@@ -74,6 +75,9 @@ func Describe(recovered any, stack []byte, fromCompiler bool) *Failure {
 	return f
 }
 
+// place is how the interpreter names a line and a column of a cell.
+var place = regexp.MustCompile(`^repl\.go:(\d+):\d+: `)
+
 func asError(v any) error {
 	err, _ := v.(error)
 	return err
@@ -94,7 +98,7 @@ func ourFrames(stack string) []string {
 	}
 	var out []string
 	for i := start; i+1 < len(lines); i += 2 {
-		name, place := lines[i], strings.TrimSpace(lines[i+1])
+		name, source := lines[i], strings.TrimSpace(lines[i+1])
 		if strings.HasPrefix(name, "github.com/cosmos72/gomacro/") || strings.HasPrefix(name, "thinward/notebooks/kernel/") {
 			break
 		}
@@ -104,8 +108,8 @@ func ourFrames(stack string) []string {
 		if cut := strings.LastIndexByte(name, '('); cut > 0 {
 			name = name[:cut]
 		}
-		place, _, _ = strings.Cut(place, " ")
-		out = append(out, "  "+name+" ("+path.Base(place)+")")
+		source, _, _ = strings.Cut(source, " ")
+		out = append(out, "  "+name+" ("+path.Base(source)+")")
 	}
 	return out
 }

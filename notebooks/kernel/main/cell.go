@@ -34,7 +34,7 @@ var (
 // newInterp stands in for interp.New: imports of modules are off, and an
 // interrupt stops the cell instead of the process.
 func newInterp() *interp.Interp {
-	dropWrappers()
+	bindings.DropWrappers()
 	ir := interp.New()
 	ir.Comp.CompGlobals.Options &^= base.OptModuleImport
 	interpreter = ir
@@ -46,16 +46,6 @@ func newInterp() *interp.Interp {
 		}
 	}()
 	return ir
-}
-
-// dropWrappers empties the lists of promoted methods in the interpreter's own
-// tables: the interpreter removes listed methods from a type and then counts the
-// rest, which picks the wrong method on today's Go.
-func dropWrappers() {
-	for path, p := range imports.Packages {
-		p.Wrappers = nil
-		imports.Packages[path] = p
-	}
 }
 
 func interruptCell() {
