@@ -34,9 +34,10 @@ type Correlation struct {
 //
 //	V_p = <e_pA e_pB> - 1,  C = mean over the four pairs of halves of <e_thin e_thick> - 1.
 //
-// Standard errors are infinitesimal-jackknife ones (Jaeckel 1972; Efron 1982,
-// The Jackknife, ch. 6), times sqrt(N/(N - shells - 1)), shell means included,
-// the intervals Student's. R may exceed 1 by its error. With V <= 0 in a
+// Standard errors are those of the delete-one jackknife (Tukey 1958; Efron 1982,
+// The Jackknife, ch. 3), shell means recomputed, the intervals Student's; a
+// weight counts as that many reflections. Strengths have heavy tails: with
+// deviations of 30 % and 1500 reflections the intervals cover about .92. R may exceed 1 by its error. With V <= 0 in a
 // position nothing is estimable but V and C; with V less than two standard
 // errors from 0 the intervals of R and MomentRatio are unbounded. A reflection
 // lacking one of the halves is left out. Errors as in ExchangeWith.
@@ -70,34 +71,42 @@ func TrueCorrelation(h *Halves, w []float64, set *Settings) (*Correlation, error
 		out.Why = fmt.Sprintf("%g reflections with all four halves are too few for their shells", out.N)
 		return out, nil
 	}
-	vThin, pThin := h.product(e[0], e[1], weight, out.N)
-	vThick, pThick := h.product(e[2], e[3], weight, out.N)
+	vThin, dThin := h.product(e[0], e[1], weight, out.N)
+	vThick, dThick := h.product(e[2], e[3], weight, out.N)
 	var c float64
-	pC := make([]float64, len(weight))
+	dC := make([]float64, len(weight))
 	for _, k := range [][2]int{{0, 2}, {0, 3}, {1, 2}, {1, 3}} {
-		v, p := h.product(e[k[0]], e[k[1]], weight, out.N)
+		v, d := h.product(e[k[0]], e[k[1]], weight, out.N)
 		c += v / 4
-		for i := range pC {
-			pC[i] += p[i] / 4
+		for i := range dC {
+			dC[i] += d[i] / 4
 		}
 	}
-	out.describe(weight, df, vThin, vThick, c, pThin, pThick, pC)
+	out.describe(weight, df, [3]float64{vThin, vThick, c}, [3][]float64{dThin, dThick, dC})
 	return out, nil
 }
 
-func (out *Correlation) describe(w []float64, df, vThin, vThick, c float64, pThin, pThick, pC []float64) {
+// describe takes the two variances and the covariance, and the same with each
+// reflection deleted.
+func (out *Correlation) describe(w []float64, df float64, v [3]float64, deleted [3][]float64) {
 	t := tQuantile(out.Level, df)
-	se := func(a, b, g float64) float64 {
-		var v float64
+	se := func(stat func(vThin, vThick, c float64) float64) float64 {
+		at := stat(v[0], v[1], v[2])
+		var sum float64
 		for i := range w {
-			p := a*pThin[i] + b*pThick[i] + g*pC[i]
-			v += w[i] * p * p
+			if w[i] > 0 {
+				d := (stat(deleted[0][i], deleted[1][i], deleted[2][i]) - at) / math.Min(1, w[i])
+				sum += w[i] * d * d
+			}
 		}
-		return math.Sqrt(v * out.N / df)
+		return math.Sqrt(sum * (out.N - 1) / out.N)
 	}
-	out.VThin = newValue(vThin, se(1, 0, 0), t)
-	out.VThick = newValue(vThick, se(0, 1, 0), t)
-	out.C = newValue(c, se(0, 0, 1), t)
+	value := func(stat func(vThin, vThick, c float64) float64) Value {
+		return newValue(stat(v[0], v[1], v[2]), se(stat), t)
+	}
+	out.VThin = value(func(a, _, _ float64) float64 { return a })
+	out.VThick = value(func(_, b, _ float64) float64 { return b })
+	out.C = value(func(_, _, c float64) float64 { return c })
 	for _, v := range []struct {
 		name string
 		v    Value
@@ -111,39 +120,44 @@ func (out *Correlation) describe(w []float64, df, vThin, vThick, c float64, pThi
 		}
 	}
 	out.Estimable = true
-	root := math.Sqrt(vThin * vThick)
-	r := c / root
-	out.R = newValue(r, se(-r/(2*vThin), -r/(2*vThick), 1/root), t)
-	ratio := math.Sqrt(vThick / vThin)
-	lnSE := se(-1/(2*vThin), 1/(2*vThick), 0)
-	out.MomentRatio = Value{1 - ratio, ratio * lnSE, 1 - ratio*math.Exp(t*lnSE), 1 - ratio*math.Exp(-t*lnSE)}
 	if out.Why != "" {
-		out.R.Lo, out.R.Hi = math.Inf(-1), math.Inf(1)
-		out.MomentRatio.Lo, out.MomentRatio.Hi = math.Inf(-1), math.Inf(1)
+		// Deleting one reflection may take V below 0, so there is no error to give.
+		ratio := math.Sqrt(v[1] / v[0])
+		out.R.Value, out.MomentRatio.Value = v[2]/math.Sqrt(v[0]*v[1]), 1-ratio
+		return
 	}
+	out.R = value(func(a, b, c float64) float64 { return c / math.Sqrt(a*b) })
+	ratio := math.Sqrt(v[1] / v[0])
+	lnSE := se(func(a, b, _ float64) float64 { return math.Log(b/a) / 2 })
+	out.MomentRatio = Value{1 - ratio, ratio * lnSE, 1 - ratio*math.Exp(t*lnSE), 1 - ratio*math.Exp(-t*lnSE)}
 }
 
-// product returns <a b> - 1 pooled over shells and what each reflection
-// contributes to it, the shells' sizes taken as fixed.
-func (h *Halves) product(a, b, w []float64, n float64) (v float64, psi []float64) {
-	mean, sum := make([]float64, h.Shells), make([]float64, h.Shells)
+// product returns <a b> - 1 pooled over shells, a and b of shell mean 1, and the
+// same without each reflection, or without min(1, w) of it.
+func (h *Halves) product(a, b, w []float64, n float64) (v float64, deleted []float64) {
+	ab, sum := make([]float64, h.Shells), make([]float64, h.Shells)
 	for i, s := range h.Shell {
-		mean[s] += w[i] * a[i] * b[i]
+		ab[s] += w[i] * a[i] * b[i]
 		sum[s] += w[i]
 	}
-	for s := range mean {
-		if sum[s] > 0 {
-			v += mean[s] / n
-			mean[s] /= sum[s]
-		}
+	var total float64
+	for _, x := range ab {
+		total += x
 	}
-	psi = make([]float64, len(w))
+	deleted = make([]float64, len(w))
 	for i, s := range h.Shell {
-		if w[i] > 0 {
-			psi[i] = (a[i]*b[i] - mean[s]*(a[i]+b[i]-1)) / n
+		if w[i] == 0 {
+			continue
 		}
+		one := math.Min(1, w[i])
+		left := sum[s] - one
+		rest := 0.0
+		if left > 0 {
+			rest = left * left * (ab[s] - one*a[i]*b[i]) / ((sum[s] - one*a[i]) * (sum[s] - one*b[i]))
+		}
+		deleted[i] = (total-ab[s]+rest)/(n-one) - 1
 	}
-	return v - 1, psi
+	return total/n - 1, deleted
 }
 
 // check returns count weights, 0 where a half is missing.

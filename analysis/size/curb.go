@@ -50,8 +50,8 @@ type CurbComparison struct {
 
 // CompareCurbs fits MQ or MQO with each form of the curb on the same moments
 // and one weight matrix, that of the form with the least J: the functions of
-// Moments, and those of the highest knots times 1/S_s, the shell level and, when
-// given, Exposure, which is what the forms differ by. CurbRate is compared only
+// Moments, 1/S_s included, and those of the two highest knots times the shell
+// level and, when given, Exposure, which is what the forms differ by. CurbRate is compared only
 // with Exposure.
 //
 // A form whose J exceeds the best by more than 3.84 is refused: against the
@@ -106,7 +106,7 @@ func curbSystem(f *frame, model Model, form CurbForm, set *Settings) (*system, e
 	}
 	top := topKnots(set.knots())
 	sys.addFunctions(set.knots(), nil)
-	sys.addFunctions(top, sys.inverseMean)
+	sys.addFunctions(middleKnots(set.knots()), sys.inverseMean)
 	sys.addFunctions(top, sys.shellLevel)
 	if f.in.Exposure != nil {
 		sys.addFunctions(top, exposure)

@@ -49,9 +49,12 @@ func Exchange(in *Input, w []float64) (*Instrument, error) { return ExchangeWith
 //
 //	psi(C_p) = R_p (z y_p/<z y_p> - z/<z> - y_p/<y_p> + 1),  psi(b) = (psi(C_2) - b psi(C_1))/C_1,
 //
-// R_p = C_p + 1, written for one shell; the sum of squares is multiplied by
-// N/(N - shells - 1). It is robust to unequal variances (White 1980,
-// Econometrica 48:817). F is the squared robust t value of C(z,thin). Neither
+// R_p = C_p + 1, written for one shell. Squares are summed in the jackknife form
+// (psi/(1-h))^2 (MacKinnon & White 1985, J. Econometrics 29:305), h the share of
+// the reflection in C(z,thin) plus that in its shell mean: without it 300
+// reflections in ten shells give intervals a tenth too short. It is robust to
+// unequal variances. F is the squared robust t value of C(z,thin); there and in
+// the Anderson-Rubin set the factor is N/(N - shells - 1). Neither
 // a constant factor on a position or on the axis, nor one by shell, changes m.
 //
 // Errors: a value that is not a number (Z apart), a shell outside its range, a
@@ -130,6 +133,24 @@ type stage struct {
 	a1, a2        float64
 	v11, v12, v22 float64
 	n, df         float64
+	p1, p2        []float64 // contributions of each reflection to a1 and a2
+	own           []float64 // its product with thin in a1
+	share         []float64 // of it in its shell mean
+	w             []float64
+}
+
+// mostLeverage bounds what one reflection may be thought to hold, so that a
+// dominant one widens the interval and does not make it infinite.
+const mostLeverage = 0.9
+
+func (st *stage) slopeError(b float64) float64 {
+	var v float64
+	for i, w := range st.w {
+		h := math.Min(st.own[i]/st.a1+st.share[i], mostLeverage)
+		psi := (st.p2[i] - b*st.p1[i]) / (1 - h)
+		v += w * psi * psi
+	}
+	return math.Sqrt(v) / math.Abs(st.a1)
 }
 
 func exchange(legs []*frame, set *Settings) *Instrument {
@@ -145,7 +166,7 @@ func exchange(legs []*frame, set *Settings) *Instrument {
 	b := st.a2 / st.a1
 	out.F = st.a1 * st.a1 / st.v11
 	out.M = 1 - b
-	out.SE = math.Sqrt(math.Max(0, st.v22-2*b*st.v12+b*b*st.v11)) / math.Abs(st.a1)
+	out.SE = st.slopeError(b)
 	out.Estimable = true
 	out.Region = Region{[]Interval{{out.M - t*out.SE, out.M + t*out.SE}}}
 	if out.F < weakF {
@@ -169,7 +190,7 @@ func exchange(legs []*frame, set *Settings) *Instrument {
 func covariances(legs []*frame, clip float64) stage {
 	n := len(legs[0].w)
 	p1, p2 := make([]float64, n), make([]float64, n)
-	var st stage
+	st := stage{p1: p1, p2: p2, own: make([]float64, n), share: make([]float64, n), w: make([]float64, n)}
 	for _, f := range legs {
 		g := make([]float64, n)
 		for i, z := range f.z {
@@ -188,6 +209,8 @@ func covariances(legs []*frame, clip float64) stage {
 		}
 		for i, s := range f.in.Shell {
 			if f.w[i] > 0 {
+				st.own[i] += f.u[i] * g[i] * (f.y1[i] - 1)
+				st.share[i] = math.Max(st.share[i], 1/f.sum[s])
 				p1[i] += (f.u[i]*g[i] - s1[s]/f.sum[s]) * (f.y1[i] - 1)
 				p2[i] += (f.u[i]*g[i] - s2[s]/f.sum[s]) * (f.y2[i] - 1)
 			}
@@ -199,12 +222,12 @@ func covariances(legs []*frame, clip float64) stage {
 	var m1, m2 float64
 	for i := range p1 {
 		w := rowWeight(legs, i)
+		st.w[i] = w
 		m1 += w * p1[i]
 		m2 += w * p2[i]
 	}
 	m1, m2 = m1/present, m2/present
-	for i := range p1 {
-		w := rowWeight(legs, i)
+	for i, w := range st.w {
 		st.v11 += w * (p1[i] - m1) * (p1[i] - m1)
 		st.v12 += w * (p1[i] - m1) * (p2[i] - m2)
 		st.v22 += w * (p2[i] - m2) * (p2[i] - m2)

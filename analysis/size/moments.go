@@ -91,18 +91,19 @@ func Leads(in *Input, w []float64) (model Model, span float64, err error) {
 // y = I over its shell mean, S_s the shell mean of Thick, Q = y1^2 - v1 (or the
 // product of the halves of the thin position), h = 1 for CurbStrength, the
 // shell mean of Thin over that of the lowest third in s^2 for CurbCommon, times
-// Exposure for CurbRate. With o the functions of the two highest knots times
-// 1/S_s join: the offset is known by how m_s varies with 1/S_s.
+// Exposure for CurbRate. With o the functions of the two knots below the
+// highest times 1/S_s join: the offset is known by how m_s varies with 1/S_s.
 //
 // The first step weights all shells alike, the second by the inverse of their
 // residual variance (FlatShells keeps them alike) and the moments by the
 // inverse of their covariance. That and the sandwich covariance of the estimate
-// include the influence of the shell means and of <h Q>; the covariance is
-// multiplied by N/(N - shells - parameters). J is the over-identification
+// include the influence of the shell means and of <h Q>, the sandwich in the
+// jackknife form of ExchangeWith. J is the over-identification
 // statistic with JDF degrees of freedom: a small JP says that these numbers do
 // not describe the curve.
 //
-// A first-order model: its curb is that of small q. Errors as in ExchangeWith,
+// A first-order model: its curb is that of small q. Intervals of q rest on few
+// strong reflections and cover .90 to .94 in place of .95 at 2000. Errors as in ExchangeWith,
 // and a curb without VarThin or halves, CurbRate without Exposure.
 func Moments(in *Input, w []float64, model Model, set *Settings) (*Fit, error) {
 	if err := set.check(); err != nil {
@@ -134,10 +135,15 @@ func moments(legs []*frame, model Model, set *Settings) (*Fit, error) {
 	}
 	sys.addFunctions(set.knots(), nil)
 	if model == MQO {
-		sys.addFunctions(topKnots(set.knots()), sys.inverseMean)
+		sys.addFunctions(middleKnots(set.knots()), sys.inverseMean)
 	}
 	return sys.fit(set)
 }
+
+// middleKnots are the two below the highest: the highest one times 1/S_s follows
+// single giants, and with it the intervals of q come out too short (coverage .87
+// in place of .90 for 2000 reflections in 12 shells).
+func middleKnots(k []float64) []float64 { return k[max(0, len(k)-3):max(1, len(k)-1)] }
 
 func topKnots(k []float64) []float64 { return k[max(0, len(k)-2):] }
 
@@ -178,7 +184,6 @@ func (s *system) fit(set *Settings) (*Fit, error) {
 func (s *system) describe(out *Fit, sol *solution) {
 	p := s.parameters()
 	cov := mat.NewSymDense(p, nil)
-	k := s.used / out.DF
 	grad := mat.NewDense(p, p, nil)
 	for i := range p {
 		grad.Set(i, i, 1)
@@ -195,7 +200,7 @@ func (s *system) describe(out *Fit, sol *solution) {
 	full.Mul(&half, grad.T())
 	for i := range p {
 		for j := i; j < p; j++ {
-			cov.SetSym(i, j, k*(full.At(i, j)+full.At(j, i))/2)
+			cov.SetSym(i, j, (full.At(i, j)+full.At(j, i))/2)
 		}
 	}
 	t := tQuantile(out.Level, out.DF)

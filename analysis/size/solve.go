@@ -9,7 +9,7 @@ import (
 // solution is the two-step estimate of a system.
 type solution struct {
 	theta []float64
-	cov   *mat.Dense // without the small-sample factor
+	cov   *mat.Dense
 	j     float64
 	df    int
 	omega *mat.SymDense // sum of psi psi' at the first step
@@ -41,7 +41,7 @@ func (s *system) solve(flat bool) *solution {
 			return nil
 		}
 	}
-	omega := s.covarianceOfMoments(m, theta)
+	omega := s.covarianceOfMoments(m, theta, nil)
 	sol := s.secondStep(m, theta, omega)
 	if sol != nil {
 		sol.shell = shell
@@ -76,7 +76,9 @@ func (s *system) secondStep(m *weighted, theta []float64, omega *mat.SymDense) *
 	if err := bread.Inverse(&awa); err != nil {
 		return nil
 	}
-	last := s.covarianceOfMoments(m, sol.theta)
+	var lever mat.Dense
+	lever.Mul(&bread, wa.T())
+	last := s.covarianceOfMoments(m, sol.theta, s.leverage(m, &lever))
 	half.Mul(wa.T(), last)
 	meat.Mul(&half, &wa)
 	half.Reset()
@@ -287,8 +289,33 @@ func (s *system) shellWeights(theta []float64) [][]float64 {
 	return out
 }
 
-// covarianceOfMoments is the sum over reflections of psi psi' about its mean.
-func (s *system) covarianceOfMoments(m *weighted, theta []float64) *mat.SymDense {
+// leverage is the share of each reflection in its own fitted value, x' k (u f)
+// with theta = k g, plus that in its shell mean.
+func (s *system) leverage(m *weighted, k *mat.Dense) []float64 {
+	h := make([]float64, len(s.legs[0].w))
+	share := make([]float64, len(h))
+	for l, c := range s.legs {
+		for i, sh := range c.in.Shell {
+			if c.w[i] == 0 {
+				continue
+			}
+			share[i] = math.Max(share[i], 1/c.sum[sh])
+			for p, x := range c.x {
+				for kk, f := range m.f[l] {
+					h[i] += x[i] * k.At(p, kk) * m.u[l][i] * f[i]
+				}
+			}
+		}
+	}
+	for i := range h {
+		h[i] = math.Min(h[i]+share[i], mostLeverage)
+	}
+	return h
+}
+
+// covarianceOfMoments is the sum over reflections of psi psi' about its mean,
+// psi over 1 - h where h is given.
+func (s *system) covarianceOfMoments(m *weighted, theta, h []float64) *mat.SymDense {
 	n := len(s.legs[0].w)
 	psi := make([][]float64, len(m.f[0]))
 	mean := make([]float64, len(psi))
@@ -304,11 +331,17 @@ func (s *system) covarianceOfMoments(m *weighted, theta []float64) *mat.SymDense
 			mean[k] += rowWeight(frames, i) * psi[k][i]
 		}
 		mean[k] /= s.present
+		for i := range psi[k] {
+			psi[k][i] -= mean[k]
+			if h != nil {
+				psi[k][i] /= 1 - h[i]
+			}
+		}
 	}
 	return s.gram(m, func(l, k, i int) float64 {
 		if l > 0 {
 			return 0
 		}
-		return psi[k][i] - mean[k]
+		return psi[k][i]
 	})
 }
