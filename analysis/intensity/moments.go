@@ -4,19 +4,19 @@ import "math"
 
 // Moments are those of the strength e = J/(epsilon <J>), <J> the local shell
 // mean of both kinds of reflection, from two halves a and b of independent
-// noise:
+// noise, over the powers of the kind's own mean:
 //
-//	Second = < a b >
-//	Third  = < (a b - (a - b)^2 / 2) (a + b)/2 >
+//	Mean   = < (a + b)/2 >
+//	Second = < a b > / Mean^2
+//	Third  = < (a b - (a - b)^2 / 2) (a + b)/2 > / Mean^3
 //
-// Neither needs a sigma: the noise of a product of halves averages out, and
-// the second term takes off what remains in the third moment (up to the
-// skewness of the noise). Mean is <(a+b)/2>; standard errors hold the shell
-// means' own. Fewer than two reflections: NaN. TheorySecond and TheoryThird are
-// Wilson's.
+// None needs a sigma: the noise of a product of halves averages out, and the
+// second term takes off what remains in the third moment (up to the skewness
+// of the noise). Standard errors hold those of the shell means and of Mean.
+// Fewer than two reflections: NaN. TheorySecond and TheoryThird are Wilson's.
 type Moments struct {
 	N                         int
-	Mean                      float64
+	Mean, MeanSE              float64
 	Second, SecondSE          float64
 	Third, ThirdSE            float64
 	TheorySecond, TheoryThird float64
@@ -59,33 +59,41 @@ func halfStrengths(a, b *Merged, cat *Catalogue, sh *Shells) *halves {
 
 func (h *halves) moments(cat *Catalogue, centric bool) *Moments {
 	m := &Moments{TheorySecond: WilsonMoment(2, centric), TheoryThird: WilsonMoment(3, centric)}
-	second, third := make([]float64, len(h.a)), make([]float64, len(h.a))
+	var value [3][]float64
+	for k := range value {
+		value[k] = make([]float64, len(h.a))
+	}
 	in := make([]bool, len(h.a))
 	for i, u := range h.unique {
 		if in[i] = cat.Centric[u] == centric; in[i] {
 			a, b := h.a[i], h.b[i]
-			second[i] = a * b
-			third[i] = (a*b - 0.5*(a-b)*(a-b)) * 0.5 * (a + b)
-			m.Mean += 0.5 * (a + b)
+			value[0][i] = 0.5 * (a + b)
+			value[1][i] = a * b
+			value[2][i] = (a*b - 0.5*(a-b)*(a-b)) * 0.5 * (a + b)
 			m.N++
 		}
 	}
 	if m.N < 2 {
 		nan := math.NaN()
-		m.Mean, m.Second, m.SecondSE, m.Third, m.ThirdSE = nan, nan, nan, nan, nan
+		m.Mean, m.MeanSE, m.Second, m.SecondSE, m.Third, m.ThirdSE = nan, nan, nan, nan, nan, nan
 		return m
 	}
-	m.Mean /= float64(m.N)
-	m.Second, m.SecondSE = h.average(second, in, float64(m.N), 2)
-	m.Third, m.ThirdSE = h.average(third, in, float64(m.N), 3)
+	var mean [3]float64
+	var influence [3][]float64
+	for k := range value {
+		mean[k], influence[k] = h.average(value[k], in, float64(m.N), float64(k+1))
+	}
+	m.Mean = mean[0]
+	m.MeanSE = rootSumSquares(influence[0])
+	m.Second, m.SecondSE = overPower(mean[1], influence[1], mean[0], influence[0], 2)
+	m.Third, m.ThirdSE = overPower(mean[2], influence[2], mean[0], influence[0], 3)
 	return m
 }
 
-// average returns the mean of value over the reflections that are in, and its
-// standard error when value goes with the given power of the shell mean: the
-// root of the sum of squared influences, of the reflection itself and of what
-// it does to its shell's mean.
-func (h *halves) average(value []float64, in []bool, n, power float64) (mean, se float64) {
+// average returns the mean of value over the reflections that are in, and the
+// influence of every reflection on it when value goes with the given power of
+// the shell mean: its own, and what it does to its shell's mean.
+func (h *halves) average(value []float64, in []bool, n, power float64) (mean float64, influence []float64) {
 	ofShell := make([]float64, len(h.count))
 	for i, v := range value {
 		if in[i] {
@@ -93,16 +101,34 @@ func (h *halves) average(value []float64, in []bool, n, power float64) (mean, se
 			ofShell[h.shell[i]] += v / n
 		}
 	}
-	square := 0.0
+	influence = make([]float64, len(value))
 	for i, v := range value {
 		s := h.shell[i]
-		influence := -power * ofShell[s] / h.count[s] * (0.5*(h.a[i]+h.b[i]) - 1)
+		influence[i] = -power * ofShell[s] / h.count[s] * (0.5*(h.a[i]+h.b[i]) - 1)
 		if in[i] {
-			influence += (v - mean) / n
+			influence[i] += (v - mean) / n
 		}
-		square += influence * influence
 	}
-	return mean, math.Sqrt(square)
+	return mean, influence
+}
+
+// overPower returns moment/mean^power and its standard error.
+func overPower(moment float64, ofMoment []float64, mean float64, ofMean []float64, power float64) (ratio, se float64) {
+	scale := math.Pow(mean, power)
+	ratio = moment / scale
+	joint := make([]float64, len(ofMoment))
+	for i := range joint {
+		joint[i] = ofMoment[i]/scale - power*ratio/mean*ofMean[i]
+	}
+	return ratio, rootSumSquares(joint)
+}
+
+func rootSumSquares(x []float64) float64 {
+	s := 0.0
+	for _, v := range x {
+		s += v * v
+	}
+	return math.Sqrt(s)
 }
 
 // Cumulative is the share of reflections below each strength Z, observed, by

@@ -62,6 +62,9 @@ func WilsonNoisyBelow(z, sigma float64, centric bool) float64 {
 		return centricNoisyBelow(z, sigma)
 	}
 	t := z / sigma
+	if t > sigma {
+		return normalCDF(t) - math.Exp(0.5*sigma*sigma-z)*normalCDF(t-sigma)
+	}
 	return normalCDF(t) - math.Exp(-0.5*t*t)/math.Sqrt(2*math.Pi)*mills(sigma-t)
 }
 
