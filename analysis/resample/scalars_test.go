@@ -1,0 +1,472 @@
+package resample
+
+import (
+	"context"
+	"errors"
+	"math"
+	"os"
+	"slices"
+	"strings"
+	"testing"
+	"time"
+
+	"thinward/analysis/internal/floatcmp"
+)
+
+// Efron & Tibshirani 1993, Table 3.1 (law school), 14.1 (spatial), 2.1 (mouse),
+// 10.1 (patch). Expected values: exact enumerations and R 4.2.2.
+var (
+	lsat     = []float64{576, 635, 558, 578, 666, 580, 555, 661, 651, 605, 653, 575, 545, 572, 594}
+	gpa      = []float64{3.39, 3.30, 2.81, 3.03, 3.44, 3.07, 3.00, 3.43, 3.36, 3.13, 3.12, 2.74, 2.76, 2.88, 2.96}
+	spatialA = []float64{48, 36, 20, 29, 42, 42, 20, 42, 22, 41, 45, 14, 6, 0, 33, 28, 34, 4, 32, 24, 47, 41, 24, 26, 30, 41}
+	mouseTrt = []float64{94, 197, 16, 38, 99, 141, 23}
+	mouseCtl = []float64{52, 104, 146, 10, 51, 30, 40, 27, 46}
+	patchZ   = []float64{8406, 2342, 8187, 8459, 4795, 3516, 4796, 10238}
+	patchY   = []float64{-1200, 2601, -2705, 1982, -1290, 351, -638, -2719}
+)
+
+func TestLawSchoolJackknife(t *testing.T) {
+	b := must[*ScalarBoot](t)(Scalars(bg, 15, correlation(lsat, gpa), &Settings{Replicates: 20}))
+	for _, c := range []struct {
+		what           string
+		got, want, tol float64
+	}{
+		{"r", b.Estimate[0], 0.776374491289, 1e-11},
+		{"jackknife SE (Efron 1982: .1425)", b.JackSE[0], 0.142518618602, 1e-11},
+		{"jackknife bias (Efron 1982: -.0065)", b.JackBias[0], -0.00647362304592, 1e-11},
+		{"acceleration", b.Accel[0], -0.0756715649379, 1e-11},
+		{"different resamples (Diaconis & Holmes 1994)", Multisets(15), 77558760, 0},
+	} {
+		floatcmp.Check(t, c.what, c.got, c.want, c.tol, 0)
+	}
+}
+
+// Monte Carlo, 10000 replicates: 4 standard deviations of one run.
+func TestLawSchoolMonteCarlo(t *testing.T) {
+	for _, c := range []struct {
+		level                    float64
+		lo, hi, loBCa, hiBCa     float64
+		tolLo, tolHi, tolLB, tHB float64
+	}{
+		{0.95, 0.4595558, 0.9618457, 0.3326357, 0.9417148, 4 * .0054, 4 * .0011, 4 * .012, 4 * .0014},
+		{0.90, 0.5230652, 0.9475308, 0.4291033, 0.9268592, 4 * .0054, 4 * .0011, 4 * .012, 4 * .0014},
+	} {
+		b := must[*ScalarBoot](t)(Scalars(bg, 15, correlation(lsat, gpa), &Settings{Replicates: 10000, Level: c.level, Seed: NewSeed(11)}))
+		if b.Scheme != SchemeMultinomial || len(b.Warnings) != 0 {
+			t.Errorf("scheme %v, warnings %v", b.Scheme, b.Warnings)
+		}
+		floatcmp.Check(t, "SE", b.SE[0], 0.133559762, 4*.0011, 0)
+		floatcmp.Check(t, "bias", b.Bias[0], -0.005729413, 4*.1336/100, 0)
+		floatcmp.Check(t, "lo", b.Lo[0], c.lo, c.tolLo, 0)
+		floatcmp.Check(t, "hi", b.Hi[0], c.hi, c.tolHi, 0)
+		floatcmp.Check(t, "BCa lo", b.LoBCa[0], c.loBCa, c.tolLB, 0)
+		floatcmp.Check(t, "BCa hi", b.HiBCa[0], c.hiBCa, c.tHB, 0)
+		floatcmp.Check(t, "achieved", b.Achieved[0], c.level, 2e-4, 0)
+		floatcmp.Check(t, "covariance", b.Cov[0][0], b.SE[0]*b.SE[0], 0, 1e-12)
+	}
+}
+
+// All 77558760 resamples; about ten seconds.
+func TestLawSchoolExact(t *testing.T) {
+	if os.Getenv("THINWARD_FULL") == "" {
+		t.Skip("set THINWARD_FULL=1 to enumerate 77558760 resamples")
+	}
+	const bins = 1 << 22
+	hist := make([]float64, bins)
+	var sum, two, total, below, equal float64
+	e := 0.776374491289
+	seen := 0
+	eachMultiset(15, func(count []uint8, p float64) {
+		seen++
+		var n, x, y, xx, yy, xy float64
+		for i, c := range count {
+			if c == 0 {
+				continue
+			}
+			k := float64(c)
+			dx, dy := lsat[i]-600, gpa[i]-3.1
+			n += k
+			x += k * dx
+			y += k * dy
+			xx += k * dx * dx
+			yy += k * dy * dy
+			xy += k * dx * dy
+		}
+		d := (xx - x*x/n) * (yy - y*y/n)
+		if d <= 1e-9 {
+			return
+		}
+		r := (xy - x*y/n) / math.Sqrt(d)
+		total += p
+		sum += p * r
+		two += p * r * r
+		switch {
+		case math.Abs(r-e) < 1e-11:
+			equal += p
+		case r < e:
+			below += p
+		}
+		hist[min(bins-1, int((math.Max(r, -1)+1)/2*bins))] += p
+	})
+	if seen != 77558760 {
+		t.Errorf("%d resamples", seen)
+	}
+	mean := sum / total
+	floatcmp.Check(t, "exact SE", math.Sqrt(two/total-mean*mean), 0.133559762, 1e-8, 0)
+	floatcmp.Check(t, "exact bias", mean-e, -0.005729413, 1e-8, 0)
+	floatcmp.Check(t, "P(r* < r)", below, 0.461365949393, 1e-9, 0)
+	floatcmp.Check(t, "P(r* = r)", equal, 2.986281e-6, 1e-9, 0)
+	at := func(p float64) float64 {
+		s := 0.0
+		for i, v := range hist {
+			if s += v; s >= p {
+				return (float64(i)+0.5)/bins*2 - 1
+			}
+		}
+		return 1
+	}
+	for _, c := range [][2]float64{{.025, 0.4595558}, {.05, 0.5230652}, {.5, 0.7896488}, {.95, 0.9475308}, {.975, 0.9618457}} {
+		floatcmp.Check(t, "percentile", at(c[0]), c[1], 1e-6, 0)
+	}
+	z0 := normQuantile(below)
+	floatcmp.Check(t, "z0", z0, -0.0969930688, 1e-8, 0)
+	for _, c := range []struct{ alpha, lo, hi, l1, l2 float64 }{
+		{.05, 0.4291033, 0.9268592, 0.0177204005, 0.9012274097},
+		{.025, 0.3326357, 0.9417148, 0.0056522116, 0.9377059146},
+	} {
+		p1, p2 := bcaLevels(z0, -0.0756715649379, c.alpha)
+		floatcmp.Check(t, "level", p1, c.l1, 1e-8, 0)
+		floatcmp.Check(t, "level", p2, c.l2, 1e-8, 0)
+		floatcmp.Check(t, "BCa", at(p1), c.lo, 1e-5, 0)
+		floatcmp.Check(t, "BCa", at(p2), c.hi, 1e-5, 0)
+	}
+}
+
+func TestBCaLevels(t *testing.T) {
+	for _, c := range []struct{ z0, a, alpha, lo, hi, tol float64 }{
+		{-0.0969930688, -0.0756715649379, .05, 0.0177204005, 0.9012274097, 1e-8},
+		{-0.0969930688, -0.0756715649379, .025, 0.0056522116, 0.9377059146, 1e-8},
+		{0, 0, .025, .025, .975, 1e-14},
+		{0, 1, .025, 0.5 * math.Erfc(1.959963984540054/2.959963984540054/math.Sqrt2), 1, 1e-12}, // 1 - a z < 0 above
+	} {
+		lo, hi := bcaLevels(c.z0, c.a, c.alpha)
+		floatcmp.Check(t, "lower level", lo, c.lo, c.tol, 0)
+		floatcmp.Check(t, "upper level", hi, c.hi, c.tol, 0)
+	}
+	floatcmp.Check(t, "z0 from P*", normQuantile(0.461365949393), -0.0969930688, 1e-9, 0)
+	floatcmp.Check(t, "z0 from P*", normQuantile(0.5706033311), 0.1779104068, 1e-9, 0)
+	// R qnorm and pnorm.
+	floatcmp.Check(t, "quantile", normQuantile(1e-10), -6.3613409024, 1e-10, 0)
+	floatcmp.Check(t, "quantile", normQuantile(.975), 1.95996398454, 1e-10, 0)
+	floatcmp.Check(t, "distribution", normCDF(1.96), .975002104852, 1e-10, 0)
+	floatcmp.Check(t, "tail", normCDF(-8), 6.22096057427e-16, 0, 1e-9)
+}
+
+func TestSpatial(t *testing.T) {
+	b := must[*ScalarBoot](t)(Scalars(bg, 26, plugInVariance(spatialA), &Settings{Replicates: 10000, Level: 0.9, Seed: NewSeed(5)}))
+	for _, c := range []struct {
+		what           string
+		got, want, tol float64
+	}{
+		{"theta", b.Estimate[0], 171.534023669, 1e-8},
+		{"a", b.Accel[0], 0.0612401198123, 1e-12},
+		{"mean", b.Estimate[0] + b.Bias[0], 164.936561220, 4 * 41.83 / 100},
+		{"SE", b.SE[0], 41.832816940, 4 * .27},
+		{"z0", b.Z0[0], 0.1779104068, 4 * .0126},
+		{"lo", b.Lo[0], 97.794379, 4 * .78},
+		{"hi", b.Hi[0], 235.616864, 4 * .96},
+		{"BCa lo", b.LoBCa[0], 115.717456, 4 * .84},
+		{"BCa hi", b.HiBCa[0], 261.350592, 4 * 1.78},
+	} {
+		floatcmp.Check(t, c.what, c.got, c.want, c.tol, 0)
+	}
+}
+
+// The exact bootstrap law of the plug-in variance, by adding the 26 draws of one
+// value one after another on the lattice of (sum x, sum x^2).
+func TestSpatialExact(t *testing.T) {
+	if os.Getenv("THINWARD_FULL") == "" {
+		t.Skip("set THINWARD_FULL=1 for the exact law of 26 units")
+	}
+	n := len(spatialA)
+	law := map[[2]int]float64{{0, 0}: 1}
+	for range n {
+		next := make(map[[2]int]float64, 2*len(law))
+		for k, p := range law {
+			for _, v := range spatialA {
+				next[[2]int{k[0] + int(v), k[1] + int(v*v)}] += p / float64(n)
+			}
+		}
+		law = next
+	}
+	var x, prob []float64
+	for k, p := range law {
+		m := float64(k[0]) / float64(n)
+		x, prob = append(x, float64(k[1])/float64(n)-m*m), append(prob, p)
+	}
+	l := newLaw(x, prob)
+	mean, sd := l.moments()
+	floatcmp.Check(t, "mean", mean, 164.936561220, 1e-8, 0)
+	floatcmp.Check(t, "SE", sd, 41.832816940, 1e-8, 0)
+	for _, c := range []struct{ alpha, lo, hi, loBCa, hiBCa float64 }{
+		{.05, 97.794379, 235.616864, 115.717456, 261.350592},
+		{.025, 86.474852, 249.485207, 105.775148, 279.255917},
+	} {
+		floatcmp.Check(t, "lo", l.lower(c.alpha), c.lo, 2e-3, 0)
+		floatcmp.Check(t, "hi", l.upper(1-c.alpha), c.hi, 2e-3, 0)
+		p1, p2 := bcaLevels(0.1779104068, 0.0612401198123, c.alpha)
+		floatcmp.Check(t, "BCa lo", l.lower(p1), c.loBCa, 2e-3, 0)
+		floatcmp.Check(t, "BCa hi", l.upper(p2), c.hiBCa, 2e-3, 0)
+	}
+}
+
+func weightedMedian(y []float64) func([]float64) ([]float64, error) {
+	return func(w []float64) ([]float64, error) {
+		var all []float64
+		for i, v := range y {
+			for range int(w[i]) {
+				all = append(all, v)
+			}
+		}
+		if len(all) == 0 {
+			return nil, errors.New("nothing drawn")
+		}
+		return []float64{median(all)}, nil
+	}
+}
+
+func TestExactEnumeration(t *testing.T) {
+	ratio := func(w []float64) ([]float64, error) {
+		var y, z float64
+		for i := range w {
+			y += w[i] * patchY[i]
+			z += w[i] * patchZ[i]
+		}
+		return []float64{y / z}, nil
+	}
+	for _, c := range []struct {
+		what          string
+		n, resamples  int
+		stat          func([]float64) ([]float64, error)
+		est, mean, se float64
+		tol           float64
+	}{
+		{"mouse treatment mean", 7, 1716, weightedMean(mouseTrt), 86.857142857143, 86.857142857143, 23.3635234373, 1e-9},
+		{"mouse control mean", 9, 24310, weightedMean(mouseCtl), 56.222222222222, 56.222222222222, 13.3488592732, 1e-9},
+		{"mouse treatment median (Maritz & Jarrett 1978)", 7, 1716, weightedMedian(mouseTrt), 94, 79.7288447598, 37.8346743939, 1e-9},
+		{"mouse control median", 9, 24310, weightedMedian(mouseCtl), 46, 45.8554037033, 13.0758700270, 1e-9},
+		{"patch ratio", 8, 6435, ratio, -0.0713060959026, -0.0635455902392, 0.102313806232, 1e-11},
+		{"{1,2,4} mean", 3, 10, weightedMean([]float64{1, 2, 4}), 7.0 / 3, 7.0 / 3, 0.720082299823, 1e-11},
+		{"{1,2,4} plug-in variance", 3, 10, plugInVariance([]float64{1, 2, 4}), 14.0 / 9, 1.037037037037, math.NaN(), 1e-11},
+	} {
+		b := must[*ScalarBoot](t)(Scalars(bg, c.n, c.stat, &Settings{NoBCa: c.n == 3}))
+		if b.Scheme != SchemeExact || b.Replicates != c.resamples {
+			t.Errorf("%s: %v, %d resamples, want %d", c.what, b.Scheme, b.Replicates, c.resamples)
+		}
+		floatcmp.Check(t, c.what, b.Estimate[0], c.est, c.tol, 0)
+		floatcmp.Check(t, c.what+" mean", b.Estimate[0]+b.Bias[0], c.mean, c.tol, 0)
+		if !math.IsNaN(c.se) {
+			floatcmp.Check(t, c.what+" SE", b.SE[0], c.se, c.tol, 0)
+		}
+		if few := c.n < 6; few != (len(b.Warnings) == 1 && b.Warnings[0].Code == CodeFewUnits && math.IsInf(b.Lo[0], -1) && math.IsInf(b.Hi[0], 1)) {
+			t.Errorf("%s: interval %g %g, warnings %v", c.what, b.Lo[0], b.Hi[0], b.Warnings)
+		}
+	}
+	patch := must[*ScalarBoot](t)(Scalars(bg, 8, ratio, nil))
+	floatcmp.Check(t, "patch jackknife bias (book .0080)", patch.JackBias[0], 0.00800248835811, 1e-11, 0)
+	floatcmp.Check(t, "patch jackknife SE", patch.JackSE[0], 0.10552778538, 1e-11, 0)
+}
+
+func TestExactPercentiles(t *testing.T) {
+	for _, c := range []struct{ level, lo, hi float64 }{
+		{.90, 49.4285714286, 126.714285714}, {.95, 43.4285714286, 134.428571429},
+	} {
+		b := must[*ScalarBoot](t)(Scalars(bg, 7, weightedMean(mouseTrt), &Settings{Level: c.level}))
+		floatcmp.Check(t, "lo", b.Lo[0], c.lo, 1e-9, 0)
+		floatcmp.Check(t, "hi", b.Hi[0], c.hi, 1e-9, 0)
+		if b.Achieved[0] < c.level {
+			t.Errorf("achieved %g, wanted at least %g", b.Achieved[0], c.level)
+		}
+	}
+}
+
+// Whole clusters are drawn: the iid value of the first case is 0.746519702799.
+func TestClusterBootstrap(t *testing.T) {
+	for _, c := range []struct {
+		clusters      [][]float64
+		est, mean, se float64
+		tol           float64
+	}{
+		{[][]float64{{3, 5, 4}, {8, 9, 7}, {2, 1, 3}, {6, 6, 9}}, 5.25, 5.25, 1.192424001771, 1e-11},
+		{[][]float64{{3, 5}, {8, 9, 7, 8}, {2}, {6, 6, 9}}, 6.3, 6.07360842282, 1.09860761786, 1e-11},
+	} {
+		var y []float64
+		var ids []int32
+		for i, g := range c.clusters {
+			for _, v := range g {
+				y, ids = append(y, v), append(ids, int32(40-7*i))
+			}
+		}
+		b := must[*ScalarBoot](t)(Scalars(bg, len(y), weightedMean(y), &Settings{Blocks: ids, NoBCa: true}))
+		if b.Units != 4 || b.Scheme != SchemeExact {
+			t.Errorf("%d units, %v", b.Units, b.Scheme)
+		}
+		floatcmp.Check(t, "estimate", b.Estimate[0], c.est, c.tol, 0)
+		floatcmp.Check(t, "mean", b.Estimate[0]+b.Bias[0], c.mean, c.tol, 0)
+		floatcmp.Check(t, "SE", b.SE[0], c.se, c.tol, 0)
+		bands := must[*BandSet](t)(Bands(bg, y, nil, []Window{{0, len(y)}}, &Settings{Blocks: ids}))
+		floatcmp.Check(t, "band SE", bands.SE[0], c.se, c.tol, 0)
+		if bands.Units[0] != 4 || !math.IsInf(bands.Hi[0], 1) || !math.IsInf(bands.LoSim[0], -1) {
+			t.Errorf("four clusters gave a finite interval: %+v", bands)
+		}
+	}
+}
+
+func TestPoissonScalarsAgreeWithTheory(t *testing.T) {
+	y := normals(400, 9)
+	b := must[*ScalarBoot](t)(Scalars(bg, len(y), weightedMean(y), &Settings{Replicates: 8000}))
+	v, _ := plugInVariance(y)(onesOf(len(y)))
+	se := math.Sqrt(v[0] / float64(len(y)))
+	floatcmp.Check(t, "SE of a mean", b.SE[0], se, 4*se/math.Sqrt(2*8000), 0)
+	floatcmp.Check(t, "jackknife SE", b.JackSE[0], se*math.Sqrt(400.0/399), 0, 1e-10)
+	if b.Scheme != SchemePoisson {
+		t.Errorf("scheme %v", b.Scheme)
+	}
+	// Closed-form acceleration of a mean equals the jackknife's.
+	l := make([]float64, len(y))
+	for i, q := range y {
+		l[i] = q - b.Estimate[0]
+	}
+	floatcmp.Check(t, "acceleration", b.Accel[0], Acceleration(l), 1e-12, 1e-9)
+	known := must[*ScalarBoot](t)(Scalars(bg, len(y), weightedMean(y), &Settings{Replicates: 8000, Accel: []float64{Acceleration(l)}}))
+	floatcmp.Check(t, "interval from a known acceleration", known.LoBCa[0], b.LoBCa[0], 0, 1e-9)
+}
+
+// Leave-out groups estimate the same acceleration with an error of 0.4/sqrt(G).
+func TestGroupedJackknife(t *testing.T) {
+	s := NewSeed(8).At("skew").Stream(0)
+	y := make([]float64, 5000)
+	for i := range y {
+		y[i] = s.Exponential()
+	}
+	one := must[*ScalarBoot](t)(Scalars(bg, len(y), weightedMean(y), &Settings{Replicates: 50, JackknifeGroups: 5000}))
+	many := must[*ScalarBoot](t)(Scalars(bg, len(y), weightedMean(y), &Settings{Replicates: 50, JackknifeGroups: 500}))
+	floatcmp.Check(t, "SE", many.JackSE[0], one.JackSE[0], 0, 4/math.Sqrt(2*500))
+	floatcmp.Check(t, "acceleration", many.Accel[0], one.Accel[0], 4*0.41/math.Sqrt(500), 0)
+	floatcmp.Check(t, "acceleration of an exponential mean, 2/(6 sqrt n)", one.Accel[0], 1/(3*math.Sqrt(5000)), 1e-3, 0)
+}
+
+func onesOf(n int) []float64 {
+	w := make([]float64, n)
+	for i := range w {
+		w[i] = 1
+	}
+	return w
+}
+
+func TestScalarsFailedDraws(t *testing.T) {
+	y := normals(40, 3)
+	picky := func(w []float64) ([]float64, error) {
+		if w[0] == 0 && w[1] == 0 && w[2] == 0 { // 5 % of draws
+			return nil, errors.New("no")
+		}
+		return weightedMean(y)(w)
+	}
+	b := must[*ScalarBoot](t)(Scalars(bg, 40, picky, &Settings{NoBCa: true}))
+	if b.Failed == 0 || len(b.Warnings) != 2 || b.Warnings[0].Code != CodeFailedDraws || b.Warnings[1].Code != CodeFewDraws {
+		t.Errorf("%d failed, warnings %v", b.Failed, b.Warnings)
+	}
+	// As many failures as a tail holds leave nothing to stand on.
+	if share := float64(b.Failed) / float64(b.Replicates); share < 0.026 || !math.IsInf(b.Lo[0], -1) || !math.IsInf(b.Hi[0], 1) {
+		t.Errorf("share %g, interval %g %g", share, b.Lo[0], b.Hi[0])
+	}
+	never := func(w []float64) ([]float64, error) {
+		if w[0] != 1 || w[1] != 1 || w[2] != 1 {
+			return nil, errors.New("no")
+		}
+		return weightedMean(y)(w)
+	}
+	if _, err := Scalars(bg, 40, never, nil); err == nil || !strings.HasPrefix(err.Error(), "resample: Scalars: the statistic failed in ") {
+		t.Errorf("error %v", err)
+	}
+}
+
+func TestScalarsErrors(t *testing.T) {
+	bad := errors.New("broken")
+	for _, c := range []struct {
+		want string
+		n    int
+		stat func([]float64) ([]float64, error)
+		o    *Settings
+	}{
+		{"resample: Scalars: no elements", 0, nil, nil},
+		{"resample: Scalars: at the plain weights: broken", 3, func([]float64) ([]float64, error) { return nil, bad }, nil},
+		{"resample: Scalars: statistic 1 at the plain weights is NaN", 3, func([]float64) ([]float64, error) { return []float64{0, math.NaN()}, nil }, nil},
+		{"resample: Replicates must be at least 2", 3, nil, &Settings{Replicates: 1}},
+		{"resample: Level 2 is not between 0 and 1", 3, nil, &Settings{Level: 2}},
+		{"resample: JackknifeGroups 1 is below 2", 3, nil, &Settings{JackknifeGroups: 1}},
+	} {
+		if _, err := Scalars(bg, c.n, c.stat, c.o); err == nil || err.Error() != c.want {
+			t.Errorf("error %v, want %q", err, c.want)
+		}
+	}
+}
+
+func TestScalarsSameBits(t *testing.T) {
+	y := normals(333, 2)
+	var first *ScalarBoot
+	for _, workers := range []int{1, 2, 7, 1} {
+		b := must[*ScalarBoot](t)(Scalars(bg, len(y), plugInVariance(y), &Settings{Replicates: 300, Workers: workers, Seed: NewSeed(4).At("x")}))
+		if first == nil {
+			first = b
+			continue
+		}
+		for r := range b.Draws {
+			if b.Draws[r][0] != first.Draws[r][0] {
+				t.Fatalf("workers %d: draw %d differs", workers, r)
+			}
+		}
+		if b.Lo[0] != first.Lo[0] || b.LoBCa[0] != first.LoBCa[0] || b.SE[0] != first.SE[0] {
+			t.Errorf("workers %d: results differ", workers)
+		}
+	}
+}
+
+func TestScalarsCancel(t *testing.T) {
+	ctx, cancel := context.WithCancel(bg)
+	time.AfterFunc(30*time.Millisecond, cancel)
+	begin := time.Now()
+	slow := func(w []float64) ([]float64, error) {
+		time.Sleep(time.Millisecond)
+		return []float64{w[0]}, nil
+	}
+	if _, err := Scalars(ctx, 50, slow, &Settings{Replicates: 100000}); !errors.Is(err, context.Canceled) {
+		t.Fatalf("error %v", err)
+	}
+	if d := time.Since(begin); d > 530*time.Millisecond {
+		t.Errorf("returned %v after the start", d)
+	}
+}
+
+func TestBandsOf(t *testing.T) {
+	y := normals(200, 6)
+	stat := func(w []float64) ([]float64, error) {
+		out := make([]float64, 4)
+		for g := range out {
+			part := make([]float64, len(w))
+			copy(part[50*g:50*g+50], w[50*g:50*g+50])
+			m, _ := weightedMean(y)(part)
+			out[g] = m[0]
+		}
+		return out, nil
+	}
+	b := must[*ScalarBoot](t)(Scalars(bg, len(y), stat, &Settings{NoBCa: true, Replicates: 4000}))
+	k := must[*BandSet](t)(BandsOf(bg, b, nil))
+	for g := range k.Mean {
+		if k.Lo[g] != b.Lo[g] || k.Hi[g] != b.Hi[g] || !slices.Equal(k.Mean, b.Estimate) {
+			t.Errorf("point %d: bands do not repeat the percentile interval", g)
+		}
+	}
+	// Four independent points: Sidak's multiplier 2.4909, from (1 + .95^(1/4))/2.
+	floatcmp.Check(t, "multiplier", k.Multiplier, normQuantile((1+math.Pow(.95, 0.25))/2), 0.15, 0)
+}
