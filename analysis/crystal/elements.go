@@ -53,12 +53,17 @@ const gliding = Twentyfourths * 12
 func (g *Group) Elements() []Element { return append([]Element(nil), g.elements...) }
 
 // ForbiddenBy returns the indices into Elements of those that forbid h, nil when
-// h is allowed. It is not empty exactly when Absent(h).
+// h is allowed. It is not empty exactly when Absent(h). Where the centring forbids
+// h it stands alone: what a screw or glide says of such a reflection depends on
+// which of the parallel ones is taken.
 func (g *Group) ForbiddenBy(h HKL) []int {
 	var by []int
 	for i := range g.elements {
-		if g.elements[i].forbids(g, h) {
-			by = append(by, i)
+		if !g.elements[i].forbids(g, h) {
+			continue
+		}
+		if by = append(by, i); g.elements[i].Kind == CentringElement {
+			break
 		}
 	}
 	return by

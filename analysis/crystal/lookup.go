@@ -73,6 +73,14 @@ func choose(symbol string, found []int, suffix string) (*Group, error) {
 			choices = append(choices, all[i].Choice)
 		}
 	}
+	// The symbol of the type stands for all its settings.
+	if siblings := book().byNumber[all[found[0]].Number]; siblings[0] == found[0] {
+		for _, i := range siblings {
+			if strings.EqualFold(all[i].Choice, suffix) {
+				return all[i].Group()
+			}
+		}
+	}
 	for _, i := range found {
 		if c := all[i].Choice; (suffix == "1" || suffix == "2") && strings.HasPrefix(c, suffix) {
 			return all[i].Group()
