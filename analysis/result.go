@@ -59,6 +59,7 @@ type IntakeResult struct {
 	MeanISigma   float64   `json:"mean_i_over_sigma"`
 	Negative     []int     `json:"negative_observed"`
 	NegativeExp  []float64 `json:"negative_expected"`
+	NearZero     [2]int    `json:"within_half_sigma_below_and_above_zero"`
 	RMeas        float64   `json:"r_meas"`
 	RPim         float64   `json:"r_pim"`
 	CCHalf       float64   `json:"cc_half"`

@@ -21,8 +21,10 @@ type Series struct {
 	// ThicknessScaleSU is the relative uncertainty that all thicknesses share
 	// (their scale, such as a mean free path).
 	ThicknessScaleSU float64
-	Primary          Primary
-	Crystals         []Specimen
+	// FriedelApart keeps Friedel mates as reflections of their own.
+	FriedelApart bool
+	Primary      Primary
+	Crystals     []Specimen
 	// Between lists contrasts between positions of two crystals; they are made
 	// only when asked for, since they cannot tell thickness from crystal.
 	Between []Between

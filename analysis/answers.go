@@ -1,0 +1,334 @@
+package analysis
+
+import (
+	"fmt"
+	"math"
+	"strings"
+)
+
+// Verdicts of answers and of the ledger.
+const (
+	VerdictYes     = "yes"
+	VerdictNo      = "not seen"
+	VerdictUnsure  = "undecided"
+	VerdictFine    = "fine"
+	VerdictCaution = "caution"
+	VerdictFails   = "fails"
+	VerdictUnknown = "not known"
+)
+
+// answers writes the sentences of the report's first section from finished
+// contrasts.
+func answers(r *Result) []Answer {
+	var primary []*ContrastResult
+	for i := range r.Contrasts {
+		if r.Contrasts[i].Primary {
+			primary = append(primary, &r.Contrasts[i])
+		}
+	}
+	if len(primary) == 0 {
+		return nil
+	}
+	list := []Answer{
+		answerDiffer(primary), answerExchange(r, primary), answerWhere(primary), answerResolution(primary), answerForbidden(r, primary),
+	}
+	if a := answerThickness(r); a != nil {
+		list = append(list, *a)
+	}
+	return append(list, answerElse(r))
+}
+
+// crystalsOf counts in words, "2 of 3 crystals".
+func crystalsOf(n int, list []*ContrastResult) string {
+	what := "crystals"
+	if len(list) == 1 {
+		what = "crystal"
+	}
+	if list[0].ThickCrystal != "" {
+		what = "pair of crystals"
+	}
+	return fmt.Sprintf("%d of %d %s", n, len(list), what)
+}
+
+func answerDiffer(list []*ContrastResult) Answer {
+	a := Answer{Question: "Do the intensities differ at all?", Section: "strength", Verdict: VerdictNo}
+	n, known := 0, 0
+	var parts []string
+	for _, c := range list {
+		if math.IsNaN(c.Correlation.R) {
+			parts = append(parts, fmt.Sprintf("%s: not estimable (%s)", c.Crystal, c.Correlation.Why))
+			continue
+		}
+		known++
+		if c.Correlation.Hi < 1 || c.MomentRatio.Lo > 0 || c.MomentRatio.Hi < 0 {
+			n++
+		}
+		parts = append(parts, fmt.Sprintf("%s r = %s", c.Crystal, span(c.Correlation.R, c.Correlation.Lo, c.Correlation.Hi)))
+	}
+	switch {
+	case known == 0:
+		a.Verdict = VerdictUnknown
+		a.Text = "It cannot be said: no position has enough symmetry equivalents to take the noise out of a correlation."
+	case n == 0:
+		a.Text = "Beyond counting noise no difference between thinnest and thickest position is seen: " + strings.Join(parts, "; ") + " (1 is identical)."
+	default:
+		a.Verdict = VerdictYes
+		a.Text = fmt.Sprintf("Thinnest and thickest position differ beyond counting noise in %s: true correlation %s (1 is identical).", crystalsOf(n, list), strings.Join(parts, "; "))
+	}
+	return a
+}
+
+func answerExchange(r *Result, list []*ContrastResult) Answer {
+	a := Answer{Question: "Has intensity moved from strong to weak reflections?", Section: "sizes"}
+	positive, negative, estimable, worst := 0, 0, 0, 0.0
+	var parts []string
+	for _, c := range list {
+		e := c.Exchange
+		if math.IsNaN(e.M) {
+			parts = append(parts, fmt.Sprintf("%s: not estimable (%s)", c.Crystal, e.Why))
+			continue
+		}
+		estimable++
+		worst = math.Max(worst, c.MinimumM)
+		switch {
+		case e.Lo > 0:
+			positive++
+		case e.Hi < 0:
+			negative++
+		}
+		parts = append(parts, fmt.Sprintf("%s m = %s", c.Crystal, span(e.M, e.Lo, e.Hi)))
+	}
+	detail := strings.Join(parts, "; ")
+	if list[0].StrengthAxis == leadBracket {
+		return bracketAnswer(a, list)
+	}
+	pooled := ""
+	if r.Crystals != nil && r.Crystals.N > 1 && !math.IsNaN(r.Crystals.InThese.Value) {
+		p := r.Crystals
+		pooled = fmt.Sprintf(" In these crystals together m = %s; in crystals like these m = %s.", span(p.InThese.Value, p.InThese.Lo, p.InThese.Hi), span(p.LikeThese.Value, p.LikeThese.Lo, p.LikeThese.Hi))
+	}
+	switch {
+	case estimable == 0:
+		a.Verdict, a.Text = VerdictUnknown, "The exchange cannot be estimated: "+detail+"."
+	case positive > 0 && negative == 0:
+		a.Verdict = VerdictYes
+		a.Text = fmt.Sprintf("Yes, in %s: %s.%s", crystalsOf(positive, list), detail, pooled)
+	case positive == 0 && negative == 0:
+		a.Verdict = VerdictNo
+		a.Text = fmt.Sprintf("No exchange is seen: %s.%s An exchange of m = %s would have been seen in each crystal with 80 %% power.", detail, pooled, short(worst))
+	default:
+		a.Verdict = VerdictUnsure
+		a.Text = fmt.Sprintf("The crystals disagree (%d up, %d down): %s.%s", positive, negative, detail, pooled)
+	}
+	return a
+}
+
+// bracketAnswer says what one crystal, or a pair of crystals, can say.
+func bracketAnswer(a Answer, list []*ContrastResult) Answer {
+	var parts []string
+	open := 0
+	for _, c := range list {
+		b := c.Bracket
+		parts = append(parts, fmt.Sprintf("%s: between %s (half of the thick position, errs downward) and %s (half of the thin, errs upward), moment ratio %s",
+			c.Crystal, span(b.Thick.Value, b.Thick.Lo, b.Thick.Hi), span(b.Thin.Value, b.Thin.Lo, b.Thin.Hi), span(c.MomentRatio.M, c.MomentRatio.Lo, c.MomentRatio.Hi)))
+		if !(b.Lo > 0 || b.Hi < 0) {
+			open++
+		}
+	}
+	text := "Only a bracket can be given, since no other crystal of the series says how strong each reflection is: m lies, " + strings.Join(parts, "; ") + "."
+	if open > 0 {
+		a.Verdict = VerdictUnsure
+		a.Text = text + " The bracket holds 0."
+	} else {
+		a.Verdict = VerdictYes
+		a.Text = text + " The bracket excludes 0, which holds only if the deviations of the two positions are unrelated."
+	}
+	if list[0].ThickCrystal != "" {
+		a.Text += " The two positions lie on two crystals: nothing here attributes a difference to thickness."
+	}
+	return a
+}
+
+func answerWhere(list []*ContrastResult) Answer {
+	a := Answer{Question: "In weak or in strong reflections?", Section: "strength", Verdict: VerdictNo}
+	seen := 0
+	var floor, top []string
+	for _, c := range list {
+		if c.Strength.P < 0.05 {
+			seen++
+		}
+		floor = append(floor, fmt.Sprintf("%s %s", c.Crystal, span(c.Classes.Floor.Eps, c.Classes.Floor.Lo, c.Classes.Floor.Hi)))
+		top = append(top, fmt.Sprintf("%s %s", c.Crystal, span(c.Classes.Top.Eps, c.Classes.Top.Lo, c.Classes.Top.Hi)))
+	}
+	detail := fmt.Sprintf("thin minus thick over the local mean, weakest class: %s; strongest class: %s", strings.Join(floor, "; "), strings.Join(top, "; "))
+	if list[0].StrengthAxis == leadBracket {
+		a.Verdict = VerdictUnsure
+		a.Text = "No strength is known here that is independent of the difference; on the inverse-variance mean, " + detail + ". That axis holds only if the ratio of the two sigmas is right."
+		return a
+	}
+	if seen > 0 {
+		a.Verdict = VerdictYes
+		a.Text = fmt.Sprintf("The curve against strength is not flat in %s (joint test, p < 0.05); %s.", crystalsOf(seen, list), detail)
+		return a
+	}
+	a.Text = fmt.Sprintf("The curve against strength is flat within its noise in all %d; %s.", len(list), detail)
+	return a
+}
+
+func answerResolution(list []*ContrastResult) Answer {
+	a := Answer{Question: "At low or at high resolution?", Section: "resolution", Verdict: VerdictNo}
+	seen := 0
+	var parts []string
+	for _, c := range list {
+		r := c.Resolution
+		if r.DeltaBLo > 0 || r.DeltaBHi < 0 {
+			seen++
+		}
+		parts = append(parts, fmt.Sprintf("%s %s A^2", c.Crystal, span(r.DeltaB, r.DeltaBLo, r.DeltaBHi)))
+	}
+	detail := "difference of B, thick minus thin: " + strings.Join(parts, "; ")
+	if seen > 0 {
+		a.Verdict = VerdictYes
+		a.Text = fmt.Sprintf("The ratio of the positions falls or rises with resolution in %s (%s). A B factor, radiation damage and redistribution by thickness look alike here.", crystalsOf(seen, list), detail)
+	} else {
+		a.Text = "No trend with resolution is seen: " + detail + "."
+	}
+	return a
+}
+
+func answerForbidden(r *Result, list []*ContrastResult) Answer {
+	a := Answer{Question: "Are forbidden reflections filled?", Section: "forbidden", Verdict: VerdictUnknown}
+	up, known := 0, 0
+	var parts []string
+	for _, c := range list {
+		thin, thick := forbiddenOf(r, c.Crystal, c.Thin), forbiddenOf(r, c.Crystal, c.Thick)
+		if c.ThickCrystal != "" {
+			thick = forbiddenOf(r, c.ThickCrystal, c.Thick)
+		}
+		if thin == nil || thick == nil || thin.N == 0 || thick.N == 0 {
+			continue
+		}
+		known++
+		rise, su := thick.Ratio-thin.Ratio, math.Hypot(thick.SU, thin.SU)
+		if rise > 2*su {
+			up++
+		}
+		parts = append(parts, fmt.Sprintf("%s %s to %s of the local mean", c.Crystal, pm(thin.Ratio, thin.SU), pm(thick.Ratio, thick.SU)))
+	}
+	switch {
+	case known == 0:
+		a.Text = "Not recorded: the lists hold no forbidden reflection in both positions, so nothing can be said, and not that they are absent."
+	case up > 0:
+		a.Verdict = VerdictYes
+		a.Text = fmt.Sprintf("They rise with thickness in %s: %s. No scale can do this; a wrong space group fills them at every thickness.", crystalsOf(up, list), strings.Join(parts, "; "))
+	default:
+		a.Verdict = VerdictNo
+		a.Text = "They do not rise with thickness: " + strings.Join(parts, "; ") + "."
+	}
+	return a
+}
+
+func forbiddenOf(r *Result, crystal, position string) *Forbidden {
+	for i := range r.Forbidden {
+		f := &r.Forbidden[i]
+		if f.Crystal == crystal && f.Position == position && f.Element == "all" {
+			return f
+		}
+	}
+	return nil
+}
+
+func answerThickness(r *Result) *Answer {
+	if r.Thickness == nil || len(r.Thickness.Lines) == 0 {
+		return nil
+	}
+	a := &Answer{Question: "Does it grow with thickness?", Section: "thickness", Verdict: VerdictNo}
+	t := r.Thickness
+	if math.IsNaN(t.Slope.Value) {
+		a.Verdict, a.Text = VerdictUnknown, "The growth with thickness cannot be estimated: "+t.Why+"."
+		return a
+	}
+	positions := 0
+	for _, l := range t.Lines {
+		positions = max(positions, len(l.T))
+	}
+	slope := span(t.Slope.Value, t.Slope.Lo, t.Slope.Hi)
+	switch {
+	case positions < 3:
+		a.Verdict = VerdictUnsure
+		a.Text = fmt.Sprintf("With two thicknesses a crystal there is a difference but no trend; per 100 nm it would be %s.", slope)
+	case t.Slope.Lo > 0:
+		a.Verdict = VerdictYes
+		a.Text = fmt.Sprintf("mu = -ln(1-m) grows by %s per 100 nm over %d crystals.", slope, len(t.Lines))
+	default:
+		a.Text = fmt.Sprintf("No growth is seen: mu = -ln(1-m) changes by %s per 100 nm over %d crystals.", slope, len(t.Lines))
+	}
+	return a
+}
+
+func answerElse(r *Result) Answer {
+	a := Answer{Question: "Could something else have done it?", Section: "cautions", Verdict: VerdictFine}
+	var cautions, fails []string
+	seen := map[string]bool{}
+	for _, e := range r.Ledger {
+		if seen[e.Check+e.Verdict] {
+			continue
+		}
+		seen[e.Check+e.Verdict] = true
+		switch e.Verdict {
+		case VerdictCaution:
+			cautions = append(cautions, e.Check)
+		case VerdictFails:
+			fails = append(fails, e.Check)
+		}
+	}
+	switch {
+	case len(fails) > 0:
+		a.Verdict = VerdictFails
+		a.Text = fmt.Sprintf("The ledger has checks that fail: %s.", strings.Join(fails, ", "))
+		if len(cautions) > 0 {
+			a.Text += fmt.Sprintf(" Cautions: %s.", strings.Join(cautions, ", "))
+		}
+	case len(cautions) > 0:
+		a.Verdict = VerdictCaution
+		a.Text = fmt.Sprintf("Cautions stand on: %s.", strings.Join(cautions, ", "))
+	default:
+		a.Text = "No check of the ledger gives a caution. That does not exclude what no check can see."
+	}
+	a.Text += " What the numbers mean for a structure needs a practitioner's judgement."
+	return a
+}
+
+// span writes a value with its interval, "0.081 (0.052 to 0.110)".
+func span(v, lo, hi float64) string {
+	if math.IsNaN(v) {
+		return "not estimable"
+	}
+	return fmt.Sprintf("%s (%s to %s)", short(v), short(lo), short(hi))
+}
+
+// pm writes a value with its standard uncertainty.
+func pm(v, su float64) string { return short(v) + " +- " + short(su) }
+
+// short writes a number with three decimals, or three digits when it is large.
+func short(v float64) string {
+	switch {
+	case math.IsInf(v, 1):
+		return "inf"
+	case math.IsInf(v, -1):
+		return "-inf"
+	case math.IsNaN(v):
+		return "-"
+	case math.Abs(v) >= 100:
+		return fmt.Sprintf("%.0f", v)
+	case math.Abs(v) >= 10:
+		return fmt.Sprintf("%.1f", v)
+	case math.Abs(v) >= 1:
+		return fmt.Sprintf("%.2f", v)
+	}
+	s := fmt.Sprintf("%.3f", v)
+	if s == "-0.000" {
+		s = "0.000"
+	}
+	return s
+}

@@ -1,0 +1,276 @@
+package analysis
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"math"
+
+	"thinward/analysis/curve"
+	"thinward/analysis/difference"
+	"thinward/analysis/intensity"
+	"thinward/analysis/size"
+)
+
+// Compared is everything about one contrast.
+type Compared struct {
+	Contrast Contrast
+	Pairs    *difference.Pairs
+	// Leading is the axis that answers, Strengths its values at the pairs; on a
+	// bracket they are those of the inverse-variance mean, which serve the curve only.
+	Leading   string
+	Axis      difference.Axis
+	Strengths *difference.Strengths
+	// Others holds the strengths on every other axis that could be built.
+	Others []*difference.Strengths
+	Input  *size.Input
+	Model  size.Model
+	Fit    *size.Fit
+	Halves *size.Halves
+	Band   *curve.Banded
+	Result ContrastResult
+	// thin and thick are the positions that were paired.
+	thin, thick *intensity.Scaled
+}
+
+// Names of the leading axis in results.
+const (
+	leadCrystals = "crystals"
+	leadBracket  = "bracket"
+)
+
+// Compare works out one contrast of the series.
+func (s *Study) Compare(ctx context.Context, c Contrast) (*Compared, error) {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	return s.compareStep(ctx, c)
+}
+
+func (s *Study) compareStep(ctx context.Context, c Contrast) (*Compared, error) {
+	if got := s.compared[c]; got != nil {
+		return got, nil
+	}
+	scaled, err := s.scaleStep(ctx)
+	if err != nil {
+		return nil, err
+	}
+	x := &Compared{Contrast: c}
+	if c.Across() {
+		x.thin, x.thick, err = s.across(ctx, c)
+		if err != nil {
+			return nil, err
+		}
+	} else {
+		x.thin, x.thick = scaled[c.Crystal].Positions[c.Thin], scaled[c.Crystal].Positions[c.Thick]
+	}
+	if err := s.pair(ctx, x); err != nil {
+		return nil, err
+	}
+	if err := s.chooseAxis(x); err != nil {
+		return nil, err
+	}
+	s.describe(x)
+	for _, part := range []func(context.Context, *Compared) error{
+		s.correlate, s.sizes, s.curves, s.resolution, s.naive, s.axes,
+	} {
+		if err := part(ctx, x); err != nil {
+			return nil, err
+		}
+	}
+	s.compared[c] = x
+	s.progress("differences", len(s.compared), len(s.list))
+	return x, nil
+}
+
+// across scales two positions of two crystals to each other, angles left out:
+// frames and angles of two crystals do not correspond.
+func (s *Study) across(ctx context.Context, c Contrast) (thin, thick *intensity.Scaled, err error) {
+	in, err := s.intakeStep(ctx)
+	if err != nil {
+		return nil, nil, err
+	}
+	var parts []*Accepted
+	for _, a := range []*Accepted{&in.Positions[c.Crystal][c.Thin], &in.Positions[c.ThickCrystal][c.Thick]} {
+		o := *a.Observations
+		o.Phi = nil
+		b := *a
+		b.Observations = &o
+		parts = append(parts, &b)
+	}
+	sc, err := scaleTogether(ctx, in.Catalogue, parts, &s.settings.Scaling, &s.settings.Noise, s.settings.Workers)
+	if err != nil {
+		return nil, nil, err
+	}
+	return sc.Positions[0], sc.Positions[1], nil
+}
+
+func (s *Study) pair(ctx context.Context, x *Compared) error {
+	c := x.Contrast
+	set := &difference.Settings{SameCrystal: !c.Across()}
+	in := s.intake
+	width := math.Max(in.Positions[c.Crystal][c.Thin].Observations.FrameWidth(), in.Positions[c.ThickCrystal][c.Thick].Observations.FrameWidth())
+	if width > 0 {
+		set.AngleToleranceDeg = width
+	}
+	var err error
+	if x.Pairs, err = difference.Pair(ctx, x.thin, x.thick, in.Catalogue, set); err != nil {
+		return err
+	}
+	return nil
+}
+
+// others gives the merged positions of every crystal that takes no part in c.
+func (s *Study) others(c Contrast) []difference.OtherCrystal {
+	var out []difference.OtherCrystal
+	n := s.intake.Catalogue.Len()
+	for i, sc := range s.scaled {
+		if i == c.Crystal || i == c.ThickCrystal {
+			continue
+		}
+		o := difference.OtherCrystal{Name: s.Series.Crystals[i].Name}
+		for _, p := range sc.Positions {
+			o.Positions = append(o.Positions, intensity.Merge(n, p))
+		}
+		out = append(out, o)
+	}
+	return out
+}
+
+// chooseAxis takes the other crystals where they agree, else a bracket from
+// halves of the pair's own positions.
+func (s *Study) chooseAxis(x *Compared) error {
+	x.Result.AxisAgreement = math.NaN()
+	x.Leading, x.Axis = leadBracket, difference.AxisInverseVariance
+	wanted := s.settings.Axis
+	if others := s.others(x.Contrast); len(others) > 0 && (wanted == "" || wanted == leadCrystals) {
+		strengths, err := x.Pairs.Crystals(others)
+		var refused *difference.RefusedError
+		switch {
+		case err == nil:
+			x.Leading, x.Axis, x.Strengths = leadCrystals, difference.AxisCrystals, strengths
+			x.Result.AxisAgreement = strengths.Correlation
+			return nil
+		case errors.As(err, &refused):
+			x.Result.AxisAgreement = refused.Correlation
+			x.warn("axis-refused", "the axis of the other crystals is refused: "+refused.Error())
+		default:
+			x.warn("axis-missing", "no axis from other crystals: "+err.Error())
+		}
+	} else if wanted == leadCrystals {
+		return errors.New("the axis crystals needs a crystal that takes no part in the contrast")
+	}
+	switch wanted {
+	case "", leadBracket, leadCrystals, difference.AxisInverseVariance.String():
+		if wanted == difference.AxisInverseVariance.String() {
+			x.Leading = wanted
+		}
+		x.Strengths = x.Pairs.InverseVariance(0)
+		return nil
+	case difference.AxisThird.String():
+		third := s.third(x)
+		if third == nil {
+			return errors.New("the axis third needs a third position on the crystal")
+		}
+		x.Leading, x.Axis, x.Strengths = wanted, difference.AxisThird, third
+		return nil
+	case difference.AxisThin.String(), difference.AxisThick.String(), difference.AxisMean.String():
+		axis, err := difference.ParseAxis(wanted)
+		if err != nil {
+			return err
+		}
+		x.Leading, x.Axis, x.Strengths = wanted, axis, x.Pairs.Naive(axis)
+		return nil
+	}
+	return fmt.Errorf("axis %q is not known: use crystals, bracket, third, inverse-variance, thin, thick or mean", wanted)
+}
+
+// third gives the strengths in the position of the same crystal whose thickness
+// lies nearest the middle of the pair, nil when there is none.
+func (s *Study) third(x *Compared) *difference.Strengths {
+	c := x.Contrast
+	if c.Across() {
+		return nil
+	}
+	positions := s.Series.Crystals[c.Crystal].Positions
+	middle := (positions[c.Thin].ThicknessNM + positions[c.Thick].ThicknessNM) / 2
+	best, at := -1, math.Inf(1)
+	for j := range positions {
+		if j == c.Thin || j == c.Thick {
+			continue
+		}
+		if d := math.Abs(positions[j].ThicknessNM - middle); d < at {
+			best, at = j, d
+		}
+	}
+	if best < 0 {
+		return nil
+	}
+	strengths, err := x.Pairs.Third(intensity.Merge(s.intake.Catalogue.Len(), s.scaled[c.Crystal].Positions[best]))
+	if err != nil {
+		x.warn("third-missing", "no axis from a third position: "+err.Error())
+		return nil
+	}
+	return strengths
+}
+
+func (x *Compared) warn(code, text string) {
+	x.Result.Warnings = append(x.Result.Warnings, WarningResult{Code: code, Text: text})
+}
+
+func (s *Study) describe(x *Compared) {
+	c, r := x.Contrast, &x.Result
+	a, b := &s.Series.Crystals[c.Crystal], &s.Series.Crystals[c.ThickCrystal]
+	r.Crystal, r.Thin, r.Thick = a.Name, a.Positions[c.Thin].Name, b.Positions[c.Thick].Name
+	if c.Across() {
+		r.ThickCrystal = b.Name
+		x.warn("between-crystals", "the two positions lie on two crystals: what differs may be the crystals (mosaicity, bending, orientation, radiation history) and not their thickness")
+	}
+	r.ThicknessNM = [2]float64{a.Positions[c.Thin].ThicknessNM, b.Positions[c.Thick].ThicknessNM}
+	r.Primary, r.Pairs, r.Matched = c.Primary, x.Pairs.Len(), x.Pairs.Matched
+	r.StrengthAxis, r.PairNoise = x.Leading, x.Pairs.ExtraD
+	for _, w := range x.Pairs.Warnings {
+		x.warn(w.Code, w.Text)
+	}
+	for _, w := range x.Strengths.Warnings {
+		x.warn(w.Code, w.Text)
+	}
+	x.Input = input(x.Pairs, x.Strengths.Z)
+	x.Halves = s.halves(x)
+	x.Input.ThinA, x.Input.ThinB = nil, nil
+}
+
+// input brings pairs to what size takes: epsilon divided out.
+func input(p *difference.Pairs, z []float64) *size.Input {
+	n := p.Len()
+	in := &size.Input{
+		Z: z, Thin: make([]float64, n), Thick: make([]float64, n), VarThin: make([]float64, n), VarThick: make([]float64, n),
+		Shell: p.Shell, Shells: p.Shells, S2: p.S2,
+	}
+	for i, e := range p.Epsilon {
+		in.Thin[i], in.Thick[i] = p.Thin[i]/e, p.Thick[i]/e
+		in.VarThin[i], in.VarThick[i] = p.VarThin[i]/(e*e), p.VarThick[i]/(e*e)
+	}
+	return in
+}
+
+// halves splits both positions by raw index, with one key, so that a matched
+// index falls into the same half of both.
+func (s *Study) halves(x *Compared) *size.Halves {
+	key := s.seed(x.Result.Crystal, "halves").Stream(0).Uint64()
+	n := s.intake.Catalogue.Len()
+	ta, tb := intensity.MergeHalves(n, x.thin, key)
+	ka, kb := intensity.MergeHalves(n, x.thick, key)
+	h := &size.Halves{Shell: x.Pairs.Shell, Shells: x.Pairs.Shells}
+	at := func(m *intensity.Merged, i int) float64 {
+		u := x.Pairs.Unique[i]
+		if m.N[u] == 0 {
+			return math.NaN()
+		}
+		return m.J[u] / x.Pairs.Epsilon[i]
+	}
+	for i := range x.Pairs.Unique {
+		h.ThinA, h.ThinB = append(h.ThinA, at(ta, i)), append(h.ThinB, at(tb, i))
+		h.ThickA, h.ThickB = append(h.ThickA, at(ka, i)), append(h.ThickB, at(kb, i))
+	}
+	return h
+}

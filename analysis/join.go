@@ -1,0 +1,268 @@
+package analysis
+
+import (
+	"context"
+	"fmt"
+	"math"
+
+	"gonum.org/v1/gonum/mat"
+
+	"thinward/analysis/pool"
+	"thinward/analysis/resample"
+	"thinward/analysis/size"
+)
+
+// joined is what the crystals say together.
+type joined struct {
+	crystals  *CrystalsResult
+	thickness *ThicknessResult
+}
+
+// Join pools the primary contrasts of all crystals and draws the growth of
+// the exchange with thickness.
+func (s *Study) Join(ctx context.Context) (*CrystalsResult, error) {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	if err := s.joinStep(ctx); err != nil {
+		return nil, err
+	}
+	return s.pooled.crystals, nil
+}
+
+func (s *Study) joinStep(ctx context.Context) error {
+	if s.pooled != nil {
+		return nil
+	}
+	for _, c := range s.list {
+		if _, err := s.compareStep(ctx, c); err != nil {
+			return fmt.Errorf("%s: %w", s.Name(c), err)
+		}
+	}
+	j := &joined{crystals: s.poolCrystals()}
+	var err error
+	if j.thickness, err = s.growth(ctx); err != nil {
+		return err
+	}
+	s.pageTrend(j)
+	s.pooled = j
+	return nil
+}
+
+// primaries gives the primary contrast within each crystal, in order.
+func (s *Study) primaries() []*Compared {
+	var out []*Compared
+	for _, c := range s.list {
+		if c.Primary && !c.Across() {
+			out = append(out, s.compared[c])
+		}
+	}
+	return out
+}
+
+func (s *Study) poolCrystals() *CrystalsResult {
+	r := &CrystalsResult{InThese: none(), LikeThese: none(), Q: math.NaN(), QP: math.NaN(), Tau2: math.NaN(), I2: math.NaN(),
+		PageL: math.NaN(), PageP: math.NaN(), PageBest: math.NaN(), MeanAgree: math.NaN()}
+	var m, se []float64
+	var names []string
+	agree, n := 0.0, 0
+	for _, x := range s.primaries() {
+		e := x.Result.Exchange
+		if a := x.Result.AxisAgreement; !math.IsNaN(a) {
+			agree += a
+			n++
+		}
+		if math.IsNaN(e.M) || !(e.SE > 0) {
+			continue
+		}
+		m, se, names = append(m, e.M), append(se, e.SE), append(names, x.Result.Crystal)
+	}
+	if n > 0 {
+		r.MeanAgree = agree / float64(n)
+	}
+	r.N = len(m)
+	r.SameSign, r.SignP, r.SmallestP = pool.Signs(m)
+	if len(m) == 0 {
+		r.Why = "m is estimable in no crystal"
+		return r
+	}
+	e, err := pool.Join(m, se, s.settings.Level)
+	if err != nil {
+		r.Why = err.Error()
+		return r
+	}
+	r.InThese = interval(e.Fixed, e.FixedLo, e.FixedHi, "")
+	r.LikeThese = interval(e.Random, e.RandomLo, e.RandomHi, "")
+	r.Q, r.QP = e.Q, e.QP
+	if e.Estimable {
+		r.Tau2, r.I2 = e.Tau2, e.I2
+	} else {
+		r.Why = fmt.Sprintf("tau^2 and I^2 are not estimable from %d crystals (five are needed)", e.K)
+	}
+	if len(m) == 1 {
+		r.LikeThese.Why = "one crystal says nothing of others"
+	}
+	left, err := pool.LeaveOneOut(m, se, s.settings.Level)
+	if err == nil {
+		for i, l := range left {
+			r.LeaveOut = append(r.LeaveOut, Left{Without: names[i], M: interval(l.Fixed, l.FixedLo, l.FixedHi, "")})
+		}
+	}
+	return r
+}
+
+// growth fits mu = -ln(1-m) against thickness beyond the thinnest, crystal by
+// crystal, with the covariance of one joint bootstrap: contrasts that share the
+// thinnest position share its errors.
+func (s *Study) growth(ctx context.Context) (*ThicknessResult, error) {
+	t := &ThicknessResult{Slope: none()}
+	var slopes, errors []float64
+	for i := range s.Series.Crystals {
+		line, err := s.crystalLine(ctx, i)
+		if err != nil {
+			return nil, err
+		}
+		if line == nil {
+			continue
+		}
+		t.Lines = append(t.Lines, *line)
+		if line.Why == "" {
+			slopes = append(slopes, line.Slope.Value)
+			errors = append(errors, (line.Slope.Hi-line.Slope.Lo)/(2*zOf(s.settings.Level)))
+		}
+	}
+	if len(slopes) == 0 {
+		t.Why = "no crystal has an estimable growth"
+		return t, nil
+	}
+	e, err := pool.Join(slopes, errors, s.settings.Level)
+	if err != nil {
+		t.Why = err.Error()
+		return t, nil
+	}
+	t.Slope = interval(e.Fixed, e.FixedLo, e.FixedHi, "")
+	return t, nil
+}
+
+// againstThinnest lists the contrasts of crystal i whose thin side is that of
+// the primary one.
+func (s *Study) againstThinnest(i int) []*Compared {
+	var out []*Compared
+	thin := -1
+	for _, c := range s.list {
+		if c.Crystal != i || c.Across() {
+			continue
+		}
+		if c.Primary {
+			thin = c.Thin
+		}
+	}
+	for _, c := range s.list {
+		if c.Crystal == i && !c.Across() && c.Thin == thin {
+			out = append(out, s.compared[c])
+		}
+	}
+	return out
+}
+
+func (s *Study) crystalLine(ctx context.Context, i int) (*ThicknessLine, error) {
+	list := s.againstThinnest(i)
+	if len(list) == 0 {
+		return nil, nil
+	}
+	c := &s.Series.Crystals[i]
+	line := &ThicknessLine{Crystal: c.Name, Slope: none(), Chi2: math.NaN()}
+	thin := c.Positions[list[0].Contrast.Thin]
+	line.T, line.Mu, line.MuSE = []float64{thin.ThicknessNM}, []float64{0}, []float64{0}
+	for _, x := range list {
+		if x.Fit == nil || math.IsNaN(x.Fit.M.Value) || x.Fit.M.Value >= 1 {
+			line.Why = fmt.Sprintf("m is not estimable in %s - %s", x.Result.Thin, x.Result.Thick)
+			return line, nil
+		}
+	}
+	cov, err := s.muCovariance(ctx, list)
+	if err != nil {
+		if ctx.Err() != nil {
+			return nil, ctx.Err()
+		}
+		line.Why = err.Error()
+		return line, nil
+	}
+	var x, y, own, shared []float64
+	for k, v := range list {
+		p := c.Positions[v.Contrast.Thick]
+		mu := -math.Log(1 - v.Fit.M.Value)
+		line.T, line.Mu, line.MuSE = append(line.T, p.ThicknessNM), append(line.Mu, mu), append(line.MuSE, math.Sqrt(cov.At(k, k)))
+		dt := (p.ThicknessNM - thin.ThicknessNM) / 100
+		x, y = append(x, dt), append(y, mu)
+		own = append(own, math.Hypot(p.ThicknessSU, thin.ThicknessSU)/100)
+		shared = append(shared, math.Abs(dt)*s.Series.ThicknessScaleSU)
+	}
+	fit, err := pool.ThroughOrigin(x, y, cov, own, shared, s.settings.Level)
+	if err != nil {
+		line.Why = err.Error()
+		return line, nil
+	}
+	line.Slope = interval(fit.Slope, fit.SlopeLo, fit.SlopeHi, "")
+	line.Chi2, line.DF = fit.Chi2, fit.DF
+	return line, nil
+}
+
+// muCovariance draws reflections of the whole catalogue once for all contrasts
+// of a crystal, so that what they share shows in the covariance.
+func (s *Study) muCovariance(ctx context.Context, list []*Compared) (*mat.SymDense, error) {
+	set := s.sizeSettings()
+	boot, err := resample.Scalars(ctx, s.intake.Catalogue.Len(), func(w []float64) ([]float64, error) {
+		out := make([]float64, len(list))
+		for k, x := range list {
+			own := make([]float64, x.Pairs.Len())
+			for i, u := range x.Pairs.Unique {
+				own[i] = w[u]
+			}
+			fit, err := size.MomentsCross(s.legs(x), own, x.Model, set)
+			if err != nil {
+				return nil, err
+			}
+			out[k] = -math.Log(1 - fit.M.Value)
+		}
+		return out, nil
+	}, &resample.Settings{Replicates: s.drawn(), Level: s.settings.Level, Workers: s.settings.Workers, NoBCa: true,
+		Seed: s.seed(list[0].Result.Crystal, "thickness")})
+	if err != nil {
+		return nil, err
+	}
+	cov := mat.NewSymDense(len(list), nil)
+	for a := range list {
+		for b := a; b < len(list); b++ {
+			cov.SetSym(a, b, boot.Cov[a][b])
+		}
+	}
+	return cov, nil
+}
+
+// pageTrend asks whether the crystals agree in the order of mu over their
+// positions, when all have equally many.
+func (s *Study) pageTrend(j *joined) {
+	var rows [][]float64
+	for _, l := range j.thickness.Lines {
+		if len(l.Mu) < 3 || l.Why != "" || len(rows) > 0 && len(l.Mu) != len(rows[0]) {
+			return
+		}
+		rows = append(rows, l.Mu)
+	}
+	if len(rows) < 2 {
+		return
+	}
+	t, err := resample.Page(rows)
+	if err != nil {
+		return
+	}
+	j.crystals.PageL, j.crystals.PageP, j.crystals.PageBest = t.Stat, t.Upper, math.Pow(1/factorial(len(rows[0])), float64(len(rows)))
+}
+
+func factorial(n int) float64 {
+	f := 1.0
+	for i := 2; i <= n; i++ {
+		f *= float64(i)
+	}
+	return f
+}

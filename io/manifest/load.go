@@ -1,0 +1,282 @@
+package manifest
+
+import (
+	"crypto/sha256"
+	"encoding/hex"
+	"fmt"
+	"io"
+	"math"
+	"os"
+	"path/filepath"
+
+	"thinward/analysis"
+	"thinward/analysis/crystal"
+	"thinward/analysis/intensity"
+)
+
+// defaultCellTolerance is the largest relative difference of cell lengths, and
+// of angles in radians, that files of one series may show.
+const defaultCellTolerance = 0.02
+
+// Load reads a manifest and its files and makes a Study with default settings.
+func Load(path string) (*analysis.Study, error) { return LoadWith(path, nil) }
+
+// LoadWith is Load with settings; nil means the defaults.
+func LoadWith(path string, set *analysis.Settings) (*analysis.Study, error) {
+	series, err := ReadSeries(path)
+	if err != nil {
+		return nil, err
+	}
+	study, err := analysis.New(*series, set)
+	if err != nil {
+		return nil, &Error{File: path, Problem: err.Error(), Err: err}
+	}
+	return study, nil
+}
+
+// ReadSeries reads a manifest and its files.
+func ReadSeries(path string) (*analysis.Series, error) {
+	f, err := Read(path)
+	if err != nil {
+		return nil, err
+	}
+	l := &loader{path: path, dir: filepath.Dir(path), file: f}
+	return l.series()
+}
+
+type loader struct {
+	path, dir string
+	file      *File
+	out       analysis.Series
+	groups    []found
+	cells     []foundCell
+}
+
+// found is the symmetry one file carries.
+type found struct {
+	file  string
+	group *crystal.Group
+}
+
+type foundCell struct {
+	file string
+	cell crystal.Cell
+}
+
+func (l *loader) fail(at place, key, problem, remedy string, cause error) error {
+	e := &Error{File: l.path, Key: key, Problem: problem, Remedy: remedy, Err: cause}
+	if data, err := os.ReadFile(l.path); err == nil {
+		e.Line = lineOf(data, at, key)
+	}
+	return e
+}
+
+func (l *loader) series() (*analysis.Series, error) {
+	f := l.file
+	l.out = analysis.Series{
+		Title: f.Title, EnergyKeV: f.EnergyKeV, Seed: f.Seed, ThicknessScaleSU: f.ThicknessScaleSU,
+		FriedelApart: f.FriedelApart,
+		Primary:      analysis.Primary{Thin: f.Primary.Thin, Thick: f.Primary.Thick},
+	}
+	for i := range f.Crystal {
+		k := &f.Crystal[i]
+		specimen := analysis.Specimen{Name: k.Name}
+		for j := range k.Position {
+			p, err := l.position(&k.Position[j], place{"crystal.position", i, j}, k.Name)
+			if err != nil {
+				return nil, err
+			}
+			specimen.Positions = append(specimen.Positions, *p)
+		}
+		l.out.Crystals = append(l.out.Crystals, specimen)
+	}
+	for _, b := range f.Between {
+		l.out.Between = append(l.out.Between, between(b))
+	}
+	if err := l.symmetry(); err != nil {
+		return nil, err
+	}
+	if err := l.cell(); err != nil {
+		return nil, err
+	}
+	return &l.out, nil
+}
+
+func (l *loader) position(p *Position, at place, crystalName string) (*analysis.Position, error) {
+	policy, err := intensity.ParseRowPolicy(p.Rows)
+	if err != nil {
+		return nil, l.fail(at, "rows", err.Error(), "", err)
+	}
+	where := crystalName + "/" + p.Name
+	out := &analysis.Position{
+		Name: p.Name, ThicknessNM: p.ThicknessNM, ThicknessSU: p.ThicknessSUNM, Order: p.Order, DosePerA2: p.Dose,
+		ReplicateOf: p.ReplicateOf, Policy: policy,
+		Exclude: analysis.Exclusion{Frames: p.Exclude.Frames, ShellsA: p.Exclude.ShellsA, Ice: p.Exclude.Ice},
+	}
+	if p.TiltZeroDeg != nil {
+		out.TiltZeroDeg, out.HasTiltZero = *p.TiltZeroDeg, true
+	}
+	for _, name := range p.Files {
+		path := name
+		if !filepath.IsAbs(path) {
+			path = filepath.Join(l.dir, path)
+		}
+		r, err := l.read(path, p.Block)
+		if err != nil {
+			return nil, err
+		}
+		if l.out.EnergyKeV == 0 {
+			l.out.EnergyKeV = r.energyKeV
+		}
+		for _, w := range r.warnings {
+			w.Where = where + ", " + filepath.Base(name)
+			l.out.Warnings = append(l.out.Warnings, w)
+		}
+		if r.cell != nil {
+			if out.Cell == (crystal.Cell{}) {
+				out.Cell = *r.cell
+			}
+			l.cells = append(l.cells, foundCell{name, *r.cell})
+		}
+		if r.group != nil {
+			l.groups = append(l.groups, found{name, r.group})
+		}
+		out.Merged = out.Merged || r.merged
+		sum, err := digest(path)
+		if err != nil {
+			return nil, &Error{File: path, Problem: cause(err), Err: err}
+		}
+		out.Sources = append(out.Sources, analysis.Source{Path: name, SHA256: sum, Rows: r.rows, SetAside: r.aside})
+		if out.Rows, err = join(out.Rows, r.columns); err != nil {
+			return nil, l.fail(at, "files", where+": "+err.Error(), "give files of one kind to a position", err)
+		}
+	}
+	if p.Reindex != "" {
+		if err := reindex(out.Rows, p.Reindex); err != nil {
+			return nil, l.fail(at, "reindex", err.Error(), `write for instance reindex = "k,h,-l"`, err)
+		}
+	}
+	return out, nil
+}
+
+// join appends b to a. Frame numbers of b are moved beyond those of a, since
+// frames of two files have nothing to do with each other.
+func join(a, b *intensity.Columns) (*intensity.Columns, error) {
+	if a == nil {
+		return b, nil
+	}
+	if (a.Phi == nil) != (b.Phi == nil) || (a.Frame == nil) != (b.Frame == nil) || (a.Partiality == nil) != (b.Partiality == nil) {
+		return nil, fmt.Errorf("one file has angles, frames or shares that another lacks")
+	}
+	a.H, a.K, a.L = append(a.H, b.H...), append(a.K, b.K...), append(a.L, b.L...)
+	a.I, a.Sigma = append(a.I, b.I...), append(a.Sigma, b.Sigma...)
+	a.Phi, a.Partiality = append(a.Phi, b.Phi...), append(a.Partiality, b.Partiality...)
+	if a.Frame != nil {
+		top := int32(math.MinInt32)
+		for _, n := range a.Frame {
+			top = max(top, n)
+		}
+		low := int32(math.MaxInt32)
+		for _, n := range b.Frame {
+			low = min(low, n)
+		}
+		for _, n := range b.Frame {
+			a.Frame = append(a.Frame, n-low+top+2)
+		}
+	}
+	return a, nil
+}
+
+func (l *loader) symmetry() error {
+	f := l.file
+	top := place{crystal: -1, position: -1}
+	var err error
+	switch {
+	case len(f.Operators) > 0:
+		if l.out.Group, err = crystal.ParseOperators(f.Operators); err != nil {
+			return l.fail(top, "operators", err.Error(), "list every operator of the group, centring included", err)
+		}
+	case f.SpaceGroup != "":
+		if l.out.Group, err = crystal.Lookup(f.SpaceGroup); err != nil {
+			return l.fail(top, "space_group", err.Error(), `write a Hermann-Mauguin symbol such as "P 21 21 21", a Hall symbol or a number`, err)
+		}
+	}
+	for _, g := range l.groups {
+		if l.out.Group == nil {
+			l.out.Group = g.group
+			continue
+		}
+		if g.group.LaueClass() != l.out.Group.LaueClass() {
+			text := fmt.Sprintf("%s gives Laue class %s, the series uses %s", g.file, g.group.LaueClass(), l.out.Group.LaueClass())
+			if f.SpaceGroup == "" && len(f.Operators) == 0 {
+				return l.fail(top, "space_group", text, "fix the group for all files with space_group", nil)
+			}
+			l.out.Warnings = append(l.out.Warnings, intensity.Warning{Code: "group-differs", Text: text, Where: g.file})
+		}
+	}
+	if l.out.Group == nil {
+		return l.fail(top, "space_group", "neither the manifest nor a file gives the symmetry", `add space_group = "P 21 21 21" or operators = [...]`, nil)
+	}
+	return nil
+}
+
+func (l *loader) cell() error {
+	top := place{crystal: -1, position: -1}
+	if c := l.file.Cell; c != nil {
+		l.out.Cell = c.whole()
+		if err := l.out.Cell.Check(); err != nil {
+			return l.fail(place{"cell", -1, -1}, "a", err.Error(), "give a, b, c in angstrom and the angles in degrees", err)
+		}
+	} else if len(l.cells) > 0 {
+		l.out.Cell = l.cells[0].cell
+	} else {
+		return l.fail(top, "cell", "neither the manifest nor a file gives the unit cell", "add a [cell] table with a, b, c, alpha, beta, gamma", nil)
+	}
+	tolerance := l.file.CellTolerance
+	if tolerance == 0 {
+		tolerance = defaultCellTolerance
+	}
+	for _, c := range l.cells {
+		if worst := cellDistance(l.out.Cell, c.cell); worst > tolerance {
+			return l.fail(top, "cell_tolerance", fmt.Sprintf("the cell of %s differs by %.1f %% from that of the series, more than %.1f %%", c.file, 100*worst, 100*tolerance),
+				"check that the file belongs to the series and is indexed in the same setting, or raise cell_tolerance", nil)
+		}
+	}
+	return nil
+}
+
+// cellDistance is the largest relative difference of a length or difference of
+// an angle in radians.
+func cellDistance(a, b crystal.Cell) float64 {
+	worst := 0.0
+	for _, p := range [][2]float64{{a.A, b.A}, {a.B, b.B}, {a.C, b.C}} {
+		worst = math.Max(worst, math.Abs(p[1]/p[0]-1))
+	}
+	for _, p := range [][2]float64{{a.Alpha, b.Alpha}, {a.Beta, b.Beta}, {a.Gamma, b.Gamma}} {
+		worst = math.Max(worst, math.Abs(p[1]-p[0])*math.Pi/180)
+	}
+	return worst
+}
+
+func (c *Cell) whole() crystal.Cell {
+	or := func(p *float64, otherwise float64) float64 {
+		if p == nil {
+			return otherwise
+		}
+		return *p
+	}
+	return crystal.Cell{A: c.A, B: or(c.B, c.A), C: or(c.C, c.A), Alpha: or(c.Alpha, 90), Beta: or(c.Beta, 90), Gamma: or(c.Gamma, 90)}
+}
+
+func digest(path string) (string, error) {
+	f, err := os.Open(path)
+	if err != nil {
+		return "", err
+	}
+	defer f.Close()
+	h := sha256.New()
+	if _, err := io.Copy(h, f); err != nil {
+		return "", err
+	}
+	return hex.EncodeToString(h.Sum(nil)), nil
+}
