@@ -233,7 +233,8 @@ func glideLetter(s Setting) string {
 	return ""
 }
 
-// suggest names up to three known symbols near an unknown one.
+// suggest names up to three known spellings near an unknown one, nearest first,
+// in the order of the table among equally near ones.
 func (b *symbolBook) suggest(compact string) string {
 	type near struct {
 		symbol   string
@@ -242,15 +243,18 @@ func (b *symbolBook) suggest(compact string) string {
 	var found []near
 	all := table()
 	for _, i := range preferred(all) {
-		best := len(compact)
-		for _, w := range spellings(all[i]) {
-			if w != "" {
-				best = min(best, editDistance(compact, strings.ReplaceAll(strings.ToLower(w), " ", "")))
+		best := near{distance: max(1, len(compact)/3) + 1}
+		w := spellings(all[i])
+		for _, symbol := range []string{w[2], w[1], w[0], w[3], w[4]} {
+			if symbol == "" {
+				continue
+			}
+			if d := editDistance(compact, strings.ReplaceAll(strings.ToLower(symbol), " ", "")); d < best.distance {
+				best = near{symbol, d}
 			}
 		}
-		name := shortSymbol(all[i].Full)
-		if best <= max(1, len(compact)/3) && !slices.ContainsFunc(found, func(n near) bool { return n.symbol == name }) {
-			found = append(found, near{name, best})
+		if best.symbol != "" && !slices.ContainsFunc(found, func(n near) bool { return n.symbol == best.symbol }) {
+			found = append(found, best)
 		}
 	}
 	if len(found) == 0 {

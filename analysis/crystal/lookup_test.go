@@ -86,7 +86,7 @@ func TestLookupErrors(t *testing.T) {
 		{"0", "numbers run from 1 to 230"},
 		{"231", "numbers run from 1 to 230"},
 		{"P 21 21 22", "near it are P 21 21 2"},
-		{"P 21/q", "near it are P 1 21/"},
+		{"P 21/q", "near it are P 21/m, P 21/c, P 21/n"},
 		{"P n m n n", "is not known; near it are"},
 		{"Fd-3q", "F d -3"},
 		{"P 21c", "is not known; near it are"},

@@ -109,10 +109,12 @@ func reindexedCell(c Cell, m rational) Cell {
 }
 
 // compare orders rotations from plain to involved: whole numbers, few terms, few
-// signs, then by the entries.
+// signs, l left in its place, then by the entries.
 func (r rational) compare(q rational) int {
-	key := func(x rational) (k [3]int) {
-		k[0] = x.den
+	key := func(x rational) (k [4]int) {
+		if k[0] = x.den; x.num[2][2] == 0 {
+			k[3] = 1
+		}
 		trace := 0
 		for i := range 3 {
 			trace += x.num[i][i]
@@ -126,7 +128,7 @@ func (r rational) compare(q rational) int {
 			}
 		}
 		if trace == 3*x.den {
-			k = [3]int{} // the identity comes first
+			k = [4]int{} // the identity comes first
 		}
 		return k
 	}
