@@ -32,7 +32,10 @@ func (f *File) choose(sel Selection) (*choice, error) {
 			return nil, f.noSuch(sel.Pick)
 		}
 	}
-	return c, c.alone(f, sel)
+	if err := c.list.usable(); err != nil {
+		return nil, err
+	}
+	return c, c.alone(sel)
 }
 
 // narrow takes the parts of pick that name blocks and categories and returns what
@@ -201,7 +204,7 @@ func find(c *codes, code string, into *int32) bool {
 }
 
 // alone refuses several sets together when that was not asked for.
-func (c *choice) alone(f *File, sel Selection) error {
+func (c *choice) alone(sel Selection) error {
 	if sel.All {
 		return nil
 	}

@@ -31,9 +31,6 @@ func (f *File) Read(sel Selection) (*Reflections, error) {
 		return nil, err
 	}
 	l := c.list
-	if err := l.usable(); err != nil {
-		return nil, err
-	}
 	r := &Reflections{List: l.describe(), Merged: l.merged()}
 	r.Warnings = append(r.Warnings, f.Warnings...)
 	r.Warnings = append(r.Warnings, c.warnings...)
