@@ -2,15 +2,18 @@ package simulate
 
 import "fmt"
 
-// CurbForm says with what the curb grows.
+// CurbForm says with what the curb grows. An intensity J becomes J exp(-q u), which
+// is J (1 - q u) for small q u, the two-beam loss 1 - A^2/3 with u in proportion to
+// A^2 (Blackman 1939), and stays positive for the strongest.
 type CurbForm int
 
 const (
-	// CurbIntensity grows with J over the mean of the lowest third in s^2.
+	// CurbIntensity has u = J over the mean of the lowest third in s^2.
 	CurbIntensity CurbForm = iota
-	// CurbStrength grows with J over its local shell mean.
+	// CurbStrength has u = J over its local shell mean.
 	CurbStrength
-	// CurbRate grows with the counts of the observation over Counts.
+	// CurbRate has u = the expected counts of the observation over Counts, after
+	// exchange, deviation, scale and B.
 	CurbRate
 )
 

@@ -4,7 +4,9 @@ import (
 	"math"
 	"testing"
 
+	"thinward/analysis/crystal"
 	"thinward/analysis/internal/floatcmp"
+	"thinward/analysis/resample"
 )
 
 // slopes regresses y on x over the allowed reflections of each shell.
@@ -52,7 +54,7 @@ func TestExchangeIsExactWithinShells(t *testing.T) {
 
 func TestIntensitiesFollowTheFalloff(t *testing.T) {
 	p := small()
-	p.DMin, p.Structure = 1.1, Structure{Wilson: true, B: 3}
+	p.DMin, p.Structure = 0.6, Structure{Wilson: true, B: 3}
 	s := invent(t, p)
 	// <J> exp(2 B s^2) is flat: the same mean in the lower and the upper half.
 	var low, high []float64
@@ -71,6 +73,9 @@ func TestIntensitiesFollowTheFalloff(t *testing.T) {
 	a, sa := meanSD(low)
 	b, sb := meanSD(high)
 	floatcmp.Check(t, "falloff", a/b, 1, 4*math.Hypot(sa/a, sb/b)/math.Sqrt(float64(len(low))), 0)
+	if len(low) < 2000 {
+		t.Errorf("only %d reflections in the lower half", len(low))
+	}
 	allowed := 0
 	for _, x := range s.Truth.Absent {
 		if !x {
@@ -117,6 +122,36 @@ func TestCurbForms(t *testing.T) {
 	}
 }
 
+func TestExchangeKeepsTheShellMeanAfterTheCurb(t *testing.T) {
+	p := small()
+	p.Common.Exchange, p.Common.Curb = 0.2, 0.05
+	s := invent(t, p)
+	curbed := make([]float64, len(s.Truth.J))
+	for i, j := range s.Truth.J {
+		curbed[i] = j * math.Exp(-0.05*j)
+	}
+	law := s.Specimens[0].Positions[0].Law
+	floatcmp.CheckSlice(t, "shell means", s.Truth.shellMean(law), s.Truth.shellMean(curbed), 0, 1e-12)
+	for _, b := range slopes(&s.Truth, curbed, law) {
+		floatcmp.Check(t, "slope", b, 0.8, 0, 1e-10)
+	}
+}
+
+func TestWilsonMeanIsEpsilon(t *testing.T) {
+	// <|F|^2> is epsilon, <|F|^4> 2 epsilon^2 acentric and 3 epsilon^2 centric (Wilson 1949).
+	const n = 20000
+	tr := Truth{HKL: make([]crystal.HKL, 2*n), Epsilon: make([]int8, 2*n), Centric: make([]bool, 2*n)}
+	for i := range tr.HKL {
+		tr.Epsilon[i], tr.Centric[i] = 4, i < n
+	}
+	j := tr.wilson(resample.NewSeed(1).Stream(0))
+	for k, want := range []float64{3, 2} {
+		mean, sd := meanSD(j[k*n : (k+1)*n])
+		floatcmp.Check(t, "mean", mean, 4, 0, 4*math.Sqrt((want-1)/n))
+		floatcmp.Check(t, "second moment", 1+sd*sd/(mean*mean), want, 0, 0.06)
+	}
+}
+
 func TestTiltThickens(t *testing.T) {
 	p := small()
 	p.Common.Exchange, p.Common.TiltThickens, p.Common.TiltZeroDeg = 0.2, true, 5
@@ -131,6 +166,7 @@ func TestTiltThickens(t *testing.T) {
 func TestScaleBAndOffset(t *testing.T) {
 	p := small()
 	q := &p.Crystals[0].Positions[1]
+	q.Counts = 300
 	q.LnScale, q.Cos, q.B, q.DoseB, q.Dose, q.Gain, q.Offset = 0.4, []float64{0.1, -0.05}, 1.5, 0.2, 3, 2.5, -0.02
 	s := invent(t, p)
 	m := s.Specimens[0].Positions[1]
@@ -138,13 +174,13 @@ func TestScaleBAndOffset(t *testing.T) {
 	for i, u := range m.Unique {
 		x := math.Pi * (m.Rows.Phi[i] + 60) / 120
 		lnK := 0.4 + 0.1*math.Cos(x) - 0.05*math.Cos(2*x)
-		want := 2.5 * 200 * (math.Exp(lnK-2*2.1*s.Truth.S2[u])*s.Truth.J[u] - 0.02)
+		want := 2.5 * 300 * (math.Exp(lnK-2*2.1*s.Truth.S2[u])*s.Truth.J[u] - 0.02)
 		floatcmp.Check(t, "expected", m.Expected[i], want, 1e-9, 1e-12)
 		floatcmp.Check(t, "noiseless row", m.Rows.I[i], m.Expected[i], 0, 0)
 	}
 	for i, phi := range m.AngleDeg {
 		x := math.Pi * (phi + 60) / 120
-		floatcmp.Check(t, "sampled ln K", m.LnK[i], math.Log(500)+0.4+0.1*math.Cos(x)-0.05*math.Cos(2*x), 1e-12, 0)
+		floatcmp.Check(t, "sampled ln K", m.LnK[i], math.Log(750)+0.4+0.1*math.Cos(x)-0.05*math.Cos(2*x), 1e-12, 0)
 	}
 }
 

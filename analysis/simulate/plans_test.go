@@ -120,9 +120,12 @@ func TestWithExchange(t *testing.T) {
 }
 
 func TestEveryFlawIsAChange(t *testing.T) {
-	sound := invent(t, Sound(4))
+	plain := Sound(4)
+	plain.DMin = 1.8
+	sound := invent(t, plain)
 	for _, f := range Flaws() {
 		p := Flawed(f, 4)
+		p.DMin = 1.8
 		if err := p.Check(); err != nil {
 			t.Errorf("%v: %v", f, err)
 			continue

@@ -39,6 +39,9 @@ type Specimen struct {
 // Measured is one position: its rows and what lies behind them.
 type Measured struct {
 	Plan Position // filled
+	// Rows are in order of true index, then angle; copies follow each other. Phi is the
+	// angle of crossing (of copies: shifted by whole frames with their frames), frames
+	// count from 1 at the lowest tilt, intensities are in reported units. Partiality is nil.
 	Rows *intensity.Columns
 	// Unique is the entry of Truth of each row; Observation its number before
 	// copying (rows of equal number are copies).

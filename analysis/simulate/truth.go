@@ -130,8 +130,8 @@ type law struct {
 	m      float64
 }
 
-// lawOf applies the curb J exp(-q u), which is J (1 - q u) to first order and keeps
-// strong reflections positive; u is J for CurbIntensity and J over its shell mean for CurbStrength.
+// lawOf applies the curb of the forms that belong to the reflection; that of the rate
+// form belongs to the observation.
 func (t *Truth) lawOf(p *Position) law {
 	l := law{curbed: make([]float64, len(t.J)), m: p.Exchange}
 	for i, j := range t.J {
