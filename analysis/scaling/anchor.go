@@ -13,13 +13,7 @@ const anchorShells = 20
 // in a fit with all.
 func (t *table) anchor(a Anchor, j []float64) []bool {
 	n := len(t.id)
-	order := make([]int, n)
-	for i := range order {
-		order[i] = i
-	}
-	slices.SortFunc(order, func(x, y int) int {
-		return cmp.Or(cmp.Compare(t.s2[x], t.s2[y]), cmp.Compare(t.id[x], t.id[y]))
-	})
+	order := t.byResolution()
 	used := make([]bool, n)
 	switch a {
 	case AnchorLow, AnchorHigh:
@@ -28,6 +22,29 @@ func (t *table) anchor(a Anchor, j []float64) []bool {
 		}
 		return used
 	}
+	strength := t.strength(j)
+	middle := median(slices.Clone(strength))
+	for g, e := range strength {
+		used[g] = (e < middle) == (a == AnchorWeak)
+	}
+	return used
+}
+
+func (t *table) byResolution() []int {
+	order := make([]int, len(t.id))
+	for i := range order {
+		order[i] = i
+	}
+	slices.SortFunc(order, func(x, y int) int {
+		return cmp.Or(cmp.Compare(t.s2[x], t.s2[y]), cmp.Compare(t.id[x], t.id[y]))
+	})
+	return order
+}
+
+// strength returns j over the mean of its resolution shell.
+func (t *table) strength(j []float64) []float64 {
+	order := t.byResolution()
+	n := len(order)
 	shells := max(1, min(anchorShells, n/20))
 	strength := make([]float64, n)
 	for k := range shells {
@@ -40,9 +57,5 @@ func (t *table) anchor(a Anchor, j []float64) []bool {
 			strength[g] = j[g] / mean
 		}
 	}
-	middle := median(slices.Clone(strength))
-	for g, e := range strength {
-		used[g] = (e < middle) == (a == AnchorWeak)
-	}
-	return used
+	return strength
 }

@@ -14,17 +14,18 @@ type climber struct {
 	fixed [3]bool
 }
 
-// climb returns the maximum over the parameters that are not fixed.
-func (c *climber) climb(x noiseParams, fixed [3]bool) (noiseParams, float64) {
+// climb returns the maximum over the parameters that are not fixed, to within
+// enough in likelihood.
+func (c *climber) climb(x noiseParams, fixed [3]bool, enough float64) (noiseParams, float64) {
 	best := x.clamped()
 	top := c.e.logLik(best)
 	for range 40 {
 		if c.ctx.Err() != nil {
 			break
 		}
-		at, gain := c.newton(best, top, fixed)
-		improved := false
-		for f := 1.0; f > 1e-3; f /= 3 {
+		at := c.newton(best, top, fixed)
+		gain := 0.0
+		for f := 1.0; f > 1e-2; f /= 3 {
 			var y noiseParams
 			for i := range y {
 				y[i] = best[i] + f*(at[i]-best[i])
@@ -32,11 +33,10 @@ func (c *climber) climb(x noiseParams, fixed [3]bool) (noiseParams, float64) {
 			if l := c.e.logLik(y); l > top {
 				gain = l - top
 				best, top = y, l
-				improved = true
 				break
 			}
 		}
-		if !improved || gain < 1e-5 {
+		if gain < enough {
 			break
 		}
 	}
@@ -44,13 +44,8 @@ func (c *climber) climb(x noiseParams, fixed [3]bool) (noiseParams, float64) {
 }
 
 // newton returns the bounded maximum of the quadratic model about x.
-func (c *climber) newton(x noiseParams, top float64, fixed [3]bool) (noiseParams, float64) {
-	centre, value := x, top
-	for i := range x {
-		if !fixed[i] {
-			centre[i] = math.Max(noiseLow[i]+c.h[i], math.Min(noiseHigh[i]-c.h[i], x[i]))
-		}
-	}
+func (c *climber) newton(x noiseParams, top float64, fixed [3]bool) noiseParams {
+	centre, value := c.inside(x, fixed), top
 	if centre != x {
 		value = c.e.logLik(centre)
 	}
@@ -76,7 +71,17 @@ func (c *climber) newton(x noiseParams, top float64, fixed [3]bool) (noiseParams
 	for i := range d {
 		d[i] += centre[i]
 	}
-	return d, 0
+	return d
+}
+
+// inside moves x far enough from the bounds for differences.
+func (c *climber) inside(x noiseParams, fixed [3]bool) noiseParams {
+	for i := range x {
+		if !fixed[i] {
+			x[i] = math.Max(noiseLow[i]+c.h[i], math.Min(noiseHigh[i]-c.h[i], x[i]))
+		}
+	}
+	return x
 }
 
 func (c *climber) differences(x noiseParams, value float64, fixed [3]bool) (g noiseParams, hess [3][3]float64) {
@@ -156,21 +161,13 @@ func (c *climber) interval(best noiseParams, top float64, i int, drop float64) (
 	fixed[i] = true
 	below := func(v float64, from noiseParams) (float64, noiseParams) {
 		from[i] = v
-		x, l := c.climb(from, fixed)
+		x, l := c.climb(from, fixed, 0.02*drop)
 		return top - l - drop, x
 	}
-	_, hess := c.differences(c.inside(best), c.e.logLik(c.inside(best)), c.fixed)
+	centre := c.inside(best, c.fixed)
+	_, hess := c.differences(centre, c.e.logLik(centre), c.fixed)
 	step := math.Sqrt(2 * drop / math.Max(-hess[i][i], 1e-12))
 	return c.end(best, i, -step, drop, below), c.end(best, i, step, drop, below)
-}
-
-func (c *climber) inside(x noiseParams) noiseParams {
-	for i := range x {
-		if !c.fixed[i] {
-			x[i] = math.Max(noiseLow[i]+c.h[i], math.Min(noiseHigh[i]-c.h[i], x[i]))
-		}
-	}
-	return x
 }
 
 // end brackets and then narrows one end by the secant rule on the square root of
@@ -195,7 +192,7 @@ func (c *climber) end(best noiseParams, i int, step, drop float64, below func(fl
 		a, b := math.Sqrt(math.Max(fnear+drop, 0)), math.Sqrt(ffar+drop)
 		mid := near + (far-near)*(math.Sqrt(drop)-a)/(b-a)
 		f, y := below(mid, x)
-		if math.Abs(f) < 0.01*drop || math.Abs(far-near) < 1e-9 {
+		if math.Abs(f) < 0.02*drop || math.Abs(far-near) < 1e-9 {
 			return mid
 		}
 		if f > 0 {

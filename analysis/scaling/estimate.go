@@ -106,6 +106,7 @@ type fitter struct {
 	round, noise int
 	shift        float64
 	converged    bool
+	warm         bool // parameters come from an earlier run
 	warn, fixed  []intensity.Warning
 }
 
@@ -147,41 +148,84 @@ func (f *fitter) restart() {
 	f.converged = false
 }
 
+// warmRows is the number of observations from which the fit begins on a part of
+// the reflections; partRows is about how many that part has.
+const (
+	warmRows = 400000
+	partRows = 100000
+)
+
 // run iterates until the largest shift is below the tolerance.
 func (f *fitter) run(ctx context.Context) error {
-	fresh := 0
+	if n := len(f.t.y); n >= warmRows && !f.warm {
+		if err := f.approach(ctx, n/partRows); err != nil {
+			return err
+		}
+	}
+	fresh, checked := 0, false
 	for f.round < f.set.MaxIter {
 		f.round++
-		kind := passKind{hessian: f.normal == nil || fresh < 4 || fresh%6 == 0, noise: f.noise > 0 && !f.s.report}
+		early := 4
+		if f.warm {
+			early = 1
+		}
+		kind := passKind{hessian: f.normal == nil || fresh < early || fresh%6 == 0, noise: f.noise > 0 && !f.s.report, cold: f.warm && fresh == 0}
 		fresh++
-		n, err := f.t.pass(ctx, f.s, kind, f.joint, f.set.Workers)
+		change, err := f.advance(ctx, kind)
 		if err != nil {
 			return err
 		}
-		if kind.hessian {
-			f.renewNormal(n)
-		}
-		f.step(n)
-		change := 0.0
-		if kind.noise {
-			change = f.s.renewNoise(n, f.red.over.matched)
-			f.noise--
-		}
-		if fresh == 4 && f.fixSoft() {
-			fresh = 0
-			continue
-		}
-		if f.shift < f.set.Tolerance && change < 1e-3 && fresh > 1 {
-			if fresh > 4 && !f.fixSoft() {
-				f.converged = true
-				return nil
+		if fresh == early+1 || f.shift < f.set.Tolerance && change < 1e-3 && fresh > early {
+			checked = true
+			if f.fixSoft() {
+				fresh, checked = 0, false
+				continue
 			}
-			if f.normal == nil {
-				fresh = 0
-			}
+		}
+		if checked && f.shift < f.set.Tolerance && change < 1e-3 {
+			f.converged = true
+			f.warm = true
+			return nil
 		}
 	}
+	f.warm = true
 	return nil
+}
+
+// approach iterates on every n-th reflection until the shifts are small.
+func (f *fitter) approach(ctx context.Context, stride int) error {
+	for i := range 12 {
+		kind := passKind{hessian: i < 4 || i%4 == 0, noise: !f.s.report, stride: stride}
+		change, err := f.advance(ctx, kind)
+		if err != nil {
+			return err
+		}
+		if i > 3 && f.shift < 0.02 && change < 0.01 {
+			break
+		}
+	}
+	f.warm = true
+	f.noise = 2
+	f.normal, f.inverse = nil, nil
+	return nil
+}
+
+// advance makes one pass and one step, and returns the largest relative change
+// of the noise in the weights.
+func (f *fitter) advance(ctx context.Context, kind passKind) (float64, error) {
+	n, err := f.t.pass(ctx, f.s, kind, f.joint, f.set.Workers)
+	if err != nil {
+		return 0, err
+	}
+	if kind.hessian {
+		f.renewNormal(n)
+	}
+	f.step(n)
+	if !kind.noise {
+		return 0, nil
+	}
+	f.noise--
+	return f.s.renewNoise(n, f.red.over.matched), nil
 }
 
 func (f *fitter) renewNormal(n *sums) {
@@ -191,6 +235,7 @@ func (f *fitter) renewNormal(n *sums) {
 	}
 	f.normal = f.t.normal(f.s, n)
 	f.normal.ScaleSym(f.kappa, f.normal)
+	f.s.relax = 1 / f.kappa
 	f.inverse = nil
 }
 

@@ -13,11 +13,14 @@ import (
 
 // finish makes the Fit: one more pass for the covariance, one to write columns.
 func (f *fitter) finish(ctx context.Context) (*Fit, error) {
-	n, err := f.t.pass(ctx, f.s, passKind{hessian: true, meat: true}, f.joint, f.set.Workers)
+	n, err := f.t.pass(ctx, f.s, passKind{hessian: true, exact: true, meat: true}, f.joint, f.set.Workers)
 	if err != nil {
 		return nil, err
 	}
-	f.renewNormal(n)
+	f.normal = f.t.normal(f.s, n)
+	if n.weight > 0 {
+		f.kappa = n.curvature / n.weight
+	}
 	out := &Fit{
 		Iterations: f.round, Converged: f.converged, LargestShift: f.shift,
 		Settings: *f.set, Constant: !f.free.common, SoftSE: f.soft,

@@ -4,7 +4,6 @@ import (
 	"cmp"
 	"math"
 	"slices"
-	"sort"
 )
 
 // lawBins is the number of equal-count bins of intensity behind a variance law.
@@ -18,20 +17,32 @@ const floorShare = 0.2
 // moves a variance computed from a noisy count to the expected intensity.
 type varianceLaw struct {
 	at0, slope float64   // the line, used when x is nil
-	x, v       []float64 // the broken line
+	x, v, rise []float64 // the broken line and its slopes
 	least      float64   // lower bound of the law itself
 }
 
 // at returns the variance at intensity y.
 func (l *varianceLaw) at(y float64) float64 {
-	if l.x == nil {
-		return math.Max(l.at0+l.slope*y, l.least)
+	v := l.at0 + l.slope*y
+	if l.x != nil {
+		v = l.bent(y)
 	}
-	n := len(l.x)
-	i := sort.SearchFloat64s(l.x, y)
-	i = max(1, min(i, n-1))
-	s := (l.v[i] - l.v[i-1]) / (l.x[i] - l.x[i-1])
-	return math.Max(l.v[i-1]+s*(y-l.x[i-1]), l.least)
+	if v < l.least {
+		return l.least
+	}
+	return v
+}
+
+func (l *varianceLaw) bent(y float64) float64 {
+	lo, hi := 0, len(l.x)-1
+	for hi-lo > 1 {
+		if mid := (lo + hi) / 2; l.x[mid] <= y {
+			lo = mid
+		} else {
+			hi = mid
+		}
+	}
+	return l.v[lo] + l.rise[lo]*(y-l.x[lo])
 }
 
 // fitLaws fits the law of every position, from every n-th reflection when there
@@ -78,7 +89,11 @@ func fitLaw(in *Input, rows []int32) varianceLaw {
 	if slope >= 0 && worstRelative(x, v, at0, slope) < 0.1 {
 		return varianceLaw{at0: at0, slope: slope, least: least}
 	}
-	return varianceLaw{x: x, v: monotone(v), least: least}
+	l := varianceLaw{x: x, v: monotone(v), rise: make([]float64, len(x)), least: least}
+	for i := range len(x) - 1 {
+		l.rise[i] = (l.v[i+1] - l.v[i]) / (x[i+1] - x[i])
+	}
+	return l
 }
 
 func medians(in *Input, rows []int32) (mi, mv float64) {

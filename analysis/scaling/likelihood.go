@@ -96,9 +96,9 @@ func (e *equivalents) fit(ctx context.Context, set *NoiseSettings) (PositionNois
 	}
 	df := float64(n.DF)
 	c.h = noiseParams{0.2 * math.Sqrt(4/df), 0.2 * (start[1] + 0.01) * math.Sqrt(8/df), math.Min(0.02, 1/math.Sqrt(df))}
-	best, top := c.climb(start, c.fixed)
-	c.h[1] = 0.2 * (best[1] + 0.002) * math.Sqrt(8/df)
-	best, top = c.climb(best, c.fixed)
+	first, _ := c.climb(start, c.fixed, 0.1)
+	c.h[1] = 0.2 * (first[1] + 0.002) * math.Sqrt(8/df)
+	best, top := c.climb(first, c.fixed, 1e-4)
 	n.Estimable, n.LogLik = true, top
 	n.A, n.B = math.Exp(best[0]/2), math.Sqrt(best[1])
 	if best[2] > 1e-4 {
@@ -145,7 +145,6 @@ func (e *equivalents) start() noiseParams {
 			strong = append(strong, p.r2q)
 		}
 	}
-	const chi2Median = 0.45493642 // of one degree of freedom
 	a2 := math.Max(median(weak)/chi2Median, 1e-6)
 	b2 := math.Max(median(strong)/chi2Median-a2/high, 1e-4)
 	return noiseParams{math.Log(a2), b2, 0.1}.clamped()

@@ -44,7 +44,7 @@ type Noise struct {
 
 // noiseRows caps the observations behind one position's noise model: above it
 // every n-th reflection is taken, which leaves intervals honest and narrow enough.
-const noiseRows = 200000
+const noiseRows = 50000
 
 // FitNoise fits the noise model of every position to the scatter of symmetry
 // equivalents within it, by maximum likelihood of residuals from the mean of each

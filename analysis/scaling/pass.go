@@ -12,8 +12,11 @@ import (
 // passKind says what a pass collects beside the gradient.
 type passKind struct {
 	hessian bool // the normal matrix
+	exact   bool // with the derivative of the t score in place of the weight
 	meat    bool // the sum of squared scores of whole reflections
 	noise   bool // scoring sums of the noise model in the weights
+	cold    bool // J is not that of these parameters: find it before anything is weighed with it
+	stride  int  // only every n-th reflection; 0 and 1 mean all
 }
 
 // cellTerms counts the sums kept for one spline interval of one position: the
@@ -79,7 +82,8 @@ func (t *table) pass(ctx context.Context, s *state, kind passKind, joint []bool,
 	err := parallel.For(ctx, t.chunks(), workers, func(_ context.Context, c int) error {
 		w := &worker{t: t, s: s, kind: kind, joint: joint, cellAt: cellAt, sums: newSums(cells, s.size(), len(t.curve), kind)}
 		w.prepare()
-		for g := t.chunk[c]; g < t.chunk[c+1]; g++ {
+		step := max(1, kind.stride)
+		for g := (t.chunk[c] + step - 1) / step * step; g < t.chunk[c+1]; g += step {
 			w.reflection(g)
 		}
 		parts[c] = w.sums
@@ -113,7 +117,7 @@ type obs struct {
 	basis          [4]float64
 	g, v, w, r     float64 // scale, independent variance, weight, residual
 	vAll, vExp, tw float64 // variance with the shared part, v', t weight
-	q              float64 // gradient weight
+	q, hw          float64 // weight in the gradient and in the normal matrix
 	gj             float64 // expected intensity
 	p, at          int
 }
@@ -138,6 +142,7 @@ type worker struct {
 	rawAt   []int
 	isSet   []bool
 	byPos   []posSums
+	j       float64 // intensity that goes with the residuals
 }
 
 type posSums struct {
@@ -159,6 +164,10 @@ func (w *worker) reflection(g int) {
 	lo, hi := int(w.t.first[g]), int(w.t.first[g+1])
 	w.obs = grown(w.obs, hi-lo)
 	w.load(g, lo)
+	if w.kind.cold {
+		w.eliminate(g, math.Max(w.s.j[g], 0))
+		w.load(g, lo)
+	}
 	jw := math.Max(w.s.j[g], 0) // the intensity behind the weights
 	d := w.eliminate(g, jw)
 	if w.t.used != nil && !w.t.used[g] {
@@ -167,7 +176,7 @@ func (w *worker) reflection(g int) {
 	if !(d > 0) {
 		return
 	}
-	w.collect(g, d)
+	w.collect(g)
 	if w.kind.noise {
 		w.noise(jw)
 	}
@@ -192,13 +201,19 @@ func (w *worker) load(g, lo int) {
 		th := s.theta[o.at : o.at+4 : o.at+4]
 		o.g = math.Exp(th[0]*b0+th[1]*b1+th[2]*b2+th[3]*b3) * w.damp[o.p]
 		gj := o.g * j
-		x := math.Max(gj, 0)
+		x := gj
+		if x < 0 {
+			x = 0
+		}
 		if s.report {
 			o.vExp = t.excess[i] + t.laws[o.p].at(t.y[i])
 			o.v, o.vAll = o.vExp, o.vExp
 		} else {
 			law := t.laws[o.p].at(x)
-			o.vExp = math.Max(t.excess[i]+law, floorShare*law)
+			o.vExp = t.excess[i] + law
+			if o.vExp < floorShare*law {
+				o.vExp = floorShare * law
+			}
 			o.vAll = s.a2[o.p]*o.vExp + s.b2[o.p]*x*x
 			o.v = o.vAll - share*x*x
 		}
@@ -234,12 +249,16 @@ func (w *worker) eliminate(g int, jw float64) float64 {
 	})
 	w.heads = append(w.heads, len(w.obs))
 	s.dj[g] = d
+	old := s.j[g]
+	j := old
 	if d > 0 {
-		s.j[g] = num / d
+		j = num / d
 	}
+	w.j = j
+	s.j[g] = old + (j-old)*w.s.relax
 	for k := range w.obs {
 		o := &w.obs[k]
-		o.gj = o.g * s.j[g]
+		o.gj = o.g * j
 		o.r = t.y[lo+k] - o.gj
 	}
 	return d
@@ -256,44 +275,70 @@ func (w *worker) eachRaw(lo int, f func(part []obs, from int)) {
 }
 
 // collect adds reflection g to gradient, normal matrix and scores.
-func (w *worker) collect(g int, d float64) {
-	j := w.s.j[g]
+func (w *worker) collect(g int) {
+	j := w.j
 	jw := math.Max(j, 0)
 	shared := w.shareB2 * jw * jw
 	slope := -2 * w.t.s2[g]
+	d := 0.0
 	for h := 0; h+1 < len(w.heads); h++ {
 		part := w.obs[w.heads[h]:w.heads[h+1]]
-		var dr, sr float64
-		for k := range part {
-			o := &part[k]
-			dr += o.w * o.g * o.g
-			sr += o.w * o.g * o.r
-		}
-		kappa := shared / (1 + shared*dr)
-		for k := range part {
-			o := &part[k]
-			o.q = o.w * (o.r - kappa*o.g*sr)
-		}
+		w.pull(part, shared)
 		if w.kind.hessian {
-			w.rawBlock(part, j, slope, kappa, dr)
+			d += w.rawBlock(part, j, slope, shared)
 		}
 	}
 	w.gradient(j, slope)
 	if w.kind.hessian {
-		w.subtractOuter(w.sums.outer, -1/d)
+		w.addOuter(w.sums.outer, -1/d)
 	}
 	if w.kind.meat {
 		w.score(j, slope)
-		w.subtractOuter(w.sums.meat, 1)
+		w.addOuter(w.sums.meat, 1)
 	}
 	if len(w.obs) > 1 {
 		w.sums.clusters++
 	}
 }
 
-func (w *worker) gradient(j, slope float64) {
+// leastCurvature keeps every observation's part of the exact normal matrix
+// positive; the derivative of Student's score is negative for outliers.
+const leastCurvature = 0.05
+
+// pull computes the gradient weight of each observation of one raw index, and
+// its weight in the normal matrix: the weight itself, or in the exact matrix the
+// derivative of the score, in which the t weight moves with the residual.
+func (w *worker) pull(part []obs, shared float64) {
+	var dr, sr float64
+	for k := range part {
+		o := &part[k]
+		dr += o.w * o.g * o.g
+		sr += o.w * o.g * o.r
+	}
+	kappa := shared / (1 + shared*dr)
 	nu := w.s.nu
 	gauss := math.IsInf(nu, 1)
+	for k := range part {
+		o := &part[k]
+		own := o.r - kappa*o.g*sr
+		o.q = o.w * own
+		o.hw = o.w
+		if gauss {
+			w.sums.weight++
+			w.sums.curvature++
+			continue
+		}
+		e := nu + o.r*o.r/o.vAll
+		c := o.tw - 2*(nu+1)*o.r*own/(o.vAll*e*e)
+		w.sums.weight += o.tw
+		w.sums.curvature += c
+		if w.kind.exact {
+			o.hw = math.Max(c, leastCurvature) / o.v
+		}
+	}
+}
+
+func (w *worker) gradient(j, slope float64) {
 	for k := range w.obs {
 		o := &w.obs[k]
 		c := w.cell(o)
@@ -303,13 +348,6 @@ func (w *worker) gradient(j, slope float64) {
 		c[17] += f * o.basis[2]
 		c[18] += f * o.basis[3]
 		c[19] += f * slope
-		w.sums.weight += o.tw
-		if gauss {
-			w.sums.curvature++
-		} else {
-			z2 := o.r * o.r / o.vAll
-			w.sums.curvature += (nu + 1) * (nu - z2) / ((nu + z2) * (nu + z2))
-		}
 	}
 }
 
@@ -318,16 +356,22 @@ func (w *worker) cell(o *obs) []float64 {
 	return w.sums.cells[at : at+cellTerms : at+cellTerms]
 }
 
-// rawBlock adds the part of the normal matrix that belongs to one raw index and
-// lays its share of the projection vector into dense.
-func (w *worker) rawBlock(part []obs, j, slope, kappa, dr float64) {
+// rawBlock adds the part of the normal matrix that belongs to one raw index,
+// lays its share of the projection vector into dense and returns its information
+// on J.
+func (w *worker) rawBlock(part []obs, j, slope, shared float64) float64 {
+	dr := 0.0
+	for k := range part {
+		dr += part[k].hw * part[k].g * part[k].g
+	}
+	kappa := shared / (1 + shared*dr)
 	keep := 1 - kappa*dr
 	alone := len(part) == 1
 	w.raw, w.rawAt = w.raw[:0], w.rawAt[:0]
 	for k := range part {
 		o := &part[k]
 		c := w.cell(o)
-		f := o.w * o.g * o.g * j
+		f := o.hw * o.g * o.g * j
 		a := f * j
 		if alone {
 			a *= keep
@@ -361,6 +405,7 @@ func (w *worker) rawBlock(part []obs, j, slope, kappa, dr float64) {
 			row[b] += f * w.raw[l]
 		}
 	}
+	return keep * dr
 }
 
 func (w *worker) lay(i int, v float64) {
@@ -383,8 +428,8 @@ func (w *worker) score(j, slope float64) {
 	}
 }
 
-// subtractOuter adds f dense dense' to dst and clears dense.
-func (w *worker) subtractOuter(dst []float64, f float64) {
+// addOuter adds f dense dense' to dst and clears dense.
+func (w *worker) addOuter(dst []float64, f float64) {
 	m := len(w.dense)
 	if 3*len(w.touched) > m {
 		for _, i := range w.touched {

@@ -10,7 +10,8 @@ type state struct {
 	a2, b2 []float64
 	shared float64 // share of b^2 common to equal raw indices
 	nu     float64
-	report bool // weights from reported variances
+	report bool    // weights from reported variances
+	relax  float64 // J moves by this times the difference to its weighted mean
 	j      []float64
 	dj     []float64 // information on j
 }
@@ -19,7 +20,7 @@ func newState(t *table, set *Settings) *state {
 	p := len(t.curve)
 	s := &state{
 		off: make([]int, p), a2: make([]float64, p), b2: make([]float64, p),
-		nu: set.TailDF, report: set.Weighting == WeightReported,
+		nu: set.TailDF, relax: 1, report: set.Weighting == WeightReported,
 		j: make([]float64, len(t.id)), dj: make([]float64, len(t.id)),
 	}
 	at := 0
