@@ -149,7 +149,7 @@ func (g *Group) Number() int { return g.setting.Number }
 
 // HM is the Hermann-Mauguin symbol of the setting, such as "P 21 21 21",
 // "P 1 21/n 1", "R -3 c :H" or "F d d d :2", empty when Number is 0. Lookup reads
-// it back.
+// it back; an OriginShift is not part of it.
 func (g *Group) HM() string { return g.setting.Symbol() }
 
 // Choice is the tabulated choice of axes, cell or origin, such as "b1", "cab",

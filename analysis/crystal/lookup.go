@@ -136,16 +136,15 @@ func plainSymbol(s string) string {
 // splitChoice takes off a choice after a colon, and the H or R that ends a
 // rhombohedral symbol or begins it.
 func splitChoice(s string) (text, choice string) {
-	if head, tail, ok := strings.Cut(s, ":"); ok {
-		return strings.TrimSpace(head), strings.TrimSpace(tail)
+	text, choice, colon := strings.Cut(s, ":")
+	text, choice = strings.TrimSpace(text), strings.TrimSpace(choice)
+	if n := len(text); !colon && n > 2 && text[0] == 'r' && (text[n-1] == 'h' || text[n-1] == 'r') {
+		text, choice = strings.TrimSpace(text[:n-1]), text[n-1:]
 	}
-	if strings.HasPrefix(s, "h") {
-		return "r" + s[1:], "h"
+	if strings.HasPrefix(text, "h") && (choice == "" || choice == "h") {
+		text, choice = "r"+text[1:], "h"
 	}
-	if n := len(s); n > 2 && s[0] == 'r' && (s[n-1] == 'h' || s[n-1] == 'r') {
-		return strings.TrimSpace(s[:n-1]), s[n-1:]
-	}
-	return s, ""
+	return text, choice
 }
 
 func hallKey(s string) string {
