@@ -86,7 +86,7 @@ func TestUncertaintyInParentheses(t *testing.T) {
 	if diff := cmp.Diff([]float64{.05, 1.2, 1.2, 20}, r.Columns.Sigma, cmpopts.EquateApprox(1e-12, 0)); diff != "" {
 		t.Error(diff)
 	}
-	if diff := cmp.Diff([]Aside{{reasonNoSU, 1, 11}}, r.SetAside); diff != "" {
+	if diff := cmp.Diff([]Aside{aside(reasonNoSU, 1, 11)}, r.SetAside); diff != "" {
 		t.Error(diff)
 	}
 	if r.List.Sigma != "(s.u.)" {
@@ -98,8 +98,8 @@ func TestSetAside(t *testing.T) {
 	text := loopOf("_refln_index_h _refln_index_k _refln_index_l _refln_intensity_meas _refln_intensity_sigma _refln_include_status",
 		"1 0 0 10 1 o\n2 0 0 ? 1 o\n3 0 0 10 0 o\n4 0 0 10 -1 o\n5 0 0 10 . o\n6 0 0 10 1 x\n7 0 0 10 1 -\n0 0 0 10 1 o\n? 0 0 10 1 o\n8 0 0 -5 1 <\n9 0 0 10 0 o\n")
 	r := mustRead(t, text, Selection{})
-	want := []Aside{{"intensity is null", 1, 10}, {"sigma is zero or negative", 3, 11}, {"sigma is null", 1, 13}, {reasonUnreliable, 1, 14},
-		{reasonAbsent, 1, 15}, {"index is 0 0 0", 1, 16}, {"index is null", 1, 17}}
+	want := []Aside{aside("intensity is null", 1, 10), aside("sigma is zero or negative", 3, 11), aside("sigma is null", 1, 13), aside(reasonUnreliable, 1, 14),
+		aside(reasonAbsent, 1, 15), aside("index is 0 0 0", 1, 16), aside("index is null", 1, 17)}
 	if diff := cmp.Diff(want, r.SetAside); diff != "" {
 		t.Error(diff)
 	}
@@ -277,4 +277,8 @@ func TestListsOfEveryLengthAreWhole(t *testing.T) {
 			}
 		}
 	}
+}
+
+func aside(reason string, count, line int) Aside {
+	return Aside{Reason: reason, Count: count, FirstLine: line}
 }

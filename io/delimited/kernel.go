@@ -213,6 +213,7 @@ func (r *reader) slow(line []byte, n int) error {
 	if r.delimiter == ' ' && len(fields) > len(r.roles) && (fields[len(r.roles)][0] == '#' || fields[len(r.roles)][0] == '!') {
 		fields = fields[:len(r.roles)]
 	}
+	r.raw.H[n], r.raw.K[n], r.raw.L[n] = 1, 1, 1
 	for j := 0; j < min(len(fields), len(r.roles)); j++ {
 		if err := r.field(fields[j], j, n); err != nil {
 			return err
@@ -223,7 +224,7 @@ func (r *reader) slow(line []byte, n int) error {
 			return r.fault(r.i, "", fmt.Sprintf("the row goes on behind its last column (%d characters)", trailing), "declare the rest as skip with its width")
 		}
 	}
-	if len(fields) == len(r.roles) {
+	if len(fields) == len(r.roles) || r.raw.H[n] == 0 && r.raw.K[n] == 0 && r.raw.L[n] == 0 {
 		return nil
 	}
 	remedy := "complete the row, or correct the declared order"
@@ -251,7 +252,7 @@ func (r *reader) field(f []byte, j, n int) error {
 	if role == roleSkip {
 		return nil
 	}
-	if null(f) {
+	if null(f) && (len(f) > 0 || role > roleL) {
 		r.setNull(role, n)
 		return nil
 	}
