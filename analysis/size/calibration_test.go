@@ -27,7 +27,7 @@ func TestCoverage(t *testing.T) {
 		t.Run(c.name, func(t *testing.T) {
 			var m, se, cover tally
 			g := stream(41)
-			for range repeats(400, 1500) {
+			for range repeats(250, 1500) {
 				x, err := Exchange(c.p.draw(g), nil)
 				x = must(t, x, err)
 				m.add(x.M)
@@ -79,7 +79,7 @@ func TestOffset(t *testing.T) {
 	for _, c := range []struct{ m, o float64 }{{0, .01}, {.05, .01}, {0, 0}} {
 		var m, o, alone, cover, coverO tally
 		g := stream(43)
-		for range repeats(60, 400) {
+		for range repeats(40, 400) {
 			in := plan{n: 2000, shells: 12, m: c.m, o: c.o, falloff: 9, noise: [3]float64{.03, .03, .03}, error: .1}.draw(g)
 			lead, span, err := Leads(in, nil)
 			if must(t, lead, err) != MQO || !(span > 5) {
@@ -203,7 +203,7 @@ func TestClassesOnNoisyAxis(t *testing.T) {
 	for _, c := range []struct{ noise, contrast, strength float64 }{
 		{.1, -.044, .12}, {.3, -.040, .20}, {.6, -.034, .33}, {1, -.028, .45},
 	} {
-		in := plan{n: 400000, m: .05, noise: [3]float64{c.noise, .1, .1}}.draw(stream(46))
+		in := plan{n: 250000, m: .05, noise: [3]float64{c.noise, .1, .1}}.draw(stream(46))
 		got, err := Classes(in, nil, nil, nil)
 		floor := must(t, got, err)[0]
 		inBand(t, "contrast", floor.Contrast.Value, c.contrast-.0015, c.contrast+.0015)
@@ -212,7 +212,7 @@ func TestClassesOnNoisyAxis(t *testing.T) {
 	}
 	var cover [3]tally
 	g := stream(47)
-	for range repeats(300, 1500) {
+	for range repeats(150, 1500) {
 		in := plan{n: 2000, shells: 8, m: .05, noise: [3]float64{.3, .3, .3}, error: .2}.draw(g)
 		got, err := Classes(in, nil, nil, nil)
 		for k, c := range must(t, got, err) {
@@ -238,7 +238,7 @@ func TestClassesWithFew(t *testing.T) {
 		t.Errorf("%+v", top)
 	}
 	middle := got[1]
-	if math.IsNaN(middle.Contrast.Value) || middle.Why == "" || !math.IsInf(middle.M.Hi, 1) {
+	if math.IsNaN(middle.Contrast.Value) || !strings.Contains(middle.Why, "have a second strength") || !math.IsInf(middle.M.Hi, 1) {
 		t.Errorf("%+v", middle)
 	}
 }
@@ -281,7 +281,7 @@ func TestCompareCurbs(t *testing.T) {
 	}
 	// With no curb a told answer is an error of the first kind: at most 5 % a form.
 	told := 0
-	n := repeats(60, 400)
+	n := repeats(40, 400)
 	g = stream(53)
 	for range n {
 		p := base

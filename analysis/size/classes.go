@@ -67,7 +67,7 @@ func Classes(in *Input, second, w []float64, set *Settings) ([]Class, error) {
 		}
 		contrast, pc := classMean(f, f.w, d, pooled, member)
 		strength, px := classMean(f, xw, x, x, member)
-		c.describe(f, contrast, strength, pc, px, set.level())
+		c.describe(f, xw, contrast, strength, pc, px, set.level())
 	}
 	return classes, nil
 }
@@ -125,19 +125,24 @@ func classMean(f *frame, w, v, over []float64, member func(int) bool) (mean floa
 	return mean, psi
 }
 
-func (c *Class) describe(f *frame, contrast, strength float64, pc, px []float64, level float64) {
+func (c *Class) describe(f *frame, xw []float64, contrast, strength float64, pc, px []float64, level float64) {
 	c.Contrast, c.Strength, c.M = noValue(), noValue(), noValue()
 	if c.N < 3 {
 		c.Why = fmt.Sprintf("%d reflections in the class; at least 3 are needed", c.N)
 		return
 	}
-	var vcc, vcx, vxx, members float64
+	var vcc, vcx, vxx, members, both float64
+	second := 0
 	for i, w := range f.w {
 		vcc += w * pc[i] * pc[i]
 		vcx += w * pc[i] * px[i]
 		vxx += w * px[i] * px[i]
 		if f.u[i] > 0 && f.in.Z[i] >= c.Lo && f.in.Z[i] < c.Hi {
 			members += w
+			both += xw[i]
+			if xw[i] > 0 {
+				second++
+			}
 		}
 	}
 	if members <= 1 {
@@ -145,13 +150,17 @@ func (c *Class) describe(f *frame, contrast, strength float64, pc, px []float64,
 		return
 	}
 	k := members / (members - 1)
-	vcc, vcx, vxx = k*vcc, k*vcx, k*vxx
+	vcc *= k
 	t := tQuantile(level, members-1)
 	c.Contrast = newValue(contrast, math.Sqrt(vcc), t)
-	if math.IsNaN(strength) {
-		c.Why = "no second strength in the class"
+	if second < 3 || both <= 1 {
+		c.Why = fmt.Sprintf("%d reflections of the class have a second strength; at least 3 are needed", second)
 		return
 	}
+	kx := both / (both - 1)
+	vxx *= kx
+	vcx *= math.Sqrt(k * kx)
+	t = tQuantile(level, both-1)
 	c.Strength = newValue(strength, math.Sqrt(vxx), t)
 	// M = -contrast/(1 - strength): the numerator -c and the denominator 1 - x
 	// have covariance +cov(c, x).

@@ -7,7 +7,7 @@ import (
 
 const (
 	// Below these first-stage F the Student interval, and the estimate itself,
-	// are not to be trusted (science: noise three times the shell mean, 500
+	// are not to be trusted (in simulation, noise three times the shell mean, 500
 	// reflections, F = 4 gave m = 0.47 with a spread of 15.8).
 	weakF        = 50
 	inestimableF = 10

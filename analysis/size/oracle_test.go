@@ -120,7 +120,7 @@ func TestTwoInstruments(t *testing.T) {
 // The standard error equals the explicit delete-one jackknife (Efron 1982) to
 // a few per cent, shell means recomputed each time, in all estimators.
 func TestJackknife(t *testing.T) {
-	in := plan{n: 720, shells: 3, m: .05, falloff: 4, noise: [3]float64{.1, .1, .1}, error: .2}.draw(stream(24))
+	in := plan{n: 720, shells: 3, m: .05, q: .08, falloff: 4, noise: [3]float64{.1, .1, .1}, error: .2}.draw(stream(24))
 	in.S2 = nil
 	jack := func(n int, stat func(w []float64) []float64) []float64 {
 		var draws [][]float64
@@ -158,11 +158,16 @@ func TestJackknife(t *testing.T) {
 	got = jack(len(in.Z), func(w []float64) []float64 {
 		c, err := Classes(in, nil, w, nil)
 		c = must(t, c, err)
-		return []float64{c[0].Contrast.Value, c[0].Strength.Value, c[0].M.Value, c[2].Contrast.Value, c[2].M.Value}
+		return []float64{c[0].Contrast.Value, c[0].Strength.Value, c[0].M.Value, c[2].Contrast.Value, c[2].M.Value, c[1].Strength.Value, c[2].Strength.Value}
 	})
-	for k, v := range []float64{c[0].Contrast.SE, c[0].Strength.SE, c[0].M.SE, c[2].Contrast.SE, c[2].M.SE} {
+	for k, v := range []float64{c[0].Contrast.SE, c[0].Strength.SE, c[0].M.SE, c[2].Contrast.SE, c[2].M.SE, c[1].Strength.SE, c[2].Strength.SE} {
 		floatcmp.Check(t, "class", v, got[k], 0, .05)
 	}
+
+	// Fieller's interval is that of the standard error where 1 - strength is far
+	// from 0, as in the floor.
+	half := tQuantile(.95, float64(c[0].N)-1) * c[0].M.SE
+	floatcmp.Check(t, "half-width of the floor", (c[0].M.Hi-c[0].M.Lo)/2, half, 0, .01)
 
 	// Without the second step moments are linear but for the shell means: one
 	// function a parameter.
@@ -178,7 +183,7 @@ func TestJackknife(t *testing.T) {
 	floatcmp.Check(t, "q of (m,q)", f.Q.SE, got[1], 0, .04)
 	// The offset with as many functions as parameters, and its shell means.
 	set = &Settings{Knots: []float64{1, 6}, FlatShells: true}
-	in = plan{n: 720, shells: 4, m: .05, falloff: 9, noise: [3]float64{.03, .03, .03}, error: .2}.draw(stream(24))
+	in = plan{n: 720, shells: 4, m: .05, q: .08, o: .05, falloff: 9, noise: [3]float64{.03, .03, .03}, error: .2}.draw(stream(24))
 	in.S2 = nil
 	f, err = Moments(in, nil, MQO, set)
 	f = must(t, f, err)
