@@ -182,32 +182,59 @@ func TestSpatial(t *testing.T) {
 	}
 }
 
-// The exact bootstrap law of the plug-in variance, by adding the 26 draws of one
-// value one after another on the lattice of (sum x, sum x^2).
+// The exact bootstrap law of the plug-in variance: the 26 draws added one after
+// another on the lattice of (sum x, sum x^2).
 func TestSpatialExact(t *testing.T) {
 	if os.Getenv("THINWARD_FULL") == "" {
 		t.Skip("set THINWARD_FULL=1 for the exact law of 26 units")
 	}
-	n := len(spatialA)
-	law := map[[2]int]float64{{0, 0}: 1}
-	for range n {
-		next := make(map[[2]int]float64, 2*len(law))
-		for k, p := range law {
-			for _, v := range spatialA {
-				next[[2]int{k[0] + int(v), k[1] + int(v*v)}] += p / float64(n)
+	// rows[s][q - s*s/t] is the probability of sum s and sum of squares q after t
+	// draws; the squares of a sum s lie between s^2/t and 48 s.
+	n, top := len(spatialA), 48
+	rows := [][]float64{{1}}
+	for t := 1; t <= n; t++ {
+		next := make([][]float64, top*t+1)
+		for s := range next {
+			next[s] = make([]float64, top*s-s*s/t+1)
+		}
+		for s, row := range rows {
+			first := 0
+			if t > 1 {
+				first = s * s / (t - 1)
+			}
+			for _, value := range spatialA {
+				v := int(value)
+				to := next[s+v]
+				shift := first + v*v - (s+v)*(s+v)/t
+				for i, p := range row {
+					if p > 0 {
+						to[i+shift] += p / float64(n)
+					}
+				}
 			}
 		}
-		law = next
+		rows = next
 	}
 	var x, prob []float64
-	for k, p := range law {
-		m := float64(k[0]) / float64(n)
-		x, prob = append(x, float64(k[1])/float64(n)-m*m), append(prob, p)
+	for s, row := range rows {
+		for i, p := range row {
+			if p > 0 {
+				m := float64(s) / float64(n)
+				x, prob = append(x, float64(i+s*s/n)/float64(n)-m*m), append(prob, p)
+			}
+		}
 	}
 	l := newLaw(x, prob)
 	mean, sd := l.moments()
 	floatcmp.Check(t, "mean", mean, 164.936561220, 1e-8, 0)
 	floatcmp.Check(t, "SE", sd, 41.832816940, 1e-8, 0)
+	below := 0.0
+	for i, v := range x {
+		if v < 171.534023669-1e-6 {
+			below += prob[i]
+		}
+	}
+	floatcmp.Check(t, "P(theta* < theta)", below, 0.5706033311, 1e-9, 0)
 	for _, c := range []struct{ alpha, lo, hi, loBCa, hiBCa float64 }{
 		{.05, 97.794379, 235.616864, 115.717456, 261.350592},
 		{.025, 86.474852, 249.485207, 105.775148, 279.255917},
