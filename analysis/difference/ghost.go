@@ -16,85 +16,84 @@ import (
 // intensities (the formula of Tweedie, Robbins 1956, for variances that change
 // with intensity). It is the ghost of noise only: reproducible deviations of a
 // position draw one of their own, which this does not hold.
+//
+// In kernel form it is -sum g k'(a - x) / sum k(a - x) over the pairs, with
+// g = c1 v1 - c2 v2. Kernels at the axis values themselves would blur the
+// density, or leave it rough. Here x is (c1 + c2) times the inverse-variance
+// mean of the pair and k the normal density of standard deviation
+// |g| / sqrt(v1 + v2): without a true difference, a - x is g/(v1 + v2) times the
+// difference and independent of x, so that these kernels make the density of
+// the axis exactly and no width has to be chosen. Where g is nearly zero the
+// width is kept at a quarter of the axis' own sigma.
 type Ghost struct {
-	Axis  Axis
-	axis  []float64 // ascending
-	slope []float64 // c1 v1 - c2 v2 over the pooled mean squared
-	width []float64 // kernel width of each point
+	Axis   Axis
+	axis   []float64 // observed, ascending
+	centre []float64
+	slope  []float64 // g
+	width  []float64
 }
 
-// GhostOf makes the ghost of an axis from its values, the terms c1 v1 - c2 v2
-// and the sigma of the axis at each pair, all parallel, finite and in one
-// unit. The kernel is normal, of 0.4 the sigma at each point, narrower than the
-// half beyond which the kernel's own spread would show.
-func GhostOf(axis, slope, sigma []float64) (*Ghost, error) {
-	if len(axis) == 0 || len(slope) != len(axis) || len(sigma) != len(axis) {
-		return nil, fmt.Errorf("ghost from %d axis values, %d slopes, %d sigmas", len(axis), len(slope), len(sigma))
+// GhostOf makes the ghost of the axis c1 thin + c2 thick from pairs in eps units
+// and their variances, all parallel and finite, the variances above zero.
+func GhostOf(thin, thick, varThin, varThick []float64, c1, c2 float64) (*Ghost, error) {
+	n := len(thin)
+	if n == 0 || len(thick) != n || len(varThin) != n || len(varThick) != n {
+		return nil, fmt.Errorf("ghost from %d thin, %d thick, %d and %d variances", n, len(thick), len(varThin), len(varThick))
 	}
-	order := make([]int, len(axis))
-	for i := range order {
-		order[i] = i
-		if !(sigma[i] > 0) || math.IsNaN(axis[i]+slope[i]) || math.IsInf(axis[i]+slope[i]+sigma[i], 0) {
-			return nil, fmt.Errorf("ghost: axis %g, slope %g, sigma %g at %d cannot be used", axis[i], slope[i], sigma[i], i)
+	g := &Ghost{axis: make([]float64, n), centre: make([]float64, n), slope: make([]float64, n), width: make([]float64, n)}
+	for i := range thin {
+		v1, v2 := varThin[i], varThick[i]
+		g.axis[i] = c1*thin[i] + c2*thick[i]
+		g.centre[i] = (c1 + c2) * (v2*thin[i] + v1*thick[i]) / (v1 + v2)
+		g.slope[i] = c1*v1 - c2*v2
+		g.width[i] = math.Max(math.Abs(g.slope[i])/math.Sqrt(v1+v2), 0.25*math.Sqrt(c1*c1*v1+c2*c2*v2))
+		if !(v1 > 0 && v2 > 0) || math.IsInf(v1+v2, 0) || math.IsNaN(g.axis[i]) || math.IsInf(g.axis[i], 0) {
+			return nil, fmt.Errorf("ghost: values %g and %g with variances %g and %g at %d cannot be used", thin[i], thick[i], v1, v2, i)
 		}
 	}
-	slices.SortStableFunc(order, func(a, b int) int { return compareFloat(axis[a], axis[b]) })
-	g := &Ghost{axis: make([]float64, len(axis)), slope: make([]float64, len(axis)), width: make([]float64, len(axis))}
-	for k, i := range order {
-		g.axis[k], g.slope[k], g.width[k] = axis[i], slope[i], 0.4*sigma[i]
-	}
+	slices.Sort(g.axis)
 	return g, nil
-}
-
-func compareFloat(a, b float64) int {
-	switch {
-	case a < b:
-		return -1
-	case a > b:
-		return 1
-	}
-	return 0
 }
 
 // Ghost returns the ghost of a naive or the inverse-variance axis of the pairs;
 // that of the last is zero by construction. Other axes share no noise with the
 // difference and have none: an error.
 func (p *Pairs) Ghost(axis Axis) (*Ghost, error) {
-	if !axis.Naive() && axis != AxisInverseVariance {
+	c1, c2 := 0.5, 0.5
+	switch {
+	case axis.Naive():
+		c1, c2 = naiveCoefficients(axis)
+	case axis != AxisInverseVariance:
 		return nil, fmt.Errorf("axis %s shares no noise with the difference and has no ghost", axis)
 	}
 	n := p.Len()
-	a, slope, sigma := make([]float64, n), make([]float64, n), make([]float64, n)
-	for i := range a {
-		v1, v2 := p.VarThin[i], p.VarThick[i]
-		c1, c2 := v2/(v1+v2), v1/(v1+v2)
-		if axis.Naive() {
-			c1, c2 = naiveCoefficients(axis)
-		}
-		s := p.MeanPooled[i]
-		a[i] = (c1*p.Thin[i] + c2*p.Thick[i]) / s
-		sigma[i] = math.Sqrt(c1*c1*v1+c2*c2*v2) / s
-		if axis.Naive() {
-			slope[i] = (c1*v1 - c2*v2) / (s * s)
-		}
+	thin, thick, v1, v2 := make([]float64, n), make([]float64, n), make([]float64, n), make([]float64, n)
+	for i, s := range p.MeanPooled {
+		thin[i], thick[i] = p.Thin[i]/s, p.Thick[i]/s
+		v1[i], v2[i] = p.VarThin[i]/(s*s), p.VarThick[i]/(s*s)
 	}
-	g, err := GhostOf(a, slope, sigma)
+	g, err := GhostOf(thin, thick, v1, v2, c1, c2)
 	if err != nil {
 		return nil, err
 	}
 	g.Axis = axis
+	if axis == AxisInverseVariance {
+		copy(g.axis, g.centre)
+		slices.Sort(g.axis)
+		clear(g.slope)
+	}
 	return g, nil
 }
 
 // At returns the ghost at each point of grid (any order), NaN where the axis
-// has no point within five kernel widths.
+// has no pair within six kernel widths.
 func (g *Ghost) At(grid []float64) []float64 {
 	out := make([]float64, len(grid))
 	order, sorted := ascending(grid)
 	density, flow := make([]float64, len(grid)), make([]float64, len(grid))
-	g.spread(sorted, func(k, i int, u, kernel float64) {
-		density[k] += kernel
-		flow[k] += g.slope[i] * u / g.width[i] * kernel
+	g.spread(sorted, func(k, i int, u, normal float64) {
+		density[k] += normal
+		flow[k] += g.slope[i] * u / g.width[i] * normal
 	})
 	for k, at := range order {
 		out[at] = math.NaN()
@@ -109,10 +108,10 @@ func (g *Ghost) At(grid []float64) []float64 {
 // order of the axis, [lo, hi) in rank; it is what a moving mean over those
 // windows shows. The integral of the formula over a window is exact,
 //
-//	n mean = F(a_lo) - F(a_hi),  F(a) = sum over pairs of slope times kernel
+//	mean = (F(a_lo) - F(a_hi)) / P,  F(a) = sum over pairs of g k(a - x)
 //
-// and needs no derivative of a density. It panics on windows that are empty or
-// outside.
+// with P the number of pairs that the kernels put between a_lo and a_hi. It
+// panics on windows that are empty or outside.
 func (g *Ghost) Windows(lo, hi []int) []float64 {
 	if len(lo) != len(hi) {
 		panic("difference: Ghost.Windows: lo and hi differ in length")
@@ -126,11 +125,23 @@ func (g *Ghost) Windows(lo, hi []int) []float64 {
 		edges = append(edges, g.edge(lo[i]), g.edge(hi[i]))
 	}
 	order, sorted := ascending(edges)
-	flow := make([]float64, len(edges))
-	g.spread(sorted, func(k, i int, _, kernel float64) { flow[order[k]] += g.slope[i] * kernel })
+	flow, below := make([]float64, len(edges)), make([]float64, len(edges))
+	for i, x := range g.centre {
+		h := g.width[i]
+		from := sort.SearchFloat64s(sorted, x-reach*h)
+		for k := from; k < len(sorted); k++ {
+			u := (sorted[k] - x) / h
+			if u > reach {
+				below[order[k]]++
+				continue
+			}
+			below[order[k]] += 0.5 * math.Erfc(-u/math.Sqrt2)
+			flow[order[k]] += g.slope[i] * math.Exp(-0.5*u*u) / (h * math.Sqrt(2*math.Pi))
+		}
+	}
 	out := make([]float64, len(lo))
 	for i := range out {
-		out[i] = (flow[2*i] - flow[2*i+1]) / float64(hi[i]-lo[i])
+		out[i] = (flow[2*i] - flow[2*i+1]) / (below[2*i+1] - below[2*i])
 	}
 	return out
 }
@@ -146,11 +157,13 @@ func (g *Ghost) edge(r int) float64 {
 	return 0.5 * (g.axis[r-1] + g.axis[r])
 }
 
-// spread calls f for every point i and every place sorted[k] within five kernel
-// widths of it, with u = (place - point)/width and the kernel density there.
-func (g *Ghost) spread(sorted []float64, f func(k, i int, u, kernel float64)) {
-	const reach = 5
-	for i, x := range g.axis {
+// reach is how many widths a kernel is followed.
+const reach = 6
+
+// spread calls f for every pair i and every place sorted[k] within reach of
+// it, with u = (place - centre)/width and the normal density there.
+func (g *Ghost) spread(sorted []float64, f func(k, i int, u, normal float64)) {
+	for i, x := range g.centre {
 		h := g.width[i]
 		for k := sort.SearchFloat64s(sorted, x-reach*h); k < len(sorted) && sorted[k] <= x+reach*h; k++ {
 			u := (sorted[k] - x) / h
@@ -170,4 +183,14 @@ func ascending(x []float64) (order []int, sorted []float64) {
 		sorted[k] = x[i]
 	}
 	return order, sorted
+}
+
+func compareFloat(a, b float64) int {
+	switch {
+	case a < b:
+		return -1
+	case a > b:
+		return 1
+	}
+	return 0
 }
