@@ -225,6 +225,7 @@ func intrinsic(r matrix, n int, t [3]int) [3]int {
 func alternatives(g *Group, o Op, n int) ([][3]int, bool) {
 	r := widen(o.R)
 	var all [][3]int
+	seen := map[[3]int]bool{}
 	for _, v := range g.lattice {
 		for a := -2; a <= 2; a++ {
 			for b := -2; b <= 2; b++ {
@@ -234,7 +235,8 @@ func alternatives(g *Group, o Op, n int) ([][3]int, bool) {
 					if w == ([3]int{}) {
 						return nil, false
 					}
-					if !slices.Contains(all, w) {
+					if !seen[w] {
+						seen[w] = true
 						all = append(all, w)
 					}
 				}
