@@ -69,15 +69,23 @@ func (s *Study) intakeStep(ctx context.Context) (*Intake, error) {
 				w.Where = s.place(i, j)
 				warnings = append(warnings, w)
 			}
-			sets = append(sets, a.Observations)
 		}
 		s.progress("intake", i+1, len(s.Series.Crystals))
+	}
+	indexing, said, err := s.settle(ctx, in.Positions)
+	if err != nil {
+		return nil, err
+	}
+	warnings = append(warnings, said...)
+	for i := range in.Positions {
+		for j := range in.Positions[i] {
+			sets = append(sets, in.Positions[i][j].Observations)
+		}
 	}
 	build := intensity.NewCatalogue
 	if s.Series.FriedelApart {
 		build = intensity.NewCatalogueApart
 	}
-	var err error
 	if in.Catalogue, err = build(s.Series.Cell, s.Series.Group, sets...); err != nil {
 		return nil, err
 	}
@@ -91,6 +99,7 @@ func (s *Study) intakeStep(ctx context.Context) (*Intake, error) {
 		}
 	}
 	s.warnings = append(s.warnings, warnings...)
+	s.indexing = indexing
 	s.intake = in
 	return in, nil
 }

@@ -13,6 +13,7 @@ func (s *Study) ledger() []LedgerEntry {
 		out = append(out, LedgerEntry{Check: check, Where: where, Value: value, Unit: unit, Verdict: verdict, Why: why})
 	}
 	s.ledgerIntake(add)
+	s.ledgerIndexing(add)
 	s.ledgerScale(add)
 	for _, c := range s.list {
 		if x := s.compared[c]; x != nil && c.Primary {
@@ -55,6 +56,18 @@ func (s *Study) ledgerIntake(add addEntry) {
 		if r.Overlap < 0.5 {
 			add("common reflections", where, r.Overlap, "of its reflections are in the thinnest position", VerdictCaution, "fewer than half are common: they may not represent the rest")
 		}
+	}
+}
+
+func (s *Study) ledgerIndexing(add addEntry) {
+	for _, x := range s.indexing {
+		verdict := VerdictFine
+		if x.Ambiguous {
+			verdict = VerdictFails
+		} else if x.Proposal != "" {
+			verdict = VerdictCaution
+		}
+		add("indexing margin", x.Where, x.Z, "z of the best way over the second", verdict, x.Text)
 	}
 }
 

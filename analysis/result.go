@@ -1,5 +1,7 @@
 package analysis
 
+import "fmt"
+
 // Schema names the layout of a Result; within one major number fields are only
 // added.
 const Schema = "thinward.result/1"
@@ -13,6 +15,7 @@ type Result struct {
 	Seed          uint64           `json:"seed"`
 	Inputs        []InputResult    `json:"inputs"`
 	Intake        []IntakeResult   `json:"intake"`
+	Indexing      []IndexingResult `json:"indexing,omitempty"`
 	Scaling       []ScalingResult  `json:"scaling"`
 	Contrasts     []ContrastResult `json:"contrasts"`
 	Forbidden     []Forbidden      `json:"forbidden"`
@@ -443,4 +446,12 @@ type Environment struct {
 type StepTime struct {
 	Step    string  `json:"step"`
 	Seconds float64 `json:"seconds"`
+}
+
+// String says what the result is of; the numbers are in its fields.
+func (r *Result) String() string {
+	if r == nil {
+		return "no result"
+	}
+	return fmt.Sprintf("%s: %d positions, %d contrasts, %d ledger entries", r.Series, len(r.Intake), len(r.Contrasts), len(r.Ledger))
 }

@@ -68,6 +68,7 @@ type Study struct {
 	list      []Contrast
 	intake    *Intake
 	table     []IntakeResult
+	indexing  []IndexingResult
 	scaled    []*ScaledCrystal
 	compared  map[Contrast]*Compared
 	forbidden []Forbidden

@@ -28,7 +28,7 @@ type reflections struct {
 }
 
 func (l *loader) read(path, pick string) (*reflections, error) {
-	kind, err := looksLikeCIF(path)
+	kind, err := LooksLikeCIF(path)
 	if err != nil {
 		return nil, &Error{File: l.path, Key: "files", Problem: fmt.Sprintf("%s cannot be read: %s", path, cause(err)), Remedy: "check the path; it is relative to the manifest", Err: err}
 	}
@@ -38,9 +38,9 @@ func (l *loader) read(path, pick string) (*reflections, error) {
 	return l.readColumns(path)
 }
 
-// looksLikeCIF reports whether the first word that is no comment begins a data
+// LooksLikeCIF reports whether the first word that is no comment begins a data
 // block.
-func looksLikeCIF(path string) (bool, error) {
+func LooksLikeCIF(path string) (bool, error) {
 	f, err := os.Open(path)
 	if err != nil {
 		return false, err

@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"encoding/json"
 	"fmt"
+	"io"
 	"math"
 	"reflect"
 	"sort"
@@ -180,4 +181,15 @@ func newline(b *bytes.Buffer, depth int) {
 	for range depth {
 		b.WriteString("  ")
 	}
+}
+
+// EncodeAny writes any plain data under the rules of Encode.
+func EncodeAny(w io.Writer, v any) error {
+	var b bytes.Buffer
+	if err := encode(&b, reflect.ValueOf(v), 0); err != nil {
+		return err
+	}
+	b.WriteByte('\n')
+	_, err := w.Write(b.Bytes())
+	return err
 }

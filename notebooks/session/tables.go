@@ -1,0 +1,294 @@
+package session
+
+import (
+	"fmt"
+	"math"
+	"sort"
+	"strings"
+
+	"thinward/analysis"
+)
+
+// Series shows what the manifest describes. It needs no step.
+func (s *Session) Series() *View {
+	g := newGrid("Crystals and positions of "+s.Title, "crystal", "position", "thickness (nm)", "s.u. (nm)", "order", "dose (e/\u00c5\u00b2)", "rows", "files").words(1, 7)
+	for i := range s.study.Series.Crystals {
+		c := &s.study.Series.Crystals[i]
+		for j := range c.Positions {
+			p := &c.Positions[j]
+			var files []string
+			for _, f := range p.Sources {
+				files = append(files, f.Path)
+			}
+			g.add(c.Name, p.Name, number(p.ThicknessNM, 0), given(p.ThicknessSU, 0), given(float64(p.Order), 0), given(p.DosePerA2, 1), count(p.Rows.Len()), strings.Join(files, ", "))
+		}
+	}
+	v := g.view("Series")
+	cell, group := s.study.Series.Cell, s.study.Series.Group
+	name := group.HM()
+	if name == "" {
+		name = fmt.Sprintf("%d operators", len(group.Operators()))
+	}
+	line := fmt.Sprintf("Space group %s, Laue class %s; cell %g %g %g \u00c5, %g %g %g\u00b0.", name, group.LaueClass(), cell.A, cell.B, cell.C, cell.Alpha, cell.Beta, cell.Gamma)
+	v.HTML += "<p>" + line + "</p>"
+	v.Plain += line + "\n"
+	return v
+}
+
+// given writes a number that the manifest may leave out, 0 being "not given".
+func given(v float64, decimals int) string {
+	if v == 0 {
+		return "\u2013"
+	}
+	return number(v, decimals)
+}
+
+// Intake shows every position before scaling.
+func (s *Session) Intake() *View {
+	table, err := s.study.IntakeTable(Context())
+	if err != nil {
+		panic(&Error{Step: "intake", Err: err, Inside: FaultOf(err) == FaultInside})
+	}
+	g := newGrid("Intake", "position", "rows", "observations", "taken as", "unique", "multiplicity", "complete", "d (\u00c5)", "angles (\u00b0)", "widest gap", "I/\u03c3",
+		"below 0: seen, expected", "R_meas", "CC1/2", "common with thinnest", "excluded").words(3)
+	for _, r := range table {
+		g.add(r.Crystal+"/"+r.Position, count(r.Rows), count(r.Observations), r.RowsAs, count(r.Unique), number(r.Multiplicity, 1), percent(r.Completeness, 0),
+			number(r.DMax, 1)+"\u2013"+number(r.DMin, 2), angles(r.AngleLo, r.AngleHi), number(r.AngleGap, 1), number(r.MeanISigma, 1),
+			fmt.Sprintf("%d, %s", r.Negative[0], number(r.NegativeExp[0], 0)), number(r.RMeas, 3), number(r.CCHalf, 3), percent(r.Overlap, 0), count(r.Excluded))
+	}
+	return g.view("Intake")
+}
+
+func angles(lo, hi float64) string {
+	if math.IsNaN(lo) {
+		return "none"
+	}
+	return number(lo, 0) + " to " + number(hi, 0)
+}
+
+// Correlations shows whether positions differ at all.
+func (s *Session) Correlations() *View {
+	r := s.Result()
+	g := newGrid("Do positions differ at all: true correlation and moment ratio", "contrast", "thickness (nm)", "pairs", "paired", "r", "interval", "moment ratio m", "interval", "remark").words(3, 8)
+	for i := range r.Contrasts {
+		c := &r.Contrasts[i]
+		paired := "merged"
+		if c.Matched {
+			paired = "matched"
+		}
+		g.add(contrastName(c), number(c.ThicknessNM[0], 0)+", "+number(c.ThicknessNM[1], 0), count(c.Pairs), paired,
+			number(c.Correlation.R, 3), between(c.Correlation.Lo, c.Correlation.Hi, 3), number(c.MomentRatio.M, 3), between(c.MomentRatio.Lo, c.MomentRatio.Hi, 3), c.Correlation.Why)
+	}
+	return g.view("Correlation")
+}
+
+// Sizes shows exchange, curb and offset of every contrast.
+func (s *Session) Sizes() *View {
+	r := s.Result()
+	g := newGrid("Exchange m, curb q and offset o", "contrast", "axis", "model", "m", "interval", "q", "interval", "o", "interval", "F", "p of the fit", "smallest m seen").words(1, 2)
+	for i := range r.Contrasts {
+		c := &r.Contrasts[i]
+		g.add(contrastName(c), c.StrengthAxis, c.Exchange.Model, number(c.Exchange.M, 3), between(c.Exchange.Lo, c.Exchange.Hi, 3), number(c.Curb.Q, 3), between(c.Curb.Lo, c.Curb.Hi, 3),
+			number(c.Offset.O, 4), between(c.Offset.Lo, c.Offset.Hi, 4), number(c.Exchange.F, 0), pvalue(c.OverIdent.P), number(c.MinimumM, 3))
+	}
+	return g.view("Sizes")
+}
+
+// Models shows the same contrasts under each model, and with the strongest
+// reflections left out.
+func (s *Session) Models() *View {
+	r := s.Result()
+	g := newGrid("The primary contrasts under each model", "contrast", "model", "m", "q", "o", "p of the fit").words(1)
+	for i := range r.Contrasts {
+		c := &r.Contrasts[i]
+		if !c.Primary {
+			continue
+		}
+		for _, m := range c.Models {
+			g.add(contrastName(c), m.Model, withInterval(m.M, 3), withInterval(m.Q, 3), withInterval(m.O, 4), pvalue(m.JP))
+		}
+		for _, v := range c.Giants {
+			if !math.IsInf(v.Above, 1) {
+				g.add(contrastName(c), fmt.Sprintf("instrument, without %d above %g", v.N, v.Above), withInterval(v.M, 3), "\u2013", "\u2013", "\u2013")
+			}
+		}
+	}
+	return g.view("Models")
+}
+
+// Axes shows m on every axis that can be built.
+func (s *Session) Axes() *View {
+	r := s.Result()
+	g := newGrid("Exchange on every strength axis (instrument, one number)", "contrast", "axis", "pairs", "m", "difference from the leading axis", "remark").words(1, 5)
+	for i := range r.Contrasts {
+		c := &r.Contrasts[i]
+		if !c.Primary {
+			continue
+		}
+		for _, a := range c.Axes {
+			g.add(contrastName(c), a.Axis, count(a.N), withInterval(a.M, 3), withInterval(a.Delta, 3), a.Remark)
+		}
+	}
+	return g.view("Axes")
+}
+
+// Classes shows the three classes of strength.
+func (s *Session) Classes() *View {
+	r := s.Result()
+	g := newGrid("Classes of strength: contrast in local means, thin minus thick", "contrast", "class", "pairs", "mean strength", "contrast", "interval", "m of the class", "interval").words(1)
+	for i := range r.Contrasts {
+		c := &r.Contrasts[i]
+		for _, k := range []struct {
+			name  string
+			class analysis.Class
+		}{{"floor (below 0.2)", c.Classes.Floor}, {"middle (0.5 to 1.5)", c.Classes.Middle}, {"top (above 3)", c.Classes.Top}} {
+			g.add(contrastName(c), k.name, count(k.class.N), number(k.class.Strength, 2), number(k.class.Eps, 3), between(k.class.Lo, k.class.Hi, 3), number(k.class.M, 3), between(k.class.MLo, k.class.MHi, 3))
+		}
+	}
+	return g.view("Classes")
+}
+
+// Brackets shows m from halves of either position.
+func (s *Session) Brackets() *View {
+	r := s.Result()
+	g := newGrid("Bracket of m from halves of the same positions", "contrast", "half of the thick position (errs downward)", "half of the thin position (errs upward)", "whole bracket", "moment ratio", "remark").words(5)
+	for i := range r.Contrasts {
+		c := &r.Contrasts[i]
+		g.add(contrastName(c), withInterval(c.Bracket.Thick, 3), withInterval(c.Bracket.Thin, 3), between(c.Bracket.Lo, c.Bracket.Hi, 3), number(c.MomentRatio.M, 3), c.Bracket.Why)
+	}
+	return g.view("Bracket")
+}
+
+// Forbidden shows the forbidden reflections by position and symmetry element.
+func (s *Session) Forbidden() *View {
+	r := s.Result()
+	g := newGrid("Forbidden reflections over the local mean of the allowed ones", "position", "element", "reflections", "ratio", "s.u.", "z", "mean J/\u03c3", "remark").words(1, 7)
+	for _, f := range r.Forbidden {
+		g.add(f.Crystal+"/"+f.Position, f.Element, count(f.N), number(f.Ratio, 4), number(f.SU, 4), number(f.Z, 1), number(f.MeanIS, 1), f.Why)
+	}
+	return g.view("Forbidden reflections")
+}
+
+// Scaling shows scale and noise model by position.
+func (s *Session) Scaling() *View {
+	r := s.Result()
+	g := newGrid("Scale and noise by position, against the thinnest", "position", "mean ln K", "B (\u00c5\u00b2)", "s.u.", "a", "interval", "b", "interval", "\u03c7\u00b2 before", "after", "down-weighted", "curve").words(11)
+	for _, x := range r.Scaling {
+		shape := "in angle"
+		if x.Constant {
+			shape = "constant"
+		}
+		g.add(x.Crystal+"/"+x.Position, number(x.LnK, 3), number(x.B, 3), number(x.BSE, 3), number(x.A, 2), between(x.ALo, x.AHi, 2), number(x.BNoise, 3), between(x.BNoiseLo, x.BNoiseHi, 3),
+			number(x.ChiBefore, 2), number(x.ChiAfter, 2), count(x.Rejected), shape)
+	}
+	return g.view("Scaling")
+}
+
+// Matters shows what the fitted exchange would do to amplitudes.
+func (s *Session) Matters() *View {
+	r := s.Result()
+	g := newGrid("Does it matter: what the fitted m does to amplitudes under Wilson's law", "crystal", "m", "agreement factor on |F| from the exchange alone", "mean |F| of weak reflections")
+	for _, m := range r.Matters {
+		g.add(m.Crystal, number(m.M, 3), percent(m.AgreementShift, 1), signed(m.WeakShift))
+	}
+	return g.view("Does it matter")
+}
+
+func signed(share float64) string {
+	if share > 0 {
+		return "+" + percent(share, 0)
+	}
+	return percent(share, 0)
+}
+
+// Specification shows m under other choices.
+func (s *Session) Specification() *View {
+	r := s.Result()
+	g := newGrid("m under other choices; everything but the leading row is secondary", "crystal", "choice", "level", "m", "q").words(1, 2)
+	for _, x := range r.Specification {
+		level := x.Level
+		if x.Leading {
+			level += " (leading)"
+		}
+		g.add(x.Crystal, x.Choice, level, withInterval(x.M, 3), withInterval(x.Q, 3))
+	}
+	return g.view("Specification")
+}
+
+// Controls shows each control with what it can and cannot see.
+func (s *Session) Controls() *View {
+	r := s.Result()
+	g := newGrid("Controls: the same pipeline on data where the answer is known", "control", "crystal", "expected m", "found m", "p", "passed", "can see", "cannot see").words(1, 5, 6, 7)
+	for _, c := range r.Controls {
+		passed := "yes"
+		if !c.Passed {
+			passed = "no"
+		}
+		if c.Why != "" {
+			passed = c.Why
+		}
+		g.add(c.Control, c.Crystal, number(c.Expected, 3), withInterval(c.M, 3), pvalue(c.P), passed, c.Can, c.Cannot)
+	}
+	return g.view("Controls")
+}
+
+// Crystals shows what the crystals say together.
+func (s *Session) Crystals() *View {
+	r := s.Result()
+	g := newGrid("The crystals together", "what", "value", "remark").words(2)
+	if c := r.Crystals; c != nil {
+		g.add("m in these crystals (fixed effect)", withInterval(c.InThese, 3), fmt.Sprintf("%d crystals", c.N))
+		g.add("m in crystals like these (Hartung and Knapp)", withInterval(c.LikeThese, 3), c.LikeThese.Why)
+		g.add("heterogeneity Q", number(c.Q, 2), "p = "+pvalue(c.QP))
+		g.add("tau\u00b2, I\u00b2", auto(c.Tau2)+", "+percent(c.I2, 0), c.Why)
+		g.add("crystals of one sign", fmt.Sprintf("%d of %d", c.SameSign, c.N), fmt.Sprintf("p = %s, at the smallest %s", pvalue(c.SignP), pvalue(c.SmallestP)))
+		if !math.IsNaN(c.PageL) {
+			g.add("Page's trend over positions", number(c.PageL, 1), fmt.Sprintf("p = %s, at the smallest %s", pvalue(c.PageP), pvalue(c.PageBest)))
+		}
+		g.add("mean correlation with the other crystals", number(c.MeanAgree, 3), "")
+		for _, l := range c.LeaveOut {
+			g.add("m without "+l.Without, withInterval(l.M, 3), "")
+		}
+	}
+	return g.view("Crystals")
+}
+
+// Thickness shows the growth of mu = -ln(1-m) with thickness.
+func (s *Session) Thickness() *View {
+	r := s.Result()
+	g := newGrid("Growth of \u03bc = \u2212ln(1\u2212m) with thickness", "crystal", "thickness (nm)", "\u03bc", "slope per 100 nm", "\u03c7\u00b2 (degrees of freedom)", "remark").words(5)
+	if t := r.Thickness; t != nil {
+		for _, l := range t.Lines {
+			var mu, nm []string
+			for i := range l.T {
+				nm = append(nm, number(l.T[i], 0))
+				if i < len(l.Mu) {
+					mu = append(mu, number(l.Mu[i], 3)+" \u00b1 "+number(l.MuSE[i], 3))
+				}
+			}
+			g.add(l.Crystal, strings.Join(nm, ", "), strings.Join(mu, ", "), withInterval(l.Slope, 3), fmt.Sprintf("%s (%d)", number(l.Chi2, 2), l.DF), l.Why)
+		}
+		g.add("together", "", "", withInterval(t.Slope, 3), "", t.Why)
+	}
+	return g.view("Thickness")
+}
+
+// Provenance shows inputs, seed, versions and times.
+func (s *Session) Provenance() *View {
+	r := s.Result()
+	g := newGrid("Inputs", "file", "position", "rows", "observations", "set aside", "SHA-256").words(1, 4, 5)
+	for _, in := range r.Inputs {
+		var aside []string
+		for reason, n := range in.SetAside {
+			aside = append(aside, fmt.Sprintf("%d %s", n, reason))
+		}
+		sort.Strings(aside)
+		g.add(in.Path, in.Crystal+"/"+in.Position, count(in.Rows), count(in.Observations), strings.Join(aside, "; "), in.SHA256)
+	}
+	v := g.view("Provenance")
+	e := r.Environment
+	line := fmt.Sprintf("Seed %d; Thinward %s; %s.", r.Seed, e.Thinward, e.Go)
+	v.HTML += "<p>" + line + "</p>"
+	v.Plain += line + "\n"
+	return v
+}
