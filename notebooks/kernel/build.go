@@ -78,8 +78,7 @@ func Ensure(ctx context.Context, s *Settings) (path string, err error) {
 	if err != nil {
 		return "", err
 	}
-	path = b.binary(in.key)
-	if isFresh(path) {
+	if path := b.binary(in.key); isFresh(path) {
 		return path, nil
 	}
 	unlock, err := b.lock(ctx)
@@ -87,15 +86,42 @@ func Ensure(ctx context.Context, s *Settings) (path string, err error) {
 		return "", err
 	}
 	defer unlock()
-	if isFresh(path) {
-		return path, nil
-	}
-	if err := b.compile(ctx, in, path); err != nil {
-		return "", err
-	}
-	b.prune(path)
-	return path, nil
+	return b.ensureLocked(ctx, in)
 }
+
+// ensureLocked builds until the sources are the same before and after: somebody
+// may be editing them, and a binary must not lie under another's key.
+func (b *builder) ensureLocked(ctx context.Context, in *inputs) (string, error) {
+	for range buildTries {
+		path := b.binary(in.key)
+		if isFresh(path) {
+			return path, nil
+		}
+		fresh, remove, err := b.compile(ctx, in, path)
+		if err != nil {
+			return "", err
+		}
+		after, err := b.inputs(ctx)
+		if err == nil && after.key == in.key {
+			err = os.Rename(fresh, path)
+			remove()
+			if err != nil {
+				return "", cacheError(err)
+			}
+			b.prune(path)
+			return path, nil
+		}
+		remove()
+		if err != nil {
+			return "", err
+		}
+		in = after
+	}
+	return "", &BuildError{Step: "build", Err: errors.New("the sources changed during every build"), Remedy: "Try again when they are at rest."}
+}
+
+// buildTries is the number of builds that a change of the sources may spoil.
+const buildTries = 3
 
 func prebuilt(path string) (string, error) {
 	path, err := filepath.Abs(path)

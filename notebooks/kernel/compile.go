@@ -12,33 +12,33 @@ import (
 	"strings"
 )
 
-// compile builds the kernel beside its place and then moves it there.
-func (b *builder) compile(ctx context.Context, in *inputs, path string) error {
+// compile builds the kernel in a folder of its own beside its place, and gives
+// the binary and what removes the folder.
+func (b *builder) compile(ctx context.Context, in *inputs, path string) (fresh string, remove func(), err error) {
 	b.progress(Progress{})
 	dir, err := os.MkdirTemp(b.cache, "build-")
 	if err != nil {
-		return cacheError(err)
+		return "", nil, cacheError(err)
 	}
-	defer os.RemoveAll(dir)
+	remove = func() { _ = os.RemoveAll(dir) }
+	defer func() {
+		if err != nil {
+			remove()
+		}
+	}()
 	overlay, err := b.writeOverlay(in)
 	if err != nil {
-		return cacheError(err)
+		return "", nil, cacheError(err)
 	}
 	stale, err := b.run(ctx, "build", "list", "-tags", "kernel", "-overlay", overlay, "-deps",
 		"-f", "{{if .Stale}}{{.ImportPath}}{{end}}", mainPackage)
 	if err != nil {
-		return err
+		return "", nil, err
 	}
 	total := len(strings.Fields(string(stale)))
 	b.progress(Progress{Total: total})
-	fresh := filepath.Join(dir, filepath.Base(path))
-	if err := b.build(ctx, overlay, fresh, total); err != nil {
-		return err
-	}
-	if err := os.Rename(fresh, path); err != nil {
-		return cacheError(err)
-	}
-	return nil
+	fresh = filepath.Join(dir, filepath.Base(path))
+	return fresh, remove, b.build(ctx, overlay, fresh, total)
 }
 
 // writeOverlay writes the edited copies and the overlay that lays them and the
@@ -108,6 +108,7 @@ func (b *builder) build(ctx context.Context, overlay, to string, total int) erro
 	if err := cmd.Wait(); err != nil {
 		return toolError(ctx, "build", err, said.String())
 	}
-	b.progress(Progress{Done: done, Total: max(total, done)})
+	// The main package counts as stale when it only has to be linked.
+	b.progress(Progress{Done: max(total, done), Total: max(total, done)})
 	return nil
 }

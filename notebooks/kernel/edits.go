@@ -17,7 +17,8 @@ type edit struct {
 var leftOut = map[string]bool{"main.go": true, "complete.go": true}
 
 // edits hook our main package into the copies. Each name on the right is defined
-// in notebooks/kernel/main.
+// in notebooks/kernel/main, but for "shell output", which has the pipes
+// read to their end before Wait closes them.
 var edits = []edit{
 	{"interpreter", "kernel.go", `ir := interp.New()`, `ir := newInterp()`},
 	{"rendering", "kernel.go", `data := kernel.autoRenderResults(vals, types)`, `data := kernel.safeRender(vals, types)`},
@@ -28,6 +29,7 @@ var edits = []edit{
 	{"imports", "kernel.go", `srcAst := ast2.AnyToAst(nodes, "doEval")`, `refuseUnknownImports(nodes); srcAst := ast2.AnyToAst(nodes, "doEval")`},
 	{"printed text", "kernel.go", `io.Copy(&jupyterStdOut, rOut)`, `copyText(&jupyterStdOut, rOut)`},
 	{"printed errors", "kernel.go", `io.Copy(&jupyterStdErr, rErr)`, `copyText(&jupyterStdErr, rErr)`},
+	{"shell output", "kernel.go", `err = cmd.Wait()`, `writersWG.Wait(); err = cmd.Wait()`},
 	{"control channel", "kernel.go", `go poll(ctl, sockets.ControlSocket.Socket)`, `go serveControl(sockets)`},
 	{"kernel info", "kernel.go", `if err := sendKernelInfo(receipt); err != nil {`, `if err := replyKernelInfo(receipt); err != nil {`},
 	{"other requests", "kernel.go", `log.Println("Unhandled shell message: ", receipt.Msg.Header.MsgType)`,

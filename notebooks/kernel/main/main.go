@@ -12,6 +12,7 @@ import (
 	"io"
 	"log"
 	"os"
+	"runtime/debug"
 	"sort"
 
 	"github.com/cosmos72/gomacro/imports"
@@ -30,6 +31,10 @@ const (
 // ask. This must happen before interp.New, whatever the environment says.
 func init() { build.Default.GOROOT = "/nonexistent-thinward" }
 
+// maxStack ends a cell that calls itself without end after a second; the default
+// of 1 GB takes ten, and the memory.
+const maxStack = 128 << 20
+
 func main() {
 	packages := flag.Bool("packages", false, "print the import paths that cells can use, and end")
 	child := flag.Bool("child", false, "end when standard input ends: the starter is gone")
@@ -44,6 +49,7 @@ func main() {
 	if *child {
 		go endWithStarter(os.Stdin)
 	}
+	debug.SetMaxStack(maxStack)
 	runKernel(flag.Arg(0))
 }
 
