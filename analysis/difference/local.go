@@ -89,7 +89,7 @@ func (p *Pairs) filter(keep []bool) {
 		if !k {
 			continue
 		}
-		for _, col := range []*[]float64{&p.S2, &p.Epsilon, &p.Thin, &p.Thick, &p.VarThin, &p.VarThick, &p.MeanThin, &p.MeanThick, &p.MeanPooled} {
+		for _, col := range []*[]float64{&p.S2, &p.Epsilon, &p.Thin, &p.Thick, &p.VarThin, &p.VarThick, &p.MeanThin, &p.MeanThick, &p.MeanPooled, &p.Phi} {
 			(*col)[n] = (*col)[i]
 		}
 		for _, col := range []*[]int32{&p.Unique, &p.NThin, &p.NThick, &p.Shell} {
@@ -98,7 +98,7 @@ func (p *Pairs) filter(keep []bool) {
 		p.Centric[n] = p.Centric[i]
 		n++
 	}
-	for _, col := range []*[]float64{&p.S2, &p.Epsilon, &p.Thin, &p.Thick, &p.VarThin, &p.VarThick, &p.MeanThin, &p.MeanThick, &p.MeanPooled} {
+	for _, col := range []*[]float64{&p.S2, &p.Epsilon, &p.Thin, &p.Thick, &p.VarThin, &p.VarThick, &p.MeanThin, &p.MeanThick, &p.MeanPooled, &p.Phi} {
 		*col = (*col)[:n]
 	}
 	for _, col := range []*[]int32{&p.Unique, &p.NThin, &p.NThick, &p.Shell} {

@@ -78,6 +78,7 @@ func Pair(ctx context.Context, thin, thick *intensity.Scaled, cat *intensity.Cat
 	} else {
 		p.join(mt, mk)
 	}
+	p.angles()
 	if err := p.localMeans(); err != nil {
 		return nil, err
 	}
@@ -249,4 +250,37 @@ func (p *Pairs) add(u int32, thin, thick, vt, vk float64, nt, nk int32) {
 	p.Thin, p.Thick = append(p.Thin, thin), append(p.Thick, thick)
 	p.VarThin, p.VarThick = append(p.VarThin, vt), append(p.VarThick, vk)
 	p.NThin, p.NThick = append(p.NThin, nt), append(p.NThick, nk)
+}
+
+// angles fills Phi from the observations that the pairs are made of.
+func (p *Pairs) angles() {
+	s := &p.source
+	p.Phi = make([]float64, p.Len())
+	place := make([]int32, s.catalogue.Len())
+	for i, u := range p.Unique {
+		place[u] = int32(i) + 1
+		p.Phi[i] = math.NaN()
+	}
+	if s.thin.Phi == nil {
+		return
+	}
+	sum, count := make([]float64, p.Len()), make([]float64, p.Len())
+	put := func(o int32) {
+		if i := place[s.thin.Unique[o]] - 1; i >= 0 && !math.IsInf(s.thin.Var[o], 1) {
+			sum[i] += s.thin.Phi[o]
+			count[i]++
+		}
+	}
+	if p.Matched {
+		for _, x := range s.single {
+			put(x.thin)
+		}
+	} else {
+		for o := range s.thin.I {
+			put(int32(o))
+		}
+	}
+	for i := range sum {
+		p.Phi[i] = sum[i] / count[i]
+	}
 }

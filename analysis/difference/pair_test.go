@@ -70,6 +70,7 @@ func TestPairMatched(t *testing.T) {
 	floatcmp.Check(t, "thin", p.Thin[i], 102.5, 0, 1e-13)
 	floatcmp.Check(t, "thick", p.Thick[i], 93.5, 0, 1e-13)
 	floatcmp.Check(t, "variance", p.VarThin[i], 0.75, 0, 1e-13)
+	floatcmp.Check(t, "angle", p.Phi[i], 15, 0, 1e-13)
 	// 2 2 3: only the pair at 25 degrees lies within half a degree.
 	i = at[c]
 	floatcmp.Check(t, "thin 2 2 3", p.Thin[i], 52, 0, 0)
@@ -80,6 +81,8 @@ func TestPairMatched(t *testing.T) {
 	// Epsilon of 4 0 0 is 2: mean of thin (102.5 + 52 + 30/2)/3.
 	floatcmp.Check(t, "local mean", p.MeanThin[at[a]], (102.5+52+15)/3, 0, 1e-13)
 	floatcmp.Check(t, "local mean of 4 0 0", p.MeanThin[at[d]], 2*(102.5+52+15)/3, 0, 1e-13)
+	thinOnly, thickOnly, v1, v2 := p.OverEpsilon()
+	floatcmp.CheckSlice(t, "4 0 0 over epsilon", []float64{thinOnly[at[d]], thickOnly[at[d]], v1[at[d]], v2[at[d]]}, []float64{15, 15.5, 0.25, 0.25}, 0, 1e-13)
 	floatcmp.Check(t, "eps", p.Eps()[i], 4/p.MeanPooled[i], 0, 1e-13)
 	if fmt.Sprint(*thin, *thick) != before {
 		t.Error("the observations were changed")
@@ -195,6 +198,20 @@ func TestPairErrors(t *testing.T) {
 	if _, err := Pair(ctx, s, s, w.cat, &Settings{SameCrystal: true}); err == nil {
 		t.Error("a cancelled context is ignored")
 	}
+}
+
+func BenchmarkPair(b *testing.B) {
+	w := newTruth(b, 0.3)
+	thin := w.position(invention{seed: 1, crystal: 1, gain: 100, background: 0.2})
+	thick := w.position(invention{seed: 2, crystal: 1, gain: 100, background: 0.2})
+	b.Run(fmt.Sprintf("observations=%d", len(thin.I)), func(b *testing.B) {
+		b.ReportAllocs()
+		for b.Loop() {
+			if _, err := Pair(context.Background(), thin, thick, w.cat, &Settings{SameCrystal: true}); err != nil {
+				b.Fatal(err)
+			}
+		}
+	})
 }
 
 // Deviations of relative scatter 0.25 in each of two merged positions, unrelated

@@ -57,14 +57,17 @@ type Counts struct {
 // pair's shell, times its own epsilon, so that Thin/MeanThin is a strength with
 // epsilon divided out. All slices are parallel, in catalogue order.
 type Pairs struct {
-	Unique              []int32
-	S2                  []float64
-	Epsilon             []float64
-	Centric             []bool
-	Thin, Thick         []float64
-	VarThin, VarThick   []float64
-	VarD                []float64
-	NThin, NThick       []int32
+	Unique            []int32
+	S2                []float64
+	Epsilon           []float64
+	Centric           []bool
+	Thin, Thick       []float64
+	VarThin, VarThick []float64
+	VarD              []float64
+	NThin, NThick     []int32
+	// Phi is the mean angle of the thin observations behind the pair, in
+	// degrees, NaN without angles. Equivalents may lie far apart.
+	Phi                 []float64
 	Shell               []int32
 	Shells              int
 	MeanThin, MeanThick []float64
@@ -100,6 +103,19 @@ func (p *Pairs) Eps() []float64 {
 		d[i] /= p.MeanPooled[i]
 	}
 	return d
+}
+
+// OverEpsilon returns the intensities with epsilon divided out, and their
+// variances by its square: what estimators take that know shells but no
+// symmetry.
+func (p *Pairs) OverEpsilon() (thin, thick, varThin, varThick []float64) {
+	n := p.Len()
+	thin, thick, varThin, varThick = make([]float64, n), make([]float64, n), make([]float64, n), make([]float64, n)
+	for i, e := range p.Epsilon {
+		thin[i], thick[i] = p.Thin[i]/e, p.Thick[i]/e
+		varThin[i], varThick[i] = p.VarThin[i]/(e*e), p.VarThick[i]/(e*e)
+	}
+	return thin, thick, varThin, varThick
 }
 
 // EpsVar returns the variance of Eps, VarD / MeanPooled^2.

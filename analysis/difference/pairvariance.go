@@ -103,7 +103,7 @@ func (f *spread) cost(beta float64) float64 {
 // best returns the signed root of beta of least cost: a grid over -1.5 to 1.5,
 // then golden section about its best point.
 func (f *spread) best(ctx context.Context) (float64, error) {
-	const step, half = 0.05, 30
+	const step, half = 0.1, 15
 	at, least := 0, math.Inf(1)
 	for k := -half; k <= half; k++ {
 		if err := ctx.Err(); err != nil {
@@ -118,7 +118,7 @@ func (f *spread) best(ctx context.Context) (float64, error) {
 	golden := (math.Sqrt(5) - 1) / 2
 	x1, x2 := hi-golden*(hi-lo), lo+golden*(hi-lo)
 	c1, c2 := f.cost(x1*math.Abs(x1)), f.cost(x2*math.Abs(x2))
-	for hi-lo > 1e-6 {
+	for hi-lo > 1e-4 {
 		if err := ctx.Err(); err != nil {
 			return 0, err
 		}

@@ -114,6 +114,28 @@ func (c *Columns) checkRow(r int) error {
 	return nil
 }
 
+// Select returns a copy of the rows for which keep, parallel to the rows, is
+// true. It panics when keep has another length.
+func (c *Columns) Select(keep []bool) *Columns {
+	if len(keep) != c.Len() {
+		panic("intensity: Columns.Select: keep is not parallel to the rows")
+	}
+	var rows []int32
+	for r, k := range keep {
+		if k {
+			rows = append(rows, int32(r))
+		}
+	}
+	spans := make([]span, len(rows))
+	for i := range spans {
+		spans[i] = span{int32(i), int32(i) + 1}
+	}
+	return build(c, rows, spans, func(out *Columns, o int, rows []int32) {
+		out.I[o], out.Sigma[o] = c.I[rows[0]], c.Sigma[rows[0]]
+		out.placeMiddle(c, o, rows)
+	})
+}
+
 // FrameWidth estimates the rotation per frame in degrees: the median of
 // |d phi / d frame| over neighbouring rows, in the order of frames, that lie
 // one to three frames apart. It is 0 when angles or frames are missing or

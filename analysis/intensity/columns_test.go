@@ -2,6 +2,7 @@ package intensity
 
 import (
 	"errors"
+	"fmt"
 	"math"
 	"strings"
 	"testing"
@@ -103,4 +104,24 @@ func TestFrameWidth(t *testing.T) {
 	floatcmp.Check(t, "frame width", c.FrameWidth(), 0.5, 1e-9, 0)
 	c.Phi = nil
 	floatcmp.Check(t, "without angles", c.FrameWidth(), 0, 0, 0)
+}
+
+func TestSelect(t *testing.T) {
+	c := list([7]float64{1, 1, 0, 30, 3, 10.1, 10}, [7]float64{1, 2, 0, 60, 4, 11.2, 11}, [7]float64{3, 0, 2, 7, 1, 20.3, 20})
+	c.Partiality = []float64{0.1, 0.2, 0.3}
+	got := c.Select([]bool{true, false, true})
+	want := list([7]float64{1, 1, 0, 30, 3, 10.1, 10}, [7]float64{3, 0, 2, 7, 1, 20.3, 20})
+	want.Partiality = []float64{0.1, 0.3}
+	if fmt.Sprint(*got) != fmt.Sprint(*want) || c.Len() != 3 {
+		t.Errorf("got %v", *got)
+	}
+	if none := c.Select(make([]bool, 3)); none.Len() != 0 || none.Check() != nil {
+		t.Errorf("nothing kept: %v", *none)
+	}
+	defer func() {
+		if got := recover(); got != "intensity: Columns.Select: keep is not parallel to the rows" {
+			t.Errorf("panic %v", got)
+		}
+	}()
+	c.Select(nil)
 }

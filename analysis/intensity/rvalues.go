@@ -1,9 +1,8 @@
 package intensity
 
 import (
-	"cmp"
+	"fmt"
 	"math"
-	"slices"
 )
 
 // RValues are agreement factors of the observations of a list, n_h of
@@ -74,11 +73,7 @@ func eachReflection(unique []int32, i []float64, f func(u int32, values []float6
 	if len(unique) != len(i) {
 		panic("intensity: unique numbers and intensities differ in length")
 	}
-	order := make([]int32, len(i))
-	for o := range order {
-		order[o] = int32(o)
-	}
-	slices.SortFunc(order, func(a, b int32) int { return cmp.Or(cmp.Compare(unique[a], unique[b]), cmp.Compare(a, b)) })
+	order := byNumber(unique)
 	var values []float64
 	for from := 0; from < len(order); {
 		u := unique[order[from]]
@@ -90,4 +85,29 @@ func eachReflection(unique []int32, i []float64, f func(u int32, values []float6
 		f(u, values)
 		from = to
 	}
+}
+
+// byNumber returns the places of unique in ascending order of their numbers,
+// stable, by counting. It panics on a number below zero.
+func byNumber(unique []int32) []int32 {
+	top := int32(-1)
+	for o, u := range unique {
+		if u < 0 {
+			panic(fmt.Sprintf("intensity: unique number %d at %d", u, o))
+		}
+		top = max(top, u)
+	}
+	at := make([]int32, int(top)+2)
+	for _, u := range unique {
+		at[u+1]++
+	}
+	for u := 1; u < len(at); u++ {
+		at[u] += at[u-1]
+	}
+	order := make([]int32, len(unique))
+	for o, u := range unique {
+		order[at[u]] = int32(o)
+		at[u]++
+	}
+	return order
 }
