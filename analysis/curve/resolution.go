@@ -5,9 +5,6 @@ import (
 	"errors"
 	"fmt"
 	"math"
-	"slices"
-
-	"gonum.org/v1/gonum/stat/distuv"
 
 	"thinward/analysis/intensity"
 	"thinward/analysis/resample"
@@ -62,8 +59,8 @@ func ByResolution(ctx context.Context, s2, thin, thick []float64, o *Settings) (
 	if o != nil {
 		s = *o
 	}
-	if len(thin) != len(s2) || len(thick) != len(s2) {
-		panic(fmt.Sprintf("curve: ByResolution: %d s2, %d thin, %d thick", len(s2), len(thin), len(thick)))
+	if len(thin) != len(s2) || len(thick) != len(s2) || (s.Resample.Blocks != nil && len(s.Resample.Blocks) != len(s2)) {
+		panic(fmt.Sprintf("curve: ByResolution: %d s2, %d thin, %d thick, %d blocks", len(s2), len(thin), len(thick), len(s.Resample.Blocks)))
 	}
 	for _, list := range [][]float64{s2, thin, thick} {
 		if err := checkColumn("ByResolution", list, nil); err != nil {
@@ -140,135 +137,4 @@ func lnRatios(thin, thick []float64, windows []resample.Window) func([]float64) 
 		}
 		return out, nil
 	}
-}
-
-// fill spreads the usable shells of over all shells and adds the line.
-func (c *Shells) fill(ctx context.Context, draws *resample.ScalarBoot, of []int, o *resample.Settings) error {
-	set, err := resample.BandsOf(ctx, draws, o)
-	if err != nil {
-		return err
-	}
-	all := len(c.S2)
-	spread := func(x []float64, rest float64) []float64 {
-		out := make([]float64, all)
-		for k := range out {
-			out[k] = rest
-		}
-		for j := range x {
-			out[of[j]] = x[j]
-		}
-		return out
-	}
-	nan, inf := math.NaN(), math.Inf(1)
-	c.LnRatio, c.SE = spread(set.Mean, nan), spread(set.SE, nan)
-	c.Lo, c.Hi = spread(set.Lo, -inf), spread(set.Hi, inf)
-	c.LoSim, c.HiSim = spread(set.LoSim, -inf), spread(set.HiSim, inf)
-	c.Level, c.Multiplier = set.Level, set.Multiplier
-	c.Warnings = append(c.Warnings, set.Warnings...)
-	x, w := make([]float64, len(of)), make([]float64, len(of))
-	for j, k := range of {
-		x[j], w[j] = c.S2[k], 1/(set.SE[j]*set.SE[j])
-	}
-	l, ok := newFixedWeights(x, w)
-	if !ok {
-		c.DeltaB, c.DeltaBSE, c.DeltaBLo, c.DeltaBHi = nan, nan, -inf, inf
-		c.Intercept, c.Share, c.Chi2, c.P = nan, nan, nan, nan
-		c.Rest, c.RestLo, c.RestHi = spread(nil, nan), spread(nil, -inf), spread(nil, inf)
-		c.RestLoSim, c.RestHiSim = spread(nil, -inf), spread(nil, inf)
-		return nil
-	}
-	derived := *draws
-	derived.Estimate = l.apply(set.Mean)
-	derived.Draws = make([][]float64, len(draws.Draws))
-	for r, d := range draws.Draws {
-		if d != nil {
-			derived.Draws[r] = l.apply(d)
-		}
-	}
-	// The last two columns, Delta B and the intercept, are answers by themselves: the
-	// simultaneous band is that of the rest alone.
-	k := len(of)
-	rest, line := derived, derived
-	rest.Estimate, line.Estimate = derived.Estimate[:k], derived.Estimate[k:]
-	rest.Draws, line.Draws = slices.Clone(derived.Draws), slices.Clone(derived.Draws)
-	for r, d := range derived.Draws {
-		if d != nil {
-			rest.Draws[r], line.Draws[r] = d[:k], d[k:]
-		}
-	}
-	rs, err := resample.BandsOf(ctx, &rest, o)
-	if err != nil {
-		return err
-	}
-	ls, err := resample.BandsOf(ctx, &line, o)
-	if err != nil {
-		return err
-	}
-	c.Rest, c.RestLo, c.RestHi = spread(rs.Mean, nan), spread(rs.Lo, -inf), spread(rs.Hi, inf)
-	c.RestLoSim, c.RestHiSim = spread(rs.LoSim, -inf), spread(rs.HiSim, inf)
-	c.DeltaB, c.DeltaBSE, c.DeltaBLo, c.DeltaBHi = ls.Mean[0], ls.SE[0], ls.Lo[0], ls.Hi[0]
-	c.Intercept = ls.Mean[1]
-	mean, variation := l.mean(set.Mean), 0.0
-	for j := range of {
-		c.Chi2 += float64(w[j] * float64(rs.Mean[j]*rs.Mean[j]))
-		d := set.Mean[j] - mean
-		variation += float64(w[j] * float64(d*d))
-	}
-	c.Share = nan
-	if variation > 0 {
-		c.Share = 1 - c.Chi2/variation
-	}
-	c.DF = k - 2
-	c.P = distuv.ChiSquared{K: float64(c.DF)}.Survival(c.Chi2)
-	return nil
-}
-
-// fixedWeights fits lines with fixed weights at fixed x.
-type fixedWeights struct {
-	x, w []float64
-	sum  float64
-	mx   float64
-	xx   float64
-}
-
-func newFixedWeights(x, w []float64) (*fixedWeights, bool) {
-	l := &fixedWeights{x: x, w: w}
-	if len(x) < 3 {
-		return nil, false
-	}
-	for i, v := range w {
-		if math.IsInf(v, 0) || math.IsNaN(v) {
-			return nil, false
-		}
-		l.sum += v
-		l.mx += float64(v * x[i])
-	}
-	l.mx /= l.sum
-	for i, v := range w {
-		d := x[i] - l.mx
-		l.xx += float64(v * float64(d*d))
-	}
-	return l, l.xx > 0
-}
-
-func (l *fixedWeights) mean(y []float64) float64 {
-	m := 0.0
-	for i, v := range l.w {
-		m += float64(v * y[i])
-	}
-	return m / l.sum
-}
-
-// apply returns the rest of y about its line, then Delta B and the intercept.
-func (l *fixedWeights) apply(y []float64) []float64 {
-	m, xy := l.mean(y), 0.0
-	for i, v := range l.w {
-		xy += float64(v * float64((l.x[i]-l.mx)*(y[i]-m)))
-	}
-	slope := xy / l.xx
-	out := make([]float64, 0, len(y)+2)
-	for i, v := range y {
-		out = append(out, v-m-float64(slope*(l.x[i]-l.mx)))
-	}
-	return append(out, -slope/2, m-float64(slope*l.mx))
 }

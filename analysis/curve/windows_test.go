@@ -132,7 +132,7 @@ func TestPanics(t *testing.T) {
 		"curve: RankAxis: x is not ascending at 1":                            func() { RankAxis([]float64{2, 1}, y) },
 		"curve: LocalLine: 1 x for 2 y":                                       func() { LocalLine(bg, []float64{1}, y, nil, y, nil) },
 		"curve: ByStrength: 1 strengths, 2 values, 0 S2, 0 blocks":            func() { ByStrength(bg, []float64{1}, y, nil, nil) },
-		"curve: ByResolution: 1 s2, 2 thin, 2 thick":                          func() { ByResolution(bg, []float64{1}, y, y, nil) },
+		"curve: ByResolution: 1 s2, 2 thin, 2 thick, 0 blocks":                func() { ByResolution(bg, []float64{1}, y, y, nil) },
 	} {
 		func() {
 			defer func() {

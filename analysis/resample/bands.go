@@ -156,10 +156,10 @@ func (b *BandSet) summarise(ctx context.Context, draws, prob []float64, s *Setti
 func (b *BandSet) simultaneous(draws, prob []float64, need int) {
 	grid := len(b.Mean)
 	inv := make([]float64, grid)
-	any := false
+	supported := false
 	for g := range inv {
 		if b.Units[g] >= need {
-			any = true
+			supported = true
 			if b.SE[g] > 0 {
 				inv[g] = 1 / b.SE[g]
 			}
@@ -181,7 +181,7 @@ func (b *BandSet) simultaneous(draws, prob []float64, need int) {
 	}
 	l := newLaw(top, prob)
 	b.Multiplier = l.upper(b.Level)
-	if !any {
+	if !supported {
 		b.Multiplier = math.Inf(1)
 	}
 	b.AchievedSim = l.share(0, b.Multiplier)
