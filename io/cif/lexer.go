@@ -81,7 +81,15 @@ func (l *lexer) fill() bool {
 	return true
 }
 
-func (l *lexer) more(i int) bool { return i < len(l.data) || l.fill() }
+// more reports whether there is a byte at offset i, waiting for it if need be.
+func (l *lexer) more(i int) bool {
+	for i >= len(l.data) {
+		if !l.fill() {
+			return false
+		}
+	}
+	return true
+}
 
 // fault makes the error at offset off; a failure of the source comes first, since
 // it explains whatever else is missing.

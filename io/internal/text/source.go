@@ -53,6 +53,17 @@ func NewSource(name string, data []byte) *Source {
 	return s
 }
 
+// InPieces is a source of data that grows by step bytes at a time, for tests of what
+// a reader does at the end of a piece.
+func InPieces(name string, data []byte, step int) *Source {
+	s := &Source{name: name, pieces: make(chan []byte, len(data)/step+1)}
+	for n := step; n < len(data)+step; n += step {
+		s.pieces <- data[:min(n, len(data)):min(n, len(data))]
+	}
+	close(s.pieces)
+	return s
+}
+
 // inflatedSize trusts the length in the last four bytes only as far as deflate
 // can expand; a wrong guess costs time, never correctness.
 func inflatedSize(data []byte) int {
