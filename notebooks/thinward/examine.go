@@ -202,7 +202,7 @@ func (a *app) deliver(f *folder, res *runner.Result, failure error, stopped stri
 	}
 	html, err := page.Build(res.Notebook, r, opts)
 	if err != nil {
-		return insideError{err}
+		return insideError{errors.Join(failure, err)}
 	}
 	if err := f.write(pageFile, html); err != nil {
 		return err
