@@ -20,10 +20,10 @@ func (b *builder) compile(ctx context.Context, in *inputs, path string) (fresh s
 	if err != nil {
 		return "", nil, cacheError(err)
 	}
-	remove = func() { _ = os.RemoveAll(dir) }
+	clear := func() { _ = os.RemoveAll(dir) }
 	defer func() {
 		if err != nil {
-			remove()
+			clear()
 		}
 	}()
 	overlay, err := b.writeOverlay(in)
@@ -38,7 +38,7 @@ func (b *builder) compile(ctx context.Context, in *inputs, path string) (fresh s
 	total := len(strings.Fields(string(stale)))
 	b.progress(Progress{Total: total})
 	fresh = filepath.Join(dir, filepath.Base(path))
-	return fresh, remove, b.build(ctx, overlay, fresh, total)
+	return fresh, clear, b.build(ctx, overlay, fresh, total)
 }
 
 // writeOverlay writes the edited copies and the overlay that lays them and the

@@ -186,7 +186,11 @@ func Save(dir string, files map[string][]byte) error {
 		if old, err := os.ReadFile(path); err == nil && bytes.Equal(old, text) {
 			continue
 		}
-		if err := os.WriteFile(path, text, 0o644); err != nil {
+		// Somebody may be compiling it.
+		if err := os.WriteFile(path+".new", text, 0o644); err != nil {
+			return err
+		}
+		if err := os.Rename(path+".new", path); err != nil {
 			return err
 		}
 	}
