@@ -41,7 +41,8 @@ func (t *table) byResolution() []int {
 	return order
 }
 
-// strength returns j over the mean of its resolution shell.
+// strength returns j over the mean of its resolution shell, 0 where that is not
+// positive.
 func (t *table) strength(j []float64) []float64 {
 	order := t.byResolution()
 	n := len(order)
@@ -54,7 +55,9 @@ func (t *table) strength(j []float64) []float64 {
 			mean += j[g] / float64(len(part))
 		}
 		for _, g := range part {
-			strength[g] = j[g] / mean
+			if mean > 0 {
+				strength[g] = j[g] / mean
+			}
 		}
 	}
 	return strength

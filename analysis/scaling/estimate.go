@@ -86,6 +86,10 @@ const noiseRounds = 12
 // position's noise in the weights is taken from residuals of all positions.
 const minOwnDF = 30
 
+// leastKappa bounds the factor by which steps are lengthened because the t score
+// is flatter than its weights; the normal law with nu = 5 gives 0.75.
+const leastKappa = 0.6
+
 // fitter carries one fit.
 type fitter struct {
 	in   *Input
@@ -229,9 +233,9 @@ func (f *fitter) advance(ctx context.Context, kind passKind) (float64, error) {
 }
 
 func (f *fitter) renewNormal(n *sums) {
-	f.kappa = math.Max(0.2, n.curvature/math.Max(n.weight, 1e-300))
-	if !(n.weight > 0) {
-		f.kappa = 1
+	f.kappa = 1
+	if n.weight > 0 {
+		f.kappa = math.Max(leastKappa, n.curvature/n.weight)
 	}
 	f.normal = f.t.normal(f.s, n)
 	f.normal.ScaleSym(f.kappa, f.normal)

@@ -27,13 +27,17 @@ func (x noiseParams) clamped() noiseParams {
 //
 //	-1/2 (sum ln v + ln sum 1/v) + sum (1-l) ln t(z), z^2 = r^2/(v (1-l)),
 //
-// l the leverage of an observation on the mean of its reflection.
+// l the leverage of an observation on the mean of its reflection. Residuals from
+// a mean are nearer to the normal law than the errors; t has the tails of
+// groupTail and the variance that the errors have.
 func (e *equivalents) logLik(x noiseParams) float64 {
 	a, b, lambda := math.Exp(x[0]), x[1], x[2]
-	total, df := 0.0, 0.0
+	total := 0.0
+	tails := tailTable(lambda)
 	var weights [16]float64
 	for h := range e.reflections() {
 		lo, hi := e.first[h], e.first[h+1]
+		tail := tails[min(hi-lo, len(tails)-1)]
 		w := weights[:0]
 		var d, num float64
 		prod, logs := 1.0, 0.0
@@ -54,17 +58,36 @@ func (e *equivalents) logLik(x noiseParams) float64 {
 		for i, wi := range w {
 			free := 1 - wi/d
 			r := e.y[lo+i] - mean
-			z2 := r * r * wi / free
-			if lambda < 1e-6 {
+			z2 := r * r * wi / (free * tail.widen)
+			if tail.lambda < 1e-6 {
 				fit += free * z2
 			} else {
-				fit += free * (1 + lambda) / lambda * math.Log1p(lambda*z2)
+				fit += free * (1 + tail.lambda) / tail.lambda * math.Log1p(tail.lambda*z2)
 			}
 		}
-		total -= 0.5 * (logs + fit)
-		df += float64(hi-lo) - 1
+		total += float64(hi-lo-1)*tail.constant - 0.5*(logs+fit)
 	}
-	return total + df*studentConstant(lambda)
+	return total
+}
+
+// groupTail describes residuals from the mean of n observations whose errors
+// have 1/nu = lambda.
+type groupTail struct{ lambda, widen, constant float64 }
+
+// tailTable holds groupTail by n, the last for all larger n. The excess kurtosis
+// of a residual is that of an error times kurt = ((1-1/n)^4 + (n-1)/n^4)/(1-1/n)^2.
+// The square root of kurt, not kurt itself, is put on 1/nu: of the two it is the
+// one that brings back scale and tails of simulated Student errors.
+func tailTable(lambda float64) []groupTail {
+	out := make([]groupTail, 64)
+	for n := 2; n < len(out); n++ {
+		x := 1 / float64(n)
+		kurt := (math.Pow(1-x, 4) + (1-x)*math.Pow(x, 3)) / ((1 - x) * (1 - x))
+		l := lambda * math.Sqrt(kurt)
+		widen := (1 - 2*l) / (1 - 2*lambda)
+		out[n] = groupTail{lambda: l, widen: widen, constant: studentConstant(l) - 0.5*math.Log(widen)}
+	}
+	return out
 }
 
 // studentConstant is the logarithm of the density of Student's law at 0, nu = 1/lambda.
@@ -98,7 +121,10 @@ func (e *equivalents) fit(ctx context.Context, set *NoiseSettings) (PositionNois
 	c.h = noiseParams{0.2 * math.Sqrt(4/df), 0.2 * (start[1] + 0.01) * math.Sqrt(8/df), math.Min(0.02, 1/math.Sqrt(df))}
 	first, _ := c.climb(start, c.fixed, 0.1)
 	c.h[1] = 0.2 * (first[1] + 0.002) * math.Sqrt(8/df)
-	best, top := c.climb(first, c.fixed, 1e-4)
+	for i := range c.h {
+		c.h[i] /= 4
+	}
+	best, top := c.climb(first, c.fixed, 1e-6)
 	n.Estimable, n.LogLik = true, top
 	n.A, n.B = math.Exp(best[0]/2), math.Sqrt(best[1])
 	if best[2] > 1e-4 {

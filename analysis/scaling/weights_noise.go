@@ -111,10 +111,11 @@ func (s *state) renewNoise(n *sums, matched bool) float64 {
 	return change
 }
 
-// scoringStep solves the two equations, bounded to a factor of 4 in a^2 and to
-// b^2 >= 0; at the bound a^2 is solved for alone.
+// scoringStep solves the two equations, bounded to a factor of 4 in both and to
+// b^2 >= 0; at that bound a^2 is solved for alone. A noise model that falls faster
+// than the scale improves would call all observations outliers.
 func scoringStep(k *noiseSums, a, b float64) (a2, b2 float64) {
-	const leastA2 = 1e-8
+	const leastA2, smallB2 = 1e-8, 1e-4
 	det := k.hAA*k.hBB - k.hAB*k.hAB
 	var da, db float64
 	if det > 1e-10*k.hAA*k.hBB {
@@ -127,6 +128,9 @@ func scoringStep(k *noiseSums, a, b float64) (a2, b2 float64) {
 	if b2 < 0 {
 		b2 = 0
 		da = (k.gA + k.hAB*b) / k.hAA
+	}
+	if b > smallB2 {
+		b2 = math.Max(b2, b/4)
 	}
 	b2 = math.Min(b2, 4*b+0.05)
 	a2 = math.Max(math.Min(a+da, 4*a), math.Max(a/4, leastA2))
