@@ -1,35 +1,183 @@
 package session
 
-func notDrawn(title string) *View { return &View{Title: title, Plain: title} }
+import (
+	"fmt"
+	"math"
+	"sort"
+
+	"thinward/analysis"
+	"thinward/analysis/figure"
+)
 
 // ByStrength shows thin minus thick against strength: the primary contrast of
 // every crystal first, the other contrasts to choose.
-func (s *Session) ByStrength() *View { return notDrawn("Differences against strength") }
+func (s *Session) ByStrength() *View { return byStrength(s.Result()) }
+
+func byStrength(r *analysis.Result) *View {
+	fv := &figureView{
+		title: "Differences against strength", pick: "Contrast",
+		caption: "Look where the band leaves the line of no difference: below it at the weak end and above it at the strong end, the thick position has gained in weak reflections and lost in strong ones. " +
+			"The dark band holds at each strength alone, the pale one with dotted edges over the whole curve, both for the averaged curve on this axis.",
+	}
+	g := newGrid("Differences against strength, thin minus thick in local means", "contrast", "axis", "pairs", "p of the curve", "weakest: strength", "difference", "interval", "strongest: strength", "difference", "interval").words(1)
+	for _, set := range pairings(r) {
+		p := &figure.Panels{
+			Title: "Thin minus thick against strength, " + set.name, Desc: strengthDesc(set),
+			X: figure.Axis{Label: "strength (" + set.list[0].StrengthAxis + ")", Scale: figure.Root},
+			Y: figure.Axis{Label: "thin \u2212 thick, in local means", Zero: true},
+		}
+		for _, c := range set.list {
+			x := &c.Strength
+			p.Panel = append(p.Panel, figure.Panel{Name: c.Crystal, Note: pNote(x.P), Curves: []figure.Curve{{X: x.Grid, Y: x.Mean, Lo: x.Lo, Hi: x.Hi, LoSim: x.LoSim, HiSim: x.HiSim}}})
+			row := []string{contrastName(c), c.StrengthAxis, count(c.Pairs), pvalue(x.P)}
+			for _, i := range []int{0, len(x.Grid) - 1} {
+				if len(x.Grid) == 0 {
+					row = append(row, "\u2013", "\u2013", "\u2013")
+					continue
+				}
+				row = append(row, number(x.Grid[i], 2), number(x.Mean[i], 3), between(x.Lo[i], x.Hi[i], 3))
+			}
+			g.add(row...)
+		}
+		fv.add(set.name, p)
+	}
+	fv.summary = g
+	return fv.view()
+}
+
+func strengthDesc(set pairing) string {
+	text := ""
+	for _, c := range set.list {
+		x := &c.Strength
+		if len(x.Mean) == 0 {
+			text += c.Crystal + ": no curve; " + x.Why + ". "
+			continue
+		}
+		n := len(x.Mean) - 1
+		text += fmt.Sprintf("%s: from %s at strength %s to %s at strength %s, p %s. ", c.Crystal, number(x.Mean[0], 3), number(x.Grid[0], 2), number(x.Mean[n], 3), number(x.Grid[n], 2), pvalue(x.P))
+	}
+	return "Moving mean of the difference of both positions with its bands, one panel a crystal. " + text
+}
+
+func pNote(p float64) string {
+	if math.IsNaN(p) {
+		return ""
+	}
+	if p < 0.001 {
+		return "p < 0.001"
+	}
+	return "p = " + pvalue(p)
+}
 
 // Naive shows the same differences against the measured intensities, each with
 // the ghost that noise alone draws there.
-func (s *Session) Naive() *View { return notDrawn("Naive axes") }
+func (s *Session) Naive() *View { return naive(s.Result()) }
+
+func naive(r *analysis.Result) *View {
+	fv := &figureView{
+		title: "Naive axes with their ghosts", pick: "Crystal",
+		caption: "The dashed ghost is what counting noise alone draws when the difference is set against an intensity that shares its noise; " +
+			"what a full line shows beyond its ghost may be real, what follows the ghost is not. These plots are here to be compared, never to be believed alone.",
+	}
+	g := newGrid("Naive axes: mean square of the z-scores of 20 bins, 1 when flat", "contrast", "axis", "measured", "from noise alone", "correlation of both", "share of the ghost")
+	g.words(1)
+	for i := range r.Contrasts {
+		c := &r.Contrasts[i]
+		if !c.Primary {
+			continue
+		}
+		p := &figure.Panels{
+			Title: "Thin minus thick against measured intensity, " + contrastName(c), Desc: "Moving mean of the difference, and the ghost that noise alone draws, against three measured intensities. ",
+			X: figure.Axis{Label: "intensity over local mean", Scale: figure.Root}, Y: figure.Axis{Label: "thin \u2212 thick, in local means", Zero: true},
+		}
+		for _, axis := range []string{"thin", "thick", "mean"} {
+			n, ok := c.Naive[axis]
+			if !ok {
+				continue
+			}
+			name := "against the " + axis + " position"
+			if axis == "mean" {
+				name = "against the mean of both"
+			}
+			p.Panel = append(p.Panel, figure.Panel{Name: name, Curves: []figure.Curve{
+				{Name: "measured", X: n.Grid, Y: n.Mean}, {Name: "ghost of noise", X: n.Grid, Y: n.Ghost, Style: figure.Ghost}}})
+			p.Desc += fmt.Sprintf("%s: score %s, of which noise alone %s. ", name, number(n.Score, 1), number(n.GhostScore, 1))
+			g.add(contrastName(c), axis, number(n.Score, 1), number(n.GhostScore, 1), number(n.Correlation, 2), percent(n.Explained, 0))
+		}
+		fv.add(contrastName(c), p)
+	}
+	fv.summary = g
+	return fv.view()
+}
 
 // ByResolution shows the logarithm of the ratio of both positions by resolution.
-func (s *Session) ByResolution() *View { return notDrawn("Differences against resolution") }
+func (s *Session) ByResolution() *View { return byResolution(s.Result()) }
 
-// Pairs shows every pair of the primary contrasts, dI against strength.
-func (s *Session) Pairs() *View { return notDrawn("Pairs") }
+func byResolution(r *analysis.Result) *View {
+	fv := &figureView{
+		title: "Differences against resolution", pick: "Contrast",
+		caption: "A slope means that the ratio of thick to thin changes with resolution; the dashed line is the part that a difference of B takes up, and what stands off it B cannot explain. " +
+			"A B factor, radiation damage and redistribution by thickness look alike here.",
+	}
+	g := newGrid("Ratio of the positions by resolution", "contrast", "shells", "difference of B (\u00c5\u00b2)", "interval", "share that B explains")
+	for _, set := range pairings(r) {
+		p := &figure.Panels{
+			Title: "Logarithm of thick over thin against resolution, " + set.name, Desc: "Mean logarithm of the ratio by shell with intervals, and the line that a difference of B means, one panel a crystal. ",
+			X: figure.Axis{Label: "d (\u00c5), even in 1/d\u00b2"}, Y: figure.Axis{Label: "ln \u27e8I thick\u27e9 / \u27e8I thin\u27e9", Zero: true},
+		}
+		var all []float64
+		for _, c := range set.list {
+			x := &c.Resolution
+			at := make([]float64, len(x.D))
+			line := make([]float64, 0, len(x.D))
+			for i, d := range x.D {
+				at[i] = 1 / (d * d)
+				if i < len(x.Remainder) {
+					line = append(line, x.LogRatio[i]-x.Remainder[i])
+				}
+			}
+			all = append(all, at...)
+			curves := []figure.Curve{{Name: "measured", X: at, Y: x.LogRatio, Lo: x.Lo, Hi: x.Hi, Style: figure.Joined}}
+			if len(line) == len(at) {
+				curves = append(curves, figure.Curve{Name: "difference of B", X: at, Y: line, Style: figure.Ghost})
+			}
+			p.Panel = append(p.Panel, figure.Panel{Name: c.Crystal, Note: "\u0394B " + number(x.DeltaB, 2) + " \u00c5\u00b2", Curves: curves})
+			p.Desc += fmt.Sprintf("%s: difference of B %s (%s) square angstrom. ", c.Crystal, number(x.DeltaB, 2), between(x.DeltaBLo, x.DeltaBHi, 2))
+			g.add(contrastName(c), count(len(x.D)), number(x.DeltaB, 3), between(x.DeltaBLo, x.DeltaBHi, 3), percent(x.Share, 0))
+		}
+		p.X.Marks = spacings(all)
+		fv.add(set.name, p)
+	}
+	fv.summary = g
+	return fv.view()
+}
 
-// ScaleCurves shows ln K against the rotation angle.
-func (s *Session) ScaleCurves() *View { return notDrawn("Scale curves") }
-
-// SizesFigure shows the exchange of every contrast with its interval.
-func (s *Session) SizesFigure() *View { return notDrawn("Sizes") }
-
-// ThicknessFigure shows mu against thickness, a line a crystal.
-func (s *Session) ThicknessFigure() *View { return notDrawn("Thickness") }
-
-// SpecificationFigure shows m under every other choice.
-func (s *Session) SpecificationFigure() *View { return notDrawn("Specification") }
-
-// ForbiddenFigure shows the forbidden reflections against thickness.
-func (s *Session) ForbiddenFigure() *View { return notDrawn("Forbidden reflections") }
-
-// BudgetFigure shows what becomes of the electrons at each thickness.
-func (s *Session) BudgetFigure() *View { return notDrawn("Scattering budget") }
+// spacings labels an axis of 1/d^2 by d at round numbers that keep their
+// distance; nil when there is nothing to label.
+func spacings(at []float64) []figure.Mark {
+	lo, hi := math.Inf(1), math.Inf(-1)
+	for _, v := range at {
+		if !math.IsNaN(v) && !math.IsInf(v, 0) {
+			lo, hi = min(lo, v), max(hi, v)
+		}
+	}
+	if lo >= hi {
+		return nil
+	}
+	var out []figure.Mark
+	for _, d := range []float64{2, 1, 1.2, 1.5, 3, 0.8, 5, 1.1, 1.3, 1.7, 0.9, 2.5, 0.7, 0.6, 0.5, 10, 4, 20} {
+		v := 1 / (d * d)
+		free := v >= lo-0.04*(hi-lo) && v <= hi+0.04*(hi-lo)
+		for _, m := range out {
+			free = free && math.Abs(m.At-v) > 0.16*(hi-lo)
+		}
+		if free {
+			out = append(out, figure.Mark{At: v, Label: fmt.Sprintf("%g", d)})
+		}
+	}
+	sort.Slice(out, func(i, j int) bool { return out[i].At < out[j].At })
+	if len(out) < 2 {
+		return nil
+	}
+	return out
+}
