@@ -48,4 +48,12 @@ type Axis struct {
 	Reverse bool
 	// Zero makes the range hold 0 and draws a line there.
 	Zero bool
+	// Marks are the ticks; nil chooses them by the length of the axis.
+	Marks []Mark
+}
+
+// Mark is a tick with its own label.
+type Mark struct {
+	At    float64
+	Label string
 }
