@@ -177,7 +177,7 @@ func (s *Study) axes(ctx context.Context, x *Compared) error {
 			Axis: c.name, N: int(m.N), M: interval(m.M, m.Lo, m.Hi, m.Why), Delta: none(), P: math.NaN(), Tip: math.NaN(), Remark: c.remark,
 		})
 	}
-	if x.Leading != leadCrystals || len(list) < 2 {
+	if x.Leading != leadCrystals || len(list) < 2 || !x.Contrast.Primary {
 		return nil
 	}
 	boot, err := resample.Scalars(ctx, x.Pairs.Len(), func(w []float64) ([]float64, error) {

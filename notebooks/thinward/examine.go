@@ -166,8 +166,8 @@ func (a *app) runNotebook(ctx context.Context, m *meter, nb *runner.Notebook, bi
 
 type pageOptions struct {
 	title, source, again string
-	trusted      bool
-	elapsed      time.Duration
+	trusted              bool
+	elapsed              time.Duration
 }
 
 // deliver writes notebook and page beside what the session saved, moves all into
