@@ -53,7 +53,7 @@ func TestPairMatched(t *testing.T) {
 	thin.Phi = []float64{10, 20, 5, 25, 8, 9, 40}
 	thick.Unique, thick.Raw = ids(b, a, c, d, e, c)
 	thick.I = []float64{104, 90, 48, 31, 9, 70}
-	thick.Var = []float64{3, 1, 1, 1, 1, 1}
+	thick.Var = []float64{5, 1, 1, 1, 1, 1}
 	thick.Phi = []float64{20.4, 9.7, 25.2, 8.3, 9.1, 5.6}
 	before := fmt.Sprint(*thin, *thick)
 	p := mustPair(t, thin, thick, cat, &Settings{SameCrystal: true, AngleToleranceDeg: 0.5, Shells: 1})
@@ -65,11 +65,12 @@ func TestPairMatched(t *testing.T) {
 		at[cat.HKL[u]] = i
 	}
 	i := at[a]
-	// Weights 1/2 and 1/6: (100/2 + 110/6)/(2/3) = 102.5, (90/2 + 104/6)/(2/3) = 93.5,
-	// variance (1/4 + 3/36)/(4/9) = 0.75.
-	floatcmp.Check(t, "thin", p.Thin[i], 102.5, 0, 1e-13)
-	floatcmp.Check(t, "thick", p.Thick[i], 93.5, 0, 1e-13)
-	floatcmp.Check(t, "variance", p.VarThin[i], 0.75, 0, 1e-13)
+	// Weights 1/2 and 1/8: (100/2 + 110/8)/(5/8) = 102, (90/2 + 104/8)/(5/8) = 92.8,
+	// variances (1/4 + 3/64) 64/25 = 0.76 and (1/4 + 5/64) 64/25 = 0.84.
+	floatcmp.Check(t, "thin", p.Thin[i], 102, 0, 1e-13)
+	floatcmp.Check(t, "thick", p.Thick[i], 92.8, 0, 1e-13)
+	floatcmp.Check(t, "variance", p.VarThin[i], 0.76, 0, 1e-13)
+	floatcmp.Check(t, "variance of thick", p.VarThick[i], 0.84, 0, 1e-13)
 	floatcmp.Check(t, "angle", p.Phi[i], 15, 0, 1e-13)
 	// 2 2 3: only the pair at 25 degrees lies within half a degree.
 	i = at[c]
@@ -78,9 +79,9 @@ func TestPairMatched(t *testing.T) {
 	if want := (Counts{ThinObservations: 7, ThickObservations: 6, ThinUnique: 3, ThickUnique: 3, Common: 3, MatchedObservations: 4, OutsideRange: 2, Absent: 1, Pairs: 3}); p.Counts != want {
 		t.Errorf("counts %+v, want %+v", p.Counts, want)
 	}
-	// Epsilon of 4 0 0 is 2: mean of thin (102.5 + 52 + 30/2)/3.
-	floatcmp.Check(t, "local mean", p.MeanThin[at[a]], (102.5+52+15)/3, 0, 1e-13)
-	floatcmp.Check(t, "local mean of 4 0 0", p.MeanThin[at[d]], 2*(102.5+52+15)/3, 0, 1e-13)
+	// Epsilon of 4 0 0 is 2: mean of thin (102 + 52 + 30/2)/3.
+	floatcmp.Check(t, "local mean", p.MeanThin[at[a]], (102.0+52+15)/3, 0, 1e-13)
+	floatcmp.Check(t, "local mean of 4 0 0", p.MeanThin[at[d]], 2*(102.0+52+15)/3, 0, 1e-13)
 	thinOnly, thickOnly, v1, v2 := p.OverEpsilon()
 	floatcmp.CheckSlice(t, "4 0 0 over epsilon", []float64{thinOnly[at[d]], thickOnly[at[d]], v1[at[d]], v2[at[d]]}, []float64{15, 15.5, 0.25, 0.25}, 0, 1e-13)
 	floatcmp.Check(t, "eps", p.Eps()[i], 4/p.MeanPooled[i], 0, 1e-13)

@@ -99,6 +99,15 @@ func TestHalves(t *testing.T) {
 	if fmt.Sprint(half) != fmt.Sprint(Halves(s, 42)) {
 		t.Error("the same key gives other halves")
 	}
+	back := &Scaled{}
+	for o := len(s.Raw) - 1; o >= 0; o-- {
+		back.Unique, back.Raw = append(back.Unique, s.Unique[o]), append(back.Raw, s.Raw[o])
+	}
+	for o, k := range Halves(back, 42) {
+		if k != side[back.Raw[o]] {
+			t.Fatalf("in another order raw index %d lies in the other half", back.Raw[o])
+		}
+	}
 	if fmt.Sprint(half) == fmt.Sprint(Halves(s, 43)) {
 		t.Error("another key gives the same halves")
 	}

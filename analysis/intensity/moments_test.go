@@ -101,6 +101,20 @@ func TestHalfMomentsSE(t *testing.T) {
 	floatcmp.Check(t, "mean of the second", meanOf(second), 2, 4*sd(second)/math.Sqrt(60), 0)
 }
 
+// Noise larger than the mean, over 60 invented positions: without the second
+// term the third moment comes out near 7.
+func TestHalfMomentsNeedNoSigma(t *testing.T) {
+	var second, third []float64
+	for seed := range uint64(60) {
+		cat, s := invented(t, 300+seed, 0.02, 110, 1)
+		a, b := MergeHalves(cat.Len(), s, seed)
+		m, _ := HalfMoments(a, b, cat, cat.Shells(3))
+		second, third = append(second, m.Second), append(third, m.Third)
+	}
+	floatcmp.Check(t, "second", meanOf(second), 2, 4*sd(second)/math.Sqrt(60), 0)
+	floatcmp.Check(t, "third", meanOf(third), 6, 0.4, 0)
+}
+
 func sd(x []float64) float64 {
 	m, s := meanOf(x), 0.0
 	for _, v := range x {
