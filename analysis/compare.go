@@ -105,18 +105,19 @@ func (s *Study) across(ctx context.Context, c Contrast) (thin, thick *intensity.
 }
 
 func (s *Study) pair(ctx context.Context, x *Compared) error {
-	c := x.Contrast
+	var err error
+	x.Pairs, err = difference.Pair(ctx, x.thin, x.thick, s.intake.Catalogue, s.pairSettings(x.Contrast))
+	return err
+}
+
+func (s *Study) pairSettings(c Contrast) *difference.Settings {
 	set := &difference.Settings{SameCrystal: !c.Across()}
 	in := s.intake
 	width := math.Max(in.Positions[c.Crystal][c.Thin].Observations.FrameWidth(), in.Positions[c.ThickCrystal][c.Thick].Observations.FrameWidth())
 	if width > 0 {
 		set.AngleToleranceDeg = width
 	}
-	var err error
-	if x.Pairs, err = difference.Pair(ctx, x.thin, x.thick, in.Catalogue, set); err != nil {
-		return err
-	}
-	return nil
+	return set
 }
 
 // others gives the merged positions of every crystal that takes no part in c.
@@ -188,20 +189,7 @@ func (s *Study) chooseAxis(x *Compared) error {
 // lies nearest the middle of the pair, nil when there is none.
 func (s *Study) third(x *Compared) *difference.Strengths {
 	c := x.Contrast
-	if c.Across() {
-		return nil
-	}
-	positions := s.Series.Crystals[c.Crystal].Positions
-	middle := (positions[c.Thin].ThicknessNM + positions[c.Thick].ThicknessNM) / 2
-	best, at := -1, math.Inf(1)
-	for j := range positions {
-		if j == c.Thin || j == c.Thick {
-			continue
-		}
-		if d := math.Abs(positions[j].ThicknessNM - middle); d < at {
-			best, at = j, d
-		}
-	}
+	best := s.thirdOf(c)
 	if best < 0 {
 		return nil
 	}

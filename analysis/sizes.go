@@ -38,15 +38,19 @@ func (s *Study) legs(x *Compared) []*size.Input {
 // bracketLegs are the two folds of an axis from halves; nil when the position
 // cannot be split.
 func (s *Study) bracketLegs(x *Compared, axis difference.Axis) []*size.Input {
-	h, err := x.Pairs.Half(axis, s.seed(x.Result.Crystal, "halves").Stream(0).Uint64())
+	return s.halfLegs(x.Pairs, x.Result.Crystal, axis)
+}
+
+func (s *Study) halfLegs(p *difference.Pairs, crystal string, axis difference.Axis) []*size.Input {
+	h, err := p.Half(axis, s.seed(crystal, "halves").Stream(0).Uint64())
 	if err != nil {
 		return nil
 	}
 	var legs []*size.Input
 	for k := range h.Folds {
 		f := &h.Folds[k]
-		in := &size.Input{Z: f.Z, Thin: over(f.Thin, x.Pairs.Epsilon), Thick: over(f.Thick, x.Pairs.Epsilon), Shell: x.Pairs.Shell, Shells: x.Pairs.Shells, S2: x.Pairs.S2}
-		in.VarThin, in.VarThick = over2(f.VarThin, x.Pairs.Epsilon), over2(f.VarThick, x.Pairs.Epsilon)
+		in := &size.Input{Z: f.Z, Thin: over(f.Thin, p.Epsilon), Thick: over(f.Thick, p.Epsilon), Shell: p.Shell, Shells: p.Shells, S2: p.S2}
+		in.VarThin, in.VarThick = over2(f.VarThin, p.Epsilon), over2(f.VarThick, p.Epsilon)
 		legs = append(legs, in)
 	}
 	return legs
@@ -93,12 +97,26 @@ func (s *Study) sizes(_ context.Context, x *Compared) error {
 			x.Fit = fit
 		}
 	}
-	s.lead(x)
-	if x.Leading != leadBracket {
-		s.giants(x)
-		s.curbForms(x)
+	if x.Leading == leadBracket {
+		s.leadBracket(x)
+		return s.classes(x)
 	}
+	s.lead(x)
+	s.giants(x)
+	s.curbForms(x)
 	return s.classes(x)
+}
+
+// leadBracket says that no single m is known: the models above are those of the
+// thin position's halves, which err upward.
+func (s *Study) leadBracket(x *Compared) {
+	s.noSizes(x, "no other crystal says how strong each reflection is: m is known as a bracket only, and the models are those of half of the thin position, which err upward")
+	x.Fit = nil
+	r := &x.Result
+	r.Exchange.Model, r.Exchange.Lo, r.Exchange.Hi = leadBracket, r.Bracket.Lo, r.Bracket.Hi
+	if len(r.Models) > 0 {
+		r.Exchange.F = r.Models[0].F
+	}
 }
 
 func modelResult(f *size.Fit) Model {
