@@ -106,13 +106,23 @@ func TestEveryMethodValue(t *testing.T) {
 				t.Error(err)
 				continue
 			}
-			seen += checkMethods(t, ir, variable, reflect.New(typ))
+			of := reflect.New(typ)
+			if isBasic(typ.Kind()) {
+				// The interpreter keeps numbers and texts where they have no address, so
+				// methods that want one cannot be called on them.
+				of = of.Elem()
+			}
+			seen += checkMethods(t, ir, variable, of)
 		}
 	}
 	t.Logf("%d method values", seen)
 	if seen < 500 {
 		t.Errorf("only %d method values were seen", seen)
 	}
+}
+
+func isBasic(k reflect.Kind) bool {
+	return k >= reflect.Bool && k <= reflect.Complex128 || k == reflect.String
 }
 
 // TestStandardMethodsWithoutWrappers does the same for the interpreter's own

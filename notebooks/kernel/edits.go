@@ -23,6 +23,7 @@ var edits = []edit{
 	{"interpreter", "kernel.go", `ir := interp.New()`, `ir := newInterp()`},
 	{"rendering", "kernel.go", `data := kernel.autoRenderResults(vals, types)`, `data := kernel.safeRender(vals, types)`},
 	{"cell", "kernel.go", `vals, types, executionErr := doEval(ir, outerr, code)`, `vals, types, executionErr := runCell(ir, outerr, code, &receipt)`},
+	{"queued cells", "kernel.go", `if err := kernel.handleExecuteRequest(receipt); err != nil {`, `if err := kernel.executeUnlessStopped(receipt); err != nil {`},
 	{"failure", "kernel.go", `if err, ok = r.(error); !ok {`, `if err, ok = asFailure(r); !ok {`},
 	{"failure message", "kernel.go", `if err := receipt.PublishExecutionError(executionErr.Error(), []string{executionErr.Error()}); err != nil {`,
 		`if err := publishFailure(&receipt, content, executionErr); err != nil {`},

@@ -77,4 +77,14 @@ func TestUnderJupyter(t *testing.T) {
 	if err == nil || !strings.Contains(out, "stop here") {
 		t.Errorf("a failing cell: %v\n%s", err, out)
 	}
+	// Jupyter interrupts by a message, since the kernel spec says so.
+	write(t, filepath.Join(home, "loops.ipynb"), strings.Replace(jupyterNotebook, "fmt.Println(", "for {}\\n\", \"fmt.Println(", 1))
+	out, err = run("GOROOT=", "--output", "out3.ipynb", "--allow-errors", "--ExecutePreprocessor.timeout=2", "--ExecutePreprocessor.interrupt_on_timeout=True", "loops.ipynb")
+	if err != nil {
+		t.Fatalf("an interrupted cell: %v\n%s", err, out)
+	}
+	text, err := os.ReadFile(filepath.Join(home, "out3.ipynb"))
+	if err != nil || !strings.Contains(string(text), "\"ename\": \"Interrupted\"") || !strings.Contains(string(text), "\"42\"") {
+		t.Errorf("an interrupted cell: %v\n%s", err, text)
+	}
 }

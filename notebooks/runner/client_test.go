@@ -136,6 +136,49 @@ func TestEveryRequestIsAnswered(t *testing.T) {
 	}
 }
 
+// TestQueuedCellsAreStopped sends three cells at once, as a front end does that
+// runs all; after a failure the rest is passed over, if the requests say so.
+func TestQueuedCellsAreStopped(t *testing.T) {
+	r := openKernel(t)
+	for _, stop := range []bool{true, false} {
+		var ids []string
+		for _, source := range []string{"reached := 1", "unknownName", "reached = 2"} {
+			ids = append(ids, newID())
+			if err := r.client.send(r.client.shell, ids[len(ids)-1], "execute_request", map[string]any{"code": source, "silent": false, "stop_on_error": stop}); err != nil {
+				t.Fatal(err)
+			}
+		}
+		var got []string
+		limit := time.After(10 * time.Second)
+		for len(got) < len(ids) {
+			select {
+			case m := <-r.client.in:
+				if m.typ != "execute_reply" {
+					continue
+				}
+				var reply struct{ Status string }
+				if err := json.Unmarshal(m.content, &reply); err != nil {
+					t.Fatal(err)
+				}
+				got = append(got, reply.Status)
+			case <-limit:
+				t.Fatalf("only %q", got)
+			}
+		}
+		want := []string{"ok", "error", "ok"}
+		if stop {
+			want[2] = "aborted"
+		}
+		if !slices.Equal(got, want) {
+			t.Errorf("stop %v: %q, want %q", stop, got, want)
+		}
+		time.Sleep(200 * time.Millisecond)
+		if shown, err := r.try("reached"); err != nil || shown != map[bool]string{true: "1", false: "2"}[stop] {
+			t.Errorf("stop %v: reached is %q, %v", stop, shown, err)
+		}
+	}
+}
+
 func TestCompletion(t *testing.T) {
 	r := openKernel(t)
 	if _, err := r.try("import \"strings\""); err != nil {

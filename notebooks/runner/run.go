@@ -124,7 +124,7 @@ func (r *run) cell(ctx context.Context, c *Cell, number int) error {
 	defer func() { r.res.Cut = append(r.res.Cut, w.out.finish()...) }()
 	err := r.client.send(r.client.shell, w.request, "execute_request", map[string]any{
 		"code": c.Source, "silent": false, "store_history": true, "user_expressions": map[string]any{},
-		"allow_stdin": false, "stop_on_error": true,
+		"allow_stdin": false, "stop_on_error": false, // we send one cell at a time and stop ourselves
 	})
 	if err == nil {
 		err = w.until(ctx)

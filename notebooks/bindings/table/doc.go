@@ -5,5 +5,7 @@
 // interpreter removes listed methods from a type and then counts the rest, which
 // picks wrong methods on today's Go. Generic functions and types cannot be bound;
 // they, deprecated names and what else is left out are listed at the end of each
-// table. It is not needed to run a notebook.
+// table. Methods with a pointer receiver on a named number or text are in the
+// table and still cannot be called: the interpreter keeps such values where they
+// have no address. The package is not needed to run a notebook.
 package table

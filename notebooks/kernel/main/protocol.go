@@ -6,6 +6,7 @@ import (
 	"log"
 	"os"
 	"runtime"
+	"time"
 
 	interp "github.com/cosmos72/gomacro/fast"
 	"github.com/go-zeromq/zmq4"
@@ -90,6 +91,21 @@ var emptyReplies = map[string]struct {
 	"comm_info_request": {"comm_info_reply", map[string]interface{}{"status": "ok", "comms": map[string]interface{}{}}},
 }
 
+// stopWindow is how long after a failure execute requests count as queued behind
+// it. No reader is as quick.
+const stopWindow = 100 * time.Millisecond
+
+var stoppedAt time.Time // of the last failure of a cell that asked to stop the rest
+
+// executeUnlessStopped runs a cell, or says that it was passed over because one
+// before it failed: a front end that runs all cells sends all requests at once.
+func (kernel *Kernel) executeUnlessStopped(receipt msgReceipt) error {
+	if time.Since(stoppedAt) < stopWindow {
+		return receipt.Reply("execute_reply", map[string]interface{}{"status": "aborted"})
+	}
+	return kernel.handleExecuteRequest(receipt)
+}
+
 // publishFailure stands in for PublishExecutionError: the failure has its name,
 // its traceback and its detail, in the message and in the reply.
 func publishFailure(receipt *msgReceipt, reply map[string]interface{}, err error) error {
@@ -102,6 +118,9 @@ func publishFailure(receipt *msgReceipt, reply map[string]interface{}, err error
 	}
 	for k, v := range content {
 		reply[k] = v
+	}
+	if request, _ := receipt.Msg.Content.(map[string]interface{}); request["stop_on_error"] == true {
+		stoppedAt = time.Now()
 	}
 	return receipt.Publish("error", content)
 }
