@@ -43,41 +43,36 @@ func (p *parser) reflections(loop *Loop, pl *plan) error {
 }
 
 func (p *parser) readRows(l *list) (int, error) {
-	roles, cls, plain := l.plan.roles, p.class, plainStart
+	q := quick{list: l, class: p.class, plain: plainStart}
 	if p.version == "2.0" {
-		plain = &neverPlain
+		q.plain = &neverPlain
 	}
-	d, i, start := p.data, p.i, p.i
+	i, start, columns := p.i, p.i, len(l.plan.roles)
 	room := firstRoom
 	l.grow(room)
+	q.aim()
 	for n := 0; ; n++ {
 		if n == room {
 			room = max(n+n/2, int(float64(p.src.SizeHint()-start)/float64(i-start)*float64(n)*1.01)+64)
 			l.grow(room)
+			q.aim()
 		}
 		if n%rowsPerMark == 0 {
 			l.marks = append(l.marks, i)
 		}
-		for c, r := range roles {
-			for i < len(d) && cls[d[i]] == blank {
-				i++
-			}
-			if i < len(d) {
-				if j := l.quick(d, i, n, r, cls, plain); j > 0 {
-					i = j
-					continue
-				}
+		for c := 0; ; c++ {
+			if i, c = q.row(p.data, i, n, c); c == columns {
+				break
 			}
 			p.i = i
 			tok, err := p.next()
 			if err != nil {
 				return 0, err
 			}
-			d = p.data
 			if tok.kind != tokValue {
 				p.tok = tok
 				if c != 0 {
-					return 0, p.wrongCount(&Loop{Names: l.names}, n*len(roles)+c)
+					return 0, p.wrongCount(&Loop{Names: l.names}, n*columns+c)
 				}
 				return n, nil
 			}
@@ -89,64 +84,96 @@ func (p *parser) readRows(l *list) (int, error) {
 	}
 }
 
-// quick stores the value that begins at d[i] as row n of role r and returns the
-// offset behind it, or 0 when it is not in the usual form or not complete.
-func (l *list) quick(d []byte, i, n int, r role, cls *[256]uint8, plain *[256]bool) int {
+// quick is the path of values in the usual form: where each role stores.
+type quick struct {
+	*list
+	class *[256]uint8
+	plain *[256]bool
+	index [3][]int16   // by role, from roleH
+	value [5][]float64 // by role, from roleIntensity
+}
+
+// aim takes up the columns after they have grown.
+func (q *quick) aim() {
+	r := &q.raw
+	q.index = [3][]int16{r.H, r.K, r.L}
+	q.value = [5][]float64{r.I, r.I, r.Sigma, r.Phi, r.Partiality}
+}
+
+// row stores the values of row n from column c on, the text from d[i] on, until the
+// row is full or a value is not in the usual form or not complete; it returns the
+// offset and column reached.
+func (q *quick) row(d []byte, i, n, c int) (int, int) {
+	cls := q.class
+	roles := q.plan.roles
+	for ; c < len(roles); c++ {
+		for i < len(d) && cls[d[i]] == blank {
+			i++
+		}
+		if i >= len(d) {
+			return i, c
+		}
+		switch r := roles[c]; r {
+		case roleH, roleK, roleL:
+			j, x := i, 0
+			if d[j] == '-' {
+				j++
+			}
+			from := j
+			for j < len(d) && d[j]-'0' <= 9 {
+				x = x*10 + int(d[j]-'0')
+				j++
+			}
+			if j == from || j > from+5 || j >= len(d) || cls[d[j]] != blank || x > math.MaxInt16 {
+				return i, c
+			}
+			if from > i {
+				x = -x
+			}
+			q.index[r-roleH][n] = int16(x)
+			i = j
+		case roleIntensity, roleSigma, rolePhi, rolePartiality:
+			x, j, ok := text.FastFloat(d, i)
+			if !ok || j >= len(d) || cls[d[j]] != blank {
+				return i, c
+			}
+			q.value[r-roleIntensity][n] = x
+			i = j
+		default:
+			j := q.word(d, i, n, r)
+			if j == 0 {
+				return i, c
+			}
+			i = j
+		}
+	}
+	return i, c
+}
+
+// word is row for the roles that are no plain numbers; 0 is its refusal.
+func (q *quick) word(d []byte, i, n int, r role) int {
 	switch r {
-	case roleH, roleK, roleL:
-		x, j, ok := text.FastInt(d, i)
-		if !ok || j >= len(d) || cls[d[j]] != blank || x < -math.MaxInt16 || x > math.MaxInt16 {
-			return 0
-		}
-		switch r {
-		case roleH:
-			l.raw.H[n] = int16(x)
-		case roleK:
-			l.raw.K[n] = int16(x)
-		default:
-			l.raw.L[n] = int16(x)
-		}
-		return j
-	case roleIntensity, roleSigma, rolePhi, rolePartiality:
-		x, j, ok := text.FastFloat(d, i)
-		if !ok || j >= len(d) || cls[d[j]] != blank {
-			return 0
-		}
-		switch r {
-		case roleIntensity:
-			l.raw.I[n] = x
-		case roleSigma:
-			l.raw.Sigma[n] = x
-		case rolePhi:
-			l.raw.Phi[n] = x
-		default:
-			l.raw.Partiality[n] = x
-		}
-		return j
 	case roleFrame, roleScaleGroup:
 		x, j, ok := text.FastInt(d, i)
-		if !ok || x < 0 || j >= len(d) {
+		if !ok || x < 0 || j >= len(d) || q.class[d[j]] != blank {
 			return 0
 		}
-		if cls[d[j]] == blank {
-			l.raw.Frame[n] = int32(x)
-			if r == roleScaleGroup {
-				l.scale.of[n] = -1
-			}
-			return j
+		q.raw.Frame[n] = int32(x)
+		if r == roleScaleGroup {
+			q.scale.of[n] = -1
 		}
-		return 0
+		return j
 	case roleIntensitySU, roleScaleSet:
 		return 0
 	}
-	if !plain[d[i]] {
+	if !q.plain[d[i]] {
 		return 0
 	}
 	j := i + 1
-	for j < len(d) && cls[d[j]] == ordinary {
+	for j < len(d) && q.class[d[j]] == ordinary {
 		j++
 	}
-	if j == len(d) || cls[d[j]] != blank {
+	if j == len(d) || q.class[d[j]] != blank {
 		return 0
 	}
 	switch r {
@@ -154,12 +181,12 @@ func (l *list) quick(d []byte, i, n int, r role, cls *[256]uint8, plain *[256]bo
 		if j == i+1 && (d[i] == '?' || d[i] == '.') {
 			return 0
 		}
-		l.dataSet.of[n] = l.dataSet.id(d[i:j])
+		q.dataSet.of[n] = q.dataSet.id(d[i:j])
 	case roleStatus:
 		if j > i+1 {
 			return 0
 		}
-		l.setStatus(n, d[i:j])
+		q.setStatus(n, d[i:j])
 	}
 	return j
 }

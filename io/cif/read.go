@@ -122,6 +122,9 @@ func (l *list) cut(c *choice, all bool, r *Reflections) error {
 	if !l.hasFrames(inside) {
 		raw.Frame = nil
 	}
+	if c.dataSet < 0 && c.scaleSet < 0 && l.status == nil && l.plainSU == 0 {
+		r.Rows, skip = l.rows, nil
+	}
 	r.Columns, r.SetAside = text.Sift(&raw, skip, l.line)
 	if r.Columns.Len() == 0 {
 		return l.fault(l.line(0), l.plan.item[roleIntensity], fmt.Sprintf("no row of %d can be used: %s", r.Rows, reasons(r.SetAside)), "look at the columns of the list with peek")

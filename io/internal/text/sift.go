@@ -51,7 +51,7 @@ func Sift(raw *intensity.Columns, skip func(row int) string, line func(row int) 
 		if skip != nil {
 			reason = skip(i)
 		}
-		if reason == "" {
+		if reason == "" && !plain(&use, i) {
 			reason = fault(&use, i)
 		}
 		if reason == "" {
@@ -79,6 +79,12 @@ func Sift(raw *intensity.Columns, skip func(row int) string, line func(row int) 
 
 // OtherSet is what skip of Sift returns for a row of a data set that was not asked for.
 const OtherSet = "\x00"
+
+// plain is the quick answer for a row of the usual kind; no column may hide a fault.
+func plain(c *intensity.Columns, i int) bool {
+	return c.H[i] > 0 && c.K[i] > NullIndex && c.L[i] > NullIndex && c.I[i] == c.I[i] && c.Sigma[i] > 0 &&
+		(c.Phi == nil || c.Phi[i] == c.Phi[i]) && c.Frame == nil && c.Partiality == nil
+}
 
 func fault(c *intensity.Columns, i int) string {
 	h, k, l := c.H[i], c.K[i], c.L[i]

@@ -49,7 +49,7 @@ func NewSource(name string, data []byte) *Source {
 	}
 	s := &Source{name: name, pieces: make(chan []byte, 64), stop: make(chan struct{})}
 	s.hint = inflatedSize(data)
-	go s.inflate(data, make([]byte, s.hint+512))
+	go s.inflate(data, make([]byte, s.hint+512), s.stop)
 	return s
 }
 
@@ -78,8 +78,9 @@ func inflatedSize(data []byte) int {
 	return size
 }
 
-func (s *Source) inflate(data, dst []byte) {
-	defer close(s.pieces)
+func (s *Source) inflate(data, dst []byte, stop <-chan struct{}) {
+	pieces := s.pieces
+	defer close(pieces)
 	defer func() {
 		if r := recover(); r != nil {
 			s.fault = fmt.Errorf("panic while inflating: %v", r)
@@ -102,8 +103,8 @@ func (s *Source) inflate(data, dst []byte) {
 		n += m
 		if m > 0 {
 			select {
-			case s.pieces <- dst[:n]:
-			case <-s.stop:
+			case pieces <- dst[:n]:
+			case <-stop:
 				return
 			}
 		}
