@@ -38,6 +38,14 @@ func answers(r *Result) []Answer {
 	return append(list, answerElse(r))
 }
 
+// label names a contrast by its crystal, or by both positions across two.
+func label(c *ContrastResult) string {
+	if c.ThickCrystal != "" {
+		return c.Crystal + "/" + c.Thin + " - " + c.ThickCrystal + "/" + c.Thick
+	}
+	return c.Crystal
+}
+
 // crystalsOf counts in words, "2 of 3 crystals".
 func crystalsOf(n int, list []*ContrastResult) string {
 	what := "crystals"
@@ -56,14 +64,14 @@ func answerDiffer(list []*ContrastResult) Answer {
 	var parts []string
 	for _, c := range list {
 		if math.IsNaN(c.Correlation.R) {
-			parts = append(parts, fmt.Sprintf("%s: not estimable (%s)", c.Crystal, c.Correlation.Why))
+			parts = append(parts, fmt.Sprintf("%s: not estimable (%s)", label(c), c.Correlation.Why))
 			continue
 		}
 		known++
 		if c.Correlation.Hi < 1 || c.MomentRatio.Lo > 0 || c.MomentRatio.Hi < 0 {
 			n++
 		}
-		parts = append(parts, fmt.Sprintf("%s r = %s", c.Crystal, span(c.Correlation.R, c.Correlation.Lo, c.Correlation.Hi)))
+		parts = append(parts, fmt.Sprintf("%s r = %s", label(c), span(c.Correlation.R, c.Correlation.Lo, c.Correlation.Hi)))
 	}
 	switch {
 	case known == 0:
@@ -85,7 +93,7 @@ func answerExchange(r *Result, list []*ContrastResult) Answer {
 	for _, c := range list {
 		e := c.Exchange
 		if math.IsNaN(e.M) {
-			parts = append(parts, fmt.Sprintf("%s: not estimable (%s)", c.Crystal, e.Why))
+			parts = append(parts, fmt.Sprintf("%s: not estimable (%s)", label(c), e.Why))
 			continue
 		}
 		estimable++
@@ -96,7 +104,7 @@ func answerExchange(r *Result, list []*ContrastResult) Answer {
 		case e.Hi < 0:
 			negative++
 		}
-		parts = append(parts, fmt.Sprintf("%s m = %s", c.Crystal, span(e.M, e.Lo, e.Hi)))
+		parts = append(parts, fmt.Sprintf("%s m = %s", label(c), span(e.M, e.Lo, e.Hi)))
 	}
 	detail := strings.Join(parts, "; ")
 	if list[0].StrengthAxis == leadBracket {
@@ -130,7 +138,7 @@ func bracketAnswer(a Answer, list []*ContrastResult) Answer {
 	for _, c := range list {
 		b := c.Bracket
 		parts = append(parts, fmt.Sprintf("%s: between %s (half of the thick position, errs downward) and %s (half of the thin, errs upward), moment ratio %s",
-			c.Crystal, span(b.Thick.Value, b.Thick.Lo, b.Thick.Hi), span(b.Thin.Value, b.Thin.Lo, b.Thin.Hi), span(c.MomentRatio.M, c.MomentRatio.Lo, c.MomentRatio.Hi)))
+			label(c), span(b.Thick.Value, b.Thick.Lo, b.Thick.Hi), span(b.Thin.Value, b.Thin.Lo, b.Thin.Hi), span(c.MomentRatio.M, c.MomentRatio.Lo, c.MomentRatio.Hi)))
 		if !(b.Lo > 0 || b.Hi < 0) {
 			open++
 		}
@@ -157,8 +165,8 @@ func answerWhere(list []*ContrastResult) Answer {
 		if c.Strength.P < 0.05 {
 			seen++
 		}
-		floor = append(floor, fmt.Sprintf("%s %s", c.Crystal, span(c.Classes.Floor.Eps, c.Classes.Floor.Lo, c.Classes.Floor.Hi)))
-		top = append(top, fmt.Sprintf("%s %s", c.Crystal, span(c.Classes.Top.Eps, c.Classes.Top.Lo, c.Classes.Top.Hi)))
+		floor = append(floor, fmt.Sprintf("%s %s", label(c), span(c.Classes.Floor.Eps, c.Classes.Floor.Lo, c.Classes.Floor.Hi)))
+		top = append(top, fmt.Sprintf("%s %s", label(c), span(c.Classes.Top.Eps, c.Classes.Top.Lo, c.Classes.Top.Hi)))
 	}
 	detail := fmt.Sprintf("thin minus thick over the local mean, weakest class: %s; strongest class: %s", strings.Join(floor, "; "), strings.Join(top, "; "))
 	if list[0].StrengthAxis == leadBracket {
@@ -184,7 +192,7 @@ func answerResolution(list []*ContrastResult) Answer {
 		if r.DeltaBLo > 0 || r.DeltaBHi < 0 {
 			seen++
 		}
-		parts = append(parts, fmt.Sprintf("%s %s A^2", c.Crystal, span(r.DeltaB, r.DeltaBLo, r.DeltaBHi)))
+		parts = append(parts, fmt.Sprintf("%s %s A^2", label(c), span(r.DeltaB, r.DeltaBLo, r.DeltaBHi)))
 	}
 	detail := "difference of B, thick minus thin: " + strings.Join(parts, "; ")
 	if seen > 0 {
@@ -213,7 +221,7 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 		if rise > 2*su {
 			up++
 		}
-		parts = append(parts, fmt.Sprintf("%s %s to %s of the local mean", c.Crystal, pm(thin.Ratio, thin.SU), pm(thick.Ratio, thick.SU)))
+		parts = append(parts, fmt.Sprintf("%s %s to %s of the local mean", label(c), pm(thin.Ratio, thin.SU), pm(thick.Ratio, thick.SU)))
 	}
 	switch {
 	case known == 0:

@@ -69,6 +69,9 @@ func (s *Study) compareStep(ctx context.Context, c Contrast) (*Compared, error) 
 	if err := s.chooseAxis(x); err != nil {
 		return nil, err
 	}
+	if err := x.refit(ctx); err != nil {
+		return nil, err
+	}
 	s.describe(x)
 	for _, part := range []func(context.Context, *Compared) error{
 		s.correlate, s.sizes, s.curves, s.resolution, s.naive, s.axes,
@@ -183,6 +186,22 @@ func (s *Study) chooseAxis(x *Compared) error {
 		return nil
 	}
 	return fmt.Errorf("axis %q is not known: use crystals, bracket, third, inverse-variance, thin, thick or mean", wanted)
+}
+
+// refit gives the differences the variance at the strength that the other
+// crystals say, so that no weight shares the noise of the pair.
+func (x *Compared) refit(ctx context.Context) error {
+	if x.Leading != leadCrystals {
+		return nil
+	}
+	expected := make([]float64, x.Pairs.Len())
+	for i, z := range x.Strengths.Z {
+		if math.IsNaN(z) {
+			z = 1
+		}
+		expected[i] = z * x.Pairs.MeanPooled[i]
+	}
+	return x.Pairs.RefitVarD(ctx, expected)
 }
 
 // third gives the strengths in the position of the same crystal whose thickness

@@ -245,6 +245,9 @@ func (s *Series) contrasts() ([]Contrast, error) {
 		if err != nil {
 			return nil, err
 		}
+		// Where no crystal has two thicknesses, the first contrast asked for is the
+		// question.
+		c.Primary = len(out) == 0
 		out = append(out, c)
 	}
 	if len(out) == 0 {

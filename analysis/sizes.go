@@ -98,7 +98,7 @@ func (s *Study) sizes(_ context.Context, x *Compared) error {
 		}
 	}
 	if x.Leading == leadBracket {
-		s.leadBracket(x)
+		s.onlyBracket(x)
 		return s.classes(x)
 	}
 	s.lead(x)
@@ -107,9 +107,9 @@ func (s *Study) sizes(_ context.Context, x *Compared) error {
 	return s.classes(x)
 }
 
-// leadBracket says that no single m is known: the models above are those of the
+// onlyBracket says that no single m is known: the models above are those of the
 // thin position's halves, which err upward.
-func (s *Study) leadBracket(x *Compared) {
+func (s *Study) onlyBracket(x *Compared) {
 	s.noSizes(x, "no other crystal says how strong each reflection is: m is known as a bracket only, and the models are those of half of the thin position, which err upward")
 	x.Fit = nil
 	r := &x.Result

@@ -47,6 +47,8 @@ func lineOf(data []byte, want place, key string) int {
 				at.position = -1
 			case "crystal.position":
 				at.position++
+			default:
+				at.crystal, at.position = -1, -1
 			}
 			if at == want {
 				header = i + 1

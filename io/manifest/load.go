@@ -64,10 +64,12 @@ type foundCell struct {
 }
 
 func (l *loader) fail(at place, key, problem, remedy string, cause error) error {
-	e := &Error{File: l.path, Key: key, Problem: problem, Remedy: remedy, Err: cause}
-	if data, err := os.ReadFile(l.path); err == nil {
-		e.Line = lineOf(data, at, key)
+	data, err := os.ReadFile(l.path)
+	if err != nil {
+		data = nil
 	}
+	e := (&checker{l.path, data}).fail(at, key, problem, remedy).(*Error)
+	e.Err = cause
 	return e
 }
 
