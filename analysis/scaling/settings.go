@@ -89,7 +89,7 @@ type Settings struct {
 	Weighting    Weighting  // default WeightExpected
 	Covariance   Covariance // default CovRobust
 	TailDF       float64    // degrees of freedom of the Student-t weights; 0 means 5, +Inf plain least squares
-	MaxIter      int        // 0 means 50
+	MaxIter      int        // 0 means 100
 	Tolerance    float64    // largest shift over its standard error at the end; 0 means 1e-4
 	MaxLnKSE     float64    // a curve softer than this is set to a constant; 0 means 0.1
 	RidgeLnK     float64    // spread of c(phi) about a constant assumed by its ridge; 0 means 0.5
@@ -130,7 +130,7 @@ func (s *Settings) filled() (Settings, error) {
 		return o, fmt.Errorf("scaling: settings MaxIter %d and MinOverlap %d must not be negative", o.MaxIter, o.MinOverlap)
 	}
 	if o.MaxIter == 0 {
-		o.MaxIter = 50
+		o.MaxIter = 100
 	}
 	if o.MinOverlap == 0 {
 		o.MinOverlap = 50

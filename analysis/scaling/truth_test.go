@@ -131,7 +131,7 @@ func TestWrongSigmasLeaveScalesUnbiased(t *testing.T) {
 		}
 		t.Logf("%s: mean z of ln K %.2f, of B %.2f", c.name, k.z/k.n, b.z/b.n)
 		lim := 4 / math.Sqrt(k.n)
-		if off := math.Abs(k.z/k.n) > lim || math.Abs(b.z/b.n) > lim; off != c.biased {
+		if fair := math.Abs(k.z/k.n) <= lim && math.Abs(b.z/b.n) <= lim; fair == c.biased {
 			t.Errorf("sigmas %s: mean z of ln K %.2f, of B %.2f, limit %.2f", c.name, k.z/k.n, b.z/b.n, lim)
 		}
 	}
