@@ -199,6 +199,20 @@ func (g *gatherer) cell() error {
 }
 
 func (g *gatherer) symmetry() error {
+	if err := g.symmetryItems(); err != nil || g.out.SymmetrySource() == "" {
+		return err
+	}
+	group, err := g.out.Group()
+	switch {
+	case err != nil:
+		g.warn("symmetry", err.Error()+"; give the space group in the manifest")
+	case g.out.Number != 0 && group.Number() != g.out.Number:
+		g.warn("symmetry", fmt.Sprintf("the %s mean space group %d, but the number given is %d; the %s were followed", g.out.SymmetrySource(), group.Number(), g.out.Number, g.out.SymmetrySource()))
+	}
+	return nil
+}
+
+func (g *gatherer) symmetryItems() error {
 	if b, item, values := g.lookup("list of symmetry operators", operatorNames); b != nil {
 		for _, v := range values {
 			if v.Null() {

@@ -97,3 +97,31 @@ func TestThicknessUnits(t *testing.T) {
 		t.Errorf("uncertainties %g %g", r.Thickness[0].SU, r.Thickness[2].SU)
 	}
 }
+
+func TestGroup(t *testing.T) {
+	list := listHead + "1 2 3 10 1\n"
+	for _, tt := range []struct {
+		text   string
+		number int
+		warn   bool
+	}{
+		{"_space_group_IT_number 19\n", 19, false},
+		{"_space_group_name_H-M_alt 'P 1 21/n 1'\n_space_group_IT_number 14\n", 14, false},
+		{"_space_group_name_Hall '-P 2yn'\n_space_group_name_H-M_alt 'P -1'\n", 14, false},
+		{"loop_ _space_group_symop_operation_xyz x,y,z -x,-y,-z\n_space_group_IT_number 1\n", 2, true},
+		{"_space_group_name_H-M_alt 'Q 7'\n", 0, true},
+		{"", 0, false},
+	} {
+		r := mustRead(t, list+tt.text, Selection{})
+		g, err := r.Group()
+		switch {
+		case tt.number != 0 && (err != nil || g.Number() != tt.number):
+			t.Errorf("%q: %v, want %d", tt.text, err, tt.number)
+		case tt.number == 0 && (g != nil || (err != nil) != tt.warn):
+			t.Errorf("%q: got %v, %v", tt.text, g, err)
+		}
+		if warned(r, "symmetry") != tt.warn {
+			t.Errorf("%q: warnings %v", tt.text, r.Warnings)
+		}
+	}
+}

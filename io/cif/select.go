@@ -1,6 +1,9 @@
 package cif
 
 import (
+	"fmt"
+	"strconv"
+
 	"thinward/analysis/crystal"
 	"thinward/analysis/intensity"
 )
@@ -90,6 +93,31 @@ func (f *Facts) SymmetrySource() string {
 		return "number"
 	}
 	return ""
+}
+
+// Group makes the space group of what SymmetrySource names. A number alone means its
+// standard setting. It is nil when the file gives no symmetry, and an error when what
+// it gives cannot be understood.
+func (f *Facts) Group() (*crystal.Group, error) {
+	var g *crystal.Group
+	var err error
+	source := f.SymmetrySource()
+	switch source {
+	case "":
+		return nil, nil
+	case "operators":
+		g, err = crystal.ParseOperators(f.Operators)
+	case "Hall symbol":
+		g, err = crystal.FromHall(f.Hall)
+	case "Hermann-Mauguin symbol":
+		g, err = crystal.Lookup(f.HM)
+	default:
+		g, err = crystal.Lookup(strconv.Itoa(f.Number))
+	}
+	if err != nil {
+		return nil, fmt.Errorf("the %s of the file: %w", source, err)
+	}
+	return g, nil
 }
 
 // Reflections is one data set as read: the usable rows, in file order, and all that
