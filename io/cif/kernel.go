@@ -53,7 +53,7 @@ func (p *parser) readRows(l *list) (int, error) {
 	q.aim()
 	for n := 0; ; n++ {
 		if n == room {
-			room = max(n+n/2, int(float64(p.src.SizeHint()-start)/float64(i-start)*float64(n)*1.01)+64)
+			room = max(n+n/16, int(float64(p.src.SizeHint()-start)/float64(i-start)*float64(n)*1.01)+64)
 			l.grow(room)
 			q.aim()
 		}

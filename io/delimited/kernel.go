@@ -17,7 +17,7 @@ func (r *reader) body() error {
 	start := r.i
 	for n := 0; ; n++ {
 		if n == room {
-			room = max(n+n/2, int(float64(r.src.SizeHint()-start)/float64(r.i-start)*float64(n)*1.01)+64)
+			room = max(n+n/16, int(float64(r.src.SizeHint()-start)/float64(r.i-start)*float64(n)*1.01)+64)
 			r.grow(room)
 		}
 		if n%rowsPerMark == 0 {
