@@ -7,6 +7,7 @@ import (
 	"slices"
 
 	"thinward/analysis/crystal"
+	"thinward/analysis/electron"
 	"thinward/analysis/resample"
 )
 
@@ -119,8 +120,8 @@ func reciprocalBasis(c crystal.Cell) [3][3]float64 {
 // knownElements returns an error for an element without a scattering factor.
 func knownElements(o *Structure) error {
 	check := func(e string) error {
-		if !slices.Contains(elements[:], e) {
-			return fmt.Errorf("simulate: no scattering factor for element %q; there are %v", e, elements)
+		if !slices.Contains(electron.Elements(), e) {
+			return fmt.Errorf("simulate: no scattering factor for element %q; there are %v", e, electron.Elements())
 		}
 		return nil
 	}

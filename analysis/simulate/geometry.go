@@ -59,22 +59,6 @@ func wrap(radians float64) float64 {
 	return d
 }
 
-// Wavelength returns the relativistic de Broglie wavelength in angstrom of
-// electrons of the given energy in keV, h / sqrt(2 m e V (1 + eV/2mc^2)), with
-// the constants of CODATA 2018. It is NaN for an energy that is not positive.
-func Wavelength(energyKeV float64) float64 {
-	const (
-		planck  = 6.62607015e-34
-		charge  = 1.602176634e-19
-		mass    = 9.1093837015e-31
-		restKeV = 510.99894999
-	)
-	if !(energyKeV > 0) {
-		return math.NaN()
-	}
-	return 1e10 * planck / math.Sqrt(2*mass*charge*energyKeV*1e3*(1+energyKeV/(2*restKeV)))
-}
-
 // eulerRotation turns about z, then x, then z again by the three angles in degrees.
 func eulerRotation(deg []float64) [3][3]float64 {
 	z := func(a float64) [3][3]float64 {

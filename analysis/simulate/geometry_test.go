@@ -5,19 +5,10 @@ import (
 	"testing"
 
 	"thinward/analysis/crystal"
+	"thinward/analysis/electron"
 	"thinward/analysis/internal/floatcmp"
 	"thinward/analysis/resample"
 )
-
-func TestWavelength(t *testing.T) {
-	// CODATA 2018 constants worked with mpmath (checks.md 11.1), rel 1e-8.
-	for _, c := range []struct{ keV, want, rel float64 }{
-		{60, 0.04866060503, 1e-8}, {100, 0.03701436614, 1e-8}, {200, 0.02507934045, 1e-8}, {300, 0.01968748901, 1e-8}, {1000, 0.008719186929, 1e-8},
-	} {
-		floatcmp.Check(t, "wavelength", Wavelength(c.keV), c.want, 0, c.rel)
-	}
-	floatcmp.Check(t, "no energy", Wavelength(0), math.NaN(), 0, 0)
-}
 
 func TestReciprocalBasisGivesD(t *testing.T) {
 	// Low albite (checks.md 12.1): d of 20-1, 130, 2-13.
@@ -70,7 +61,7 @@ func sliceOf(v [3]float64) []float64 { return v[:] }
 
 func TestCrossingsLieOnTheSphere(t *testing.T) {
 	cell := crystal.Cell{A: 8.144, B: 12.787, C: 7.160, Alpha: 94.26, Beta: 116.6, Gamma: 87.67}
-	g := Geometry{Wavelength: Wavelength(200), Reciprocal: reciprocalBasis(cell), Orientation: eulerRotation([]float64{20, 35, 80})}
+	g := Geometry{Wavelength: electron.Wavelength(200), Reciprocal: reciprocalBasis(cell), Orientation: eulerRotation([]float64{20, 35, 80})}
 	k := 1 / g.Wavelength
 	found := 0
 	for h := -6; h <= 6; h++ {
@@ -106,7 +97,7 @@ func TestCrossingsLieOnTheSphere(t *testing.T) {
 
 func TestIndexAlongTheAxisNeverCrosses(t *testing.T) {
 	cell := crystal.Cell{A: 10, B: 10, C: 10, Alpha: 90, Beta: 90, Gamma: 90}
-	g := Geometry{Wavelength: Wavelength(200), Reciprocal: reciprocalBasis(cell), Orientation: eulerRotation([]float64{0, 0, 0})}
+	g := Geometry{Wavelength: electron.Wavelength(200), Reciprocal: reciprocalBasis(cell), Orientation: eulerRotation([]float64{0, 0, 0})}
 	if _, n := g.Crossings(crystal.HKL{H: 3}); n != 0 {
 		t.Error("an index on the rotation axis crosses")
 	}

@@ -6,6 +6,7 @@ import (
 	"math"
 
 	"thinward/analysis/crystal"
+	"thinward/analysis/electron"
 	"thinward/analysis/internal/parallel"
 	"thinward/analysis/resample"
 )
@@ -37,7 +38,7 @@ func Invent(ctx context.Context, plan *Plan) (*Series, error) {
 	if err := truth.intensities(ctx, p, group, seed); err != nil {
 		return nil, err
 	}
-	s.Group, s.Truth, s.Wavelength = group, *truth, Wavelength(p.EnergyKeV)
+	s.Group, s.Truth, s.Wavelength = group, *truth, electron.Wavelength(p.EnergyKeV)
 	var jobs []*observer
 	for i := range p.Crystals {
 		c := &p.Crystals[i]

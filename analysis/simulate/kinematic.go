@@ -2,124 +2,30 @@ package simulate
 
 import (
 	"context"
-	"math"
 
 	"thinward/analysis/crystal"
-	"thinward/analysis/internal/parallel"
+	"thinward/analysis/electron"
 )
 
-// atomKind is what atoms share in a structure factor.
-type atomKind struct {
-	element string
-	b       float64
-}
-
-// KinematicIntensities returns |F|^2 of every index, F(h) = sum over the atoms
-// and their symmetry copies of f(s) exp(-b s^2) exp(2 pi i h.x), f from
-// ScatteringFactor, in square angstrom. Atoms on special positions count once for every
+// KinematicIntensities returns |F|^2 of every index in square angstrom, F from
+// electron.StructureFactors. Atoms on special positions count once for every
 // operator. No atoms give zeros. It returns an error for an unknown element or when ctx ends.
 func KinematicIntensities(ctx context.Context, cell crystal.Cell, group *crystal.Group, atoms []Atom, hkl []crystal.HKL) ([]float64, error) {
-	const block = 256
-	kinds, members := sorted(atoms)
-	for _, k := range kinds {
-		if _, err := ScatteringFactor(k.element, 0); err != nil {
-			return nil, err
-		}
-	}
-	var sites [][3]float64
-	ends := make([]int, len(kinds))
-	for i := range kinds {
-		for _, a := range members[i] {
-			for _, op := range group.Operators() {
-				sites = append(sites, apply(op, [3]float64{a.X, a.Y, a.Z}))
-			}
-		}
-		ends[i] = len(sites)
-	}
-	waves := newWaves(sites, hkl)
-	metric := cell.ReciprocalMetric()
-	out := make([]float64, len(hkl))
-	err := parallel.For(ctx, (len(hkl)+block-1)/block, 0, func(_ context.Context, b int) error {
-		for i := b * block; i < min(len(hkl), (b+1)*block); i++ {
-			s2 := crystal.InvD2(metric, hkl[i]) / 4
-			re, im, from := 0.0, 0.0, 0
-			for k, kind := range kinds {
-				f, err := ScatteringFactor(kind.element, math.Sqrt(s2))
-				if err != nil {
-					return err
-				}
-				f *= math.Exp(-kind.b * s2)
-				r, m := waves.sum(hkl[i], from, ends[k])
-				re, im, from = re+float64(f*r), im+float64(f*m), ends[k]
-			}
-			out[i] = float64(re*re) + float64(im*im)
-		}
-		return nil
-	})
+	f, err := electron.StructureFactors(ctx, &electron.Structure{Cell: cell, Group: group, Atoms: electronAtoms(atoms)}, hkl)
 	if err != nil {
 		return nil, err
+	}
+	out := make([]float64, len(f))
+	for i, v := range f {
+		out[i] = float64(real(v)*real(v)) + float64(imag(v)*imag(v))
 	}
 	return out, nil
 }
 
-func sorted(atoms []Atom) ([]atomKind, [][]Atom) {
-	var kinds []atomKind
-	var members [][]Atom
-	place := map[atomKind]int{}
-	for _, a := range atoms {
-		k := atomKind{a.Element, a.B}
-		i, ok := place[k]
-		if !ok {
-			i = len(kinds)
-			place[k] = i
-			kinds, members = append(kinds, k), append(members, nil)
-		}
-		members[i] = append(members[i], a)
+func electronAtoms(atoms []Atom) []electron.Atom {
+	out := make([]electron.Atom, len(atoms))
+	for i, a := range atoms {
+		out[i] = electron.Atom(a)
 	}
-	return kinds, members
-}
-
-// waves tabulates exp(2 pi i h x) by axis, index and site, so that a structure
-// factor takes two complex products a site and no sine.
-type waves struct {
-	sites int
-	low   [3]int
-	table [3][]complex128
-}
-
-func newWaves(sites [][3]float64, hkl []crystal.HKL) *waves {
-	w := &waves{sites: len(sites)}
-	var high [3]int
-	for i, h := range hkl {
-		for axis, v := range [3]int{h.H, h.K, h.L} {
-			if i == 0 || v < w.low[axis] {
-				w.low[axis] = v
-			}
-			if i == 0 || v > high[axis] {
-				high[axis] = v
-			}
-		}
-	}
-	for axis := range w.table {
-		for h := w.low[axis]; h <= high[axis]; h++ {
-			for _, x := range sites {
-				s, c := math.Sincos(2 * math.Pi * float64(h) * x[axis])
-				w.table[axis] = append(w.table[axis], complex(c, s))
-			}
-		}
-	}
-	return w
-}
-
-func (w *waves) sum(h crystal.HKL, from, to int) (re, im float64) {
-	row := func(axis, v int) []complex128 {
-		start := (v - w.low[axis]) * w.sites
-		return w.table[axis][start+from : start+to]
-	}
-	x, y, z := row(0, h.H), row(1, h.K), row(2, h.L)
-	var total complex128
-	for i := range x {
-		total += x[i] * y[i] * z[i]
-	}
-	return real(total), imag(total)
+	return out
 }

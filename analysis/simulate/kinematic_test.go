@@ -6,6 +6,7 @@ import (
 	"testing"
 
 	"thinward/analysis/crystal"
+	"thinward/analysis/electron"
 	"thinward/analysis/internal/floatcmp"
 	"thinward/analysis/resample"
 )
@@ -23,7 +24,7 @@ func TestKinematicAgainstDirectSum(t *testing.T) {
 		s2 := cell.InvD2(h) / 4
 		re, im := 0.0, 0.0
 		for _, a := range atoms {
-			f, _ := ScatteringFactor(a.Element, math.Sqrt(s2))
+			f, _ := electron.ScatteringFactor(a.Element, math.Sqrt(s2))
 			f *= math.Exp(-a.B * s2)
 			// P 21: x,y,z and -x,y+1/2,-z.
 			for _, x := range [][3]float64{{a.X, a.Y, a.Z}, {-a.X, a.Y + 0.5, -a.Z}} {

@@ -44,10 +44,8 @@ func init() {
 			"KinematicIntensities": reflect.ValueOf(simulate.KinematicIntensities),
 			"Null":                 reflect.ValueOf(simulate.Null),
 			"Replicates":           reflect.ValueOf(simulate.Replicates),
-			"ScatteringFactor":     reflect.ValueOf(simulate.ScatteringFactor),
 			"Sound":                reflect.ValueOf(simulate.Sound),
 			"Tarn":                 reflect.ValueOf(simulate.Tarn),
-			"Wavelength":           reflect.ValueOf(simulate.Wavelength),
 		},
 		Types: map[string]reflect.Type{
 			"Atom":      reflect.TypeOf((*simulate.Atom)(nil)).Elem(),

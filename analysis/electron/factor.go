@@ -1,14 +1,9 @@
-package simulate
+package electron
 
 import (
 	"fmt"
 	"math"
 )
-
-// mottBethe is m e^2/(8 pi epsilon0 h^2) = 1/(8 pi^2 a0) in 1/angstrom.
-const mottBethe = 0.0239336610
-
-const bohr = 0.529177210903 // angstrom, CODATA 2018
 
 var elements = [...]string{"H", "He", "Li", "Be", "B", "C", "N", "O", "F", "Ne", "Na", "Mg", "Al", "Si", "P", "S", "Cl", "Ar"}
 
@@ -29,8 +24,11 @@ func ScatteringFactor(element string, s float64) (float64, error) {
 			return slaterFactor(i+1, math.Abs(s)), nil
 		}
 	}
-	return 0, fmt.Errorf("simulate: no scattering factor for element %q; there are %v", element, elements)
+	return 0, fmt.Errorf("electron: no scattering factor for element %q; there are %v", element, elements)
 }
+
+// Elements lists the symbols that ScatteringFactor knows, by atomic number from 1.
+func Elements() []string { return append([]string(nil), elements[:]...) }
 
 func slaterFactor(z int, s float64) float64 {
 	const smallest = 1e-4

@@ -1,4 +1,4 @@
-package simulate
+package electron
 
 import (
 	"math"
