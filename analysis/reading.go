@@ -155,31 +155,30 @@ func (s *Study) thirdOf(c Contrast) int {
 	return best
 }
 
-// rescaled puts a crystal with other intensities (parallel to the rows of its
-// Input) on one scale; set nil means the settings of the study.
-func (s *Study) rescaled(ctx context.Context, i int, intensities []float64, set *scaling.Settings, workers int) (*ScaledCrystal, error) {
+// rescaled puts crystal i with other intensities (parallel to the rows of its
+// Input; nil means those measured) or another scale model on one scale and gives
+// its positions, indexed as in the Series. The noise model stays that of the
+// study.
+func (s *Study) rescaled(ctx context.Context, i int, intensities []float64, set *scaling.Settings, workers int) ([]*intensity.Scaled, error) {
 	sc := s.scaled[i]
-	if set == nil {
-		set = &s.settings.Scaling
+	in := sc.Input
+	if intensities != nil {
+		in.I = intensities
 	}
-	var parts []*Accepted
-	for p, j := range sc.Order {
-		a := s.intake.Positions[i][j]
-		if intensities != nil {
-			o := *a.Observations
-			o.I = intensities[sc.first[p] : sc.first[p]+len(a.Unique)]
-			a.Observations = &o
-		}
-		parts = append(parts, &a)
+	own := s.settings.Scaling
+	if set != nil {
+		own = *set
 	}
-	out, err := scaleTogether(ctx, s.intake.Catalogue, parts, set, &s.settings.Noise, workers)
+	own.Workers = workers
+	fit, err := scaling.Estimate(ctx, in, &own)
 	if err != nil {
 		return nil, err
 	}
-	positions := make([]*intensity.Scaled, len(parts))
+	variance := sc.Noise.Variance(in, fit)
+	out := make([]*intensity.Scaled, len(sc.Order))
 	for p, j := range sc.Order {
-		positions[j] = out.Positions[p]
+		a := &s.intake.Positions[i][j]
+		out[j] = sc.position(p, a, &in, fit, variance)
 	}
-	out.Positions, out.Order, out.slot = positions, sc.Order, sc.slot
 	return out, nil
 }

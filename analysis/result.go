@@ -19,6 +19,8 @@ type Result struct {
 	Scaling       []ScalingResult  `json:"scaling"`
 	Contrasts     []ContrastResult `json:"contrasts"`
 	Forbidden     []Forbidden      `json:"forbidden"`
+	Quality       []Quality        `json:"quality,omitempty"`
+	Distributions []Distribution   `json:"distributions,omitempty"`
 	Crystals      *CrystalsResult  `json:"crystals,omitempty"`
 	Thickness     *ThicknessResult `json:"thickness,omitempty"`
 	Controls      []ControlResult  `json:"controls,omitempty"`
@@ -368,6 +370,19 @@ type ControlResult struct {
 	Can      string   `json:"can_see"`
 	Cannot   string   `json:"cannot_see"`
 	Why      string   `json:"why,omitempty"`
+	// Q is the curb beside M, ExpectedQ what it should be.
+	Q         Interval `json:"q"`
+	ExpectedQ float64  `json:"expected_q"`
+	// Draws counts the data sets behind the row. Through says which part of the
+	// pipeline they went through. Rejections is the share of them in which the test of
+	// the curve rejects (of the detection limit: in which m is seen), Misses that in
+	// which the interval of m misses Expected.
+	Draws      int     `json:"draws"`
+	Through    string  `json:"through,omitempty"`
+	Rejections float64 `json:"rejections"`
+	Misses     float64 `json:"misses"`
+	// Verdict is fine, fails or not known (then Passed is false too).
+	Verdict string `json:"verdict"`
 }
 
 // LedgerEntry is one confounder with a figure and a verdict: fine, caution,

@@ -143,19 +143,24 @@ func scaleTogether(ctx context.Context, cat *intensity.Catalogue, parts []*Accep
 	}
 	variance := sc.Noise.Variance(*in, sc.Fit)
 	for p, a := range parts {
-		out := &intensity.Scaled{Unique: a.Unique, Raw: a.Raw, I: make([]float64, len(a.Unique)), Var: make([]float64, len(a.Unique))}
-		if in.HasAngle[p] {
-			out.Phi = a.Observations.Phi
-		}
-		for r := range out.I {
-			o := sc.first[p] + r
-			g := sc.Fit.Scale[o]
-			out.I[r] = in.I[o] / g
-			out.Var[r] = variance[o] / (g * g)
-		}
-		sc.Positions = append(sc.Positions, out)
+		sc.Positions = append(sc.Positions, sc.position(p, a, in, sc.Fit, variance))
 	}
 	return sc, nil
+}
+
+// position brings the observations of position p of a fit to the common scale.
+func (sc *ScaledCrystal) position(p int, a *Accepted, in *scaling.Input, fit *scaling.Fit, variance []float64) *intensity.Scaled {
+	out := &intensity.Scaled{Unique: a.Unique, Raw: a.Raw, I: make([]float64, len(a.Unique)), Var: make([]float64, len(a.Unique))}
+	if in.HasAngle[p] {
+		out.Phi = a.Observations.Phi
+	}
+	for r := range out.I {
+		o := sc.first[p] + r
+		g := fit.Scale[o]
+		out.I[r] = in.I[o] / g
+		out.Var[r] = variance[o] / (g * g)
+	}
+	return out
 }
 
 // scalingResults describes the fits, crystal by crystal, positions as in the

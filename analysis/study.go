@@ -64,19 +64,21 @@ type Study struct {
 	Series   Series
 	settings Settings
 
-	mu        sync.Mutex
-	list      []Contrast
-	intake    *Intake
-	table     []IntakeResult
-	indexing  []IndexingResult
-	scaled    []*ScaledCrystal
-	compared  map[Contrast]*Compared
-	forbidden []Forbidden
-	pooled    *joined
-	controls  []ControlResult
-	spec      []Specification
-	expected  *Expectation
-	warnings  []intensity.Warning
+	mu            sync.Mutex
+	list          []Contrast
+	intake        *Intake
+	table         []IntakeResult
+	indexing      []IndexingResult
+	scaled        []*ScaledCrystal
+	compared      map[Contrast]*Compared
+	forbidden     []Forbidden
+	quality       []Quality
+	distributions []Distribution
+	pooled        *joined
+	controls      []ControlResult
+	spec          []Specification
+	expected      *Expectation
+	warnings      []intensity.Warning
 }
 
 // New checks a series and makes a Study of it; set may be nil. The columns of
@@ -190,6 +192,7 @@ func (s *Study) steps() []step {
 			return nil
 		}},
 		{"forbidden", func(ctx context.Context) error { _, err := s.Forbidden(ctx); return err }},
+		{"quality", func(ctx context.Context) error { _, _, err := s.Quality(ctx); return err }},
 		{"crystals", func(ctx context.Context) error { _, err := s.Join(ctx); return err }},
 		{"controls", func(ctx context.Context) error { _, err := s.Controls(ctx); return err }},
 		{"specification", func(ctx context.Context) error { _, err := s.Specification(ctx); return err }},
