@@ -7,7 +7,7 @@ package simulate
 // exchange fills. Orders of measurement differ, so dose does not follow thickness.
 func Tarn() *Plan {
 	p := &Plan{
-		Title: "Tarn peptide, three wedges", EnergyKeV: 300, SpaceGroup: "P 21 21 21", Seed: 20260101,
+		Title: "Tarn peptide, three wedges", EnergyKeV: 300, SpaceGroup: "P 21 21 21", Seed: 20260102,
 		DMin: 1.15, ThicknessScaleSU: 0.1,
 		Cell:      Cell{A: 11.1, B: 14.7, C: 18.3, Alpha: 90, Beta: 90, Gamma: 90},
 		Structure: Structure{B: 1.5},

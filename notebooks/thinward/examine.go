@@ -152,7 +152,7 @@ func (a *app) runNotebook(ctx context.Context, m *meter, nb *runner.Notebook, bi
 		timeout = -1
 	}
 	return runner.Run(ctx, nb, &runner.Options{
-		KernelPath: binary, Env: env, Set: set, Timeout: timeout,
+		KernelPath: binary, Env: env, Set: set, Timeout: timeout, Kill: a.kill,
 		Progress: func(e runner.Event) {
 			switch {
 			case e.Kind == runner.CellProgress && e.Progress != nil:

@@ -55,7 +55,7 @@ come with thinward runs only with --trust.`,
 				limit = -1
 			}
 			res, failure := runner.Run(c.Context(), nb, &runner.Options{
-				KernelPath: binary, Set: values, Timeout: limit, AllowShell: shell,
+				KernelPath: binary, Set: values, Timeout: limit, AllowShell: shell, Kill: a.kill,
 				Progress: func(e runner.Event) {
 					if e.Kind == runner.CellStarted {
 						m.at("cells", 0, 0, e.Cell, e.Cells)

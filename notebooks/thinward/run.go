@@ -36,14 +36,15 @@ func (e insideError) Unwrap() error { return e.error }
 type app struct {
 	out, err io.Writer
 	quiet    bool
+	kill     <-chan struct{} // closed by the second Ctrl-C
 	json     bool
 }
 
 // run is the command without a process around it.
 func run(args []string, stdout, stderr io.Writer) int {
-	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt)
+	ctx, kill, stop := interrupts()
 	defer stop()
-	a := &app{out: stdout, err: stderr}
+	a := &app{out: stdout, err: stderr, kill: kill}
 	root := a.root()
 	root.SetArgs(args)
 	root.SetOut(stdout)
@@ -58,6 +59,33 @@ func run(args []string, stdout, stderr io.Writer) int {
 		fmt.Fprintln(stderr, "See thinward --help.")
 	}
 	return status
+}
+
+// interrupts gives a context that the first Ctrl-C cancels and a channel that
+// the second one closes.
+func interrupts() (ctx context.Context, kill <-chan struct{}, stop func()) {
+	ctx, cancel := context.WithCancel(context.Background())
+	signals, second, done := make(chan os.Signal, 2), make(chan struct{}), make(chan struct{})
+	signal.Notify(signals, os.Interrupt)
+	go func() {
+		for n := 0; n < 2; n++ {
+			select {
+			case <-signals:
+			case <-done:
+				return
+			}
+			if n == 0 {
+				cancel()
+			} else {
+				close(second)
+			}
+		}
+	}()
+	return ctx, second, func() {
+		signal.Stop(signals)
+		close(done)
+		cancel()
+	}
 }
 
 // execute turns a panic into an error, so that no user sees a trace.

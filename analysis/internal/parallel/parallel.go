@@ -21,6 +21,9 @@ type PanicError struct {
 // Error says what was panicked with; the stack is in the Stack field.
 func (e *PanicError) Error() string { return fmt.Sprintf("panic in a worker: %v", e.Value) }
 
+// Inside says that the program is at fault, not the data.
+func (e *PanicError) Inside() bool { return true }
+
 // For calls f(ctx, i) once for every i in [0, n), on at most workers
 // goroutines; workers <= 0 means GOMAXPROCS. The order of calls is not fixed, so
 // f writes only what belongs to i. The first error, panic or cancellation of
