@@ -409,13 +409,34 @@ type Specification struct {
 // Expectation is what scattering physics leads one to expect; an aid to
 // interpretation, never a prediction of m.
 type Expectation struct {
-	WavelengthA    float64  `json:"wavelength_a"`
-	InteractionVnm float64  `json:"interaction_rad_per_v_nm"`
-	ElasticMFPNM   float64  `json:"elastic_mean_free_path_nm"`
-	InelasticMFPNM float64  `json:"inelastic_mean_free_path_nm"`
-	Uncertainty    float64  `json:"relative_uncertainty"`
-	Budget         []Budget `json:"budget"`
-	Why            string   `json:"why,omitempty"`
+	EnergyKeV      float64 `json:"energy_kev"`
+	WavelengthA    float64 `json:"wavelength_a"`
+	InteractionVnm float64 `json:"interaction_rad_per_v_nm"`
+	ElasticMFPNM   float64 `json:"elastic_mean_free_path_nm"`
+	InelasticMFPNM float64 `json:"inelastic_mean_free_path_nm"`
+	Uncertainty    float64 `json:"relative_uncertainty"`
+	// Source says where the paths come from, in words.
+	Source string `json:"mean_free_paths_from,omitempty"`
+	// Budget is at the thicknesses of the series, thin to thick, each once; BudgetGrid
+	// from 0 to a quarter beyond the thickest, for a figure.
+	Budget     []Budget     `json:"budget"`
+	BudgetGrid []Budget     `json:"budget_grid,omitempty"`
+	TwoBeam    TwoBeamCurve `json:"two_beam"`
+	Why        string       `json:"why,omitempty"`
+}
+
+// TwoBeamCurve is the integrated intensity of the two-beam case over its
+// kinematic limit (Blackman 1939) against strength, at the thinnest and the
+// thickest position. Strength 1 has the extinction distance ExtinctionNM, that of
+// the root mean square amplitude at spacing DA of a crystal of random light atoms.
+type TwoBeamCurve struct {
+	ExtinctionNM float64    `json:"extinction_distance_nm"`
+	DA           float64    `json:"d_a"`
+	ThicknessNM  [2]float64 `json:"thickness_nm"`
+	Strength     []float64  `json:"strength"`
+	Thin         []float64  `json:"thin"`
+	Thick        []float64  `json:"thick"`
+	Why          string     `json:"why,omitempty"`
 }
 
 // Budget is the share of electrons of each fate at one thickness.

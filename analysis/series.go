@@ -21,6 +21,9 @@ type Series struct {
 	// ThicknessScaleSU is the relative uncertainty that all thicknesses share
 	// (their scale, such as a mean free path).
 	ThicknessScaleSU float64
+	// ElasticMFPNM and InelasticMFPNM are mean free paths of the electrons in nm; 0
+	// when not given.
+	ElasticMFPNM, InelasticMFPNM float64
 	// FriedelApart keeps Friedel mates as reflections of their own.
 	FriedelApart bool
 	Primary      Primary

@@ -196,6 +196,7 @@ func (s *Study) steps() []step {
 		{"crystals", func(ctx context.Context) error { _, err := s.Join(ctx); return err }},
 		{"controls", func(ctx context.Context) error { _, err := s.Controls(ctx); return err }},
 		{"specification", func(ctx context.Context) error { _, err := s.Specification(ctx); return err }},
+		{"expectation", func(ctx context.Context) error { _, err := s.Expectation(ctx); return err }},
 	}
 }
 

@@ -28,10 +28,11 @@ const estimateSU = 0.3
 //	inelastic  1.5e-6 Z^0.5/beta^2 ln(2/theta_E),  theta_E = 20 eV/(beta^2 (E + mc^2))
 //
 // (Langmore & Smith 1992, Ultramicroscopy 46, 349, after Wall, Isaacson & Langmore
-// 1974; the formulas and coefficients are from memory). RelativeSU of the result is
-// 0.3: a measured value is better. Hydrogen is counted by the same formulas though the
-// source treats it apart. It returns an error for an unknown element, a negative density,
-// no atoms, or an energy that is not positive.
+// 1974; the formulas and coefficients are from memory). Hydrogen, which the source treats
+// apart, is left out: with it by the same formula the inelastic path of ice would be a quarter to
+// a third shorter than measured, without it is within 30 %. RelativeSU of the result is 0.3: a
+// measured value is better. It returns an error for an unknown element, a
+// negative density, nothing but hydrogen, or an energy that is not positive.
 func EstimateFreePaths(energyKeV float64, atoms []Density) (MeanFreePaths, error) {
 	if !(energyKeV > 0) {
 		return MeanFreePaths{}, fmt.Errorf("electron: energy %g keV is not positive", energyKeV)
@@ -41,6 +42,9 @@ func EstimateFreePaths(energyKeV float64, atoms []Density) (MeanFreePaths, error
 		if !(a.PerNM3 >= 0) || math.IsInf(a.PerNM3, 0) {
 			return MeanFreePaths{}, fmt.Errorf("electron: density %g of %s is negative or not finite", a.PerNM3, a.Element)
 		}
+		if a.Element == "H" {
+			continue
+		}
 		e, i, err := CrossSections(energyKeV, a.Element)
 		if err != nil {
 			return MeanFreePaths{}, err
@@ -49,7 +53,7 @@ func EstimateFreePaths(energyKeV float64, atoms []Density) (MeanFreePaths, error
 		inelastic += a.PerNM3 * i
 	}
 	if elastic == 0 {
-		return MeanFreePaths{}, fmt.Errorf("electron: no atoms to scatter")
+		return MeanFreePaths{}, fmt.Errorf("electron: no atoms heavier than hydrogen to scatter")
 	}
 	return MeanFreePaths{ElasticNM: 1 / elastic, InelasticNM: 1 / inelastic, RelativeSU: estimateSU}, nil
 }
@@ -76,9 +80,20 @@ func CrossSections(energyKeV float64, element string) (elastic, inelastic float6
 
 // Organic returns the composition that stands for a crystal of light atoms whose own is
 // unknown: one atom heavier than hydrogen for every 18 cubic angstrom (common
-// practice, no source), elements in the proportion of proteins,
-// C 0.63, N 0.17, O 0.19, S 0.006, with 0.99 H for each (from memory).
+// practice, no source), elements in the proportion of proteins, C 0.634, N 0.17,
+// O 0.19, S 0.006 (from memory).
 func Organic() []Density {
 	const heavy = 1000.0 / 18
-	return []Density{{"C", 0.634 * heavy}, {"N", 0.17 * heavy}, {"O", 0.19 * heavy}, {"S", 0.006 * heavy}, {"H", 0.99 * heavy}}
+	return []Density{{"C", 0.634 * heavy}, {"N", 0.17 * heavy}, {"O", 0.19 * heavy}, {"S", 0.006 * heavy}}
+}
+
+// Macromolecular returns the composition that stands for a crystal half of protein and
+// half of vitreous ice: half of Organic and half of 31 oxygen atoms in a cubic
+// nanometre (0.93 g/cm^3).
+func Macromolecular() []Density {
+	list := Organic()
+	for i := range list {
+		list[i].PerNM3 /= 2
+	}
+	return append(list, Density{"O", 15.5})
 }
