@@ -13,7 +13,7 @@ var (
 
 const (
 	tickGap  = 92.0 // pixels between marks along x
-	tickRise = 46.0 // and along y
+	tickRise = 34.0 // and along y
 	footRoom = 40.0 // below a plot: marks and label of x
 )
 

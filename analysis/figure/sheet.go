@@ -123,7 +123,7 @@ func (s *sheet) text(st style, x, y float64, str string) {
 // own fonts.
 func width(st style, str string) float64 {
 	f := face(st)
-	return 1.04 * f.Width(str).Points()
+	return 1.12 * f.Width(str).Points()
 }
 
 // markers belong to the series in turn.

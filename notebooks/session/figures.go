@@ -13,6 +13,10 @@ import (
 // every crystal first, the other contrasts to choose.
 func (s *Session) ByStrength() *View { return byStrength(s.Result()) }
 
+// differenceLabel stands on axes with a signed root, which show the small
+// differences of weak reflections beside the large ones of strong reflections.
+const differenceLabel = "thin \u2212 thick, in local means (root scale)"
+
 func byStrength(r *analysis.Result) *View {
 	fv := &figureView{
 		title: "Differences against strength", pick: "Contrast",
@@ -24,7 +28,7 @@ func byStrength(r *analysis.Result) *View {
 		p := &figure.Panels{
 			Title: "Thin minus thick against strength, " + set.name, Desc: strengthDesc(set),
 			X: figure.Axis{Label: "strength (" + set.list[0].StrengthAxis + ")", Scale: figure.Root},
-			Y: figure.Axis{Label: "thin \u2212 thick, in local means", Zero: true},
+			Y: figure.Axis{Label: differenceLabel, Zero: true, Scale: figure.Root},
 		}
 		for _, c := range set.list {
 			x := &c.Strength
@@ -88,7 +92,7 @@ func naive(r *analysis.Result) *View {
 		}
 		p := &figure.Panels{
 			Title: "Thin minus thick against measured intensity, " + contrastName(c), Desc: "Moving mean of the difference, and the ghost that noise alone draws, against three measured intensities. ",
-			X: figure.Axis{Label: "intensity over local mean", Scale: figure.Root}, Y: figure.Axis{Label: "thin \u2212 thick, in local means", Zero: true},
+			X: figure.Axis{Label: "intensity over local mean", Scale: figure.Root}, Y: figure.Axis{Label: differenceLabel, Zero: true, Scale: figure.Root},
 		}
 		for _, axis := range []string{"thin", "thick", "mean"} {
 			n, ok := c.Naive[axis]

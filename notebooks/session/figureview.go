@@ -70,7 +70,7 @@ func (v *figureView) view() *View {
 	out.SVG = v.whole[0].SVG
 	n := min(len(v.whole), choices)
 	var b strings.Builder
-	b.WriteString(`<figure class="plot">`)
+	b.WriteString(`<figure class="plot"><figcaption>` + html.EscapeString(v.caption) + `</figcaption>`)
 	if n > 1 {
 		v.switches(&b, n)
 	}
@@ -96,7 +96,7 @@ func (v *figureView) view() *View {
 	if more := len(v.whole) - n; more > 0 {
 		fmt.Fprintf(&b, `<p class="note">%d more are not drawn here; their numbers are in result.json.</p>`, more)
 	}
-	b.WriteString("<figcaption>" + html.EscapeString(v.caption) + "</figcaption></figure>")
+	b.WriteString("</figure>")
 	out.HTML = b.String()
 	return out
 }
