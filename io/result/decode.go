@@ -25,15 +25,37 @@ func Decode(data []byte) (*analysis.Result, error) {
 	if !ok {
 		return nil, fmt.Errorf("result: the file does not hold an object")
 	}
-	schema, _ := object["schema"].(string)
-	if schema != analysis.Schema {
-		return nil, fmt.Errorf("result: the file says schema %q; this version reads %q: use the version that wrote it", schema, analysis.Schema)
+	if d.More() {
+		return nil, fmt.Errorf("result: the file holds more than one value")
+	}
+	if err := checkSchema(object); err != nil {
+		return nil, err
 	}
 	r := new(analysis.Result)
 	if err := assign(reflect.ValueOf(r).Elem(), tree, ""); err != nil {
 		return nil, err
 	}
 	return r, nil
+}
+
+// checkSchema refuses what this version cannot read, by name.
+func checkSchema(object map[string]any) error {
+	schema, ok := object["schema"].(string)
+	if !ok {
+		return fmt.Errorf("result: the file names no schema: it is no result.json")
+	}
+	if schema == analysis.Schema {
+		return nil
+	}
+	family, ours, _ := strings.Cut(analysis.Schema, "/")
+	if name, major, _ := strings.Cut(schema, "/"); name == family {
+		have, err1 := strconv.Atoi(major)
+		know, err2 := strconv.Atoi(ours)
+		if err1 == nil && err2 == nil && have > know {
+			return fmt.Errorf("result: the file says schema %q, which a newer version wrote; this version reads %q: use a newer version", schema, analysis.Schema)
+		}
+	}
+	return fmt.Errorf("result: the file says schema %q; this version reads %q", schema, analysis.Schema)
 }
 
 func assign(dst reflect.Value, src any, path string) error {

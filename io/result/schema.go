@@ -12,6 +12,7 @@ import (
 func JSONSchema() ([]byte, error) {
 	root := schemaOf(reflect.TypeOf(analysis.Result{}))
 	root["$schema"] = "https://json-schema.org/draft/2020-12/schema"
+	root["properties"].(map[string]any)["schema"] = map[string]any{"const": analysis.Schema}
 	root["title"] = analysis.Schema
 	root["$defs"] = map[string]any{
 		"number": map[string]any{

@@ -1,0 +1,3 @@
+package result
+
+//go:generate go test -run ^TestSchemaFileIsFresh$ . -regen
