@@ -46,6 +46,13 @@ func Invent(ctx context.Context, plan *simulate.Plan, dir string) error {
 	if err != nil {
 		return err
 	}
+	return WriteInvented(series, plan, dir)
+}
+
+// WriteInvented writes what Invent writes of a series that was made in memory. plan is
+// what plan.toml holds; a Law is not written, so that such a file makes the series
+// without it.
+func WriteInvented(series *simulate.Series, plan *simulate.Plan, dir string) error {
 	if err := os.MkdirAll(dir, 0o777); err != nil {
 		return err
 	}
@@ -59,6 +66,9 @@ func Invent(ctx context.Context, plan *simulate.Plan, dir string) error {
 	text, err := toml.Marshal(plan)
 	if err != nil {
 		return fmt.Errorf("plan: %w", err)
+	}
+	if plan.Law != nil {
+		text = append([]byte("# The intensities came from a law that a plan cannot hold. From this file alone invent makes\n# the kinematic twin: the same structure, orientations and noise.\n"), text...)
 	}
 	if err := writeFile(filepath.Join(dir, "plan.toml"), text); err != nil {
 		return err
@@ -171,9 +181,11 @@ func round(x float64, digits int) float64 {
 	return math.Round(x*p) / p
 }
 
-// Truth is what truth.json of an invented series holds.
+// Truth is what truth.json of an invented series holds. Contrasts is empty when the
+// intensities come from a law of their own.
 type Truth struct {
 	Title     string          `json:"title"`
+	Note      string          `json:"note,omitempty"`
 	Unique    int             `json:"unique"`
 	Contrasts []TruthContrast `json:"contrasts"`
 	Positions []TruthPosition `json:"positions"`
@@ -202,6 +214,9 @@ type TruthPosition struct {
 
 func truthOf(s *simulate.Series) *Truth {
 	t := &Truth{Title: s.Plan.Title, Unique: len(s.Truth.HKL)}
+	if s.Plan.Law != nil {
+		t.Note = "The intensities come from a law of their own; m, q, o and deviation had no part in them, and no contrast has an m by construction."
+	}
 	for i := range s.Specimens {
 		list := s.Specimens[i].Positions
 		for j := range list {
@@ -212,7 +227,9 @@ func truthOf(s *simulate.Series) *Truth {
 			})
 			for k := range list {
 				if list[k].Plan.ThicknessNM > p.ThicknessNM {
-					t.Contrasts = append(t.Contrasts, TruthContrast{Crystal: s.Specimens[i].Name, Thin: p.Name, Thick: list[k].Plan.Name, M: s.ExchangeBetween(i, j, k)})
+					if m := s.ExchangeBetween(i, j, k); !math.IsNaN(m) {
+						t.Contrasts = append(t.Contrasts, TruthContrast{Crystal: s.Specimens[i].Name, Thin: p.Name, Thick: list[k].Plan.Name, M: m})
+					}
 				}
 			}
 		}
