@@ -19,7 +19,7 @@ const changed = 12
 
 // Pairs shows every pair of the primary contrasts, dI against strength.
 func (s *Session) Pairs() *View {
-	r := s.Result()
+	r := s.upTo(stepDifferences)
 	return pairsView(r, s.study.PairRows())
 }
 

@@ -11,7 +11,7 @@ import (
 
 // ByStrength shows thin minus thick against strength: the primary contrast of
 // every crystal first, the other contrasts to choose.
-func (s *Session) ByStrength() *View { return byStrength(s.Result()) }
+func (s *Session) ByStrength() *View { return byStrength(s.upTo(stepDifferences)) }
 
 // differenceLabel stands on axes with a signed root, which show the small
 // differences of weak reflections beside the large ones of strong reflections.
@@ -75,7 +75,7 @@ func pNote(p float64) string {
 
 // Naive shows the same differences against the measured intensities, each with
 // the ghost that noise alone draws there.
-func (s *Session) Naive() *View { return naive(s.Result()) }
+func (s *Session) Naive() *View { return naive(s.upTo(stepDifferences)) }
 
 func naive(r *analysis.Result) *View {
 	fv := &figureView{
@@ -115,7 +115,7 @@ func naive(r *analysis.Result) *View {
 }
 
 // ByResolution shows the logarithm of the ratio of both positions by resolution.
-func (s *Session) ByResolution() *View { return byResolution(s.Result()) }
+func (s *Session) ByResolution() *View { return byResolution(s.upTo(stepDifferences)) }
 
 func byResolution(r *analysis.Result) *View {
 	fv := &figureView{

@@ -10,7 +10,7 @@ import (
 )
 
 // ScaleCurves shows ln K against the rotation angle.
-func (s *Session) ScaleCurves() *View { return scaleCurves(s.Result()) }
+func (s *Session) ScaleCurves() *View { return scaleCurves(s.upTo(stepScaling)) }
 
 func scaleCurves(r *analysis.Result) *View {
 	fv := &figureView{title: "Scale curves", empty: "No scale was fitted in the angle.",
@@ -65,7 +65,7 @@ func crystalsOf(r *analysis.Result) []string {
 }
 
 // SizesFigure shows the exchange of every contrast with its interval.
-func (s *Session) SizesFigure() *View { return sizesFigure(s.Result()) }
+func (s *Session) SizesFigure() *View { return sizesFigure(s.upTo(stepCrystals)) }
 
 func sizesFigure(r *analysis.Result) *View {
 	fv := &figureView{title: "Exchange of every contrast", empty: "No exchange was estimated.",
@@ -101,7 +101,7 @@ func sizesFigure(r *analysis.Result) *View {
 }
 
 // ThicknessFigure shows mu against thickness, a line a crystal.
-func (s *Session) ThicknessFigure() *View { return thicknessFigure(s.Result()) }
+func (s *Session) ThicknessFigure() *View { return thicknessFigure(s.upTo(stepCrystals)) }
 
 func thicknessFigure(r *analysis.Result) *View {
 	fv := &figureView{title: "Growth with thickness", empty: "The series does not allow a line over thickness.",
@@ -143,7 +143,7 @@ func thicknessFigure(r *analysis.Result) *View {
 const normal95 = 1.959963984540054
 
 // SpecificationFigure shows m under every other choice.
-func (s *Session) SpecificationFigure() *View { return specificationFigure(s.Result()) }
+func (s *Session) SpecificationFigure() *View { return specificationFigure(s.upTo(stepSpecification)) }
 
 func specificationFigure(r *analysis.Result) *View {
 	fv := &figureView{title: "m under other choices", pick: "Crystal", empty: "No other choices were tried.",
@@ -167,7 +167,7 @@ func specificationFigure(r *analysis.Result) *View {
 }
 
 // ControlsFigure shows what each control found beside what it should.
-func (s *Session) ControlsFigure() *View { return controlsFigure(s.Result()) }
+func (s *Session) ControlsFigure() *View { return controlsFigure(s.upTo(stepControls)) }
 
 func controlsFigure(r *analysis.Result) *View {
 	fv := &figureView{title: "Controls", empty: "No control was run.",
@@ -186,7 +186,7 @@ func controlsFigure(r *analysis.Result) *View {
 }
 
 // ForbiddenFigure shows the forbidden reflections against thickness.
-func (s *Session) ForbiddenFigure() *View { return forbiddenFigure(s.Result()) }
+func (s *Session) ForbiddenFigure() *View { return forbiddenFigure(s.upTo(stepForbidden)) }
 
 func forbiddenFigure(r *analysis.Result) *View {
 	fv := &figureView{title: "Forbidden reflections against thickness", empty: "No forbidden reflection was recorded.",
@@ -227,7 +227,7 @@ func forbiddenFigure(r *analysis.Result) *View {
 }
 
 // BudgetFigure shows what becomes of the electrons at each thickness.
-func (s *Session) BudgetFigure() *View { return budgetFigure(s.Result()) }
+func (s *Session) BudgetFigure() *View { return budgetFigure(s.upTo(stepExpectation)) }
 
 func budgetFigure(r *analysis.Result) *View {
 	fv := &figureView{title: "Scattering budget", empty: "No mean free paths are known: neither given nor to be had from a composition.",

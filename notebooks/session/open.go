@@ -39,6 +39,7 @@ type Session struct {
 	Title  string
 	study  *analysis.Study
 	result *analysis.Result
+	sofar  map[string]*analysis.Result // by the last step that ran
 	out    string
 	timing []analysis.StepTime
 	step   string
@@ -46,12 +47,15 @@ type Session struct {
 	steps  int
 }
 
-// Open reads a manifest and its files.
+// Open reads a manifest and its files. A relative path that is not below the
+// working folder is looked for from the folders above it, so that a notebook
+// finds its series wherever in the project it was opened.
 func Open(path string) *Session { return OpenWith(path, Options{}) }
 
 // OpenWith is Open with options.
 func OpenWith(path string, o Options) *Session {
-	s := &Session{Path: path, out: os.Getenv(OutEnv), step: "reading"}
+	path = locate(path)
+	s := &Session{Path: path, sofar: map[string]*analysis.Result{}, out: os.Getenv(OutEnv), step: "reading"}
 	Report(Progress{Step: "reading", Text: filepath.Base(path)})
 	series, err := manifest.ReadSeries(path)
 	if err != nil {
@@ -66,6 +70,20 @@ func OpenWith(path string, o Options) *Session {
 	}
 	s.Title = series.Title
 	return s
+}
+
+func locate(path string) string {
+	if filepath.IsAbs(path) {
+		return path
+	}
+	at := path
+	for range 8 {
+		if _, err := os.Stat(at); err == nil {
+			return at
+		}
+		at = filepath.Join("..", at)
+	}
+	return path
 }
 
 func (s *Session) progress(step string, done, total int) {

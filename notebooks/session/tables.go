@@ -68,7 +68,7 @@ func angles(lo, hi float64) string {
 
 // Correlations shows whether positions differ at all.
 func (s *Session) Correlations() *View {
-	r := s.Result()
+	r := s.upTo(stepDifferences)
 	g := newGrid("Do positions differ at all: true correlation and moment ratio", "contrast", "thickness (nm)", "pairs", "paired", "r", "interval", "moment ratio m", "interval", "remark").words(3, 8)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
@@ -84,7 +84,7 @@ func (s *Session) Correlations() *View {
 
 // Sizes shows exchange, curb and offset of every contrast.
 func (s *Session) Sizes() *View {
-	r := s.Result()
+	r := s.upTo(stepDifferences)
 	g := newGrid("Exchange m, curb q and offset o", "contrast", "axis", "model", "m", "interval", "q", "interval", "o", "interval", "F", "p of the fit", "smallest m seen").words(1, 2)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
@@ -97,7 +97,7 @@ func (s *Session) Sizes() *View {
 // Models shows the same contrasts under each model, and with the strongest
 // reflections left out.
 func (s *Session) Models() *View {
-	r := s.Result()
+	r := s.upTo(stepDifferences)
 	g := newGrid("The primary contrasts under each model", "contrast", "model", "m", "q", "o", "p of the fit").words(1)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
@@ -118,7 +118,7 @@ func (s *Session) Models() *View {
 
 // Axes shows m on every axis that can be built.
 func (s *Session) Axes() *View {
-	r := s.Result()
+	r := s.upTo(stepDifferences)
 	g := newGrid("Exchange on every strength axis (instrument, one number)", "contrast", "axis", "pairs", "m", "difference from the leading axis", "remark").words(1, 5)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
@@ -134,7 +134,7 @@ func (s *Session) Axes() *View {
 
 // Classes shows the three classes of strength.
 func (s *Session) Classes() *View {
-	r := s.Result()
+	r := s.upTo(stepDifferences)
 	g := newGrid("Classes of strength: contrast in local means, thin minus thick", "contrast", "class", "pairs", "mean strength", "contrast", "interval", "m of the class", "interval").words(1)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
@@ -150,7 +150,7 @@ func (s *Session) Classes() *View {
 
 // Brackets shows m from halves of either position.
 func (s *Session) Brackets() *View {
-	r := s.Result()
+	r := s.upTo(stepDifferences)
 	g := newGrid("Bracket of m from halves of the same positions", "contrast", "half of the thick position (errs downward)", "half of the thin position (errs upward)", "whole bracket", "moment ratio", "remark").words(5)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
@@ -161,7 +161,7 @@ func (s *Session) Brackets() *View {
 
 // Forbidden shows the forbidden reflections by position and symmetry element.
 func (s *Session) Forbidden() *View {
-	r := s.Result()
+	r := s.upTo(stepForbidden)
 	g := newGrid("Forbidden reflections over the local mean of the allowed ones", "position", "element", "reflections", "ratio", "s.u.", "z", "mean J/\u03c3", "remark").words(1, 7)
 	for _, f := range r.Forbidden {
 		g.add(f.Crystal+"/"+f.Position, f.Element, count(f.N), number(f.Ratio, 4), number(f.SU, 4), number(f.Z, 1), number(f.MeanIS, 1), f.Why)
@@ -171,7 +171,7 @@ func (s *Session) Forbidden() *View {
 
 // Scaling shows scale and noise model by position.
 func (s *Session) Scaling() *View {
-	r := s.Result()
+	r := s.upTo(stepScaling)
 	g := newGrid("Scale and noise by position, against the thinnest", "position", "mean ln K", "B (\u00c5\u00b2)", "s.u.", "a", "interval", "b", "interval", "\u03c7\u00b2 before", "after", "down-weighted", "curve").words(11)
 	for _, x := range r.Scaling {
 		shape := "in angle"
@@ -186,7 +186,7 @@ func (s *Session) Scaling() *View {
 
 // Matters shows what the fitted exchange would do to amplitudes.
 func (s *Session) Matters() *View {
-	r := s.Result()
+	r := s.upTo(stepCrystals)
 	g := newGrid("Does it matter: what the fitted m does to amplitudes under Wilson's law", "crystal", "m", "agreement factor on |F| from the exchange alone", "mean |F| of weak reflections")
 	for _, m := range r.Matters {
 		g.add(m.Crystal, number(m.M, 3), percent(m.AgreementShift, 1), signed(m.WeakShift))
@@ -203,7 +203,7 @@ func signed(share float64) string {
 
 // Specification shows m under other choices.
 func (s *Session) Specification() *View {
-	r := s.Result()
+	r := s.upTo(stepSpecification)
 	g := newGrid("m under other choices; everything but the leading row is secondary", "crystal", "choice", "level", "m", "q").words(1, 2)
 	for _, x := range r.Specification {
 		level := x.Level
@@ -217,7 +217,7 @@ func (s *Session) Specification() *View {
 
 // Controls shows each control with what it can and cannot see.
 func (s *Session) Controls() *View {
-	r := s.Result()
+	r := s.upTo(stepControls)
 	g := newGrid("Controls: the same pipeline on data where the answer is known", "control", "crystal", "expected m", "found m", "p", "passed", "can see", "cannot see").words(1, 5, 6, 7)
 	for _, c := range r.Controls {
 		passed := "yes"
@@ -234,7 +234,7 @@ func (s *Session) Controls() *View {
 
 // Crystals shows what the crystals say together.
 func (s *Session) Crystals() *View {
-	r := s.Result()
+	r := s.upTo(stepCrystals)
 	g := newGrid("The crystals together", "what", "value", "remark").words(2)
 	if c := r.Crystals; c != nil {
 		g.add("m in these crystals (fixed effect)", withInterval(c.InThese, 3), fmt.Sprintf("%d crystals", c.N))
@@ -255,7 +255,7 @@ func (s *Session) Crystals() *View {
 
 // Thickness shows the growth of mu = -ln(1-m) with thickness.
 func (s *Session) Thickness() *View {
-	r := s.Result()
+	r := s.upTo(stepCrystals)
 	g := newGrid("Growth of \u03bc = \u2212ln(1\u2212m) with thickness", "crystal", "thickness (nm)", "\u03bc", "slope per 100 nm", "\u03c7\u00b2 (degrees of freedom)", "remark").words(5)
 	if t := r.Thickness; t != nil {
 		for _, l := range t.Lines {

@@ -1,0 +1,23 @@
+package session
+
+// Expectation shows what scattering physics leads one to expect.
+func (s *Session) Expectation() *View {
+	g := newGrid("What scattering physics leads one to expect", "what", "value", "remark").words(2)
+	e := s.upTo(stepExpectation).Expectation
+	if e == nil {
+		g.add("nothing", "\u2013", "no expectation was worked out")
+		return g.view("Expectation")
+	}
+	if e.Why != "" {
+		g.add("nothing", "\u2013", e.Why)
+		return g.view("Expectation")
+	}
+	g.add("energy (keV)", number(e.EnergyKeV, 0), "")
+	g.add("wavelength (\u00c5)", number(e.WavelengthA, 5), "relativistic")
+	g.add("interaction constant (rad/(V nm))", number(e.InteractionVnm, 5), "")
+	g.add("elastic mean free path (nm)", number(e.ElasticMFPNM, 0), e.Source)
+	g.add("inelastic mean free path (nm)", number(e.InelasticMFPNM, 0), e.Source)
+	g.add("uncertainty of both", percent(e.Uncertainty, 0), "")
+	g.add("extinction distance at strength 1 (nm)", number(e.TwoBeam.ExtinctionNM, 0), "random light atoms, d = "+number(e.TwoBeam.DA, 2)+" \u00c5")
+	return g.view("Expectation")
+}

@@ -1,0 +1,128 @@
+package session
+
+import (
+	"fmt"
+
+	"thinward/analysis"
+	"thinward/analysis/figure"
+)
+
+// Indexing shows how every position was brought to one indexing.
+func (s *Session) Indexing() *View {
+	r := s.upTo(stepIntake)
+	g := newGrid("Ways to index that the lattice allows", "position", "way", "correlation with the reference", "margin z", "what was done").words(1, 4)
+	for _, x := range r.Indexing {
+		for k, way := range x.Options {
+			agree := "\u2013"
+			if k < len(x.Agreement) {
+				agree = number(x.Agreement[k], 3)
+			}
+			margin, text := "", ""
+			if k == 0 {
+				margin, text = number(x.Z, 1), x.Text
+			}
+			g.add(x.Where, way, agree, margin, text)
+		}
+	}
+	if len(g.rows) == 0 {
+		g.add("every position", "h,k,l", "\u2013", "\u2013", "the lattice allows one way to index only")
+	}
+	return g.view("Indexing")
+}
+
+// Remarks shows what reading and intake had to say about the data.
+func (s *Session) Remarks() *View {
+	r := s.upTo(stepIntake)
+	g := newGrid("Remarks on what came in", "where", "what").words(1)
+	for _, x := range r.Intake {
+		if x.Why != "" {
+			g.add(x.Crystal+"/"+x.Position, x.Why)
+		}
+	}
+	for _, w := range r.Warnings {
+		g.add(w.Where, w.Text)
+	}
+	if len(g.rows) == 0 {
+		g.add("everywhere", "nothing to remark")
+	}
+	return g.view("Remarks")
+}
+
+// Quality shows the precision of every position on the common scale.
+func (s *Session) Quality() *View {
+	return qualityTable(s.upTo(stepQuality), "Precision on the common scale, all resolution", func(q *analysis.Quality) bool { return q.Shell == 0 })
+}
+
+// Shells shows the precision of every position by resolution shell.
+func (s *Session) Shells() *View {
+	return qualityTable(s.upTo(stepQuality), "Precision on the common scale, by shell", func(q *analysis.Quality) bool { return q.Shell > 0 })
+}
+
+func qualityTable(r *analysis.Result, caption string, wanted func(*analysis.Quality) bool) *View {
+	g := newGrid(caption, "position", "d (\u00c5)", "observations", "unique", "possible", "complete", "multiplicity", "I/\u03c3", "R_merge", "R_meas", "R_pim", "CC1/2", "CC1/2 (\u03c3-\u03c4)", "CC*")
+	for i := range r.Quality {
+		q := &r.Quality[i]
+		if !wanted(q) {
+			continue
+		}
+		g.add(q.Crystal+"/"+q.Position, number(q.DLong, 2)+"\u2013"+number(q.DShort, 2), count(q.Observations), count(q.Unique), count(q.Possible), percent(q.Completeness, 0),
+			number(q.Multiplicity, 1), number(q.IOverSigma, 1), number(q.RMerge, 3), number(q.RMeas, 3), number(q.RPim, 3), number(q.CCHalf, 3), number(q.CCHalfTau, 3), number(q.CCStar, 3))
+	}
+	return g.view("Precision")
+}
+
+// Distributions shows the moments of strength beside Wilson's.
+func (s *Session) Distributions() *View {
+	r := s.upTo(stepQuality)
+	g := newGrid("Moments of strength from products of halves, beside Wilson's laws", "position", "kind", "reflections", "second moment", "s.u.", "theory", "third moment", "s.u.", "theory", "remark").words(1, 9)
+	for _, d := range r.Distributions {
+		g.add(d.Crystal+"/"+d.Position, d.Kind, count(d.N), number(d.Second, 2), number(d.SecondSE, 2), number(d.SecondTheory, 0), number(d.Third, 1), number(d.ThirdSE, 1), number(d.ThirdTheory, 0), d.Why)
+	}
+	return g.view("Distributions")
+}
+
+// DistributionsFigure shows the share of acentric reflections below each
+// strength, beside Wilson's law.
+func (s *Session) DistributionsFigure() *View { return distributionsFigure(s.upTo(stepQuality)) }
+
+func distributionsFigure(r *analysis.Result) *View {
+	fv := &figureView{title: "Distribution of strengths", pick: "Kind", empty: "No distribution could be drawn.",
+		caption: "Noise and multiple scattering both fill the gap of weak reflections, so that a curve lies below the dashed law at small strength; noise does it alike at all thicknesses when the counts are alike, scattering more in the thicker position."}
+	for _, kind := range []string{"acentric", "centric"} {
+		p := &figure.Panels{Title: "Share of reflections below a strength, " + kind, Desc: "One panel a crystal, one curve a position, with the law of Wilson.",
+			X: figure.Axis{Label: "strength z"}, Y: figure.Axis{Label: "share below z", Zero: true}}
+		for _, name := range crystalsOf(r) {
+			panel := figure.Panel{Name: name}
+			for i := range r.Distributions {
+				d := &r.Distributions[i]
+				if d.Crystal != name || d.Kind != kind || len(d.Below) == 0 {
+					continue
+				}
+				panel.Curves = append(panel.Curves, figure.Curve{Name: d.Position, X: d.Z, Y: d.Below})
+				if len(panel.Curves) == 1 {
+					panel.Curves = append(panel.Curves, figure.Curve{Name: "Wilson's law", X: d.Z, Y: d.BelowTheory, Style: figure.Ghost})
+				}
+			}
+			if len(panel.Curves) > 0 {
+				p.Panel = append(p.Panel, panel)
+			}
+		}
+		fv.add(kind, p)
+	}
+	g := newGrid("Share of reflections below a strength, over that of Wilson's law", "position", "kind", "reflections", "at z = 0.1", "at z = 0.5").words(1)
+	for i := range r.Distributions {
+		d := &r.Distributions[i]
+		g.add(d.Crystal+"/"+d.Position, d.Kind, count(d.N), shareAt(d, 0.1), shareAt(d, 0.5))
+	}
+	fv.summary = g
+	return fv.view()
+}
+
+func shareAt(d *analysis.Distribution, z float64) string {
+	for i := range d.Z {
+		if d.Z[i] >= z-1e-9 && i < len(d.Below) && i < len(d.BelowTheory) {
+			return fmt.Sprintf("%s, %s", number(d.Below[i], 3), number(d.BelowTheory[i], 3))
+		}
+	}
+	return "\u2013"
+}
