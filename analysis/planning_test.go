@@ -1,0 +1,96 @@
+package analysis
+
+import (
+	"context"
+	"math"
+	"strings"
+	"testing"
+
+	"thinward/analysis/internal/floatcmp"
+	"thinward/analysis/pool"
+	"thinward/analysis/simulate"
+)
+
+// needed must be the inverse of pool.Design.SEFor, which is tested by itself.
+func TestNeededInvertsSEFor(t *testing.T) {
+	for _, d := range []pool.Design{
+		{SE: 0.02, Pairs: 1500, Multiplicity: 4, NoiseShare: 0.6},
+		{SE: 0.05, Pairs: 300, Multiplicity: 2, NoiseShare: 1},
+		{SE: 0.02, Pairs: 1500, Multiplicity: 4, NoiseShare: 0.6, Tau: 0.01},
+	} {
+		for _, m := range []float64{0.02, 0.05, 0.1} {
+			for _, k := range []float64{1, 3, 12} {
+				pairs, mult := needed(d, m, k, 0.05, 0.8)
+				if !math.IsInf(pairs, 1) {
+					floatcmp.Check(t, "seen with these pairs", pool.Visible(d.SEFor(k, pairs, d.Multiplicity), 0.05, 0.8), m, 0, 1e-12)
+				}
+				if !math.IsInf(mult, 1) {
+					floatcmp.Check(t, "seen at this multiplicity", pool.Visible(d.SEFor(k, d.Pairs, mult), 0.05, 0.8), m, 0, 1e-12)
+				} else if pool.Visible(d.SEFor(k, d.Pairs, 1e12), 0.05, 0.8) < m*(1-1e-6) {
+					t.Errorf("%+v: m %g with %g crystals is said to be out of reach", d, m, k)
+				}
+			}
+		}
+	}
+	pairs, mult := needed(pool.Design{SE: 0.02, Pairs: 100, Multiplicity: 4, NoiseShare: 0.5, Tau: 0.1}, 0.01, 1, 0.05, 0.8)
+	if !math.IsInf(pairs, 1) || !math.IsInf(mult, 1) {
+		t.Errorf("the spread alone hides m, yet %g pairs or multiplicity %g are said to do", pairs, mult)
+	}
+}
+
+func smallPlan(crystals int) *simulate.Plan {
+	p := simulate.Tarn()
+	for len(p.Crystals) < crystals {
+		c := p.Crystals[len(p.Crystals)%3]
+		c.Name = "M" + string(rune('0'+len(p.Crystals)))
+		p.Crystals = append(p.Crystals, c)
+	}
+	p.Crystals = p.Crystals[:crystals]
+	p.DMin = 1.6
+	return p
+}
+
+func TestPlan(t *testing.T) {
+	s := studyOf(t, smallPlan(3), &Settings{Replicates: 50, Flips: 50})
+	p, err := s.Plan(context.Background(), &PlanSettings{M: 0.04})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(p.Measured) != 3 || len(p.Needs) != 6 || p.Needs[3].M != 0.04 || len(p.Table) != 36 || len(p.Curve) != 20 {
+		t.Fatalf("%d crystals, %d needs, %d cells, %d points", len(p.Measured), len(p.Needs), len(p.Table), len(p.Curve))
+	}
+	floatcmp.Check(t, "seen with three", p.Seen, p.Curve[2].Seen, 0, 1e-15)
+	floatcmp.Check(t, "seen with one", p.Curve[0].Seen, p.Typical.Seen, 0, 1e-12)
+	for _, k := range p.Measured {
+		if !(k.NoiseShare > 0 && k.NoiseShare <= 1) || int(k.Pairs) > k.Possible || !(k.Multiplicity >= 1) {
+			t.Errorf("%+v", k)
+		}
+	}
+	for i := range p.Needs {
+		n := &p.Needs[i]
+		if i > 0 && n.Crystals > p.Needs[i-1].Crystals {
+			t.Errorf("a larger m needs more crystals: %+v", p.Needs)
+		}
+		if k := n.Crystals; k <= len(p.Curve) && (p.Curve[k-1].Seen > n.M*(1+1e-9) || k > 1 && p.Curve[k-2].Seen <= n.M) {
+			t.Errorf("m %g: %d crystals is not the smallest number", n.M, k)
+		}
+	}
+	for i := range p.Curve {
+		c := &p.Curve[i]
+		if !(c.TwicePairs < c.TwiceMultiplicity) || !(c.TwiceMultiplicity < c.Seen) {
+			t.Errorf("%d crystals: pairs must help more than multiplicity: %+v", i+1, *c)
+		}
+	}
+	if !strings.Contains(p.TauWhy, "not estimable from 3 crystals") || p.Tau != 0 {
+		t.Errorf("spread %g, %q", p.Tau, p.TauWhy)
+	}
+}
+
+func TestPlanRefuses(t *testing.T) {
+	s := studyOf(t, smallPlan(1), &Settings{Replicates: 20, Flips: 20})
+	for _, set := range []PlanSettings{{M: -0.1}, {M: 1}, {M: math.NaN()}, {Power: 0.4}, {Power: 1}} {
+		if _, err := s.Plan(context.Background(), &set); err == nil || !strings.Contains(err.Error(), "must lie between") {
+			t.Errorf("%+v: %v", set, err)
+		}
+	}
+}
