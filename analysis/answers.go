@@ -78,11 +78,12 @@ func answerDiffer(list []*ContrastResult) Answer {
 		a.Verdict = VerdictUnknown
 		a.Text = "It cannot be said: no position has enough symmetry equivalents to take the noise out of a correlation."
 	case n == 0:
-		a.Text = "Beyond counting noise no difference between thinnest and thickest position is seen: " + strings.Join(parts, "; ") + " (1 is identical)."
+		a.Text = "Beyond counting noise no difference between thinnest and thickest position is seen (a true correlation r of 1 is identical)."
 	default:
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("Thinnest and thickest position differ beyond counting noise in %s: true correlation %s (1 is identical).", crystalsOf(n, list), strings.Join(parts, "; "))
+		a.Text = fmt.Sprintf("Thinnest and thickest position differ beyond counting noise in %s (a true correlation r of 1 is identical).", crystalsOf(n, list))
 	}
+	a.Detail = parts
 	return a
 }
 
@@ -106,10 +107,10 @@ func answerExchange(r *Result, list []*ContrastResult) Answer {
 		}
 		parts = append(parts, fmt.Sprintf("%s m = %s", label(c), span(e.M, e.Lo, e.Hi)))
 	}
-	detail := strings.Join(parts, "; ")
 	if list[0].StrengthAxis == leadBracket {
 		return bracketAnswer(a, list)
 	}
+	a.Detail = parts
 	pooled := ""
 	if r.Crystals != nil && r.Crystals.N > 1 && !math.IsNaN(r.Crystals.InThese.Value) {
 		p := r.Crystals
@@ -117,16 +118,16 @@ func answerExchange(r *Result, list []*ContrastResult) Answer {
 	}
 	switch {
 	case estimable == 0:
-		a.Verdict, a.Text = VerdictUnknown, "The exchange cannot be estimated: "+detail+"."
+		a.Verdict, a.Text = VerdictUnknown, "The exchange cannot be estimated."
 	case positive > 0 && negative == 0:
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("Yes, in %s: %s.%s", crystalsOf(positive, list), detail, pooled)
+		a.Text = fmt.Sprintf("Yes, in %s.%s", crystalsOf(positive, list), pooled)
 	case positive == 0 && negative == 0:
 		a.Verdict = VerdictNo
-		a.Text = fmt.Sprintf("No exchange is seen: %s.%s An exchange of m = %s would have been seen in each crystal with 80 %% power.", detail, pooled, short(worst))
+		a.Text = fmt.Sprintf("No exchange is seen.%s An exchange of m = %s would have been seen in each crystal with 80 %% power.", pooled, short(worst))
 	default:
 		a.Verdict = VerdictUnsure
-		a.Text = fmt.Sprintf("The crystals disagree (%d up, %d down): %s.%s", positive, negative, detail, pooled)
+		a.Text = fmt.Sprintf("The crystals disagree: %d up, %d down.%s", positive, negative, pooled)
 	}
 	return a
 }
@@ -137,13 +138,14 @@ func bracketAnswer(a Answer, list []*ContrastResult) Answer {
 	open := 0
 	for _, c := range list {
 		b := c.Bracket
-		parts = append(parts, fmt.Sprintf("%s: between %s (half of the thick position, errs downward) and %s (half of the thin, errs upward), moment ratio %s",
+		parts = append(parts, fmt.Sprintf("%s: m between %s (half of the thick position, errs downward) and %s (half of the thin, errs upward); moment ratio %s",
 			label(c), span(b.Thick.Value, b.Thick.Lo, b.Thick.Hi), span(b.Thin.Value, b.Thin.Lo, b.Thin.Hi), span(c.MomentRatio.M, c.MomentRatio.Lo, c.MomentRatio.Hi)))
 		if !(b.Lo > 0 || b.Hi < 0) {
 			open++
 		}
 	}
-	text := "Only a bracket can be given, since no other crystal of the series says how strong each reflection is: m lies, " + strings.Join(parts, "; ") + "."
+	a.Detail = parts
+	text := "Only a bracket can be given, since no other crystal of the series says how strong each reflection is."
 	if open > 0 {
 		a.Verdict = VerdictUnsure
 		a.Text = text + " The bracket holds 0."
@@ -159,47 +161,49 @@ func bracketAnswer(a Answer, list []*ContrastResult) Answer {
 
 func answerWhere(list []*ContrastResult) Answer {
 	a := Answer{Question: "In weak or in strong reflections?", Section: "strength", Verdict: VerdictNo}
-	seen := 0
-	var floor, top []string
+	seen, weak, strong := 0, 0, 0
 	for _, c := range list {
 		if c.Strength.P < 0.05 {
 			seen++
 		}
-		floor = append(floor, fmt.Sprintf("%s %s", label(c), span(c.Classes.Floor.Eps, c.Classes.Floor.Lo, c.Classes.Floor.Hi)))
-		top = append(top, fmt.Sprintf("%s %s", label(c), span(c.Classes.Top.Eps, c.Classes.Top.Lo, c.Classes.Top.Hi)))
+		a.Detail = append(a.Detail, fmt.Sprintf("%s weakest %s; strongest %s", label(c), span(c.Classes.Floor.Eps, c.Classes.Floor.Lo, c.Classes.Floor.Hi), span(c.Classes.Top.Eps, c.Classes.Top.Lo, c.Classes.Top.Hi)))
+		if c.Classes.Floor.Hi < 0 {
+			weak++
+		}
+		if c.Classes.Top.Lo > 0 {
+			strong++
+		}
 	}
-	detail := fmt.Sprintf("thin minus thick over the local mean, weakest class: %s; strongest class: %s", strings.Join(floor, "; "), strings.Join(top, "; "))
+	const units = " Below: thin minus thick over the local mean, for the weakest and the strongest class."
 	if list[0].StrengthAxis == leadBracket {
 		a.Verdict = VerdictUnsure
-		a.Text = "No strength is known here that is independent of the difference; on the inverse-variance mean, " + detail + ". That axis holds only if the ratio of the two sigmas is right."
+		a.Text = "No strength is known here that is independent of the difference. The classes below are on the inverse-variance mean, which holds only if the ratio of the two sigmas is right." + units
 		return a
 	}
 	if seen > 0 {
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("The curve against strength is not flat in %s (joint test, p < 0.05); %s.", crystalsOf(seen, list), detail)
+		a.Text = fmt.Sprintf("The curve against strength is not flat in %s (joint test, p < 0.05): the weakest gain with thickness in %d, the strongest lose in %d.%s", crystalsOf(seen, list), weak, strong, units)
 		return a
 	}
-	a.Text = fmt.Sprintf("The curve against strength is flat within its noise in all %d; %s.", len(list), detail)
+	a.Text = fmt.Sprintf("The curve against strength is flat within its noise in %s.%s", crystalsOf(len(list), list), units)
 	return a
 }
 
 func answerResolution(list []*ContrastResult) Answer {
 	a := Answer{Question: "At low or at high resolution?", Section: "resolution", Verdict: VerdictNo}
 	seen := 0
-	var parts []string
 	for _, c := range list {
 		r := c.Resolution
 		if r.DeltaBLo > 0 || r.DeltaBHi < 0 {
 			seen++
 		}
-		parts = append(parts, fmt.Sprintf("%s %s A^2", label(c), span(r.DeltaB, r.DeltaBLo, r.DeltaBHi)))
+		a.Detail = append(a.Detail, fmt.Sprintf("%s B thick minus thin %s \u00c5\u00b2", label(c), span(r.DeltaB, r.DeltaBLo, r.DeltaBHi)))
 	}
-	detail := "difference of B, thick minus thin: " + strings.Join(parts, "; ")
 	if seen > 0 {
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("The ratio of the positions falls or rises with resolution in %s (%s). A B factor, radiation damage and redistribution by thickness look alike here.", crystalsOf(seen, list), detail)
+		a.Text = fmt.Sprintf("The ratio of the positions falls or rises with resolution in %s. A B factor, radiation damage and redistribution by thickness look alike here.", crystalsOf(seen, list))
 	} else {
-		a.Text = "No trend with resolution is seen: " + detail + "."
+		a.Text = "No trend with resolution is seen."
 	}
 	return a
 }
@@ -207,7 +211,6 @@ func answerResolution(list []*ContrastResult) Answer {
 func answerForbidden(r *Result, list []*ContrastResult) Answer {
 	a := Answer{Question: "Are forbidden reflections filled?", Section: "forbidden", Verdict: VerdictUnknown}
 	up, known := 0, 0
-	var parts []string
 	for _, c := range list {
 		thin, thick := forbiddenOf(r, c.Crystal, c.Thin), forbiddenOf(r, c.Crystal, c.Thick)
 		if c.ThickCrystal != "" {
@@ -221,17 +224,17 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 		if rise > 2*su {
 			up++
 		}
-		parts = append(parts, fmt.Sprintf("%s %s to %s of the local mean", label(c), pm(thin.Ratio, thin.SU), pm(thick.Ratio, thick.SU)))
+		a.Detail = append(a.Detail, fmt.Sprintf("%s from %s to %s of the local mean", label(c), pm(thin.Ratio, thin.SU), pm(thick.Ratio, thick.SU)))
 	}
 	switch {
 	case known == 0:
 		a.Text = "Not recorded: the lists hold no forbidden reflection in both positions, so nothing can be said, and not that they are absent."
 	case up > 0:
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("They rise with thickness in %s: %s. No scale can do this; a wrong space group fills them at every thickness.", crystalsOf(up, list), strings.Join(parts, "; "))
+		a.Text = fmt.Sprintf("They rise with thickness in %s. No scale can do this; a wrong space group fills them at every thickness.", crystalsOf(up, list))
 	default:
 		a.Verdict = VerdictNo
-		a.Text = "They do not rise with thickness: " + strings.Join(parts, "; ") + "."
+		a.Text = "They do not rise with thickness."
 	}
 	return a
 }
@@ -261,15 +264,22 @@ func answerThickness(r *Result) *Answer {
 		positions = max(positions, len(l.T))
 	}
 	slope := span(t.Slope.Value, t.Slope.Lo, t.Slope.Hi)
+	for _, l := range t.Lines {
+		if l.Why == "" {
+			a.Detail = append(a.Detail, fmt.Sprintf("%s %s per 100 nm", l.Crystal, span(l.Slope.Value, l.Slope.Lo, l.Slope.Hi)))
+		} else {
+			a.Detail = append(a.Detail, l.Crystal+": "+l.Why)
+		}
+	}
 	switch {
 	case positions < 3:
 		a.Verdict = VerdictUnsure
 		a.Text = fmt.Sprintf("With two thicknesses a crystal there is a difference but no trend; per 100 nm it would be %s.", slope)
 	case t.Slope.Lo > 0:
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("mu = -ln(1-m) grows by %s per 100 nm over %d crystals.", slope, len(t.Lines))
+		a.Text = fmt.Sprintf("\u03bc = \u2212ln(1\u2212m) grows by %s per 100 nm over %d crystals.", slope, len(t.Lines))
 	default:
-		a.Text = fmt.Sprintf("No growth is seen: mu = -ln(1-m) changes by %s per 100 nm over %d crystals.", slope, len(t.Lines))
+		a.Text = fmt.Sprintf("No growth is seen: \u03bc = \u2212ln(1\u2212m) changes by %s per 100 nm over %d crystals.", slope, len(t.Lines))
 	}
 	return a
 }
@@ -293,13 +303,15 @@ func answerElse(r *Result) Answer {
 	switch {
 	case len(fails) > 0:
 		a.Verdict = VerdictFails
-		a.Text = fmt.Sprintf("The ledger has checks that fail: %s.", strings.Join(fails, ", "))
+		a.Text = "Checks of the ledger fail."
+		a.Detail = append(a.Detail, "fails: "+strings.Join(fails, ", "))
 		if len(cautions) > 0 {
-			a.Text += fmt.Sprintf(" Cautions: %s.", strings.Join(cautions, ", "))
+			a.Detail = append(a.Detail, "caution: "+strings.Join(cautions, ", "))
 		}
 	case len(cautions) > 0:
 		a.Verdict = VerdictCaution
-		a.Text = fmt.Sprintf("Cautions stand on: %s.", strings.Join(cautions, ", "))
+		a.Text = fmt.Sprintf("No check fails; %d give a caution.", len(cautions))
+		a.Detail = append(a.Detail, "caution: "+strings.Join(cautions, ", "))
 	default:
 		a.Text = "No check of the ledger gives a caution. That does not exclude what no check can see."
 	}
@@ -316,27 +328,28 @@ func span(v, lo, hi float64) string {
 }
 
 // pm writes a value with its standard uncertainty.
-func pm(v, su float64) string { return short(v) + " +- " + short(su) }
+func pm(v, su float64) string { return short(v) + " \u00b1 " + short(su) }
 
 // short writes a number with three decimals, or three digits when it is large.
 func short(v float64) string {
+	size := math.Abs(v)
+	text := ""
 	switch {
-	case math.IsInf(v, 1):
-		return "inf"
-	case math.IsInf(v, -1):
-		return "-inf"
 	case math.IsNaN(v):
-		return "-"
-	case math.Abs(v) >= 100:
-		return fmt.Sprintf("%.0f", v)
-	case math.Abs(v) >= 10:
-		return fmt.Sprintf("%.1f", v)
-	case math.Abs(v) >= 1:
-		return fmt.Sprintf("%.2f", v)
+		return "\u2013"
+	case math.IsInf(v, 0):
+		text = "\u221e"
+	case size >= 100:
+		text = fmt.Sprintf("%.0f", size)
+	case size >= 10:
+		text = fmt.Sprintf("%.1f", size)
+	case size >= 1:
+		text = fmt.Sprintf("%.2f", size)
+	default:
+		text = fmt.Sprintf("%.3f", size)
 	}
-	s := fmt.Sprintf("%.3f", v)
-	if s == "-0.000" {
-		s = "0.000"
+	if v < 0 && text != "0.000" {
+		return "\u2212" + text
 	}
-	return s
+	return text
 }

@@ -456,12 +456,14 @@ type Matters struct {
 	WeakShift      float64 `json:"weak_amplitude_shift"`
 }
 
-// Answer is one sentence of the report's first section.
+// Answer is one card of the report's first section: a sentence, and what stands
+// behind it crystal by crystal.
 type Answer struct {
-	Question string `json:"question"`
-	Text     string `json:"text"`
-	Verdict  string `json:"verdict"`
-	Section  string `json:"section"`
+	Question string   `json:"question"`
+	Text     string   `json:"text"`
+	Detail   []string `json:"detail"`
+	Verdict  string   `json:"verdict"`
+	Section  string   `json:"section"`
 }
 
 // WarningResult is a warning as plain data.

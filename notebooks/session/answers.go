@@ -14,9 +14,12 @@ func (s *Session) Answer() *View {
 	var b, p strings.Builder
 	b.WriteString(`<div class="cards">`)
 	for _, a := range r.Answers {
-		fmt.Fprintf(&b, `<article class="card verdict-%s"><h3>%s</h3><p class="verdict">%s%s</p><p>%s</p><p class="more"><a href="#%s">Where this comes from</a></p></article>`,
-			strings.ReplaceAll(a.Verdict, " ", "-"), html.EscapeString(a.Question), mark(a.Verdict), html.EscapeString(a.Verdict), html.EscapeString(a.Text), a.Section)
+		fmt.Fprintf(&b, `<article class="card verdict-%s"><h3>%s</h3><p class="verdict">%s%s</p><p>%s</p>%s<p class="more"><a href="#%s">Where this comes from</a></p></article>`,
+			strings.ReplaceAll(a.Verdict, " ", "-"), html.EscapeString(a.Question), mark(a.Verdict), html.EscapeString(a.Verdict), html.EscapeString(a.Text), bullets(a.Detail), a.Section)
 		fmt.Fprintf(&p, "%s [%s]\n  %s\n", a.Question, a.Verdict, a.Text)
+		for _, d := range a.Detail {
+			fmt.Fprintf(&p, "  - %s\n", d)
+		}
 	}
 	b.WriteString("</div>")
 	return &View{Title: "The answer", HTML: b.String(), Plain: p.String()}
@@ -53,4 +56,16 @@ func (s *Session) Warnings() *View {
 		g.add("everywhere", "nothing to warn of")
 	}
 	return g.view("Warnings")
+}
+
+func bullets(list []string) string {
+	if len(list) == 0 {
+		return ""
+	}
+	var b strings.Builder
+	b.WriteString(`<ul class="detail">`)
+	for _, s := range list {
+		b.WriteString("<li>" + html.EscapeString(s) + "</li>")
+	}
+	return b.String() + "</ul>"
 }

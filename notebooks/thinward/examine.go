@@ -100,9 +100,11 @@ func (a *app) report(ctx context.Context, series, out string, set map[string]str
 		m.stop()
 		return failure
 	}
-	stopped := m.stop()
+	stopped := ""
 	if failure == nil {
 		m.finish()
+	} else {
+		stopped = m.stop()
 	}
 	return a.deliver(folder, res, failure, stopped, pageOptions{
 		title: file.Title, source: series, again: fmt.Sprintf("thinward examine %s%s", series, setText(set)), trusted: true, elapsed: res.Elapsed,
@@ -217,7 +219,7 @@ func (a *app) deliver(f *folder, res *runner.Result, failure error, stopped stri
 		return failure
 	}
 	if r != nil {
-		fmt.Fprintln(a.out, oneLine(r))
+		fmt.Fprintln(a.out, a.plainText(oneLine(r)))
 	}
 	fmt.Fprintln(a.out, "Open", filepath.Join(f.out, pageFile))
 	return nil
@@ -249,6 +251,14 @@ func oneLine(r *analysis.Result) string {
 		}
 	}
 	return plural(cautions, "caution") + "."
+}
+
+// plainText replaces what a terminal without UTF-8 cannot show.
+func (a *app) plainText(s string) string {
+	if utf8Terminal() {
+		return s
+	}
+	return strings.NewReplacer("\u2212", "-", "\u2013", "-", "\u00b1", "+-", "\u221e", "inf", "\u03bc", "mu", "\u00c5\u00b2", "A^2").Replace(s)
 }
 
 func plural(n int, word string) string {

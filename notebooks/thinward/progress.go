@@ -28,9 +28,19 @@ func (a *app) meter() *meter {
 			m.terminal = info.Mode()&os.ModeCharDevice != 0 && os.Getenv("TERM") != "dumb"
 		}
 	}
-	lang := os.Getenv("LC_ALL") + os.Getenv("LC_CTYPE") + os.Getenv("LANG")
-	m.ascii = !strings.Contains(strings.ToUpper(strings.ReplaceAll(lang, "-", "")), "UTF8")
+	m.ascii = !utf8Terminal()
 	return m
+}
+
+// utf8Terminal reports whether the locale promises UTF-8, the first of LC_ALL,
+// LC_CTYPE and LANG that is set deciding.
+func utf8Terminal() bool {
+	for _, name := range []string{"LC_ALL", "LC_CTYPE", "LANG"} {
+		if v := os.Getenv(name); v != "" {
+			return strings.Contains(strings.ToUpper(strings.ReplaceAll(v, "-", "")), "UTF8")
+		}
+	}
+	return false
 }
 
 // at says that a step is as far as done of total; index and steps number it, 0
