@@ -292,3 +292,20 @@ func (s *Session) Provenance() *View {
 	v.Plain += line + "\n"
 	return v
 }
+
+// AngleInfluence shows what each range of the rotation angle does to the
+// agreement of equivalents.
+func (s *Session) AngleInfluence() *View {
+	list, err := s.study.AngleInfluences(Context())
+	if err != nil {
+		panic(&Error{Step: "scaling", Err: err, Inside: FaultOf(err) == FaultInside})
+	}
+	g := newGrid("Influence of ranges of the rotation angle on the agreement; reported, not acted on", "position", "angles (\u00b0)", "observations", "R_meas", "without the range", "CC1/2", "without the range")
+	for _, x := range list {
+		g.add(x.Crystal+"/"+x.Position, number(x.LoDeg, 0)+" to "+number(x.HiDeg, 0), count(x.Observations), number(x.RMeas, 4), number(x.RMeasWithout, 4), number(x.CCHalf, 4), number(x.CCWithout, 4))
+	}
+	if len(list) == 0 {
+		g.add("all", "none", "\u2013", "\u2013", "\u2013", "\u2013", "\u2013")
+	}
+	return g.view("Influence of angles")
+}
