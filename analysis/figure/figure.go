@@ -7,7 +7,8 @@ type Figure struct {
 	Title, Desc string
 	// SVG is one self-contained svg element of at most MaxBytes bytes.
 	SVG string
-	// Table holds the drawn numbers; long curves are thinned to at most 25 rows.
+	// Table holds the drawn numbers; long curves are thinned to at most 25 rows, to 12
+	// where several share the table.
 	Table *Table
 	// Notes say what an axis or a limit left out, with counts; empty when nothing.
 	Notes []string
@@ -28,8 +29,10 @@ type Table struct {
 // Scale is how an axis maps numbers to places.
 type Scale int
 
-// Scales. Root draws sign(x)*sqrt(|x|), so that weak and strong reflections both
-// have room and negative values stay on the axis. Log leaves out values <= 0 and
+// Scales. Root draws sqrt(|x|) with the sign of x, so that weak and strong
+// reflections both have room and negative values stay on the axis; on an axis
+// that crosses 0 it draws sqrt(|x|+c) - sqrt(c) instead, with c a twentieth of the
+// larger end, since a bare root would blow up every change of sign. Log leaves out values <= 0 and
 // counts them. Rank gives every distinct abscissa of the drawn points the same
 // room.
 const (
@@ -40,7 +43,7 @@ const (
 )
 
 // Axis describes one axis. Lo and Hi are its ends; when both are 0, or Lo is not
-// below Hi, the data give them. Reverse draws it from high to low.
+// below Hi, or the scale is Rank, the data give them. Reverse draws it from high to low.
 type Axis struct {
 	Label   string
 	Scale   Scale

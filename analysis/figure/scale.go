@@ -15,16 +15,18 @@ type scaler struct {
 	scale   Scale
 	lo, hi  float64
 	reverse bool
+	soft    float64 // core of a Root axis that crosses 0
 	ranks   []float64
 	left    int // values that no place exists for
 }
 
 func (s *scaler) drawable(v float64) bool {
-	return !math.IsNaN(v) && math.Abs(v) <= largest && (s.scale != Log || v > 0)
+	return !math.IsNaN(v) && math.Abs(v) <= largest && (s.scale != Log || v >= 1/largest)
 }
 
 // newScaler finds the range of an axis from the values that it will show. Values
-// that are not finite, or not positive on a Log axis, are left out and counted;
+// that are infinite, or not positive on a Log axis, are left out and counted;
+// not-a-number is a gap and not counted;
 // without any value the axis goes from 0 to 1.
 // Bounds, the ends of bands and intervals, widen the range and are not counted.
 func newScaler(a Axis, values, bounds [][]float64) *scaler {
@@ -32,7 +34,7 @@ func newScaler(a Axis, values, bounds [][]float64) *scaler {
 	for i, list := range slices.Concat(values, bounds) {
 		for _, v := range list {
 			if !s.drawable(v) {
-				if i < len(values) {
+				if i < len(values) && !math.IsNaN(v) {
 					s.left++
 				}
 				continue
@@ -43,7 +45,7 @@ func newScaler(a Axis, values, bounds [][]float64) *scaler {
 			}
 		}
 	}
-	fixed := a.Lo < a.Hi && s.drawable(a.Lo) && s.drawable(a.Hi)
+	fixed := a.Scale != Rank && a.Lo < a.Hi && s.drawable(a.Lo) && s.drawable(a.Hi)
 	switch {
 	case fixed:
 		s.lo, s.hi = a.Lo, a.Hi
@@ -53,13 +55,20 @@ func newScaler(a Axis, values, bounds [][]float64) *scaler {
 		s.lo, s.hi = 0, 1
 	default:
 		s.room(a.Zero)
+		s.lo, s.hi = max(s.lo, -largest), min(s.hi, largest)
+		if s.scale == Log {
+			s.lo = max(s.lo, 1/largest)
+		}
+	}
+	if s.scale == Root && s.lo < 0 && s.hi > 0 {
+		s.soft = max(-s.lo, s.hi) / 20
 	}
 	if s.scale == Rank {
 		sort.Float64s(s.ranks)
 		s.ranks = slices.Compact(s.ranks)
 		if len(s.ranks) < 2 {
 			s.scale, s.ranks = Linear, nil
-		} else if !fixed {
+		} else {
 			s.lo, s.hi = s.ranks[0], s.ranks[len(s.ranks)-1]
 		}
 	}
@@ -117,7 +126,7 @@ func square(v float64) float64 { return math.Copysign(v*v, v) }
 func (s *scaler) map1(v float64) float64 {
 	switch s.scale {
 	case Root:
-		return root(v)
+		return math.Copysign(math.Sqrt(math.Abs(v)+s.soft)-math.Sqrt(s.soft), v)
 	case Log:
 		return math.Log(v)
 	case Rank:

@@ -1,7 +1,11 @@
 package figure
 
-// tableRows bounds the rows that one curve takes in a table.
-const tableRows = 25
+// tableRows bounds the rows that one curve takes in a table, sharedRows those of
+// each of several.
+const (
+	tableRows  = 25
+	sharedRows = 12
+)
 
 // table writes the drawn points of all panels, long curves thinned evenly.
 func (l *layout) table(title string, panels []Panel) *Table {
@@ -31,10 +35,14 @@ func (l *layout) table(title string, panels []Panel) *Table {
 		add("low, simultaneous", false)
 		add("high, simultaneous", false)
 	}
+	bound := tableRows
+	if hasCurve || len(panels) > 1 {
+		bound = sharedRows
+	}
 	for i := range panels {
 		for j := range panels[i].Curves {
 			c := &panels[i].Curves[j]
-			for _, k := range thin(c.X, tableRows) {
+			for _, k := range thin(c.X, bound) {
 				var row []string
 				if hasName {
 					row = append(row, panels[i].Name)

@@ -40,7 +40,9 @@ func (s *scaler) even(length, spacing float64) []Mark {
 		if v > s.hi+1e-9*step {
 			break
 		}
-		out = append(out, Mark{v, label(v, step)})
+		if s.drawable(v) {
+			out = append(out, Mark{v, label(v, step)})
+		}
 	}
 	return out
 }
