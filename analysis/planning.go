@@ -59,7 +59,7 @@ type PlanNeed struct {
 }
 
 // PlanCell is what each of so many crystals must bring to see M: pairs at the
-// multiplicity of today, or multiplicity at the pairs of today.
+// multiplicity of today, or multiplicity (at least 1) at the pairs of today.
 type PlanCell struct {
 	M            float64 `json:"m"`
 	Crystals     int     `json:"crystals"`
@@ -199,6 +199,7 @@ func (p *Planning) fill() error {
 		for _, k := range plannedCrystals {
 			c := PlanCell{M: m, Crystals: k}
 			c.Pairs, c.Multiplicity = needed(d, m, float64(k), 1-p.Level, p.Power)
+			c.Multiplicity = math.Max(1, c.Multiplicity)
 			p.Table = append(p.Table, c)
 		}
 	}

@@ -94,3 +94,25 @@ func TestPlanRefuses(t *testing.T) {
 		}
 	}
 }
+
+// Where equivalents and positions scatter by counting alone, counting noise is
+// all there is; deviations take their share.
+func TestNoiseShare(t *testing.T) {
+	share := func(deviation float64) float64 {
+		p := smallPlan(2)
+		for i := range p.Crystals {
+			for j := range p.Crystals[i].Positions {
+				p.Crystals[i].Positions[j].Deviation = deviation
+			}
+		}
+		s := studyOf(t, p, &Settings{Replicates: 20, Flips: 20})
+		x, err := s.Compare(context.Background(), s.Contrasts()[0])
+		if err != nil {
+			t.Fatal(err)
+		}
+		return noiseShare(x)
+	}
+	if none, some := share(0), share(0.3); none < 0.8 || some > 0.3 {
+		t.Errorf("share of noise %.2f without deviations and %.2f with 30 %%", none, some)
+	}
+}

@@ -1,0 +1,129 @@
+package main
+
+import (
+	"context"
+	"fmt"
+	"io"
+	"math"
+	"strings"
+	"text/tabwriter"
+
+	"github.com/spf13/cobra"
+
+	"thinward/analysis"
+	"thinward/io/manifest"
+	"thinward/io/result"
+)
+
+func (a *app) plan() *cobra.Command {
+	var m, power float64
+	c := &cobra.Command{
+		Use:   "plan SERIES.toml",
+		Short: "How many crystals, pairs and observations an exchange of a given size needs, by this series' own noise",
+		Example: `  thinward plan fixtures/tarn/series.toml --m 0.03
+  thinward plan series.toml --m 0.02 --json`,
+		Args: cobra.ExactArgs(1),
+		RunE: func(c *cobra.Command, args []string) error {
+			if !(m > 0 && m < 1) {
+				return usageError{fmt.Errorf("--m %g: give a fraction between 0 and 1, such as 0.03", m)}
+			}
+			if !(power > 0.5 && power < 1) {
+				return usageError{fmt.Errorf("--power %g: give a share between 0.5 and 1, such as 0.8", power)}
+			}
+			return a.printPlanning(c.Context(), args[0], &analysis.PlanSettings{M: m, Power: power})
+		},
+	}
+	c.Flags().Float64Var(&m, "m", 0.03, "the exchange to be seen")
+	c.Flags().Float64Var(&power, "power", 0.8, "share of experiments that are to see it")
+	c.Flags().BoolVar(&a.json, "json", false, "print JSON, the curve included")
+	return c
+}
+
+func (a *app) printPlanning(ctx context.Context, series string, set *analysis.PlanSettings) error {
+	study, err := manifest.Load(series)
+	if err != nil {
+		return err
+	}
+	p, err := study.Plan(ctx, set)
+	if err != nil {
+		return err
+	}
+	if a.json {
+		return result.EncodeAny(a.out, *p)
+	}
+	return writePlanning(a.out, p)
+}
+
+func writePlanning(w io.Writer, p *analysis.Planning) error {
+	var b strings.Builder
+	t := tabwriter.NewWriter(&b, 0, 0, 2, ' ', tabwriter.AlignRight)
+	fmt.Fprintln(t, "measured\tSE of m\tpairs\tof possible\tmultiplicity\tshare of counting noise\tm seen alone\t")
+	for _, k := range append(append([]analysis.PlanCrystal(nil), p.Measured...), p.Typical) {
+		fmt.Fprintf(t, "%s\t%s\t%.0f\t%d\t%.1f\t%s\t%s\t\n", k.Crystal, dash(k.SE, 4), k.Pairs, k.Possible, k.Multiplicity, dash(100*k.NoiseShare, 0)+" %", dash(k.Seen, 3))
+	}
+	if err := t.Flush(); err != nil {
+		return err
+	}
+	fmt.Fprintf(&b, "\nWhat each crystal must bring, by the number of crystals: pairs at multiplicity %.1f, or multiplicity at %.0f pairs (-: more than there are, or no number)\n", p.Typical.Multiplicity, p.Typical.Pairs)
+	head := "m"
+	for _, c := range p.Table {
+		if c.M == p.Table[0].M {
+			head += fmt.Sprintf("\t%d", c.Crystals)
+		}
+	}
+	fmt.Fprintln(t, head+"\tcrystals needed as measured\t")
+	for i := range p.Needs {
+		n := &p.Needs[i]
+		line := fmt.Sprintf("%g", n.M)
+		for _, c := range p.Table {
+			if c.M == n.M {
+				line += "\t" + reach(c.Pairs, float64(p.Typical.Possible), 0) + " or " + reach(c.Multiplicity, math.MaxFloat64, 1)
+			}
+		}
+		need := fmt.Sprint(n.Crystals)
+		if n.Why != "" {
+			need = "-"
+		}
+		fmt.Fprintln(t, line+"\t"+need+"\t")
+	}
+	if err := t.Flush(); err != nil {
+		return err
+	}
+	fmt.Fprintf(&b, "\nSmallest m seen with a power of %g, by the number of crystals\n", p.Power)
+	fmt.Fprintln(t, "crystals\tas measured\ttwice the multiplicity\ttwice the pairs\t")
+	for _, c := range p.Curve {
+		if k := c.Crystals; k <= 6 || k%5 == 0 {
+			fmt.Fprintf(t, "%d\t%.4f\t%.4f\t%.4f\t\n", k, c.Seen, c.TwiceMultiplicity, c.TwicePairs)
+		}
+	}
+	if err := t.Flush(); err != nil {
+		return err
+	}
+	b.WriteByte('\n')
+	for _, c := range p.Cautions {
+		b.WriteString(c + "\n")
+	}
+	fmt.Fprintf(&b, "With %s as measured here an exchange of %.3f would be seen; for m = %g %s.\n", plural(len(p.Measured), "crystal"), p.Seen, p.M, needText(p))
+	_, err := io.WriteString(w, b.String())
+	return err
+}
+
+func needText(p *analysis.Planning) string {
+	for i := range p.Needs {
+		if n := &p.Needs[i]; n.M == p.M && n.Why == "" {
+			if n.Crystals == 1 {
+				return "one such crystal is enough"
+			}
+			return fmt.Sprintf("%d such crystals are needed", n.Crystals)
+		}
+	}
+	return "no number of such crystals is enough"
+}
+
+// reach writes a number that is needed, a dash when there cannot be so many.
+func reach(v, most float64, decimals int) string {
+	if v > most {
+		return "-"
+	}
+	return fmt.Sprintf("%.*f", decimals, v)
+}
