@@ -102,7 +102,8 @@ func TestNoiseShare(t *testing.T) {
 		p := smallPlan(2)
 		for i := range p.Crystals {
 			for j := range p.Crystals[i].Positions {
-				p.Crystals[i].Positions[j].Deviation = deviation
+				q := &p.Crystals[i].Positions[j]
+				q.Deviation, q.Exchange, q.Curb, q.Offset = deviation, 0, 0, 0
 			}
 		}
 		s := studyOf(t, p, &Settings{Replicates: 20, Flips: 20})
