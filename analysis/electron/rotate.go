@@ -32,7 +32,7 @@ type BeamSettings struct {
 	// StepDeg is the rotation between two calculations; 0 takes 0.7 DMin/t, t the longest
 	// path, which samples the fastest rocking curve finely enough to integrate it.
 	StepDeg float64
-	// MostBeams bounds the number of beams at one angle; 0 = 400.
+	// MostBeams bounds the number of beams at one angle; 0 = 800.
 	MostBeams int
 	// Slowest is the least distance from the rotation axis over |g| of a reflection that is
 	// listed; 0 = 0.25.
@@ -104,7 +104,7 @@ func (s *BeamSettings) filled(sw *Sweep) BeamSettings {
 		}
 	}
 	if o.MostBeams == 0 {
-		o.MostBeams = 400
+		o.MostBeams = 800
 	}
 	if o.StepDeg == 0 {
 		longest := 0.0
