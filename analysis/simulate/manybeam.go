@@ -9,7 +9,7 @@ import (
 	"thinward/analysis/electron"
 )
 
-// Slate returns the plan of the second demonstration, "Slate, many beams": two
+// Slate returns the plan of the second demonstration, "Slate, many beams": three
 // crystals of a small invented structure in P 21 21 21 at 200 kV, turned from -36 to 36
 // degrees, with positions of 30, 60 and 100 nm. It has no exchange of its own: hand it to
 // ManyBeam for intensities in which thickness acts as physics has it, or to Invent for the
@@ -22,8 +22,8 @@ func Slate() *Plan {
 		Structure:        Structure{B: 2},
 		Common:           Position{FrameDeg: 0.5, TiltDeg: []float64{-36, 36}, Background: 20, Readout: 2, Scatter: 0.03},
 	}
-	order := [2][3]int{{1, 2, 3}, {3, 1, 2}}
-	for i, name := range []string{"S1", "S2"} {
+	order := [3][3]int{{1, 2, 3}, {3, 1, 2}, {2, 3, 1}}
+	for i, name := range []string{"S1", "S2", "S3"} {
 		c := Crystal{Name: name}
 		for j, place := range []string{"thin", "mid", "thick"} {
 			t := []float64{30, 60, 100}[j]
