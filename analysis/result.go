@@ -264,6 +264,8 @@ type CurbForm struct {
 	Q    Interval `json:"q"`
 	J    float64  `json:"j"`
 	Why  string   `json:"why,omitempty"`
+	// Refused says that the data refuse this form against the best.
+	Refused bool `json:"refused"`
 }
 
 // Bracket holds the two estimates of m from halves of one position: Hi with half

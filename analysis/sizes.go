@@ -201,16 +201,18 @@ func (s *Study) giants(x *Compared) {
 	}
 }
 
-// curbForms fits the curb in its forms side by side. The count rate needs the
-// scale of each observation, which an average over equivalents has lost.
+// curbForms fits the curb in its forms side by side. The count rate is that of the
+// mean scale of a reflection's observations in the thick position.
 func (s *Study) curbForms(x *Compared) {
-	cmp, err := size.CompareCurbs(x.Input, nil, max(x.Model, size.MQ), s.sizeSettings())
+	in := *x.Input
+	in.Exposure = s.exposure(x)
+	cmp, err := size.CompareCurbs(&in, nil, max(x.Model, size.MQ), s.sizeSettings())
 	if err != nil {
 		x.warn("curb-forms", "the forms of the curb cannot be compared: "+err.Error())
 		return
 	}
 	for _, rival := range cmp.Rivals {
-		f := CurbForm{Form: rival.Form.String(), J: rival.J, Q: none()}
+		f := CurbForm{Form: rival.Form.String(), J: rival.J, Q: none(), Refused: rival.Refused}
 		if rival.Fit != nil {
 			f.Q = interval(rival.Fit.Q.Value, rival.Fit.Q.Lo, rival.Fit.Q.Hi, rival.Fit.Why)
 		}
@@ -224,6 +226,26 @@ func (s *Study) curbForms(x *Compared) {
 		}
 		x.Result.CurbForms = append(x.Result.CurbForms, f)
 	}
+}
+
+// exposure gives, pair by pair, the mean scale at which the thick position recorded
+// the reflection, epsilon included; nil between crystals.
+func (s *Study) exposure(x *Compared) []float64 {
+	if x.Contrast.Across() {
+		return nil
+	}
+	sc := s.scaled[x.Contrast.Crystal]
+	first := sc.first[sc.slot[x.Contrast.Thick]]
+	sum, n := make([]float64, s.intake.Catalogue.Len()), make([]float64, s.intake.Catalogue.Len())
+	for o, u := range x.thick.Unique {
+		sum[u] += sc.Fit.Scale[first+o]
+		n[u]++
+	}
+	out := make([]float64, x.Pairs.Len())
+	for i, u := range x.Pairs.Unique {
+		out[i] = x.Pairs.Epsilon[i] * sum[u] / n[u]
+	}
+	return out
 }
 
 func (s *Study) classes(x *Compared) error {

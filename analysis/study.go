@@ -77,6 +77,7 @@ type Study struct {
 	pooled        *joined
 	controls      []ControlResult
 	spec          []Specification
+	found         *confounders
 	expected      *Expectation
 	warnings      []intensity.Warning
 }
@@ -196,6 +197,7 @@ func (s *Study) steps() []step {
 		{"crystals", func(ctx context.Context) error { _, err := s.Join(ctx); return err }},
 		{"controls", func(ctx context.Context) error { _, err := s.Controls(ctx); return err }},
 		{"specification", func(ctx context.Context) error { _, err := s.Specification(ctx); return err }},
+		{"ledger", func(ctx context.Context) error { _, err := s.Ledger(ctx); return err }},
 		{"expectation", func(ctx context.Context) error { _, err := s.Expectation(ctx); return err }},
 	}
 }

@@ -1,0 +1,190 @@
+package evidence
+
+import (
+	"fmt"
+	"math"
+)
+
+// Rows compares rows with the observations that they are. Caution when there are
+// more than a thousandth more rows: they were collapsed or summed, and the reader
+// should know as what.
+func Rows(rows, observations int, as string) Finding {
+	f := Finding{Value: float64(rows) / float64(observations), Unit: "rows an observation", Verdict: Fine, Why: "every row is an observation of its own"}
+	if f.Value > 1.001 {
+		f.Verdict = Caution
+		f.Why = fmt.Sprintf("%d rows are %d observations: rows were taken as %s, and counted once", rows, observations, as)
+	}
+	return f
+}
+
+// Negatives looks for removed negatives. below and above count observations within
+// half a sigma of zero; noise makes the density of I/sigma smooth there whatever
+// the intensities are, so a step tells. observed and expected count below 0, 1, 2
+// and 3 sigma, the latter by Wilson's law, and are said beside it. Fewer than 20
+// above decide nothing and matter little. Fails below three tenths (removing I < 0
+// alone makes m = -0.09), caution when below is under 0.7 of above and by more than three
+// standard deviations of an even split.
+func Negatives(below, above int, observed []int, expected []float64) Finding {
+	f := Finding{Value: float64(below) / float64(above), Unit: "just below zero over just above, within half a sigma", Verdict: Fine}
+	counts := ""
+	for k := range observed {
+		if k > 0 {
+			counts += ", "
+		}
+		counts += fmt.Sprintf("%d (%.0f)", observed[k], expected[k])
+	}
+	if counts != "" {
+		counts = "; below 0, 1, 2, 3 sigma there are (Wilson's law expects): " + counts
+	}
+	split := float64(above-below) / math.Sqrt(math.Max(float64(above+below), 1))
+	switch {
+	case above < 20:
+		f.Why = fmt.Sprintf("%d observations just above zero: too few to tell, and too few to matter%s", above, counts)
+		if above == 0 {
+			f.Value = math.NaN()
+		}
+	case 10*below < 3*above:
+		f.Verdict, f.Why = Fails, "the density of I/sigma has a step at zero: weak intensities were cut off or set to zero, which alone makes an exchange"+counts
+	case f.Value < 0.7 && split > 3:
+		f.Verdict, f.Why = Caution, "fewer observations lie just below zero than noise leads one to expect"+counts
+	default:
+		f.Why = "the density of I/sigma is smooth at zero, as noise makes it" + counts
+	}
+	return f
+}
+
+// OffsetOf judges an additive constant o, in units of the mean intensity of the
+// lowest third in s^2, with its interval. Caution when the interval excludes 0;
+// fails beyond 0.05, where shell means of weak shells are mostly offset.
+func OffsetOf(o, lo, hi float64) Finding {
+	f := Finding{Value: o, Unit: "of the mean of the strong third", Verdict: Fine, Why: "no additive offset between the positions is seen; the fitted m allows for one"}
+	switch {
+	case math.IsNaN(o):
+		return unknown("an offset is not part of the model that leads")
+	case (lo > 0 || hi < 0) && math.Abs(o) > 0.05:
+		f.Verdict, f.Why = Fails, "a large additive offset is seen (background, readout): shell means of the weak shells are not of reflections alone"
+	case lo > 0 || hi < 0:
+		f.Verdict, f.Why = Caution, "an additive offset is seen (background, readout, or true double scattering, which also falls off more slowly than the intensities); the fitted m allows for it, a model without it would not"
+	}
+	return f
+}
+
+// Deviations judges the reproducible differences of single reflections: r with its
+// interval, the deviation b_D of pairs beyond their noise, and the bracket of m from
+// halves of either position. Caution when r lies below 0.98 with its whole
+// interval: then axes that share a position with the difference are biased,
+// however well it is counted. independent says that the leading axis is of other
+// crystals.
+func Deviations(r, lo, hi, extra, thinHalf, thickHalf float64, independent bool) Finding {
+	if math.IsNaN(r) {
+		return unknown("the true correlation between the positions is not estimable")
+	}
+	f := Finding{Value: r, Unit: "true correlation r", Verdict: Fine}
+	f.Why = fmt.Sprintf("r = %s (%s to %s); pairs differ by %s of their intensity beyond their noise; m from halves of the thin position %s, of the thick %s",
+		num(r), num(lo), num(hi), num(math.Max(extra, 0)), num(thinHalf), num(thickHalf))
+	if hi < 0.98 {
+		f.Verdict = Caution
+		f.Why += "; the positions deviate from each other reproducibly"
+		if independent {
+			f.Why += ", which the axis of the other crystals does not share; axes from the same crystal do"
+		} else {
+			f.Why += ", and the leading axis shares that with the difference"
+		}
+	}
+	return f
+}
+
+// CurbForm is what the ledger knows of one form of the curb.
+type CurbForm struct {
+	Name      string
+	Q, Lo, Hi float64
+	J         float64
+	Refused   bool
+}
+
+// CountRate is the form of a loss in the detector.
+const CountRate = "count rate"
+
+// HighCounts asks whether a loss of the strongest could be the detector's. Fine
+// when no form finds a q, or the data refuse the count rate; caution when a q is
+// found and the count rate fits best or cannot be refused.
+func HighCounts(forms []CurbForm) Finding {
+	if len(forms) == 0 {
+		return unknown("the forms of the curb could not be compared")
+	}
+	best, rate, seen := 0, -1, false
+	for k, f := range forms {
+		if f.J < forms[best].J {
+			best = k
+		}
+		if f.Name == CountRate {
+			rate = k
+		}
+		seen = seen || f.Lo > 0
+	}
+	out := Finding{Value: forms[best].Q, Unit: "q of the form that fits best, " + forms[best].Name, Verdict: Fine}
+	switch {
+	case !seen:
+		out.Why = "no loss of the strongest reflections is seen in any of the forms"
+	case rate < 0:
+		out.Verdict, out.Why = Caution, "a loss of the strongest is seen; whether it goes with the count rate of the detector is not known"
+	case forms[rate].Refused:
+		out.Why = "a loss of the strongest is seen, and the data refuse that it goes with the count rate: it is not the detector's"
+	case rate == best:
+		out.Verdict, out.Why = Caution, "a loss of the strongest is seen that goes best with the count rate: dead time or saturation of the detector does this"
+	default:
+		out.Verdict, out.Why = Caution, "a loss of the strongest is seen, and the data cannot tell whether it goes with the intensity (scattering) or with the count rate (detector); only another exposure can"
+	}
+	return out
+}
+
+// clearZ is the normal deviate beyond which a check of many is believed: with
+// two dozen positions it errs in under 2 % of series.
+const clearZ = 3.5
+
+// BleedOf judges the share of lattice neighbours' signal that leaks in. Caution
+// beyond 3.5 standard errors and 0.2 %, fails when that share is 5 % or more.
+func BleedOf(s *Slope, err error) Finding {
+	if err != nil {
+		return unknown("%s", err.Error())
+	}
+	f := Finding{Value: s.Value, Unit: "of the neighbours' signal", Verdict: Fine,
+		Why: fmt.Sprintf("reflections do not gain beside strong lattice neighbours on the same frame (%s +- %s, z = %.1f within equivalents)", num(s.Value), num(s.SE), s.Z)}
+	if s.Z > clearZ && s.Value > 0.002 {
+		f.Verdict = Caution
+		f.Why = fmt.Sprintf("reflections gain beside strong lattice neighbours on the same frame (%s +- %s, z = %.1f within equivalents): spots overlap or background runs, which fills weak reflections like an exchange", num(s.Value), num(s.SE), s.Z)
+		if s.Value >= 0.05 {
+			f.Verdict = Fails
+		}
+	}
+	return f
+}
+
+// DoubleOf gives the double-scattering predictor without a verdict.
+func DoubleOf(s *Slope, err error) Finding {
+	if err != nil {
+		return unknown("%s", err.Error())
+	}
+	return Finding{Value: s.Z, Unit: "z within equivalents", Verdict: NotKnown,
+		Why: "gain where pairs of reflections that add up to it stood on the same frame; drawn without a verdict: in a real pair it was stronger in the thin crystal, the wrong order for multiple scattering, so it may be what frames leave of their scale"}
+}
+
+// TiltOf judges the exchange between equivalents at low and at high tilt within
+// one position. Caution when it is seen: thickness along the beam differs within
+// the position, and its m is an average; it also is a second, independent sign of
+// growth with thickness.
+func TiltOf(m, lo, hi float64, pairs int) Finding {
+	if math.IsNaN(m) {
+		return unknown("m between equivalents at low and high tilt is not estimable")
+	}
+	f := Finding{Value: m, Unit: "m, low against high tilt", Verdict: Fine, Why: fmt.Sprintf("equivalents at high tilt (a longer way through the slab) are like those at low tilt: m = %s (%s to %s) of %d reflections", num(m), num(lo), num(hi), pairs)}
+	if lo > 0 || hi < 0 {
+		f.Verdict = Caution
+		if lo > 0 {
+			f.Why = fmt.Sprintf("intensity moves from strong to weak with tilt within one position, m = %s (%s to %s), as a way of 1/cos through the slab makes it: a second sign of thickness, and one position is a mixture of thicknesses", num(m), num(lo), num(hi))
+		} else {
+			f.Why = fmt.Sprintf("intensity moves from weak to strong with tilt, m = %s (%s to %s), the wrong way for thickness: absorption, background or the angle at which the slab faces the beam", num(m), num(lo), num(hi))
+		}
+	}
+	return f
+}

@@ -1,0 +1,101 @@
+package analysis
+
+import (
+	"math"
+
+	"thinward/analysis/difference"
+	"thinward/analysis/evidence"
+)
+
+// ledgerContrasts judges the primary contrasts compared so far.
+func (s *Study) ledgerContrasts(b *ledgerBook) {
+	kinds := map[string][]placed{}
+	put := func(check, where string, f evidence.Finding) { kinds[check] = append(kinds[check], placed{where, f}) }
+	for _, c := range s.list {
+		x := s.compared[c]
+		if x == nil || !(c.Primary || c.Across()) {
+			continue
+		}
+		s.judgeContrast(x, put)
+	}
+	for _, check := range []struct {
+		name  string
+		ideal float64
+	}{
+		{"strength axis", 1}, {"deviations", 1}, {"additive offset", 0}, {"high counts", 0}, {"model against curve", 1},
+		{"axis third against leading", 0}, {"axis inverse-variance against leading", 0}, {"ghost of noise", 1}, {"giants", 0},
+	} {
+		b.fold(check.name, "contrasts", check.ideal, kinds[check.name])
+	}
+}
+
+func (s *Study) judgeContrast(x *Compared, put func(check, where string, f evidence.Finding)) {
+	r, where := &x.Result, s.Name(x.Contrast)
+	independent := x.Leading == leadCrystals
+	put("strength axis", where, evidence.AxisOf(r.AxisAgreement, x.Leading, independent))
+	put("deviations", where, evidence.Deviations(r.Correlation.R, r.Correlation.Lo, r.Correlation.Hi, r.PairNoise, r.Bracket.Thin.Value, r.Bracket.Thick.Value, independent))
+	put("additive offset", where, evidence.OffsetOf(r.Offset.O, r.Offset.Lo, r.Offset.Hi))
+	if independent {
+		var forms []evidence.CurbForm
+		for _, f := range r.CurbForms {
+			forms = append(forms, evidence.CurbForm{Name: f.Form, Q: f.Q.Value, Lo: f.Q.Lo, Hi: f.Q.Hi, J: f.J, Refused: f.Refused})
+		}
+		put("high counts", where, evidence.HighCounts(forms))
+	}
+	put("model against curve", where, evidence.Describes(r.OverIdent.P, r.OverIdent.DF))
+	for _, a := range r.Axes {
+		switch a.Axis {
+		case difference.AxisThird.String():
+			put("axis third against leading", where, evidence.AgainstLeading(a.Delta.Value, a.Delta.Lo, a.Delta.Hi, "deviations that neighbouring positions of this crystal share"))
+		case difference.AxisInverseVariance.String():
+			put("axis inverse-variance against leading", where, evidence.AgainstLeading(a.Delta.Value, a.Delta.Lo, a.Delta.Hi, "position-specific deviations, or a wrong ratio of sigmas"))
+		}
+	}
+	worst := 0.0
+	for _, name := range naiveNames(r) {
+		worst = math.Max(worst, r.Naive[name].GhostScore)
+	}
+	put("ghost of noise", where, evidence.GhostOf(worst, independent))
+	if len(r.Giants) > 1 {
+		turn := evidence.Turn{Lo: math.Inf(1), Hi: math.Inf(-1)}
+		lead := math.NaN()
+		for _, g := range r.Giants {
+			switch {
+			case math.IsInf(g.Above, 1):
+				lead = g.M.Value
+			case !math.IsNaN(g.M.Value):
+				turn.Lo, turn.Hi, turn.N = math.Min(turn.Lo, g.M.Value), math.Max(turn.Hi, g.M.Value), turn.N+1
+			}
+		}
+		put("giants", where, evidence.ChoiceOf("strongest reflections to leave out", lead, 1.5*r.Exchange.SE, turn))
+	}
+}
+
+// ledgerChoices judges how far m moves under other choices, from the
+// specification table.
+func (s *Study) ledgerChoices(b *ledgerBook) {
+	if len(s.spec) == 0 {
+		return
+	}
+	for _, kind := range []struct{ choice, check, what string }{
+		{choiceScale, "scale variants", "scale model"}, {choiceAnchor, "anchors", "anchor of the scale"},
+		{choiceLeave, "exclusions", "reflections to leave out"}, {choiceFriedel, "Friedel mates", "treatment of Friedel mates"},
+	} {
+		var list []placed
+		for _, x := range s.primaries() {
+			if x == nil {
+				continue
+			}
+			turn := evidence.Turn{Lo: math.Inf(1), Hi: math.Inf(-1)}
+			for _, row := range s.spec {
+				if row.Crystal == x.Result.Crystal && row.Choice == kind.choice && !math.IsNaN(row.M.Value) {
+					turn.Lo, turn.Hi, turn.N = math.Min(turn.Lo, row.M.Value), math.Max(turn.Hi, row.M.Value), turn.N+1
+				}
+			}
+			if turn.N > 0 {
+				list = append(list, placed{x.Result.Crystal, evidence.ChoiceOf(kind.what, x.Result.Exchange.M, x.Result.Exchange.SE, turn)})
+			}
+		}
+		b.fold(kind.check, "crystals", 0, list)
+	}
+}
