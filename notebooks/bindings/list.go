@@ -16,6 +16,7 @@ var bound = [...]string{
 	"thinward/analysis/crystal",
 	"thinward/analysis/curve",
 	"thinward/analysis/difference",
+	"thinward/analysis/electron",
 	"thinward/analysis/evidence",
 	"thinward/analysis/figure",
 	"thinward/analysis/intensity",

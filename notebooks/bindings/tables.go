@@ -25,6 +25,7 @@ import (
 	_ "thinward/notebooks/bindings/tables/thinward_analysis_crystal"
 	_ "thinward/notebooks/bindings/tables/thinward_analysis_curve"
 	_ "thinward/notebooks/bindings/tables/thinward_analysis_difference"
+	_ "thinward/notebooks/bindings/tables/thinward_analysis_electron"
 	_ "thinward/notebooks/bindings/tables/thinward_analysis_evidence"
 	_ "thinward/notebooks/bindings/tables/thinward_analysis_figure"
 	_ "thinward/notebooks/bindings/tables/thinward_analysis_intensity"

@@ -1,5 +1,7 @@
 package session
 
+import "thinward/analysis"
+
 // Table is a table of one's own in a notebook: make it with NewTable, fill it
 // with Add, and end the cell with it.
 type Table struct {
@@ -48,3 +50,7 @@ func Between(lo, hi float64, decimals int) string { return between(lo, hi, decim
 
 // Count writes a whole number.
 func Count(n int) string { return count(n) }
+
+// Contrasts gives the numbers of every contrast, the primary one of each crystal
+// first, to loop over.
+func (s *Session) Contrasts() []analysis.ContrastResult { return s.upTo(stepDifferences).Contrasts }

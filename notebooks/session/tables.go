@@ -172,7 +172,7 @@ func (s *Session) Forbidden() *View {
 // Scaling shows scale and noise model by position.
 func (s *Session) Scaling() *View {
 	r := s.upTo(stepScaling)
-	g := newGrid("Scale and noise by position, against the thinnest", "position", "mean ln K", "B (\u00c5\u00b2)", "s.u.", "a", "interval", "b", "interval", "\u03c7\u00b2 before", "after", "down-weighted", "curve").words(11)
+	g := newGrid("Scale and noise by position, against the thinnest", "position", "mean ln K", "B (\u00c5\u00b2)", "s.u.", "a", "interval", "b", "interval", "\u03c7\u00b2 about the joint J", "with the noise model", "down-weighted", "curve").words(11)
 	for _, x := range r.Scaling {
 		shape := "in angle"
 		if x.Constant {
@@ -218,16 +218,10 @@ func (s *Session) Specification() *View {
 // Controls shows each control with what it can and cannot see.
 func (s *Session) Controls() *View {
 	r := s.upTo(stepControls)
-	g := newGrid("Controls: the same pipeline on data where the answer is known", "control", "crystal", "expected m", "found m", "p", "passed", "can see", "cannot see").words(1, 5, 6, 7)
+	g := newGrid("Controls: the same pipeline on data where the answer is known", "control", "crystal", "expected m", "found m", "p", "verdict", "what was done", "can see", "cannot see").words(1, 5, 6, 7, 8)
+	g.verdict = 5
 	for _, c := range r.Controls {
-		passed := "yes"
-		if !c.Passed {
-			passed = "no"
-		}
-		if c.Why != "" {
-			passed = c.Why
-		}
-		g.add(c.Control, c.Crystal, number(c.Expected, 3), withInterval(c.M, 3), pvalue(c.P), passed, c.Can, c.Cannot)
+		g.add(c.Control, c.Crystal, number(c.Expected, 3), withInterval(c.M, 3), pvalue(c.P), c.Verdict, c.Why, c.Can, c.Cannot)
 	}
 	return g.view("Controls")
 }
@@ -260,7 +254,7 @@ func (s *Session) Thickness() *View {
 	if t := r.Thickness; t != nil {
 		for _, l := range t.Lines {
 			var mu, nm []string
-			for i := range l.T {
+			for _, i := range rising(l.T) {
 				nm = append(nm, number(l.T[i], 0))
 				if i < len(l.Mu) {
 					mu = append(mu, number(l.Mu[i], 3)+" \u00b1 "+number(l.MuSE[i], 3))
@@ -308,4 +302,14 @@ func (s *Session) AngleInfluence() *View {
 		g.add("all", "none", "\u2013", "\u2013", "\u2013", "\u2013", "\u2013")
 	}
 	return g.view("Influence of angles")
+}
+
+// rising gives the order of v from small to large.
+func rising(v []float64) []int {
+	order := make([]int, len(v))
+	for i := range order {
+		order[i] = i
+	}
+	sort.SliceStable(order, func(a, b int) bool { return v[order[a]] < v[order[b]] })
+	return order
 }

@@ -14,6 +14,8 @@ type View struct {
 	HTML  string
 	Plain string
 	SVG   string
+
+	whole bool // Plain holds texts that were shortened already
 }
 
 // SimpleRender gives the kernel every form of the view by MIME type. A nil view
@@ -32,6 +34,26 @@ func (v *View) SimpleRender() map[string]interface{} {
 	return out
 }
 
+// Together shows several views as the value of one cell, one below the other. Nil
+// views are left out.
+func Together(views ...*View) *View {
+	out := &View{whole: true}
+	for _, v := range views {
+		if v == nil {
+			continue
+		}
+		if out.Title == "" {
+			out.Title = v.Title
+		}
+		out.HTML += v.HTML
+		if out.Plain != "" {
+			out.Plain += "\n"
+		}
+		out.Plain += v.String() + "\n"
+	}
+	return out
+}
+
 // plainLines bounds what a view prints as text.
 const plainLines = 40
 
@@ -41,7 +63,7 @@ func (v *View) String() string {
 		return ""
 	}
 	lines := strings.Split(strings.TrimRight(v.Plain, "\n"), "\n")
-	if len(lines) > plainLines {
+	if len(lines) > plainLines && !v.whole {
 		more := len(lines) - plainLines + 1
 		lines = append(lines[:plainLines-1], fmt.Sprintf("... %d lines more", more))
 	}

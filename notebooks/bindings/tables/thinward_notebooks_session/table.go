@@ -16,14 +16,18 @@ func init() {
 	imports.Packages["thinward/notebooks/session"] = imports.Package{
 		Name: "session",
 		Binds: map[string]reflect.Value{
+			"Between":          reflect.ValueOf(session.Between),
 			"Check":            reflect.ValueOf(session.Check),
 			"Context":          reflect.ValueOf(session.Context),
+			"Count":            reflect.ValueOf(session.Count),
 			"Display":          reflect.ValueOf(session.Display),
 			"ErrInterrupted":   reflect.ValueOf(&session.ErrInterrupted).Elem(),
 			"FaultData":        reflect.ValueOf(session.FaultData),
 			"FaultInside":      reflect.ValueOf(session.FaultInside),
 			"FaultInterrupted": reflect.ValueOf(session.FaultInterrupted),
 			"FaultOf":          reflect.ValueOf(session.FaultOf),
+			"NewTable":         reflect.ValueOf(session.NewTable),
+			"Number":           reflect.ValueOf(session.Number),
 			"Open":             reflect.ValueOf(session.Open),
 			"OpenWith":         reflect.ValueOf(session.OpenWith),
 			"OutEnv":           reflect.ValueOf(session.OutEnv),
@@ -32,6 +36,7 @@ func init() {
 			"ProgressMIME":     reflect.ValueOf(session.ProgressMIME),
 			"Report":           reflect.ValueOf(session.Report),
 			"ResultFile":       reflect.ValueOf(session.ResultFile),
+			"Together":         reflect.ValueOf(session.Together),
 			"Version":          reflect.ValueOf(session.Version),
 		},
 		Types: map[string]reflect.Type{
@@ -40,6 +45,7 @@ func init() {
 			"Options":  reflect.TypeOf((*session.Options)(nil)).Elem(),
 			"Progress": reflect.TypeOf((*session.Progress)(nil)).Elem(),
 			"Session":  reflect.TypeOf((*session.Session)(nil)).Elem(),
+			"Table":    reflect.TypeOf((*session.Table)(nil)).Elem(),
 			"View":     reflect.TypeOf((*session.View)(nil)).Elem(),
 		},
 		Untypeds: map[string]string{

@@ -1,0 +1,73 @@
+package tests
+
+import (
+	"context"
+	"fmt"
+	"os"
+	"path/filepath"
+	"sort"
+	"testing"
+
+	"thinward/notebooks"
+	"thinward/notebooks/kernel"
+	"thinward/notebooks/runner"
+)
+
+// kernelPath is the binary all tests run, root the folder of our go.mod.
+var kernelPath, root string
+
+func TestMain(m *testing.M) {
+	// Nothing here may need a network: what is not in the module cache is an error.
+	os.Setenv("GOPROXY", "off")
+	os.Setenv("GOFLAGS", "-mod=readonly")
+	var err error
+	if root, err = filepath.Abs(filepath.Join("..", "..")); err == nil {
+		kernelPath, err = kernel.Ensure(context.Background(), nil)
+	}
+	if err != nil {
+		fmt.Fprintln(os.Stderr, err)
+		os.Exit(1)
+	}
+	os.Exit(m.Run())
+}
+
+// names lists the committed notebooks in order.
+func names(t *testing.T) []string {
+	t.Helper()
+	entries, err := notebooks.Files.ReadDir(".")
+	if err != nil {
+		t.Fatal(err)
+	}
+	var list []string
+	for _, e := range entries {
+		list = append(list, e.Name())
+	}
+	sort.Strings(list)
+	if len(list) != 8 {
+		t.Fatalf("%d notebooks, want 8: %v", len(list), list)
+	}
+	return list
+}
+
+func open(t *testing.T, name string) *runner.Notebook {
+	t.Helper()
+	data, err := notebooks.Files.ReadFile(name)
+	if err != nil {
+		t.Fatal(err)
+	}
+	nb, err := runner.ParseNotebook(data)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return nb
+}
+
+// missing skips a test for want of a program; where everything has to be there it
+// fails.
+func missing(t *testing.T, what string, err error) {
+	t.Helper()
+	if os.Getenv("THINWARD_NEED_ALL") != "" {
+		t.Fatalf("%s is needed here: %v", what, err)
+	}
+	t.Skipf("%s is not installed: %v", what, err)
+}
