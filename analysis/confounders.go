@@ -100,8 +100,10 @@ func (s *Study) crossings(i, j int) *evidence.Crossings {
 	p := sc.slot[j]
 	scaled := sc.Positions[j]
 	c := &evidence.Crossings{H: o.H, K: o.K, L: o.L, Frame: o.Frame, Unique: scaled.Unique, I: scaled.I, Var: scaled.Var,
-		Scale: sc.Fit.Scale[sc.first[p] : sc.first[p]+o.Len()], Signal: make([]float64, o.Len())}
+		Scale: sc.Fit.Scale[sc.first[p] : sc.first[p]+o.Len()], Signal: make([]float64, o.Len()), Own: make([]float64, o.Len())}
+	merged := intensity.Merge(s.intake.Catalogue.Len(), scaled)
 	for r, u := range scaled.Unique {
+		c.Own[r] = merged.J[u]
 		c.Signal[r] = c.Scale[r] * math.Max(sc.Fit.J[u], 0)
 	}
 	return c
@@ -153,7 +155,7 @@ func (s *Study) tilt(ctx context.Context, x *Compared) (evidence.Finding, error)
 	if err != nil {
 		return dark(err.Error())
 	}
-	return evidence.TiltOf(v.M.Value, v.M.Lo, v.M.Hi, pairs.Len()), nil
+	return evidence.TiltOf(v.M.Value, v.M.SE, pairs.Len()), nil
 }
 
 func (s *Study) rings(x *Compared) []evidence.Ring {

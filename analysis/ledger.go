@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"thinward/analysis/evidence"
+	"thinward/analysis/intensity"
 )
 
 // ledger lists the confounders that the numbers so far can speak of: for each
@@ -34,55 +35,66 @@ func (b *ledgerBook) add(check, where string, f evidence.Finding) {
 	b.entries = append(b.entries, LedgerEntry{Check: check, Where: where, Value: f.Value, Unit: f.Unit, Verdict: f.Verdict.String(), Why: f.Why})
 }
 
-// fold adds one entry for every place whose verdict is not fine, and one for all
-// that are: its figure is the one farthest from ideal, its place their number and
+// fold adds one entry for all places of one verdict, the gravest first: its figure
+// is the one farthest from ideal, its place their names, or of many their number and
 // what they are (positions, crystals).
 func (b *ledgerBook) fold(check, what string, ideal float64, list []placed) {
-	var fine, dark []placed
-	for _, p := range list {
-		switch p.Verdict {
-		case evidence.Fine:
-			fine = append(fine, p)
-		case evidence.NotKnown:
-			dark = append(dark, p)
-		default:
-			b.add(check, p.where, p.Finding)
+	for _, v := range []evidence.Verdict{evidence.Fails, evidence.Caution, evidence.Fine, evidence.NotKnown} {
+		var same []placed
+		for _, p := range list {
+			if p.Verdict == v {
+				same = append(same, p)
+			}
+		}
+		if len(same) > 0 {
+			b.foldAlike(check, what, ideal, len(list), same)
 		}
 	}
-	b.foldAlike(check, what, ideal, len(list), fine)
-	b.foldAlike(check, what, ideal, len(list), dark)
 }
 
+// mostNamed is the number of places that an entry names.
+const mostNamed = 3
+
 func (b *ledgerBook) foldAlike(check, what string, ideal float64, of int, list []placed) {
-	switch len(list) {
-	case 0:
-		return
-	case 1:
-		b.add(check, list[0].where, list[0].Finding)
-		return
-	}
-	far := list[0]
-	for _, p := range list {
+	far, names := list[0], ""
+	for k, p := range list {
+		if k > 0 {
+			names += ", "
+		}
+		names += p.where
 		if math.IsNaN(far.Value) || math.Abs(p.Value-ideal) > math.Abs(far.Value-ideal) {
 			far = p
 		}
 	}
-	where := fmt.Sprintf("%d of %d %s", len(list), of, what)
-	if len(list) == of {
+	where := names
+	switch {
+	case len(list) == 1:
+	case len(list) == of:
 		where = fmt.Sprintf("all %d %s", of, what)
+	case len(list) > mostNamed:
+		where = fmt.Sprintf("%d of %d %s", len(list), of, what)
 	}
-	if !math.IsNaN(far.Value) {
+	if len(list) > 1 && !math.IsNaN(far.Value) {
 		far.Why = fmt.Sprintf("farthest in %s: %s", far.where, far.Why)
 	}
 	b.add(check, where, far.Finding)
 }
 
 func (s *Study) ledgerIntake(b *ledgerBook) {
+	if s.table == nil {
+		return
+	}
+	var near [][3]int
+	for i := range s.intake.Positions {
+		for j := range s.intake.Positions[i] {
+			near = append(near, nearZero(s.intake.Positions[i][j].Observations))
+		}
+	}
 	var rows, negatives, cut []placed
-	for _, r := range s.table {
+	for k, r := range s.table {
 		where := r.Crystal + "/" + r.Position
 		rows = append(rows, placed{where, evidence.Rows(r.Rows, r.Observations+r.Excluded, r.RowsAs)})
-		negatives = append(negatives, placed{where, evidence.Negatives(r.NearZero[0], r.NearZero[1], r.Negative, r.NegativeExp)})
+		negatives = append(negatives, placed{where, evidence.Negatives(near[k], r.Negative, r.NegativeExp)})
 		if r.Truncated != "" {
 			cut = append(cut, placed{where, evidence.Finding{Value: math.NaN(), Verdict: evidence.Caution, Why: r.Truncated}})
 		}
@@ -90,6 +102,16 @@ func (s *Study) ledgerIntake(b *ledgerBook) {
 	b.fold("rows against observations", "positions", 1, rows)
 	b.fold("negatives removed", "positions", 1, negatives)
 	b.fold("cut or clipped list", "positions", 0, cut)
+}
+
+// nearZero counts observations with I/sigma from -0.5 to 0, to 0.5 and to 1.
+func nearZero(c *intensity.Columns) (n [3]int) {
+	for r := range c.I {
+		if k := math.Floor(2*c.I[r]/c.Sigma[r]) + 1; k >= 0 && k < 3 {
+			n[int(k)]++
+		}
+	}
+	return n
 }
 
 func (s *Study) ledgerIndexing(b *ledgerBook) {

@@ -9,11 +9,12 @@ import (
 
 // Crossings are the observations of one position as a detector sees them. Signal is
 // the expected recorded intensity of each (scale times joint intensity), Scale its
-// scale; I and Var are on the common scale. All are parallel.
+// scale; I and Var are on the common scale, and Own is the mean of the reflection in
+// this position on it. All are parallel.
 type Crossings struct {
 	H, K, L       []int16
 	Unique, Frame []int32
-	I, Var        []float64
+	I, Var, Own   []float64
 	Signal, Scale []float64
 }
 
@@ -22,7 +23,7 @@ type index struct{ h, k, l int16 }
 // check refuses columns that do not belong together or have no frames.
 func (c *Crossings) check() error {
 	n := len(c.I)
-	for _, k := range []int{len(c.H), len(c.K), len(c.L), len(c.Unique), len(c.Var), len(c.Signal), len(c.Scale)} {
+	for _, k := range []int{len(c.H), len(c.K), len(c.L), len(c.Unique), len(c.Var), len(c.Own), len(c.Signal), len(c.Scale)} {
 		if k != n {
 			return fmt.Errorf("evidence: Crossings: columns differ in length")
 		}
@@ -88,7 +89,40 @@ func Bleed(c *Crossings) (*Slope, error) {
 			}
 		}
 	}
-	return WithinEquivalents(c.Unique, c.I, x, c.Var, nil)
+	return WithinEquivalents(c.Unique, c.settled(), x, c.Var, nil)
+}
+
+// settled is the intensity with what the frames around it stand off their scale
+// taken out: J times the mean relative residual of the other observations within
+// two frames. What is left of the scale would else look like a gain wherever
+// neighbours are many.
+func (c *Crossings) settled() []float64 {
+	sum, weight := map[int32]float64{}, map[int32]float64{}
+	own := func(o int) (r, w float64) {
+		if !(c.Own[o] > 0) || math.IsInf(c.Var[o], 1) {
+			return 0, 0
+		}
+		return c.I[o]/c.Own[o] - 1, c.Own[o] * c.Own[o] / c.Var[o]
+	}
+	for o, f := range c.Frame {
+		r, w := own(o)
+		sum[f] += w * r
+		weight[f] += w
+	}
+	out := make([]float64, len(c.I))
+	for o, f := range c.Frame {
+		r, w := own(o)
+		s, all := -w*r, -w
+		for d := int32(-2); d <= 2; d++ {
+			s += sum[f+d]
+			all += weight[f+d]
+		}
+		out[o] = c.I[o]
+		if all > 1e-9*w {
+			out[o] -= math.Max(c.Own[o], 0) * s / all
+		}
+	}
+	return out
 }
 
 // mostOnFrame bounds the reflections of a frame that DoubleScattering combines,
@@ -147,9 +181,9 @@ func DoubleScattering(c *Crossings) (*Slope, error) {
 	return WithinEquivalents(unique, y, x, v, total)
 }
 
-// Jitter is the relative scatter of whole frames: TauSq by moments
+// Jitter is the relative scatter Tau of whole frames, by moments
 // (DerSimonian & Laird 1986, Control. Clin. Trials 7:177) from the mean relative
-// residuals of the frames, Q their weighted square sum with DF degrees of freedom.
+// residuals of the frames; Q is their weighted square sum with DF degrees of freedom.
 type Jitter struct {
 	Tau float64
 	Q   float64
@@ -157,7 +191,8 @@ type Jitter struct {
 }
 
 // FrameJitter measures how far whole frames stand off their scale. Residuals are
-// I/J - 1 with weights J^2/Var; observations of J not above 0 are left out. Errors:
+// from the position's own means, I/J - 1 with weights J^2/Var, so that deviations which
+// equivalents share drop out; observations of J not above 0 are left out. Errors:
 // no frames, fewer than 10 frames.
 func FrameJitter(c *Crossings) (*Jitter, error) {
 	if err := c.check(); err != nil {
@@ -165,7 +200,7 @@ func FrameJitter(c *Crossings) (*Jitter, error) {
 	}
 	sum, weight := map[int32]float64{}, map[int32]float64{}
 	for o, f := range c.Frame {
-		j := c.Signal[o] / c.Scale[o]
+		j := c.Own[o]
 		if !(j > 0) || math.IsInf(c.Var[o], 1) {
 			continue
 		}

@@ -17,15 +17,20 @@ func Rows(rows, observations int, as string) Finding {
 	return f
 }
 
-// Negatives looks for removed negatives. below and above count observations within
-// half a sigma of zero; noise makes the density of I/sigma smooth there whatever
-// the intensities are, so a step tells. observed and expected count below 0, 1, 2
-// and 3 sigma, the latter by Wilson's law, and are said beside it. Fewer than 20
-// above decide nothing and matter little. Fails below three tenths (removing I < 0
-// alone makes m = -0.09), caution when below is under 0.7 of above and by more than three
-// standard deviations of an even split.
-func Negatives(below, above int, observed []int, expected []float64) Finding {
-	f := Finding{Value: float64(below) / float64(above), Unit: "just below zero over just above, within half a sigma", Verdict: Fine}
+// Negatives looks for removed negatives. near counts observations with I/sigma from
+// -0.5 to 0, 0 to 0.5 and 0.5 to 1. Noise makes the density of I/sigma smooth there
+// whatever the intensities are: one reflection adds a normal density, whose counts
+// in three equal steps h have a b^-2 c = exp(-h^2), so b^2/c exp(-1/4) is to be
+// expected below zero (a mixture has more). observed and expected count below 0, 1, 2
+// and 3 sigma, the latter by Wilson's law, which a filled floor breaks too, and are
+// said beside it. Fewer than 20 from 0 to 0.5 decide nothing and matter little. Fails
+// below three tenths of what is expected when that is beyond 2.5 standard errors
+// (removing I < 0 alone makes m = -0.09), caution below seven tenths and beyond 3.
+func Negatives(near [3]int, observed []int, expected []float64) Finding {
+	below, above, next := float64(near[0]), float64(near[1]), float64(near[2])
+	want := math.Min(above*above/math.Max(next, 1)*math.Exp(-0.25), 4*above)
+	z := (want - below) / math.Sqrt(want+want*want*(4/math.Max(above, 1)+1/math.Max(next, 1)))
+	f := Finding{Value: below / want, Unit: "of the expected number just below zero", Verdict: Fine}
 	counts := ""
 	for k := range observed {
 		if k > 0 {
@@ -36,17 +41,14 @@ func Negatives(below, above int, observed []int, expected []float64) Finding {
 	if counts != "" {
 		counts = "; below 0, 1, 2, 3 sigma there are (Wilson's law expects): " + counts
 	}
-	split := float64(above-below) / math.Sqrt(math.Max(float64(above+below), 1))
 	switch {
-	case above < 20:
-		f.Why = fmt.Sprintf("%d observations just above zero: too few to tell, and too few to matter%s", above, counts)
-		if above == 0 {
-			f.Value = math.NaN()
-		}
-	case 10*below < 3*above:
-		f.Verdict, f.Why = Fails, "the density of I/sigma has a step at zero: weak intensities were cut off or set to zero, which alone makes an exchange"+counts
-	case f.Value < 0.7 && split > 3:
-		f.Verdict, f.Why = Caution, "fewer observations lie just below zero than noise leads one to expect"+counts
+	case near[1] < 20:
+		f.Why = fmt.Sprintf("%d observations just above zero: too few to tell, and too few to matter%s", near[1], counts)
+		f.Value = math.NaN()
+	case f.Value < 0.3 && z > 2.5:
+		f.Verdict, f.Why = Fails, fmt.Sprintf("the density of I/sigma has a step at zero (%d just below, %.0f expected): weak intensities were cut off or set to zero, which alone makes an exchange%s", near[0], want, counts)
+	case f.Value < 0.7 && z > 3:
+		f.Verdict, f.Why = Caution, fmt.Sprintf("fewer observations lie just below zero than noise leads one to expect (%d, %.0f expected)%s", near[0], want, counts)
 	default:
 		f.Why = "the density of I/sigma is smooth at zero, as noise makes it" + counts
 	}
@@ -170,21 +172,21 @@ func DoubleOf(s *Slope, err error) Finding {
 }
 
 // TiltOf judges the exchange between equivalents at low and at high tilt within
-// one position. Caution when it is seen: thickness along the beam differs within
-// the position, and its m is an average; it also is a second, independent sign of
-// growth with thickness.
-func TiltOf(m, lo, hi float64, pairs int) Finding {
+// one position. Caution beyond three standard errors: thickness along the beam
+// differs within the position, and its m is an average; it also is a second,
+// independent sign of growth with thickness.
+func TiltOf(m, se float64, pairs int) Finding {
 	if math.IsNaN(m) {
 		return unknown("m between equivalents at low and high tilt is not estimable")
 	}
-	f := Finding{Value: m, Unit: "m, low against high tilt", Verdict: Fine, Why: fmt.Sprintf("equivalents at high tilt (a longer way through the slab) are like those at low tilt: m = %s (%s to %s) of %d reflections", num(m), num(lo), num(hi), pairs)}
-	if lo > 0 || hi < 0 {
+	f := Finding{Value: m, Unit: "m, low against high tilt", Verdict: Fine, Why: fmt.Sprintf("equivalents at high tilt (a longer way through the slab) are like those at low tilt: m = %s +- %s of %d reflections", num(m), num(se), pairs)}
+	switch {
+	case m > 3*se:
 		f.Verdict = Caution
-		if lo > 0 {
-			f.Why = fmt.Sprintf("intensity moves from strong to weak with tilt within one position, m = %s (%s to %s), as a way of 1/cos through the slab makes it: a second sign of thickness, and one position is a mixture of thicknesses", num(m), num(lo), num(hi))
-		} else {
-			f.Why = fmt.Sprintf("intensity moves from weak to strong with tilt, m = %s (%s to %s), the wrong way for thickness: absorption, background or the angle at which the slab faces the beam", num(m), num(lo), num(hi))
-		}
+		f.Why = fmt.Sprintf("intensity moves from strong to weak with tilt within one position, m = %s +- %s, as a way of 1/cos through the slab makes it: a second sign of thickness, and one position is a mixture of thicknesses", num(m), num(se))
+	case m < -3*se:
+		f.Verdict = Caution
+		f.Why = fmt.Sprintf("intensity moves from weak to strong with tilt, m = %s +- %s, the wrong way for thickness: absorption, background, or another angle at which the slab faces the beam", num(m), num(se))
 	}
 	return f
 }

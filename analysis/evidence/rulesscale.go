@@ -141,7 +141,10 @@ type Common struct {
 func Coverage(c Common) Finding {
 	f := Finding{Value: c.Share, Unit: "of the reflections of either position are in both", Verdict: Fine}
 	f.Why = "all reflections are common"
-	if c.Lost > 0 {
+	switch {
+	case c.Lost == 1:
+		f.Why = "one reflection is lost"
+	case c.Lost > 1:
 		f.Why = fmt.Sprintf("%d are lost, of mean strength %+.2f +- %.2f against the common ones, median d %.2f A against %.2f A", c.Lost, c.Strength, c.StrengthSE, c.LostD, c.CommD)
 	}
 	switch {
