@@ -1,0 +1,226 @@
+package page
+
+import (
+	"context"
+	"os"
+	"os/exec"
+	"strings"
+	"sync"
+	"testing"
+	"time"
+
+	"github.com/chromedp/cdproto/cdp"
+	"github.com/chromedp/cdproto/emulation"
+	"github.com/chromedp/cdproto/log"
+	"github.com/chromedp/cdproto/network"
+	"github.com/chromedp/cdproto/runtime"
+	"github.com/chromedp/chromedp"
+	"github.com/chromedp/chromedp/kb"
+)
+
+// browser starts Chromium, or skips the test where there is none; with CI set it
+// fails instead, so that these tests cannot be lost unseen.
+func browser(t *testing.T) context.Context {
+	t.Helper()
+	if testing.Short() {
+		t.Skip("browser tests are left out with -short")
+	}
+	path := ""
+	for _, name := range []string{"chromium", "chromium-browser", "google-chrome"} {
+		if p, err := exec.LookPath(name); err == nil {
+			path = p
+			break
+		}
+	}
+	if path == "" {
+		if os.Getenv("CI") != "" {
+			t.Fatal("CI is set and no Chromium is found")
+		}
+		t.Skip("no Chromium found (apt-get install chromium)")
+	}
+	opts := append(chromedp.DefaultExecAllocatorOptions[:], chromedp.ExecPath(path), chromedp.NoSandbox, chromedp.DisableGPU,
+		chromedp.Flag("disable-quic", true), chromedp.Flag("disable-background-networking", true), chromedp.Flag("disable-component-update", true), chromedp.Flag("disable-sync", true), chromedp.UserDataDir(t.TempDir()))
+	ctx, stopAll := chromedp.NewExecAllocator(context.Background(), opts...)
+	t.Cleanup(stopAll)
+	ctx, stopTab := chromedp.NewContext(ctx)
+	t.Cleanup(stopTab)
+	do(t, ctx, chromedp.EmulateViewport(1280, 800))
+	ctx, stop := context.WithTimeout(ctx, 90*time.Second)
+	t.Cleanup(stop)
+	return ctx
+}
+
+// watch collects what a page must not do: complain, or ask the network.
+func watch(t *testing.T, ctx context.Context) func() []string {
+	t.Helper()
+	var mu sync.Mutex
+	var seen []string
+	add := func(s string) { mu.Lock(); seen = append(seen, s); mu.Unlock() }
+	err := chromedp.Listen(ctx, func(e any) {
+		switch e := e.(type) {
+		case *runtime.EventConsoleAPICalled:
+			add("console: " + string(e.Type))
+		case *runtime.EventExceptionThrown:
+			add("exception: " + e.ExceptionDetails.Text)
+		case *log.EventEntryAdded:
+			add("log: " + e.Entry.Text)
+		case *network.EventRequestWillBeSent:
+			if !strings.HasPrefix(e.Request.URL, "file:") && !strings.HasPrefix(e.Request.URL, "data:") {
+				add("request: " + e.Request.URL)
+			}
+		}
+	})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if _, err := chromedp.Call(ctx, network.Enable, network.EnableParams{}); err != nil {
+		t.Fatal(err)
+	}
+	if _, err := chromedp.Call(ctx, log.Enable, cdp.Empty{}); err != nil {
+		t.Fatal(err)
+	}
+	return func() []string { mu.Lock(); defer mu.Unlock(); return seen }
+}
+
+func do(t *testing.T, ctx context.Context, steps ...chromedp.Action[chromedp.Void]) {
+	t.Helper()
+	if err := chromedp.Do(ctx, steps...); err != nil {
+		t.Fatal(err)
+	}
+}
+
+// ask evaluates an expression in the page.
+func ask[T any](t *testing.T, ctx context.Context, expression string) T {
+	t.Helper()
+	v, err := chromedp.Run(ctx, chromedp.Evaluate[T](expression))
+	if err != nil {
+		t.Fatalf("%s: %v", expression, err)
+	}
+	return v
+}
+
+func TestTheWatchSees(t *testing.T) {
+	ctx := browser(t)
+	seen := watch(t, ctx)
+	do(t, ctx, chromedp.Navigate(written(t, []byte(`<!DOCTYPE html><title>t</title><img src="http://127.0.0.1:9/a.png"><script>console.log("x"); undefined.y</script>`))))
+	all := strings.Join(seen(), "; ")
+	for _, want := range []string{"console: log", "exception: ", "request: http://127.0.0.1:9/a.png"} {
+		if !strings.Contains(all, want) {
+			t.Errorf("%q was not seen among %q", want, all)
+		}
+	}
+}
+
+func TestReportInABrowser(t *testing.T) {
+	ctx := browser(t)
+	seen := watch(t, ctx)
+	do(t, ctx, chromedp.Navigate(written(t, demoPage(t).page)))
+
+	t.Run("answer without scrolling", func(t *testing.T) {
+		if bottom := ask[float64](t, ctx, `document.querySelectorAll("#answer .card")[1].getBoundingClientRect().bottom`); bottom > 800 {
+			t.Errorf("the second card ends at %g of 800", bottom)
+		}
+	})
+	t.Run("keys move the crosshair", func(t *testing.T) {
+		ask[bool](t, ctx, `document.querySelector("#strength .panel").focus(), true`)
+		do(t, ctx, chromedp.KeyEvent(kb.ArrowRight))
+		first := ask[string](t, ctx, `document.getElementById("live").textContent`)
+		do(t, ctx, chromedp.KeyEvent(kb.ArrowRight), chromedp.KeyEvent(kb.ArrowRight))
+		second := ask[string](t, ctx, `document.getElementById("live").textContent`)
+		cross := ask[string](t, ctx, `document.querySelector("#strength .panel .cross line").getAttribute("x1")`)
+		if !strings.Contains(first, "strength") || !strings.Contains(first, " to ") || first == second || cross == "" {
+			t.Errorf("read %q, then %q, line at %q", first, second, cross)
+		}
+		if n := ask[int](t, ctx, `[...document.querySelectorAll("#strength .readout")].filter(p => p.textContent).length`); n < 2 {
+			t.Errorf("%d panels read together", n)
+		}
+		do(t, ctx, chromedp.KeyEvent(kb.Escape))
+		if n := ask[int](t, ctx, `document.querySelectorAll(".cross line").length`); n != 0 {
+			t.Errorf("%d lines are left after Escape", n)
+		}
+	})
+	t.Run("radio buttons choose", func(t *testing.T) {
+		const visible = `[...document.querySelector("#strength .plot").querySelectorAll(".choice")].filter(c => c.offsetHeight > 0).map(c => c.dataset.choice).join()`
+		before := ask[string](t, ctx, visible)
+		ask[bool](t, ctx, `document.querySelector('#strength [data-pick="2"]').click(), true`)
+		if after := ask[string](t, ctx, visible); before != "1" || after != "2" {
+			t.Errorf("shown %q, then %q", before, after)
+		}
+	})
+	t.Run("tables sort", func(t *testing.T) {
+		const number = `[...document.querySelector("#forbidden main, #forbidden").querySelectorAll("table.sortable")].pop()`
+		ask[bool](t, ctx, number+`.querySelectorAll("th button")[2].click(), true`)
+		up := ask[bool](t, ctx, `(t => [...t.tBodies[0].rows].map(r => parseFloat(r.cells[2].textContent)).every((v, i, a) => i === 0 || a[i-1] <= v) && t.querySelectorAll("thead th")[2].getAttribute("aria-sort") === "ascending")(`+number+`)`)
+		ask[bool](t, ctx, number+`.querySelectorAll("th button")[2].click(), true`)
+		down := ask[bool](t, ctx, `(t => [...t.tBodies[0].rows].map(r => parseFloat(r.cells[2].textContent)).every((v, i, a) => i === 0 || a[i-1] >= v))(`+number+`)`)
+		if !up || !down {
+			t.Errorf("sorted upward %v, then downward %v", up, down)
+		}
+	})
+	t.Run("a frame lists reflections", func(t *testing.T) {
+		n := ask[int](t, ctx, `(() => {
+			const s = document.querySelector("svg.brushed"), b = s.getBoundingClientRect();
+			const at = (x, y, type) => s.dispatchEvent(new PointerEvent(type, {clientX: b.left + x*b.width, clientY: b.top + y*b.height, pointerId: 1, bubbles: true}));
+			s.setPointerCapture = () => {};
+			at(.05, .05, "pointerdown"); at(.5, .5, "pointermove"); at(.95, .95, "pointerup");
+			return s.closest(".choice").querySelectorAll("[aria-label='Reflections under the frame'] tbody tr").length;
+		})()`)
+		if n != 40 {
+			t.Errorf("%d reflections listed, the most is 40", n)
+		}
+	})
+	t.Run("theme in the hash", func(t *testing.T) {
+		const colour = `getComputedStyle(document.body).backgroundColor`
+		if _, err := chromedp.Call(ctx, emulation.SetEmulatedMedia, emulation.SetEmulatedMediaParams{Features: []*emulation.MediaFeature{{Name: "prefers-color-scheme", Value: "light"}}}); err != nil {
+			t.Fatal(err)
+		}
+		light := ask[string](t, ctx, colour)
+		ask[bool](t, ctx, `document.getElementById("theme").click(), true`)
+		dark, where := ask[string](t, ctx, colour), ask[string](t, ctx, `location.hash`)
+		if !strings.Contains(where, "theme=dark") || light == dark {
+			t.Errorf("hash %q, colours %s and %s", where, light, dark)
+		}
+		ask[bool](t, ctx, `document.querySelector("nav a[href='#sizes']").click(), true`)
+		do(t, ctx, chromedp.Sleep(200*time.Millisecond))
+		if where := ask[string](t, ctx, `location.hash`); where != "#sizes&theme=dark" {
+			t.Errorf("hash %q after a jump", where)
+		}
+	})
+	t.Run("details open for print", func(t *testing.T) {
+		closed := ask[int](t, ctx, `dispatchEvent(new Event("beforeprint")), document.querySelectorAll("details:not([open])").length`)
+		after := ask[int](t, ctx, `dispatchEvent(new Event("afterprint")), document.querySelectorAll("details:not([open])").length`)
+		if closed != 0 || after == 0 {
+			t.Errorf("%d closed on paper, %d after", closed, after)
+		}
+	})
+	t.Run("narrow", func(t *testing.T) {
+		do(t, ctx, chromedp.EmulateViewport(360, 740))
+		if over := ask[float64](t, ctx, `document.documentElement.scrollWidth - document.documentElement.clientWidth`); over > 0 {
+			t.Errorf("the page is %g pixels too wide at 360", over)
+		}
+	})
+	if complaints := seen(); len(complaints) > 0 {
+		t.Errorf("the page did: %q", complaints)
+	}
+}
+
+func TestReportWithoutScript(t *testing.T) {
+	ctx := browser(t)
+	if _, err := chromedp.Call(ctx, emulation.SetScriptExecutionDisabled, emulation.SetScriptExecutionDisabledParams{Value: true}); err != nil {
+		t.Fatal(err)
+	}
+	do(t, ctx, chromedp.Navigate(written(t, demoPage(t).page)))
+	got := ask[struct {
+		Tools, Classes string
+		Cards, Figure  bool
+		Picked         string
+	}](t, ctx, `(() => {
+		document.querySelector('#strength [data-pick="2"]').checked = true;
+		return {Tools: getComputedStyle(document.querySelector(".tools")).display, Cards: document.querySelector(".card").offsetHeight > 0,
+			Figure: document.querySelectorAll("#strength .plot .choice")[1].querySelector("svg").getBoundingClientRect().width > 100, Classes: document.documentElement.className,
+			Picked: [...document.querySelector("#strength .plot").querySelectorAll(".choice")].filter(c => c.offsetHeight > 0).map(c => c.dataset.choice).join()};
+	})()`)
+	if got.Classes != "" || got.Tools != "none" || !got.Cards || !got.Figure || got.Picked != "2" {
+		t.Errorf("without script: %+v", got)
+	}
+}
