@@ -78,8 +78,11 @@ func (a *app) report(ctx context.Context, series, out string, set map[string]str
 		return err
 	}
 	defer folder.close()
-	nb, err := committed("report.ipynb")
+	nb, err := committed(notebookFile)
 	if err != nil {
+		return err
+	}
+	if err := recordProvenance(folder, series, set); err != nil {
 		return err
 	}
 	if !a.quiet {

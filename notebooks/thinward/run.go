@@ -151,7 +151,7 @@ SERIES.toml shows what came in, thinward examine SERIES.toml makes the report.`,
 	}
 	root.PersistentFlags().BoolVarP(&a.quiet, "quiet", "q", false, "print results only")
 	root.SetFlagErrorFunc(func(_ *cobra.Command, err error) error { return usageError{err} })
-	root.AddCommand(a.examine(), a.notebook(), a.kernel(), a.invent(), a.doctor(), a.intake(), a.peek(), a.group(), a.draft(), a.tables(), a.plan())
+	root.AddCommand(a.examine(), a.notebook(), a.kernel(), a.invent(), a.doctor(), a.intake(), a.peek(), a.group(), a.draft(), a.tables(), a.plan(), a.again(), a.bundle(), a.compare(), a.gather())
 	for _, c := range root.Commands() {
 		wrapArgs(c)
 	}
