@@ -81,6 +81,9 @@ func (f *File) check(name string, data []byte) error {
 	if f.ThicknessScaleSU < 0 || math.IsNaN(f.ThicknessScaleSU) {
 		return c.fail(top, "thickness_scale_su", fmt.Sprintf("%g is no uncertainty", f.ThicknessScaleSU), "give a relative uncertainty such as 0.1")
 	}
+	if m := f.MeanFreePath; m != nil && (!(m.ElasticNM > 0) || !(m.InelasticNM > 0) || math.IsInf(m.ElasticNM+m.InelasticNM, 0)) {
+		return c.fail(place{"mean_free_path", -1, -1}, "elastic_nm", fmt.Sprintf("elastic %g and inelastic %g nm", m.ElasticNM, m.InelasticNM), "give both in nanometres, or leave the table out")
+	}
 	crystals := map[string]bool{}
 	for i := range f.Crystal {
 		if err := f.Crystal[i].check(c, i, crystals); err != nil {

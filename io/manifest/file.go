@@ -22,6 +22,7 @@ type File struct {
 	CellTolerance    float64   `toml:"cell_tolerance,omitempty"`
 	FriedelApart     bool      `toml:"friedel_apart,omitempty"`
 	Primary          Primary   `toml:"primary,omitempty"`
+	MeanFreePath     *FreePath `toml:"mean_free_path,omitempty"`
 	Cell             *Cell     `toml:"cell,omitempty"`
 	Columns          *Columns  `toml:"columns,omitempty"`
 	Crystal          []Crystal `toml:"crystal"`
@@ -32,6 +33,13 @@ type File struct {
 type Primary struct {
 	Thin  string `toml:"thin,omitempty"`
 	Thick string `toml:"thick,omitempty"`
+}
+
+// FreePath gives mean free paths of the electrons in nanometres where they were
+// measured; without it they are estimated from the composition.
+type FreePath struct {
+	ElasticNM   float64 `toml:"elastic_nm"`
+	InelasticNM float64 `toml:"inelastic_nm"`
 }
 
 // Cell is the unit cell in angstrom and degrees; angles left out are 90.
@@ -134,7 +142,8 @@ func decodeError(name string, err error) error {
 }
 
 var known = map[string][]string{
-	"":                         {"title", "energy_keV", "space_group", "operators", "seed", "thickness_scale_su", "cell_tolerance", "friedel_apart", "primary", "cell", "columns", "crystal", "between"},
+	"":                         {"title", "energy_keV", "space_group", "operators", "seed", "thickness_scale_su", "cell_tolerance", "friedel_apart", "primary", "mean_free_path", "cell", "columns", "crystal", "between"},
+	"mean_free_path":           {"elastic_nm", "inelastic_nm"},
 	"primary":                  {"thin", "thick"},
 	"cell":                     {"a", "b", "c", "alpha", "beta", "gamma"},
 	"columns":                  {"order", "widths", "delimiter"},
@@ -149,7 +158,7 @@ func suggestion(key []string) string {
 	table, last := strings.Join(key[:len(key)-1], "."), key[len(key)-1]
 	names, ok := known[table]
 	if !ok {
-		return "no such table here; known tables: primary, cell, columns, crystal, crystal.position, between"
+		return "no such table here; known tables: primary, mean_free_path, cell, columns, crystal, crystal.position, between"
 	}
 	best, at := "", 3
 	for _, n := range names {

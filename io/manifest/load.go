@@ -80,6 +80,9 @@ func (l *loader) series() (*analysis.Series, error) {
 		FriedelApart: f.FriedelApart,
 		Primary:      analysis.Primary{Thin: f.Primary.Thin, Thick: f.Primary.Thick},
 	}
+	if m := f.MeanFreePath; m != nil {
+		l.out.ElasticMFPNM, l.out.InelasticMFPNM = m.ElasticNM, m.InelasticNM
+	}
 	for i := range f.Crystal {
 		k := &f.Crystal[i]
 		specimen := analysis.Specimen{Name: k.Name}

@@ -155,6 +155,7 @@ func TestFaults(t *testing.T) {
 		{"cell impossible", replace("a = 10.0", "a = -10.0"), 5, []string{"cell.a"}},
 		{"energy negative", replace("seed = 3", "seed = 3\nenergy_keV = -1.0"), 4, []string{"is no energy"}},
 		{"common uncertainty negative", replace("seed = 3", "seed = 3\nthickness_scale_su = -0.1"), 4, []string{"is no uncertainty"}},
+		{"free path missing", replace("[columns]", "[mean_free_path]\nelastic_nm = 300.0\n[columns]"), 9, []string{"mean_free_path.elastic_nm", "give both"}},
 		{"delimiter not known", replace("[columns]", "[columns]\ndelimiter = \"pipe\""), 9, []string{`"pipe" is not known`}},
 		{"between without a slash", good + "[[between]]\nthin = \"L1\"\nthick = \"L1/thick\"\n", 21, []string{"is not CRYSTAL/POSITION"}},
 	} {
