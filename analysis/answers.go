@@ -166,7 +166,7 @@ func answerWhere(list []*ContrastResult) Answer {
 		if c.Strength.P < 0.05 {
 			seen++
 		}
-		a.Detail = append(a.Detail, fmt.Sprintf("%s weakest %s; strongest %s", label(c), span(c.Classes.Floor.Eps, c.Classes.Floor.Lo, c.Classes.Floor.Hi), span(c.Classes.Top.Eps, c.Classes.Top.Lo, c.Classes.Top.Hi)))
+		a.Detail = append(a.Detail, fmt.Sprintf("%s %s; %s", label(c), span(c.Classes.Floor.Eps, c.Classes.Floor.Lo, c.Classes.Floor.Hi), span(c.Classes.Top.Eps, c.Classes.Top.Lo, c.Classes.Top.Hi)))
 		if c.Classes.Floor.Hi < 0 {
 			weak++
 		}
@@ -174,7 +174,7 @@ func answerWhere(list []*ContrastResult) Answer {
 			strong++
 		}
 	}
-	const units = " Below: thin minus thick over the local mean, for the weakest and the strongest class."
+	const units = " Below, thin minus thick over the local mean: the weakest class; the strongest."
 	if list[0].StrengthAxis == leadBracket {
 		a.Verdict = VerdictUnsure
 		a.Text = "No strength is known here that is independent of the difference. The classes below are on the inverse-variance mean, which holds only if the ratio of the two sigmas is right." + units
@@ -197,13 +197,13 @@ func answerResolution(list []*ContrastResult) Answer {
 		if r.DeltaBLo > 0 || r.DeltaBHi < 0 {
 			seen++
 		}
-		a.Detail = append(a.Detail, fmt.Sprintf("%s B thick minus thin %s \u00c5\u00b2", label(c), span(r.DeltaB, r.DeltaBLo, r.DeltaBHi)))
+		a.Detail = append(a.Detail, fmt.Sprintf("%s %s \u00c5\u00b2", label(c), span(r.DeltaB, r.DeltaBLo, r.DeltaBHi)))
 	}
 	if seen > 0 {
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("The ratio of the positions falls or rises with resolution in %s. A B factor, radiation damage and redistribution by thickness look alike here.", crystalsOf(seen, list))
+		a.Text = fmt.Sprintf("The ratio of the positions falls or rises with resolution in %s. A B factor, radiation damage and redistribution by thickness look alike here. Below, B of the thick position minus B of the thin.", crystalsOf(seen, list))
 	} else {
-		a.Text = "No trend with resolution is seen."
+		a.Text = "No trend with resolution is seen. Below, B of the thick position minus B of the thin."
 	}
 	return a
 }
@@ -224,14 +224,14 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 		if rise > 2*su {
 			up++
 		}
-		a.Detail = append(a.Detail, fmt.Sprintf("%s from %s to %s of the local mean", label(c), pm(thin.Ratio, thin.SU), pm(thick.Ratio, thick.SU)))
+		a.Detail = append(a.Detail, fmt.Sprintf("%s %s to %s", label(c), pm(thin.Ratio, thin.SU), pm(thick.Ratio, thick.SU)))
 	}
 	switch {
 	case known == 0:
 		a.Text = "Not recorded: the lists hold no forbidden reflection in both positions, so nothing can be said, and not that they are absent."
 	case up > 0:
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("They rise with thickness in %s. No scale can do this; a wrong space group fills them at every thickness.", crystalsOf(up, list))
+		a.Text = fmt.Sprintf("They rise with thickness in %s. No scale can do this; a wrong space group fills them at every thickness. Below, their mean over the local mean, thin to thick.", crystalsOf(up, list))
 	default:
 		a.Verdict = VerdictNo
 		a.Text = "They do not rise with thickness."
@@ -266,7 +266,7 @@ func answerThickness(r *Result) *Answer {
 	slope := span(t.Slope.Value, t.Slope.Lo, t.Slope.Hi)
 	for _, l := range t.Lines {
 		if l.Why == "" {
-			a.Detail = append(a.Detail, fmt.Sprintf("%s %s per 100 nm", l.Crystal, span(l.Slope.Value, l.Slope.Lo, l.Slope.Hi)))
+			a.Detail = append(a.Detail, fmt.Sprintf("%s %s", l.Crystal, span(l.Slope.Value, l.Slope.Lo, l.Slope.Hi)))
 		} else {
 			a.Detail = append(a.Detail, l.Crystal+": "+l.Why)
 		}
