@@ -46,7 +46,7 @@ func run(args []string, stdout, stderr io.Writer) int {
 	defer stop()
 	a := &app{out: stdout, err: stderr, kill: kill}
 	root := a.root()
-	root.SetArgs(args)
+	root.SetArgs(shieldHall(args))
 	root.SetOut(stdout)
 	root.SetErr(stderr)
 	err := a.execute(ctx, root)

@@ -1,0 +1,73 @@
+package main
+
+import (
+	"context"
+	"errors"
+	"os"
+	"os/exec"
+	"path/filepath"
+	"strconv"
+	"sync"
+	"testing"
+
+	"github.com/rogpeppe/go-internal/testscript"
+
+	"thinward/notebooks/kernel"
+)
+
+func TestMain(m *testing.M) {
+	testscript.Main(m, map[string]func(){"thinward": main})
+}
+
+// kernelOnce builds the kernel when the first script asks for it.
+var kernelOnce = sync.OnceValues(func() (string, error) { return kernel.Ensure(context.Background(), nil) })
+
+// TestScripts runs testdata/script. Beside the usual commands a script has
+//
+//	status N thinward ARGS...   run and want this exit status
+//	kernel                      make the kernel known to the commands below
+//
+// and $REPO, the folder of go.mod. UPDATE_SCRIPTS=1 rewrites expected output.
+func TestScripts(t *testing.T) {
+	repo, err := filepath.Abs(filepath.Join("..", ".."))
+	if err != nil {
+		t.Fatal(err)
+	}
+	testscript.Run(t, testscript.Params{
+		Dir:                 filepath.Join("testdata", "script"),
+		UpdateScripts:       os.Getenv("UPDATE_SCRIPTS") != "",
+		RequireExplicitExec: true,
+		Setup: func(e *testscript.Env) error {
+			e.Setenv("REPO", repo)
+			e.Setenv("LC_ALL", "C")
+			return nil
+		},
+		Cmds: map[string]func(*testscript.TestScript, bool, []string){
+			"status": status,
+			"kernel": func(ts *testscript.TestScript, _ bool, _ []string) {
+				path, err := kernelOnce()
+				ts.Check(err)
+				ts.Setenv(kernel.PrebuiltEnv, path)
+			},
+		},
+	})
+}
+
+func status(ts *testscript.TestScript, neg bool, args []string) {
+	if neg || len(args) < 2 {
+		ts.Fatalf("usage: status N command args...")
+	}
+	want, err := strconv.Atoi(args[0])
+	ts.Check(err)
+	got := 0
+	if err := ts.Exec(args[1], args[2:]...); err != nil {
+		var exit *exec.ExitError
+		if !errors.As(err, &exit) {
+			ts.Fatalf("%v", err)
+		}
+		got = exit.ExitCode()
+	}
+	if got != want {
+		ts.Fatalf("exit status %d, want %d", got, want)
+	}
+}
