@@ -80,7 +80,7 @@ func Build(nb *runner.Notebook, r *analysis.Result, o Options) ([]byte, error) {
 	b.WriteString(`</ol></nav><main id="main">`)
 	banner(&b, o.Failure)
 	for _, s := range d.sections {
-		fmt.Fprintf(&b, "\n<section id=\"%s\" aria-labelledby=\"%s-h\">%s</section>", s.id, s.id, s.body.String())
+		fmt.Fprintf(&b, "\n<section id=\"%s\">%s</section>", s.id, s.body.String())
 	}
 	d.foot(&b, &o)
 	b.WriteString(`</main></div><div id="live" class="hide" role="status" aria-live="polite"></div>`)

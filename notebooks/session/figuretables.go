@@ -147,7 +147,7 @@ func (s *Session) SpecificationFigure() *View { return specificationFigure(s.upT
 
 func specificationFigure(r *analysis.Result) *View {
 	fv := &figureView{title: "m under other choices", pick: "Crystal", empty: "No other choices were tried.",
-		caption: "Every row is the same data under one choice changed; the square is the leading analysis. Rows that leave its interval show a choice that matters, and the text beside the table says which of them is known to err."}
+		caption: "Every row is the same data under one choice changed; the square is the leading analysis. A row that leaves its interval shows a choice that matters; rows of axes that share noise or deviations with the difference are known to err and stand here to be compared."}
 	g := newGrid("m under other choices", "crystal", "choice", "level", "m", "interval").words(1, 2)
 	for _, name := range crystalsOf(r) {
 		f := &figure.Forest{Title: "m under other choices, crystal " + name, Desc: "Estimate and interval of m with one choice of the analysis changed at a time.", X: figure.Axis{Label: "exchange m", Zero: true}}
@@ -155,7 +155,11 @@ func specificationFigure(r *analysis.Result) *View {
 			if x.Crystal != name {
 				continue
 			}
-			f.Rows = append(f.Rows, figure.Row{Group: x.Choice, Name: x.Level, Value: x.M.Value, Lo: x.M.Lo, Hi: x.M.Hi, Lead: x.Leading, Note: x.M.Why})
+			level := x.Level
+			if x.Leading {
+				level = "the leading analysis"
+			}
+			f.Rows = append(f.Rows, figure.Row{Group: x.Choice, Name: level, Value: x.M.Value, Lo: x.M.Lo, Hi: x.M.Hi, Lead: x.Leading, Note: x.M.Why})
 			g.add(name, x.Choice, x.Level, number(x.M.Value, 3), between(x.M.Lo, x.M.Hi, 3))
 		}
 		if len(f.Rows) > 0 {

@@ -85,7 +85,12 @@ func (v *figureView) view() *View {
 		}
 		fmt.Fprintf(&b, `<div class="multiples of-%d">`, min(3, len(v.parts[i])))
 		for _, f := range v.parts[i] {
-			b.WriteString(`<div class="panel">` + f.SVG + "</div>")
+			reach := ""
+			if len(v.parts[i]) == 1 {
+				// A wide figure scrolls on a narrow screen, also by the keys.
+				reach = ` tabindex="0" role="group" aria-label="` + html.EscapeString(f.Title) + `"`
+			}
+			b.WriteString(`<div class="panel"` + reach + ">" + f.SVG + "</div>")
 		}
 		b.WriteString("</div>" + v.extra[i])
 		for _, note := range v.whole[i].Notes {
