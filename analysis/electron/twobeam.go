@@ -70,19 +70,18 @@ func BlackmanRatio(a float64) float64 {
 // recurrence (Miller; ibid. 9.12). Above x = 20000 two terms of the asymptotic expansion
 // (ibid. 11.1.11, good to 1e-10) take its place. x < 0 and NaN give NaN, +Inf gives 1.
 func IntegralJ0(x float64) float64 {
-	const far = 20000
+	const near, far = 1e-4, 20000
 	switch {
 	case !(x >= 0):
 		return math.NaN()
 	case math.IsInf(x, 1):
 		return 1
-	case x == 0:
-		return 0
+	case x < near:
+		return x - x*x*x/12
 	case x > far:
 		sin, cos := math.Sincos(x - math.Pi/4)
 		return 1 + math.Sqrt(2/(math.Pi*x))*(sin-5*cos/(8*x))
 	}
-	const huge = 1e250
 	n := 2 * int(x/2+20+4*math.Cbrt(x))
 	upper, here := 0.0, 1e-250
 	odd, even := 0.0, 0.0 // sums over J1, J3, ... and J2, J4, ...
@@ -93,9 +92,6 @@ func IntegralJ0(x float64) float64 {
 			odd += here
 		}
 		upper, here = here, 2*float64(k)/x*here-upper
-		if math.Abs(here) > huge {
-			upper, here, odd, even = upper/huge, here/huge, odd/huge, even/huge
-		}
 	}
 	return 2 * odd / (here + 2*even) // 1 = J0 + 2 (J2 + J4 + ...)
 }
