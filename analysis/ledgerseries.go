@@ -75,33 +75,51 @@ func (s *Study) doseOrder() (together, known int) {
 }
 
 // damage is the slope of B against dose within crystals, pooled, with its
-// standard error; NaN where dose or B is missing. The B of a crystal are against
-// its thinnest position, so their errors are taken as those of differences, half on
-// either side.
+// standard error; NaN where dose or B is missing. Thickness is a second predictor
+// unless it goes with dose: an offset, or scattering itself, also moves B. The B of a
+// crystal are against its thinnest position, so their errors are taken as those of
+// differences, half on either side.
 func (s *Study) damage() (slope, se float64) {
-	num, den, variance := 0.0, 0.0, 0.0
+	var dose, thickness, b, v []float64
 	for i, sc := range s.scaled {
 		c := &s.Series.Crystals[i]
-		var dose, b []float64
+		var d, t, y []float64
 		worst := 0.0
 		for j := range c.Positions {
 			p := sc.slot[j]
 			if c.Positions[j].DosePerA2 > 0 {
-				dose, b = append(dose, c.Positions[j].DosePerA2), append(b, sc.Fit.B[p])
+				d, t, y = append(d, c.Positions[j].DosePerA2), append(t, c.Positions[j].ThicknessNM), append(y, sc.Fit.B[p])
 				worst = math.Max(worst, sc.Fit.BSE[p])
 			}
 		}
-		md, mb := mean(dose), mean(b)
-		for k := range dose {
-			num += (dose[k] - md) * (b[k] - mb)
-			den += (dose[k] - md) * (dose[k] - md)
-			variance += (dose[k] - md) * (dose[k] - md) * worst * worst / 2
+		md, mt, my := mean(d), mean(t), mean(y)
+		for k := range d {
+			dose, thickness, b, v = append(dose, d[k]-md), append(thickness, t[k]-mt), append(b, y[k]-my), append(v, worst*worst/2)
 		}
 	}
-	if den == 0 || variance == 0 {
+	dd, tt, dt := inner(dose, dose), inner(thickness, thickness), inner(dose, thickness)
+	if rest := dd - dt*dt/tt; rest > 0.1*dd {
+		for k := range dose {
+			dose[k] -= dt / tt * thickness[k]
+		}
+		dd = rest
+	}
+	variance := 0.0
+	for k, x := range dose {
+		variance += x * x * v[k]
+	}
+	if dd == 0 || variance == 0 {
 		return math.NaN(), math.NaN()
 	}
-	return num / den, math.Sqrt(variance) / den
+	return inner(dose, b) / dd, math.Sqrt(variance) / dd
+}
+
+func inner(a, b []float64) float64 {
+	sum := 0.0
+	for i := range a {
+		sum += a[i] * b[i]
+	}
+	return sum
 }
 
 func mean(v []float64) float64 {

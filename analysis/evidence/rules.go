@@ -55,17 +55,22 @@ func Negatives(near [3]int, observed []int, expected []float64) Finding {
 	return f
 }
 
+// beyond reports whether a value is beyond three standard errors of 0, by its 95 %
+// interval: a ledger asks the same of several crystals, and one in twenty would be
+// cautioned for nothing.
+func beyond(v, lo, hi float64) bool { return math.Abs(v) > 3.0/1.96*(hi-lo)/2 }
+
 // OffsetOf judges an additive constant o, in units of the mean intensity of the
-// lowest third in s^2, with its interval. Caution when the interval excludes 0;
-// fails beyond 0.05, where shell means of weak shells are mostly offset.
+// lowest third in s^2, with its 95 % interval. Caution beyond three standard errors;
+// fails beyond 0.05 too, where shell means of weak shells are mostly offset.
 func OffsetOf(o, lo, hi float64) Finding {
-	f := Finding{Value: o, Unit: "of the mean of the strong third", Verdict: Fine, Why: "no additive offset between the positions is seen; the fitted m allows for one"}
+	f := Finding{Value: o, Unit: "of the mean of the strong third", Verdict: Fine, Why: "no additive offset between the positions is clear of its error; the fitted m allows for one"}
 	switch {
 	case math.IsNaN(o):
 		return unknown("an offset is not part of the model that leads")
-	case (lo > 0 || hi < 0) && math.Abs(o) > 0.05:
+	case beyond(o, lo, hi) && math.Abs(o) > 0.05:
 		f.Verdict, f.Why = Fails, "a large additive offset is seen (background, readout): shell means of the weak shells are not of reflections alone"
-	case lo > 0 || hi < 0:
+	case beyond(o, lo, hi):
 		f.Verdict, f.Why = Caution, "an additive offset is seen (background, readout, or true double scattering, which also falls off more slowly than the intensities); the fitted m allows for it, a model without it would not"
 	}
 	return f
@@ -108,7 +113,7 @@ type CurbForm struct {
 const CountRate = "count rate"
 
 // HighCounts asks whether a loss of the strongest could be the detector's. Fine
-// when no form finds a q, or the data refuse the count rate; caution when a q is
+// when no form finds a q beyond three standard errors, or the data refuse the count rate; caution when a q is
 // found and the count rate fits best or cannot be refused.
 func HighCounts(forms []CurbForm) Finding {
 	if len(forms) == 0 {
@@ -122,7 +127,7 @@ func HighCounts(forms []CurbForm) Finding {
 		if f.Name == CountRate {
 			rate = k
 		}
-		seen = seen || f.Lo > 0
+		seen = seen || f.Q > 0 && beyond(f.Q, f.Lo, f.Hi)
 	}
 	out := Finding{Value: forms[best].Q, Unit: "q of the form that fits best, " + forms[best].Name, Verdict: Fine}
 	switch {

@@ -136,8 +136,8 @@ type Common struct {
 }
 
 // Coverage judges representativeness. Caution below 0.7 common, fails below 0.2;
-// caution too when the lost differ in mean strength by more than 0.2 and three
-// standard errors.
+// caution too when more than 2 % are lost and differ in mean strength by more than 0.2
+// and three standard errors.
 func Coverage(c Common) Finding {
 	f := Finding{Value: c.Share, Unit: "of the reflections of either position are in both", Verdict: Fine}
 	f.Why = "all reflections are common"
@@ -154,7 +154,7 @@ func Coverage(c Common) Finding {
 	case c.Share < 0.7:
 		f.Verdict = Caution
 		f.Why += ": the common ones may not represent the rest"
-	case math.Abs(c.Strength) > 0.2 && math.Abs(c.Strength) > 3*c.StrengthSE:
+	case c.Share < 0.98 && math.Abs(c.Strength) > 0.2 && math.Abs(c.Strength) > 3*c.StrengthSE:
 		f.Verdict = Caution
 		f.Why += ": the lost are stronger or weaker than the rest"
 	}
@@ -282,26 +282,26 @@ func AxisOf(correlation float64, leading string, independent bool) Finding {
 }
 
 // AgainstLeading judges m on another axis against the leading one: caution when the
-// interval of the difference excludes 0; why names the likely cause.
+// interval of the difference excludes 0 and it is more than 0.01; cause is said.
 func AgainstLeading(d, lo, hi float64, cause string) Finding {
 	if math.IsNaN(d) {
 		return unknown("the difference from the leading axis is not estimable")
 	}
 	f := Finding{Value: d, Unit: "difference of m", Verdict: Fine, Why: "agrees with the leading axis"}
-	if lo > 0 || hi < 0 {
+	if (lo > 0 || hi < 0) && math.Abs(d) > 0.01 {
 		f.Verdict, f.Why = Caution, "differs from the leading axis: "+cause
 	}
 	return f
 }
 
 // Describes judges the over-identification of the fitted model: caution below p =
-// 0.01.
+// 0.001, as several contrasts are asked.
 func Describes(p float64, df int) Finding {
 	if df == 0 || math.IsNaN(p) {
 		return unknown("the model cannot be tested against the curve")
 	}
 	f := Finding{Value: p, Unit: "p of the over-identification", Verdict: Fine, Why: "the fitted numbers describe the curve"}
-	if p < 0.01 {
+	if p < 0.001 {
 		f.Verdict, f.Why = Caution, "the fitted numbers do not describe the curve: look at it"
 	}
 	return f

@@ -24,8 +24,9 @@ type Shrunk struct {
 }
 
 // tableSize is the number of equal steps of probability in the quantiles of a
-// centric density.
-const tableSize = 64
+// centric density; the first and the last step end where a tenth of one is left, so
+// that they do not reach into the empty tails.
+const tableSize = 256
 
 // NewShrunk prepares the densities. All columns are parallel; centric nil means
 // acentric. Errors: unequal lengths, J not finite, Var or Local not above 0.
@@ -118,7 +119,7 @@ func centricQuantiles(j, sd, local float64) []float64 {
 	out := make([]float64, tableSize+1)
 	k := 0
 	for q := range out {
-		want := sum[n] * float64(q) / tableSize
+		want := sum[n] * math.Max(0.1/tableSize, math.Min(float64(q)/tableSize, 1-0.1/tableSize))
 		for k < n-1 && sum[k+1] < want {
 			k++
 		}
