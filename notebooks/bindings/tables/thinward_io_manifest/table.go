@@ -35,6 +35,7 @@ func init() {
 			"Error":         reflect.TypeOf((*manifest.Error)(nil)).Elem(),
 			"Exclude":       reflect.TypeOf((*manifest.Exclude)(nil)).Elem(),
 			"File":          reflect.TypeOf((*manifest.File)(nil)).Elem(),
+			"FreePath":      reflect.TypeOf((*manifest.FreePath)(nil)).Elem(),
 			"Position":      reflect.TypeOf((*manifest.Position)(nil)).Elem(),
 			"Primary":       reflect.TypeOf((*manifest.Primary)(nil)).Elem(),
 			"Truth":         reflect.TypeOf((*manifest.Truth)(nil)).Elem(),
