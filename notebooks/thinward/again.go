@@ -135,7 +135,7 @@ func (a *app) verdict(old, fresh *report, all bool) error {
 	}
 	list := append(c.Differences, pairs...)
 	printDifferences(a, list, len(c.Differences)+n, all)
-	return fmt.Errorf("%s differ from what the report recorded", plural(len(c.Differences)+n, "place"))
+	return fmt.Errorf("not what the report recorded: %s", plural(len(c.Differences)+n, "difference"))
 }
 
 func versionOf(r *analysis.Result) string {

@@ -236,7 +236,13 @@ func unpackWithin(file, dir string, mostFiles int, mostBytes int64) error {
 		return fail("it holds %d files, more than %d", len(z.File), mostFiles)
 	}
 	seen := map[string]bool{}
+	var files []*zip.File
 	for _, f := range z.File {
+		// Whoever packs a bundle anew adds entries for folders; they hold nothing.
+		if folder, ok := strings.CutSuffix(f.Name, "/"); ok && safeName(folder) && f.UncompressedSize64 == 0 {
+			continue
+		}
+		files = append(files, f)
 		switch {
 		case !safeName(f.Name):
 			return fail("the name %q would leave the folder", f.Name)
@@ -253,7 +259,7 @@ func unpackWithin(file, dir string, mostFiles int, mostBytes int64) error {
 	}
 	defer root.Close()
 	left := mostBytes
-	for _, f := range z.File {
+	for _, f := range files {
 		n, err := unpackOne(root, f, left)
 		if errors.Is(err, errTooMuch) {
 			return fail("it holds more than %d bytes", mostBytes)

@@ -173,9 +173,9 @@ func (a *app) printComparison(r *comparisonReport, all bool) error {
 	case r.Differ == 0:
 		fmt.Fprintf(a.out, "The two reports have %s and say the same: %d numbers agree.\n", inputs, r.Numbers)
 	case all:
-		fmt.Fprintf(a.out, "The two reports have %s; %s differ.\n", inputs, plural(r.Differ, "place"))
+		fmt.Fprintf(a.out, "The two reports have %s and %s.\n", inputs, plural(r.Differ, "difference"))
 	default:
-		fmt.Fprintf(a.out, "The two reports have %s; %s differ, and --all lists them.\n", inputs, plural(r.Differ, "place"))
+		fmt.Fprintf(a.out, "The two reports have %s and %s; --all lists them.\n", inputs, plural(r.Differ, "difference"))
 	}
 	return nil
 }

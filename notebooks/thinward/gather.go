@@ -206,11 +206,12 @@ func (g *gathered) caution() {
 	axes, models := map[string]bool{}, map[string]bool{}
 	lo, hi := math.Inf(1), 0.0
 	for _, k := range g.Crystals {
-		axes[k.Axis], models[k.Model] = true, true
-		lo, hi = math.Min(lo, k.ThicknessNM[1]-k.ThicknessNM[0]), math.Max(hi, k.ThicknessNM[1]-k.ThicknessNM[0])
 		if math.IsNaN(k.SE) {
 			g.Cautions = append(g.Cautions, fmt.Sprintf("%s, %s: left out: %s.", k.Report, k.Crystal, k.Why))
+			continue
 		}
+		axes[k.Axis], models[k.Model] = true, true
+		lo, hi = math.Min(lo, k.ThicknessNM[1]-k.ThicknessNM[0]), math.Max(hi, k.ThicknessNM[1]-k.ThicknessNM[0])
 	}
 	if hi > 1.5*lo {
 		g.Cautions = append(g.Cautions, fmt.Sprintf("The contrasts span from %.0f to %.0f nm of thickness: their m are not the same quantity; compare the growth per 100 nm.", lo, hi))

@@ -6,6 +6,7 @@ import (
 	"os"
 	"os/exec"
 	"path/filepath"
+	"regexp"
 	"strconv"
 	"sync"
 	"testing"
@@ -26,6 +27,7 @@ var kernelOnce = sync.OnceValues(func() (string, error) { return kernel.Ensure(c
 //
 //	status N thinward ARGS...   run and want this exit status
 //	kernel                      make the kernel known to the commands below
+//	replace FILE REGEXP TEXT    change the first match in a file
 //
 // and $REPO, the folder of go.mod. UPDATE_SCRIPTS=1 rewrites expected output.
 func TestScripts(t *testing.T) {
@@ -43,7 +45,8 @@ func TestScripts(t *testing.T) {
 			return nil
 		},
 		Cmds: map[string]func(*testscript.TestScript, bool, []string){
-			"status": status,
+			"status":  status,
+			"replace": replaceText,
 			"kernel": func(ts *testscript.TestScript, _ bool, _ []string) {
 				path, err := kernelOnce()
 				ts.Check(err)
@@ -70,4 +73,19 @@ func status(ts *testscript.TestScript, neg bool, args []string) {
 	if got != want {
 		ts.Fatalf("exit status %d, want %d", got, want)
 	}
+}
+
+func replaceText(ts *testscript.TestScript, neg bool, args []string) {
+	if neg || len(args) != 3 {
+		ts.Fatalf("usage: replace FILE REGEXP TEXT")
+	}
+	path := ts.MkAbs(args[0])
+	data, err := os.ReadFile(path)
+	ts.Check(err)
+	at := regexp.MustCompile(args[1]).FindIndex(data)
+	if at == nil {
+		ts.Fatalf("%s has no %s", args[0], args[1])
+	}
+	out := append(append(append([]byte(nil), data[:at[0]]...), args[2]...), data[at[1]:]...)
+	ts.Check(os.WriteFile(path, out, 0o644))
 }
