@@ -22,7 +22,8 @@ func start(path, connection, dir string, env []string) (*process, error) {
 	p := &process{done: make(chan struct{})}
 	p.cmd = exec.Command(path, "-child", connection)
 	p.cmd.Dir = dir
-	p.cmd.Env = append(os.Environ(), env...)
+	// It tells the kernel that we take progress, and that our page has its own style.
+	p.cmd.Env = append(append(os.Environ(), "THINWARD_RUNNER=1"), env...)
 	p.cmd.Stderr = &p.tail
 	ownGroup(p.cmd)
 	stdin, err := p.cmd.StdinPipe()

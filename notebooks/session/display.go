@@ -1,10 +1,19 @@
 package session
 
-import "sync"
+import (
+	"os"
+	"sync"
+)
 
 // ProgressMIME is the MIME type of the display messages that carry progress from
 // the kernel to the runner, which drops them from the saved notebook.
 const ProgressMIME = "application/vnd.thinward.progress+json"
+
+// RunnerEnv names the environment variable that our runner sets. It takes
+// progress messages, which to another front end would be outputs with nothing to
+// show; and its page styles what views show, where another front end needs the
+// style with them.
+const RunnerEnv = "THINWARD_RUNNER"
 
 // Progress is the state of one step.
 type Progress struct {
@@ -44,9 +53,13 @@ func Display(data map[string]interface{}) error {
 	return front.send(data)
 }
 
-// Report tells the runner how far a step has come. A message that cannot be sent
-// is lost: progress never stops the work.
+// Report tells the runner how far a step has come; under another front end it
+// does nothing. A message that cannot be sent is lost: progress never stops the
+// work.
 func Report(p Progress) {
+	if os.Getenv(RunnerEnv) == "" {
+		return
+	}
 	_ = Display(map[string]interface{}{ProgressMIME: map[string]interface{}{
 		"step": p.Step, "index": p.Index, "steps": p.Steps,
 		"done": p.Done, "total": p.Total, "text": p.Text,

@@ -16,6 +16,8 @@ func TestDisplay(t *testing.T) {
 	if err := Display(map[string]interface{}{"text/plain": "x"}); !errors.Is(err, failed) {
 		t.Errorf("error %v", err)
 	}
+	Report(Progress{Step: "not wanted"})
+	t.Setenv(RunnerEnv, "1")
 	Report(Progress{Step: "scaling", Index: 2, Steps: 12, Done: 1, Total: 3, Text: "L1"})
 	ConnectDisplay(nil)
 	Report(Progress{})

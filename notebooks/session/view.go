@@ -26,7 +26,7 @@ func (v *View) SimpleRender() map[string]interface{} {
 	}
 	out := map[string]interface{}{"text/plain": v.String()}
 	if v.HTML != "" {
-		out["text/html"] = v.HTML
+		out["text/html"] = styled(v.HTML)
 	}
 	if v.SVG != "" {
 		out["image/svg+xml"] = v.SVG

@@ -36,6 +36,7 @@ func init() {
 			"ProgressMIME":     reflect.ValueOf(session.ProgressMIME),
 			"Report":           reflect.ValueOf(session.Report),
 			"ResultFile":       reflect.ValueOf(session.ResultFile),
+			"RunnerEnv":        reflect.ValueOf(session.RunnerEnv),
 			"Together":         reflect.ValueOf(session.Together),
 			"Version":          reflect.ValueOf(session.Version),
 		},
@@ -54,6 +55,7 @@ func init() {
 			"PartialFile":  "string:result.partial.json",
 			"ProgressMIME": "string:application/vnd.thinward.progress+json",
 			"ResultFile":   "string:result.json",
+			"RunnerEnv":    "string:THINWARD_RUNNER",
 		},
 	}
 }
