@@ -141,6 +141,51 @@ func TestForbiddenAreFilled(t *testing.T) {
 	}
 }
 
+// TestMoreBeams: a wider choice of beams moves the intensities little, and either limit alone
+// widens it.
+func TestMoreBeams(t *testing.T) {
+	st := invented(t, "P 21 21 21", crystal.Cell{A: 6, B: 7, C: 8.5, Alpha: 90, Beta: 90, Gamma: 90}, 5)
+	sw := sweepOf(st, 10, 30)
+	base := rotate(t, st, sw, &BeamSettings{DMin: 1.1, StepDeg: 0.1})
+	wide := rotate(t, st, sw, &BeamSettings{DMin: 1.1, StepDeg: 0.1, Excitation: 0.024})
+	at := map[crystal.HKL]int{}
+	for i, h := range wide.HKL {
+		at[h] = i
+	}
+	for k := range base.Dynamical {
+		var square, sum, n float64
+		for i, h := range base.HKL {
+			if j, ok := at[h]; ok {
+				d := base.Dynamical[k][i] - wide.Dynamical[k][j]
+				square, sum, n = square+d*d, sum+wide.Dynamical[k][j], n+1
+			}
+		}
+		rms := math.Sqrt(square/n) / (sum / n)
+		t.Logf("%g nm: rms difference %.4f of the mean over %g reflections, %.1f and %.1f beams", sw.ThicknessNM[k], rms, n, base.MeanBeams, wide.MeanBeams)
+		if !(rms < 0.05 && n > 30 && wide.MeanBeams > 1.5*base.MeanBeams) {
+			t.Errorf("%g nm: rms difference %g of the mean over %g reflections", sw.ThicknessNM[k], rms, n)
+		}
+	}
+	none := rotate(t, st, sw, &BeamSettings{DMin: 1.1, StepDeg: 1, Coupling: -1})
+	strong := rotate(t, st, sw, &BeamSettings{DMin: 1.1, StepDeg: 1, Coupling: 200})
+	if !(strong.MeanBeams > none.MeanBeams+1) {
+		t.Errorf("%g beams by coupling, %g without", strong.MeanBeams, none.MeanBeams)
+	}
+}
+
+func BenchmarkRotate(b *testing.B) {
+	st := small(b, "P 21 21 21")
+	sw := sweepOf(st, 30, 60, 100)
+	for _, d := range []float64{1.5, 1} {
+		b.Run(fmt.Sprintf("dmin=%g", d), func(b *testing.B) {
+			b.ReportAllocs()
+			for b.Loop() {
+				rotate(b, st, sw, &BeamSettings{DMin: d, StepDeg: 1})
+			}
+		})
+	}
+}
+
 func TestRotateRepeats(t *testing.T) {
 	st := small(t, "P -1")
 	sw := sweepOf(st, 10, 50)
