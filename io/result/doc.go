@@ -1,5 +1,6 @@
-// Package result writes and reads result.json, writes pairs.csv, and holds the
-// JSON Schema of the former.
+// Package result writes and reads result.json and pairs.csv, says where two
+// results differ, holds the JSON Schema of the former (schema.json), and writes
+// intensities and pairs as CSV and CIF.
 //
 // Numbers keep every digit. Not-a-number is written as null, an infinite
 // interval end as "inf" or "-inf"; both come back as they were. The same result
