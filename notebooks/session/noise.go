@@ -122,22 +122,25 @@ func (s *Session) chi(by scaling.By, words string, x figure.Axis, place func(flo
 	return fv.view()
 }
 
+// residualStep is the width in degrees of the steps of AngleResiduals.
+const residualStep = 4
+
 // AngleResiduals shows what the scale curve leaves over in the angle.
 func (s *Session) AngleResiduals() *View {
-	fv := &figureView{title: "Residuals of ln K by angle", empty: "No position has rotation angles.",
-		caption: "Mean of what the scale leaves over, in steps of 2 degrees with 95 % intervals: a run of steps off zero says that the knots are too far apart or that frames differ in a way no smooth curve follows."}
+	fv := &figureView{title: "Residuals of ln K by angle", pick: "Crystal", empty: "No position has rotation angles.",
+		caption: fmt.Sprintf("Mean of what the scale leaves over, in steps of %d degrees with 95 %% intervals: a run of steps off zero says that the knots are too far apart or that frames differ in a way no smooth curve follows.", residualStep)}
 	g := newGrid("Residuals of ln K by angle", "position", "steps", "root mean square", "largest", "at (\u00b0)", "steps beyond 3 s.u.")
-	p := &figure.Panels{Title: "Residuals of ln K against rotation angle", Desc: "Mean residual of ln K in steps of two degrees, one panel a crystal, one curve a position.",
-		X: figure.Axis{Label: "rotation angle (\u00b0)"}, Y: figure.Axis{Label: "ln (observed / scale model)", Zero: true}}
 	for i, sc := range s.scaled() {
 		name := s.study.Series.Crystals[i].Name
-		bins, err := scaling.AngleResiduals(sc.Input, sc.Fit, sc.Noise, 0)
+		bins, err := scaling.AngleResiduals(sc.Input, sc.Fit, sc.Noise, residualStep)
 		if err != nil {
 			s.fail(&analysis.StepError{Step: stepScaling, Err: err})
 		}
-		panel := figure.Panel{Name: name}
+		p := &figure.Panels{Title: "Residuals of ln K against rotation angle, crystal " + name, Desc: "Mean residual of ln K in steps of angle, one panel a position.",
+			X: figure.Axis{Label: "rotation angle (\u00b0)"}, Y: figure.Axis{Label: "ln (observed / scale model)", Zero: true}}
 		for q := range sc.Order {
-			c := figure.Curve{Name: s.positionName(i, sc, q), Style: figure.Joined}
+			c := figure.Curve{Style: figure.Marks}
+			place := s.positionName(i, sc, q)
 			sum, most, at, far := 0.0, 0.0, math.NaN(), 0
 			for _, b := range bins {
 				if b.Position != q || math.IsNaN(b.LnK) {
@@ -156,15 +159,12 @@ func (s *Session) AngleResiduals() *View {
 			if len(c.X) == 0 {
 				continue
 			}
-			panel.Curves = append(panel.Curves, c)
-			g.add(name+"/"+c.Name, count(len(c.X)), number(math.Sqrt(sum/float64(len(c.X))), 3), number(most, 3), number(at, 0), count(far))
+			p.Panel = append(p.Panel, figure.Panel{Name: place, Curves: []figure.Curve{c}})
+			g.add(name+"/"+place, count(len(c.X)), number(math.Sqrt(sum/float64(len(c.X))), 3), number(most, 3), number(at, 0), count(far))
 		}
-		if len(panel.Curves) > 0 {
-			p.Panel = append(p.Panel, panel)
-		}
+		fv.add(name, p)
 	}
 	fv.summary = g
-	fv.add("", p)
 	return fv.view()
 }
 
