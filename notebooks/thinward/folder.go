@@ -80,7 +80,7 @@ func (f *folder) commit(failed bool) error {
 	}
 	stale := []string{"result.partial.json", logFile}
 	if failed {
-		stale = []string{"result.json", "pairs.csv"}
+		stale = []string{"result.json", "pairs.csv", "result.partial.json"}
 	}
 	for _, name := range stale {
 		if _, err := os.Stat(filepath.Join(f.tmp, name)); errors.Is(err, fs.ErrNotExist) {
