@@ -117,3 +117,25 @@ func TestNoiseShare(t *testing.T) {
 		t.Errorf("share of noise %.2f without deviations and %.2f with 30 %%", none, some)
 	}
 }
+
+// From five crystals on their spread is estimated, and counts against the plan.
+func TestPlanKnowsSpread(t *testing.T) {
+	plan := smallPlan(5)
+	plan.DMin = 2.2
+	for i := range plan.Crystals {
+		plan.Crystals[i].Positions[2].Exchange = []float64{0.02, 0.3, 0.05, 0.35, 0.1}[i]
+	}
+	s := studyOf(t, plan, &Settings{Replicates: 20, Flips: 20})
+	p, err := s.Plan(context.Background(), nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if p.TauWhy != "" || !(p.Tau > 0.02) || p.M != 0.03 || p.Power != 0.8 {
+		t.Fatalf("spread %g %q, m %g, power %g", p.Tau, p.TauWhy, p.M, p.Power)
+	}
+	d := pool.Design{SE: p.Typical.SE, Pairs: p.Typical.Pairs, Multiplicity: p.Typical.Multiplicity, NoiseShare: p.Typical.NoiseShare}
+	floatcmp.Check(t, "seen by one", p.Curve[0].Seen, pool.Visible(math.Hypot(d.SE, p.Tau), 0.05, 0.8), 0, 1e-12)
+	if without, err := d.Crystals(0.03, 0.05, 0.8); err != nil || without >= p.Needs[2].Crystals {
+		t.Errorf("%d crystals without the spread, %d with it, %v", without, p.Needs[2].Crystals, err)
+	}
+}
