@@ -102,7 +102,7 @@ func rising(seed uint64) *simulate.Plan {
 // bounds.
 func TestNullSeries(t *testing.T) {
 	var own, thin tally
-	for seed := range seeds(4) {
+	for seed := range seeds(3) {
 		s := studyOf(t, simulate.Null(seed+1), quick())
 		own.add(t, s, 0, 3)
 		thin.add(t, again(t, s, difference.AxisThin.String()), 0, 1)
@@ -124,7 +124,7 @@ func TestNullSeries(t *testing.T) {
 // axis: it breaks the bounds that the other crystals keep.
 func TestNullSeriesWithRisingDeviations(t *testing.T) {
 	var own, third tally
-	for seed := range seeds(3) {
+	for seed := range seeds(2) {
 		s := studyOf(t, rising(seed+1), quick())
 		own.add(t, s, 0, 3)
 		third.add(t, again(t, s, difference.AxisThird.String()), 0, 3)
@@ -208,7 +208,7 @@ func TestGhostFollowsNaiveAxes(t *testing.T) {
 // class reads a difference that is not there.
 func TestHalvedSigmas(t *testing.T) {
 	var own, observed tally
-	for seed := range seeds(3) {
+	for seed := range seeds(2) {
 		p := halved(seed + 1)
 		s := studyOf(t, p, quick())
 		own.add(t, s, 0, 3)

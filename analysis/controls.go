@@ -9,6 +9,7 @@ import (
 	"thinward/analysis/evidence"
 	"thinward/analysis/intensity"
 	"thinward/analysis/internal/parallel"
+	"thinward/analysis/size"
 )
 
 // Names of the controls.
@@ -56,7 +57,7 @@ func (s *Study) Controls(ctx context.Context) ([]ControlResult, error) {
 		for _, control := range []func(context.Context, *reading) ([]ControlResult, error){
 			s.halvesControl, s.replicateControl, s.swappedControl, s.noiseControl,
 		} {
-			if x.Fit == nil || !x.Fit.Estimable {
+			if r.lead == nil || !r.lead.Estimable {
 				break
 			}
 			c, err := control(ctx, r)
@@ -76,7 +77,7 @@ func (s *Study) Controls(ctx context.Context) ([]ControlResult, error) {
 		out = append(out, per[i]...)
 		out = append(out, injected[i]...)
 	}
-	out = append(out, s.seriesControls(list, out)...)
+	out = append(out, s.seriesControls(readings, out)...)
 	s.progress("controls", 2*len(list), 2*len(list))
 	s.controls = out
 	return out, nil
@@ -203,7 +204,7 @@ func (s *Study) replicateControl(ctx context.Context, r *reading) ([]ControlResu
 func (s *Study) swappedControl(ctx context.Context, r *reading) ([]ControlResult, error) {
 	const can = "whether the estimate treats both sides alike: m of the swapped pair must be -m/(1-m)"
 	const cannot = "where a difference comes from: an artefact swaps sign as well"
-	m := r.x.Fit.M
+	m := r.lead.M
 	v, err := r.of(ctx, r.x.thick, r.x.thin, difference.MatchAuto)
 	if ctx.Err() != nil {
 		return nil, ctx.Err()
@@ -220,15 +221,15 @@ func (s *Study) swappedControl(ctx context.Context, r *reading) ([]ControlResult
 }
 
 // seriesControls are those that need all crystals.
-func (s *Study) seriesControls(list []*Compared, per []ControlResult) []ControlResult {
+func (s *Study) seriesControls(list []*reading, per []ControlResult) []ControlResult {
 	const can = "whether the crystals agree in sign beyond chance, with nothing assumed of errors: whole positions of each crystal are swapped in all 2^k ways"
 	const cannot = "anything that all crystals have in common; with few crystals the smallest p is large"
 	var out []ControlResult
 	var m, back, se []float64
-	for _, x := range list {
+	for _, r := range list {
 		for _, c := range per {
-			if c.Control == controlSwapped && c.Crystal == x.Result.Crystal && !math.IsNaN(c.M.Value) {
-				m, back, se = append(m, x.Fit.M.Value), append(back, c.M.Value), append(se, x.Fit.M.SE)
+			if c.Control == controlSwapped && c.Crystal == r.x.Result.Crystal && !math.IsNaN(c.M.Value) {
+				m, back, se = append(m, r.lead.M.Value), append(back, c.M.Value), append(se, r.lead.M.SE)
 			}
 		}
 	}
@@ -270,12 +271,12 @@ func (s *Study) inject(ctx context.Context, r *reading, name string, m, q float6
 	const can = "whether scaling, merging, pairing or the model swallow or invent a part of an effect of this size"
 	const cannot = "effects of another shape; artefacts that look like it"
 	x := r.x
-	if x.Fit == nil || !x.Fit.Estimable {
+	if r.lead == nil || !r.lead.Estimable {
 		return unread(name, x.Result.Crystal, can, cannot, "m is not estimable"), nil
 	}
 	sc := s.scaled[x.Contrast.Crystal]
-	before := evidence.Summary{P: math.NaN(), M: evidence.Estimate(x.Fit.M), Q: evidence.Estimate(x.Fit.Q)}
-	rec, err := evidence.Recover(ctx, before, s.injection(x, m, q), sc.Input.I, s.throughScaling(r))
+	before := evidence.Summary{P: math.NaN(), M: evidence.Estimate(r.lead.M), Q: evidence.Estimate(r.lead.Q)}
+	rec, err := evidence.Recover(ctx, before, s.injection(r, m, q), sc.Input.I, s.throughScaling(r))
 	if ctx.Err() != nil {
 		return ControlResult{}, ctx.Err()
 	}
@@ -288,7 +289,7 @@ func (s *Study) inject(ctx context.Context, r *reading, name string, m, q float6
 	case q == 0:
 		out.Why = fmt.Sprintf("m = %s was added to the thick position; %s came back beyond what was there", short(m), short(rec.M.Value))
 		out.judge(evidence.Found(rec.M, m))
-	case x.Result.Curb.Why != "" && math.IsNaN(x.Result.Curb.Q):
+	case r.lead.Model < size.MQ:
 		return unread(name, x.Result.Crystal, can, cannot, "the model has no curb"), nil
 	default:
 		out.ExpectedQ = q
@@ -312,7 +313,8 @@ func (s *Study) throughScaling(r *reading) evidence.Pipeline {
 
 // injection prepares an effect in the thick position, parallel to the rows of
 // the crystal's scaling input.
-func (s *Study) injection(x *Compared, m, q float64) *evidence.Injection {
+func (s *Study) injection(r *reading, m, q float64) *evidence.Injection {
+	x := r.x
 	sc := s.scaled[x.Contrast.Crystal]
 	n := sc.Input.Len()
 	out := &evidence.Injection{M: m, Q: q, Thick: make([]bool, n), Local: make([]float64, n), Expected: make([]float64, n), Unit: make([]float64, n)}
@@ -325,7 +327,7 @@ func (s *Study) injection(x *Compared, m, q float64) *evidence.Injection {
 		e := float64(s.intake.Catalogue.Epsilon[u])
 		out.Local[o] = g * local[u]
 		out.Expected[o] = g * sc.Fit.J[u]
-		out.Unit[o] = g * e * x.Fit.Reference
+		out.Unit[o] = g * e * r.lead.Reference
 	}
 	return out
 }

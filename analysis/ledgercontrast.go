@@ -34,7 +34,10 @@ func (s *Study) judgeContrast(x *Compared, put func(check, where string, f evide
 	independent := x.Leading == leadCrystals
 	put("strength axis", where, evidence.AxisOf(r.AxisAgreement, x.Leading, independent))
 	put("deviations", where, evidence.Deviations(r.Correlation.R, r.Correlation.Lo, r.Correlation.Hi, r.PairNoise, r.Bracket.Thin.Value, r.Bracket.Thick.Value, independent))
-	put("additive offset", where, evidence.OffsetOf(r.Offset.O, r.Offset.Lo, r.Offset.Hi))
+	if x.Leading != leadBracket {
+		put("additive offset", where, evidence.OffsetOf(r.Offset.O, r.Offset.Lo, r.Offset.Hi))
+		put("model against curve", where, evidence.Describes(r.OverIdent.P, r.OverIdent.DF))
+	}
 	if independent {
 		var forms []evidence.CurbForm
 		for _, f := range r.CurbForms {
@@ -42,8 +45,10 @@ func (s *Study) judgeContrast(x *Compared, put func(check, where string, f evide
 		}
 		put("high counts", where, evidence.HighCounts(forms))
 	}
-	put("model against curve", where, evidence.Describes(r.OverIdent.P, r.OverIdent.DF))
 	for _, a := range r.Axes {
+		if math.IsNaN(a.Delta.Value) {
+			continue
+		}
 		switch a.Axis {
 		case difference.AxisThird.String():
 			put("axis third against leading", where, evidence.AgainstLeading(a.Delta.Value, a.Delta.Lo, a.Delta.Hi, "deviations that neighbouring positions of this crystal share"))
@@ -87,13 +92,17 @@ func (s *Study) ledgerChoices(b *ledgerBook) {
 				continue
 			}
 			turn := evidence.Turn{Lo: math.Inf(1), Hi: math.Inf(-1)}
+			lead, se := math.NaN(), math.NaN()
 			for _, row := range s.spec {
+				if row.Crystal == x.Result.Crystal && row.Leading {
+					lead, se = row.M.Value, (row.M.Hi-row.M.Lo)/2/zOf(s.settings.Level)
+				}
 				if row.Crystal == x.Result.Crystal && row.Choice == kind.choice && !math.IsNaN(row.M.Value) {
 					turn.Lo, turn.Hi, turn.N = math.Min(turn.Lo, row.M.Value), math.Max(turn.Hi, row.M.Value), turn.N+1
 				}
 			}
 			if turn.N > 0 {
-				list = append(list, placed{x.Result.Crystal, evidence.ChoiceOf(kind.what, x.Result.Exchange.M, x.Result.Exchange.SE, turn)})
+				list = append(list, placed{x.Result.Crystal, evidence.ChoiceOf(kind.what, lead, se, turn)})
 			}
 		}
 		b.fold(kind.check, "crystals", 0, list)

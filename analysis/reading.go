@@ -24,6 +24,9 @@ type reading struct {
 	others []difference.OtherCrystal
 	third  *intensity.Merged
 	model  size.Model
+	// lead is the fit that is repeated: that of the contrast, or on a bracket that of
+	// half of the thin position; nil when there is none.
+	lead *size.Fit
 	// flips is the number of sign flips for the p of the curve; 0 leaves it out.
 	flips int
 	seed  resample.Seed
@@ -32,7 +35,14 @@ type reading struct {
 }
 
 func (s *Study) newReading(x *Compared) *reading {
-	r := &reading{study: s, x: x, cat: s.intake.Catalogue, model: x.Model, seed: s.seed(x.Result.Crystal, "reading")}
+	r := &reading{study: s, x: x, cat: s.intake.Catalogue, model: x.Model, lead: x.Fit, seed: s.seed(x.Result.Crystal, "reading")}
+	if x.Leading == leadBracket {
+		if legs := s.legs(x); legs != nil {
+			if fit, err := size.MomentsCross(legs, nil, x.Model, s.sizeSettings()); err == nil && fit.Estimable {
+				r.lead = fit
+			}
+		}
+	}
 	switch x.Leading {
 	case leadCrystals:
 		r.others = s.others(x.Contrast)

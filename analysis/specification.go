@@ -36,10 +36,9 @@ func (s *Study) Specification(ctx context.Context) ([]Specification, error) {
 	}
 	var tasks []variant
 	for _, x := range list {
-		if x.Fit == nil {
-			continue
+		if r := s.newReading(x); r.lead != nil {
+			tasks = append(tasks, s.variants(r, apart)...)
 		}
-		tasks = append(tasks, s.variants(x, apart)...)
 	}
 	out := make([]Specification, len(tasks))
 	err = parallel.For(ctx, len(tasks), s.settings.Workers, func(ctx context.Context, k int) error {
@@ -87,15 +86,15 @@ const (
 	choiceFriedel = "Friedel mates"
 )
 
-func (s *Study) variants(x *Compared, other *friedel) []variant {
-	r := s.newReading(x)
+func (s *Study) variants(r *reading, other *friedel) []variant {
+	x := r.x
 	name := x.Result.Crystal
 	var out []variant
 	add := func(choice, level string, fit func(context.Context) (*size.Fit, error)) {
 		out = append(out, variant{crystal: name, choice: choice, level: level, fit: fit})
 	}
 	out = append(out, variant{crystal: name, choice: choiceLeading, level: fmt.Sprintf("axis %s, model %s, scale %s, anchor %s", x.Leading, x.Model, s.settings.Scaling.Model, s.settings.Scaling.Anchor),
-		leading: true, fit: func(context.Context) (*size.Fit, error) { return x.Fit, nil }})
+		leading: true, fit: func(context.Context) (*size.Fit, error) { return r.lead, nil }})
 	s.axisVariants(x, add)
 	for _, m := range []size.Model{size.M, size.MQ, size.MQO} {
 		if m != x.Model {
@@ -200,7 +199,7 @@ func (s *Study) leaveVariants(r *reading, add addVariant) {
 				lowest = math.Max(lowest, p.S2[i])
 			}
 		}
-		add(choiceLeave, fmt.Sprintf("lowest-resolution shell (d above %.2f A)", 1/(2*math.Sqrt(lowest))), func(ctx context.Context) (*size.Fit, error) {
+		add(choiceLeave, "lowest-resolution shell", func(ctx context.Context) (*size.Fit, error) {
 			own := *r
 			own.keep = func(u int32) bool { return cat.S2[u] > lowest }
 			return own.fit(ctx, r.x.thin, r.x.thick)
