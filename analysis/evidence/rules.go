@@ -138,7 +138,7 @@ func HighCounts(forms []CurbForm) Finding {
 	case forms[rate].Refused:
 		out.Why = "a loss of the strongest is seen, and the data refuse that it goes with the count rate: it is not the detector's"
 	case rate == best:
-		out.Verdict, out.Why = Caution, "a loss of the strongest is seen that goes best with the count rate: dead time or saturation of the detector does this"
+		out.Verdict, out.Why = Caution, "a loss of the strongest is seen, and of the forms tried the count rate describes it best, as dead time or saturation of the detector would have it; only another exposure can settle it"
 	default:
 		out.Verdict, out.Why = Caution, "a loss of the strongest is seen, and the data cannot tell whether it goes with the intensity (scattering) or with the count rate (detector); only another exposure can"
 	}

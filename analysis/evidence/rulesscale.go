@@ -77,6 +77,9 @@ func TippingOf(p, up, down, lo, hi float64) Finding {
 	case !(p < 0.05):
 		f.Value = 1
 		f.Why = fmt.Sprintf("the curve on the inverse-variance axis is not significant (p = %.2g), so no ratio of sigmas has to hold", p)
+	case math.IsInf(hi, 1) && lo == 0:
+		f.Verdict = Caution
+		f.Why = "the noise model is not estimable in one of the positions, so that any ratio of sigmas is allowed: the curve on the inverse-variance axis is not separable from sigma"
 	case up <= hi || down >= lo:
 		f.Verdict = Caution
 		f.Why = fmt.Sprintf("a factor of %.2f on sigma_thin/sigma_thick would take the curve on the inverse-variance axis away, and %s: on that axis it is not separable from sigma", nearest, allowed)
@@ -202,10 +205,10 @@ func DoseOrder(together, known int, growth, growthSE float64) Finding {
 	switch {
 	case together == known && damage:
 		f.Verdict = Fails
-		f.Why = fmt.Sprintf("the thicker, the later, in every crystal, and B grows with dose by %s +- %s A^2 for each unit: damage goes with thickness, and no analysis can tell them apart", num(growth), num(growthSE))
+		f.Why = fmt.Sprintf("the thicker, the later, in every crystal, and B grows with both, by %s +- %s A^2 for each e/A^2 of dose: damage or thickness, and no analysis can tell them apart", num(growth), num(growthSE))
 	case together == known:
 		f.Verdict = Caution
-		f.Why = "the thicker, the later, in every crystal: dose goes with thickness, and no analysis can tell them apart; B does not grow with dose, which speaks against much damage"
+		f.Why = "the thicker, the later, in every crystal: dose goes with thickness, and no analysis can tell them apart; no growth of B is seen, but thickness changes B too and can hide it"
 	case together > 0:
 		f.Why = fmt.Sprintf("dose goes with thickness in %d of %d crystals, not in the others: compare them", together, known)
 	}
@@ -221,7 +224,7 @@ func DoseGrowth(growth, se float64) Finding {
 	if math.IsNaN(growth) || !(se > 0) {
 		return unknown("doses or B factors are missing")
 	}
-	f := Finding{Value: growth, Unit: "A^2 of B for each unit of dose", Verdict: Fine, Why: fmt.Sprintf("B does not grow with dose beyond its error (%s +- %s)", num(growth), num(se))}
+	f := Finding{Value: growth, Unit: "A^2 of B for each e/A^2 of dose", Verdict: Fine, Why: fmt.Sprintf("B does not grow with dose beyond three times its error (%s +- %s)", num(growth), num(se))}
 	if growth > 3*se {
 		f.Verdict, f.Why = Caution, fmt.Sprintf("B grows with dose (%s +- %s): damage is seen; it changes strengths as well as B", num(growth), num(se))
 	}
@@ -289,7 +292,7 @@ func AgainstLeading(d, lo, hi float64, cause string) Finding {
 	}
 	f := Finding{Value: d, Unit: "difference of m", Verdict: Fine, Why: "agrees with the leading axis"}
 	if (lo > 0 || hi < 0) && math.Abs(d) > 0.01 {
-		f.Verdict, f.Why = Caution, "differs from the leading axis: "+cause
+		f.Verdict, f.Why = Caution, "differs from the leading axis, most likely by "+cause
 	}
 	return f
 }
