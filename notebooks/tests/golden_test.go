@@ -45,7 +45,7 @@ func TestGolden(t *testing.T) {
 			}
 			t.Logf("%d cells in %.1f s", res.Ran, time.Since(begin).Seconds())
 			got := plain(res.Notebook)
-			if strings.Contains(got, "NaN") || strings.Contains(got, "Inf") || strings.Contains(got, "%!") {
+			if broken(got) {
 				t.Errorf("the text holds a bare NaN, Inf or a broken format:\n%s", got)
 			}
 			path := filepath.Join("testdata", strings.TrimSuffix(name, ".ipynb")+".txt")
@@ -64,6 +64,11 @@ func TestGolden(t *testing.T) {
 			}
 		})
 	}
+}
+
+// broken finds numbers and formats that no reader should see.
+func broken(text string) bool {
+	return strings.Contains(text, "NaN") || strings.Contains(text, "Inf") || strings.Contains(text, "%!")
 }
 
 // build is what says which build ran: it differs from one commit to the next.
