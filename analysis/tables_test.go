@@ -2,6 +2,7 @@ package analysis
 
 import (
 	"context"
+	"fmt"
 	"math"
 	"testing"
 
@@ -22,6 +23,27 @@ func TestTables(t *testing.T) {
 	}
 	if len(scaled) != 6 || len(merged) != 6 || scaled[4].Crystal != "L2" || scaled[4].Position != "mid" || merged[4].Position != "mid" {
 		t.Fatalf("%d and %d tables", len(scaled), len(merged))
+	}
+	// J - Residual SUJ is the joint intensity: one number for each reflection of a
+	// crystal, between the smallest and the largest of its observations.
+	type joint struct{ j, lo, hi float64 }
+	joints := map[string]*joint{}
+	for k := range scaled {
+		for i := range scaled[k].Rows {
+			r := &scaled[k].Rows[i]
+			name := fmt.Sprint(scaled[k].Crystal, r.Unique)
+			if joints[name] == nil {
+				joints[name] = &joint{r.J - r.Residual*r.SUJ, math.Inf(1), math.Inf(-1)}
+			}
+			q := joints[name]
+			q.lo, q.hi = math.Min(q.lo, r.J), math.Max(q.hi, r.J)
+			floatcmp.Check(t, "joint J", r.J-r.Residual*r.SUJ, q.j, 1e-6, 1e-9)
+		}
+	}
+	for name, q := range joints {
+		if slack := 1e-9 * (1 + math.Abs(q.hi)); q.j < q.lo-slack || q.j > q.hi+slack {
+			t.Errorf("%s: joint J %g lies outside %g to %g", name, q.j, q.lo, q.hi)
+		}
 	}
 	forbidden := 0
 	for k := range scaled {

@@ -89,6 +89,9 @@ func TestUnpackRefuses(t *testing.T) {
 		if entries, _ := os.ReadDir(outer); len(entries) != 1 {
 			t.Errorf("%s: something was written outside", c.name)
 		}
+		if info, err := os.Stat(filepath.Join(dir, "zeros")); err == nil && info.Size() > 4001 {
+			t.Errorf("%s: %d bytes were written, more than the limit", c.name, info.Size())
+		}
 	}
 	if err := unpackWithin(zipOf(t, good, entry{name: "inputs/", mode: fs.ModeDir | 0o777}), t.TempDir(), 4, 4000); err != nil {
 		t.Errorf("a sound bundle: %v", err)
