@@ -50,7 +50,7 @@ func (s *Session) Intake() *View {
 		panic(&Error{Step: "intake", Err: err, Inside: FaultOf(err) == FaultInside})
 	}
 	g := newGrid("Intake", "position", "rows", "observations", "taken as", "unique", "multiplicity", "complete", "d (\u00c5)", "angles (\u00b0)", "widest gap", "I/\u03c3",
-		"below 0: seen, expected", "R_meas", "CC1/2", "common with thinnest", "excluded").words(3)
+		"below 0: seen, by Wilson's law", "R_meas", "CC1/2", "common with thinnest", "excluded").words(3)
 	for _, r := range table {
 		g.add(r.Crystal+"/"+r.Position, count(r.Rows), count(r.Observations), r.RowsAs, count(r.Unique), number(r.Multiplicity, 1), percent(r.Completeness, 0),
 			number(r.DMax, 1)+"\u2013"+number(r.DMin, 2), angles(r.AngleLo, r.AngleHi), number(r.AngleGap, 1), number(r.MeanISigma, 1),
@@ -85,7 +85,7 @@ func (s *Session) Correlations() *View {
 // Sizes shows exchange, curb and offset of every contrast.
 func (s *Session) Sizes() *View {
 	r := s.upTo(stepDifferences)
-	g := newGrid("Exchange m, curb q and offset o", "contrast", "axis", "model", "m", "interval", "q", "interval", "o", "interval", "F", "p of the fit", "smallest m seen").words(1, 2)
+	g := newGrid("Exchange m, curb q and offset o", "contrast", "axis", "model", "m", "interval", "q", "interval", "o", "interval", "F", "p of the fit", "smallest m that would show").words(1, 2)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
 		g.add(contrastName(c), c.StrengthAxis, c.Exchange.Model, number(c.Exchange.M, 3), between(c.Exchange.Lo, c.Exchange.Hi, 3), number(c.Curb.Q, 3), between(c.Curb.Lo, c.Curb.Hi, 3),
