@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"math"
 	"strings"
+
+	"thinward/analysis/intensity"
 )
 
 // Verdicts of answers and of the ledger.
@@ -99,13 +101,14 @@ func answerExchange(r *Result, list []*ContrastResult) Answer {
 		}
 		estimable++
 		worst = math.Max(worst, c.MinimumM)
+		lo, hi, note := widened(c)
 		switch {
-		case e.Lo > 0:
+		case lo > 0:
 			positive++
-		case e.Hi < 0:
+		case hi < 0:
 			negative++
 		}
-		parts = append(parts, fmt.Sprintf("%s m = %s", label(c), span(e.M, e.Lo, e.Hi)))
+		parts = append(parts, fmt.Sprintf("%s m = %s%s", label(c), span(e.M, e.Lo, e.Hi), note))
 	}
 	if list[0].StrengthAxis == leadBracket {
 		return bracketAnswer(a, list)
@@ -129,7 +132,52 @@ func answerExchange(r *Result, list []*ContrastResult) Answer {
 		a.Verdict = VerdictUnsure
 		a.Text = fmt.Sprintf("The crystals disagree: %d up, %d down.%s", positive, negative, pooled)
 	}
+	if estimable > 0 {
+		a.Text += qualified(r, list)
+	}
 	return a
+}
+
+// firmF is the first-stage F below which the interval of a fit is too short.
+const firmF = 50
+
+// widened is the interval by which a contrast counts: that of its fit, and on a weak
+// axis wide enough to hold the Anderson-Rubin interval of the instrument too, which
+// holds its level there.
+func widened(c *ContrastResult) (lo, hi float64, note string) {
+	lo, hi = c.Exchange.Lo, c.Exchange.Hi
+	if !(c.Exchange.F < firmF) {
+		return lo, hi, ""
+	}
+	note = ", too short because the axis is weak"
+	for _, m := range c.Models {
+		if m.Model == "instrument" && m.M.Lo <= m.M.Hi {
+			lo, hi = math.Min(lo, m.M.Lo), math.Max(hi, m.M.Hi)
+			note += fmt.Sprintf(" (Anderson-Rubin interval %s to %s)", short(m.M.Lo), short(m.M.Hi))
+		}
+	}
+	return lo, hi, note
+}
+
+// qualified says what keeps m from being taken at its word: a curve of another shape
+// than the model's, or a loss in the detector.
+func qualified(r *Result, list []*ContrastResult) string {
+	misfit := 0
+	for _, c := range list {
+		if c.OverIdent.P < 0.001 {
+			misfit++
+		}
+	}
+	text := ""
+	if misfit > 0 {
+		text += fmt.Sprintf(" The model does not describe the curve in %s, so that this m is a number for another shape: look at the curve.", crystalsOf(misfit, list))
+	}
+	for _, e := range r.Ledger {
+		if e.Check == "high counts" && e.Verdict != VerdictFine && e.Verdict != VerdictUnknown {
+			return text + " A loss of the strongest is seen as well, which the detector could have made; it raises m too."
+		}
+	}
+	return text
 }
 
 // bracketAnswer says what one crystal, or a pair of crystals, can say.
@@ -201,7 +249,7 @@ func answerResolution(list []*ContrastResult) Answer {
 	}
 	if seen > 0 {
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("The ratio of the positions falls or rises with resolution in %s. A B factor, radiation damage and redistribution by thickness look alike here. Below, B of the thick position minus B of the thin.", crystalsOf(seen, list))
+		a.Text = fmt.Sprintf("The ratio of the positions falls or rises with resolution in %s. A B factor, radiation damage, redistribution by thickness, background and saturation of the detector look alike here. Below, B of the thick position minus B of the thin.", crystalsOf(seen, list))
 	} else {
 		a.Text = "No trend with resolution is seen. Below, B of the thick position minus B of the thin."
 	}
@@ -211,6 +259,10 @@ func answerResolution(list []*ContrastResult) Answer {
 func answerForbidden(r *Result, list []*ContrastResult) Answer {
 	a := Answer{Question: "Are forbidden reflections filled?", Section: "forbidden", Verdict: VerdictUnknown}
 	up, known := 0, 0
+	none := len(r.Forbidden) > 0
+	for i := range r.Forbidden {
+		none = none && r.Forbidden[i].Why == intensity.NoneForbidden
+	}
 	for _, c := range list {
 		thin, thick := forbiddenOf(r, c.Crystal, c.Thin), forbiddenOf(r, c.Crystal, c.Thick)
 		if c.ThickCrystal != "" {
@@ -227,11 +279,13 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 		a.Detail = append(a.Detail, fmt.Sprintf("%s %s to %s", label(c), pm(thin.Ratio, thin.SU), pm(thick.Ratio, thick.SU)))
 	}
 	switch {
+	case none:
+		a.Text = "The space group forbids no reflection, so there is nothing to look at."
 	case known == 0:
 		a.Text = "Not recorded: the lists hold no forbidden reflection in both positions, so nothing can be said, and not that they are absent."
 	case up > 0:
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("They rise with thickness in %s. No scale can do this; a wrong space group fills them at every thickness. Below, their mean over the local mean, thin to thick.", crystalsOf(up, list))
+		a.Text = fmt.Sprintf("They rise with thickness in %d of %d crystals that recorded them in both positions. No scale can do this, but background left in the intensities and spots that run into each other can; a wrong space group fills them at every thickness. Below, their mean over the local mean, thin to thick.", up, known)
 	default:
 		a.Verdict = VerdictNo
 		a.Text = "They do not rise with thickness."
@@ -286,8 +340,14 @@ func answerThickness(r *Result) *Answer {
 
 func answerElse(r *Result) Answer {
 	a := Answer{Question: "Could something else have done it?", Section: "cautions", Verdict: VerdictFine}
-	var cautions, fails []string
+	var cautions, fails, controls []string
 	seen := map[string]bool{}
+	for _, c := range r.Controls {
+		if c.Verdict == VerdictFails && !seen[c.Control] {
+			seen[c.Control] = true
+			controls = append(controls, c.Control)
+		}
+	}
 	for _, e := range r.Ledger {
 		if seen[e.Check+e.Verdict] {
 			continue
@@ -304,7 +364,16 @@ func answerElse(r *Result) Answer {
 	case len(fails) > 0:
 		a.Verdict = VerdictFails
 		a.Text = "Checks of the ledger fail."
+		if len(controls) > 0 {
+			a.Text = "Checks of the ledger and controls fail."
+		}
 		a.Detail = append(a.Detail, "fails: "+strings.Join(fails, ", "))
+		if len(cautions) > 0 {
+			a.Detail = append(a.Detail, "caution: "+strings.Join(cautions, ", "))
+		}
+	case len(controls) > 0:
+		a.Verdict = VerdictCaution
+		a.Text = fmt.Sprintf("No check of the ledger fails and %d give a caution, but controls fail: read there by how much the pipeline errs on these data.", len(cautions))
 		if len(cautions) > 0 {
 			a.Detail = append(a.Detail, "caution: "+strings.Join(cautions, ", "))
 		}
@@ -314,6 +383,9 @@ func answerElse(r *Result) Answer {
 		a.Detail = append(a.Detail, "caution: "+strings.Join(cautions, ", "))
 	default:
 		a.Text = "No check of the ledger gives a caution. That does not exclude what no check can see."
+	}
+	if len(controls) > 0 {
+		a.Detail = append(a.Detail, "controls that fail: "+strings.Join(controls, ", "))
 	}
 	a.Text += " What the numbers mean for a structure needs a practitioner's judgement."
 	return a

@@ -1,9 +1,11 @@
 package analysis
 
 import (
+	"cmp"
 	"context"
 	"fmt"
 	"math"
+	"slices"
 
 	"gonum.org/v1/gonum/mat"
 
@@ -204,7 +206,19 @@ func (s *Study) crystalLine(ctx context.Context, i int) (*ThicknessLine, error) 
 	}
 	line.Slope = interval(fit.Slope, fit.SlopeLo, fit.SlopeHi, "")
 	line.Chi2, line.DF = fit.Chi2, fit.DF
+	line.ascend()
 	return line, nil
+}
+
+// ascend puts the positions in the order of thickness; contrasts stand with the
+// primary one first.
+func (l *ThicknessLine) ascend() {
+	order := make([]int, len(l.T))
+	for k := range order {
+		order[k] = k
+	}
+	slices.SortStableFunc(order, func(a, b int) int { return cmp.Compare(l.T[a], l.T[b]) })
+	l.T, l.Mu, l.MuSE = take(l.T, order), take(l.Mu, order), take(l.MuSE, order)
 }
 
 // muCovariance draws reflections of the whole catalogue once for all contrasts
@@ -240,12 +254,17 @@ func (s *Study) muCovariance(ctx context.Context, list []*Compared) (*mat.SymDen
 }
 
 // pageTrend asks whether the crystals agree in the order of mu over their
-// positions, when all have equally many.
+// positions, thin to thick, when all have equally many of different thickness.
 func (s *Study) pageTrend(j *joined) {
 	var rows [][]float64
 	for _, l := range j.thickness.Lines {
 		if len(l.Mu) < 3 || l.Why != "" || len(rows) > 0 && len(l.Mu) != len(rows[0]) {
 			return
+		}
+		for k := 1; k < len(l.T); k++ {
+			if !(l.T[k] > l.T[k-1]) {
+				return
+			}
 		}
 		rows = append(rows, l.Mu)
 	}

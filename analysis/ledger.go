@@ -139,7 +139,7 @@ func (s *Study) ledgerScale(b *ledgerBook) {
 		sigmas = append(sigmas, placed{where, f})
 		f = evidence.Finding{Value: r.LnK, Unit: "mean ln K", Verdict: evidence.Fine, Why: "the data fix the scale as a curve in the rotation angle"}
 		if r.Constant {
-			f.Verdict, f.Why = evidence.Caution, "the scale is one constant: the data cannot fix a curve in the rotation angle"
+			f.Verdict, f.Why = evidence.Caution, "equivalents do not fix how the common scale changes with the rotation angle, so that it is one constant; what changes between the positions is fitted all the same where they were matched by angle"
 		}
 		curves = append(curves, placed{where, f})
 	}

@@ -231,7 +231,8 @@ func (s *Series) contrasts() ([]Contrast, error) {
 			}
 		}
 		if first == last || c.Positions[first].ThicknessNM >= c.Positions[last].ThicknessNM {
-			return nil, fmt.Errorf("crystal %s: the primary thin position %q must be thinner than %q", c.Name, c.Positions[first].Name, c.Positions[last].Name)
+			return nil, fmt.Errorf("crystal %s: the primary thin position %q (%g nm) must be thinner than %q (%g nm); mark a second place of equal thickness with replicate_of, or leave the crystal's positions out",
+				c.Name, c.Positions[first].Name, c.Positions[first].ThicknessNM, c.Positions[last].Name, c.Positions[last].ThicknessNM)
 		}
 		out = append(out, Contrast{Crystal: i, ThickCrystal: i, Thin: first, Thick: last, Primary: true})
 		for a := range order {

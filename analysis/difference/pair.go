@@ -135,7 +135,7 @@ func (p *Pairs) choose(ctx context.Context) error {
 			p.Counts.MatchedObservations = len(s.single)
 			return nil
 		}
-		why = fmt.Sprintf("only %d of %d common reflections have observations at the same angle within %g degrees", n, p.Counts.Common, s.settings.AngleToleranceDeg)
+		why = fmt.Sprintf("only %d of %d common reflections have observations at the same angle within %.3g degrees", n, p.Counts.Common, s.settings.AngleToleranceDeg)
 		s.single, p.Counts.OutsideRange = nil, 0
 	}
 	if s.settings.Matching == MatchAlways {

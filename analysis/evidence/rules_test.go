@@ -68,6 +68,7 @@ func TestRules(t *testing.T) {
 		{"tips within the range", TippingOf(0.01, 1.05, 0, 0.9, 1.1), Caution, "not separable"},
 		{"tips downward within", TippingOf(0.01, inf, 0.95, 0.9, 1.1), Caution, "not separable"},
 		{"tips beyond the range", TippingOf(0.01, 1.4, 0.6, 0.9, 1.1), Fine, "1.40"},
+		{"no noise model", TippingOf(0.001, inf, 0, 0, inf), Caution, "not estimable in one"},
 		{"never tips", TippingOf(0.001, inf, 0, 0.9, 1.1), Fine, "no factor"},
 		{"choices agree", ChoiceOf("scale", 0.08, 0.015, Turn{0.075, 0.09, 3}), Fine, "3 other choices"},
 		{"choices disagree", ChoiceOf("scale", 0.08, 0.015, Turn{0.05, 0.09, 3}), Caution, "more than"},

@@ -17,6 +17,9 @@ type Forbidden struct {
 	Why     string // empty when N is above zero
 }
 
+// NoneForbidden is the Why of a group without systematic absences.
+const NoneForbidden = "the group forbids none"
+
 // MeasureForbidden returns a row for all forbidden reflections and one for each
 // element of the group that forbids any, in the order of Group.Elements; a
 // reflection that several elements forbid counts in each. The shells must be
@@ -45,7 +48,7 @@ func MeasureForbidden(m *Merged, cat *Catalogue, sh *Shells) []Forbidden {
 		if k > 0 {
 			out[k].Element = elements[k-1].Name
 		} else if len(elements) == 0 {
-			out[k].Why = "the group forbids none"
+			out[k].Why = NoneForbidden
 		}
 	}
 	return out

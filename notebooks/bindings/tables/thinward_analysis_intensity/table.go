@@ -35,6 +35,7 @@ func init() {
 			"NewCatalogue":      reflect.ValueOf(intensity.NewCatalogue),
 			"NewCatalogueApart": reflect.ValueOf(intensity.NewCatalogueApart),
 			"NewColumns":        reflect.ValueOf(intensity.NewColumns),
+			"NoneForbidden":     reflect.ValueOf(intensity.NoneForbidden),
 			"ParseRowPolicy":    reflect.ValueOf(intensity.ParseRowPolicy),
 			"Possible":          reflect.ValueOf(intensity.Possible),
 			"Posterior":         reflect.ValueOf(intensity.Posterior),
@@ -71,8 +72,9 @@ func init() {
 			"Warning":           reflect.TypeOf((*intensity.Warning)(nil)).Elem(),
 		},
 		Untypeds: map[string]string{
-			"LimitOfRows": "float:1/20",
-			"MaxIndex":    "int:32767",
+			"LimitOfRows":   "float:1/20",
+			"MaxIndex":      "int:32767",
+			"NoneForbidden": "string:the group forbids none",
 		},
 	}
 }
