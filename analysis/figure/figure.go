@@ -53,6 +53,9 @@ type Axis struct {
 	Zero bool
 	// Marks are the ticks; nil chooses them by the length of the axis.
 	Marks []Mark
+	// Column heads the table in place of Label, where the drawn values are not what
+	// the ticks say; empty for Label.
+	Column string
 }
 
 // Mark is a tick with its own label.

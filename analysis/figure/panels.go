@@ -160,6 +160,9 @@ func (l *layout) draw(title, desc string, panels []Panel, columns int) (*Figure,
 }
 
 func (a *Axis) name(otherwise string) string {
+	if a.Column != "" {
+		return a.Column
+	}
 	if a.Label == "" {
 		return otherwise
 	}

@@ -81,7 +81,7 @@ func naive(r *analysis.Result) *View {
 	fv := &figureView{
 		title: "Naive axes with their ghosts", pick: "Crystal",
 		caption: "The dashed ghost is what counting noise alone draws when the difference is set against an intensity that shares its noise; " +
-			"what a full line shows beyond its ghost may be real, what follows the ghost is not. These plots are here to be compared, never to be believed alone.",
+			"what follows the ghost is not real. What a full line shows beyond its ghost need not be thickness either: what each position has of its own shares its crystal with these axes and draws a ghost too. These plots are here to be compared, never to be believed alone.",
 	}
 	g := newGrid("Naive axes: mean square of the z-scores of 20 bins, 1 when flat", "contrast", "axis", "measured", "from noise alone", "correlation of both", "share of the ghost")
 	g.words(1)
@@ -121,13 +121,13 @@ func byResolution(r *analysis.Result) *View {
 	fv := &figureView{
 		title: "Differences against resolution", pick: "Contrast",
 		caption: "A slope means that the ratio of thick to thin changes with resolution; the dashed line is the part that a difference of B takes up, and what stands off it B cannot explain. " +
-			"A B factor, radiation damage and redistribution by thickness look alike here.",
+			"A B factor, radiation damage, redistribution by thickness, background and saturation of the detector look alike here. The B of the scale weighs strong reflections more and may differ.",
 	}
 	g := newGrid("Ratio of the positions by resolution", "contrast", "shells", "difference of B (\u00c5\u00b2)", "interval", "share that B explains")
 	for _, set := range pairings(r) {
 		p := &figure.Panels{
 			Title: "Logarithm of thick over thin against resolution, " + set.name, Desc: "Mean logarithm of the ratio by shell with intervals, and the line that a difference of B means, one panel a crystal. ",
-			X: figure.Axis{Label: "d (\u00c5), even in 1/d\u00b2"}, Y: figure.Axis{Label: "ln \u27e8I thick\u27e9 / \u27e8I thin\u27e9", Zero: true},
+			X: figure.Axis{Label: "d (\u00c5), even in 1/d\u00b2", Column: "1/d\u00b2 (\u00c5\u207b\u00b2)"}, Y: figure.Axis{Label: "ln \u27e8I thick\u27e9 / \u27e8I thin\u27e9", Zero: true},
 		}
 		var all []float64
 		for _, c := range set.list {

@@ -14,7 +14,7 @@ func (s *Session) ScaleCurves() *View { return scaleCurves(s.upTo(stepScaling)) 
 
 func scaleCurves(r *analysis.Result) *View {
 	fv := &figureView{title: "Scale curves", empty: "No scale was fitted in the angle.",
-		caption: "The scale of each position against the rotation angle, relative to the thinnest; curves of one crystal should run alike, since the path through the slab changes alike. A curve of its own points to bending, drift or a shadow."}
+		caption: "The scale of each position against the rotation angle, relative to the thinnest; curves of one crystal should run nearly alike, since the path through the slab changes alike; at high tilt a thicker position may fall behind, as inelastic loss grows with the path. Any other curve of its own points to bending, drift or a shadow."}
 	g := newGrid("Scale against angle", "position", "mean ln K", "lowest", "highest", "curve").words(4)
 	p := &figure.Panels{Title: "ln K against rotation angle", Desc: "Scale curve of every position, one panel a crystal.",
 		X: figure.Axis{Label: "rotation angle (\u00b0)"}, Y: figure.Axis{Label: "ln K"}}
@@ -194,7 +194,7 @@ func (s *Session) ForbiddenFigure() *View { return forbiddenFigure(s.upTo(stepFo
 
 func forbiddenFigure(r *analysis.Result) *View {
 	fv := &figureView{title: "Forbidden reflections against thickness", empty: "No forbidden reflection was recorded.",
-		caption: "Forbidden reflections that rise with thickness are filled by scattering more than once, which no scale can imitate; a level that stays at every thickness points to a wrong space group instead."}
+		caption: "Scattering more than once fills forbidden reflections the more the thicker the crystal, and no scale can imitate that; background left in the intensities and strong neighbours that run over can (see offset and bleed in the ledger). A level that stays at every thickness points to a wrong space group instead. Axial reflections fill in some orientations and not in others, so that a few of them say little."}
 	thick := map[string]float64{}
 	for i := range r.Intake {
 		thick[r.Intake[i].Crystal+"/"+r.Intake[i].Position] = r.Intake[i].ThicknessNM

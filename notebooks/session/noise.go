@@ -69,7 +69,7 @@ func (s *Session) ChiByAngle() *View {
 
 // ChiByResolution shows the mean squared residual against resolution.
 func (s *Session) ChiByResolution() *View {
-	return s.chi(scaling.ByResolution, "resolution", figure.Axis{Label: "d (\u00c5), even in 1/d\u00b2"}, func(s2 float64) float64 { return 4 * s2 })
+	return s.chi(scaling.ByResolution, "resolution", figure.Axis{Label: "d (\u00c5), even in 1/d\u00b2", Column: "1/d\u00b2 (\u00c5\u207b\u00b2)"}, func(s2 float64) float64 { return 4 * s2 })
 }
 
 // chiBins is the number of equal-count bins a position.

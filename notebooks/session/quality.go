@@ -87,7 +87,7 @@ func (s *Session) DistributionsFigure() *View { return distributionsFigure(s.upT
 
 func distributionsFigure(r *analysis.Result) *View {
 	fv := &figureView{title: "Distribution of strengths", pick: "Kind", empty: "No distribution could be drawn.",
-		caption: "Noise and multiple scattering both fill the gap of weak reflections, so that a curve lies below the dashed law at small strength; noise does it alike at all thicknesses when the counts are alike, scattering more in the thicker position."}
+		caption: "Multiple scattering fills the gap of weak reflections, so that a curve lies below the dashed law at small strength, and more so in the thicker position. The dashed law is Wilson's, broadened with the noise of the first position drawn; an additive background and the removal of negatives lower a curve like scattering."}
 	for _, kind := range []string{"acentric", "centric"} {
 		p := &figure.Panels{Title: "Share of reflections below a strength, " + kind, Desc: "One panel a crystal, one curve a position, with the law of Wilson.",
 			X: figure.Axis{Label: "strength z"}, Y: figure.Axis{Label: "share below z", Zero: true}}
@@ -100,7 +100,7 @@ func distributionsFigure(r *analysis.Result) *View {
 				}
 				panel.Curves = append(panel.Curves, figure.Curve{Name: d.Position, X: d.Z, Y: d.Below})
 				if len(panel.Curves) == 1 {
-					panel.Curves = append(panel.Curves, figure.Curve{Name: "Wilson's law", X: d.Z, Y: d.BelowTheory, Style: figure.Ghost})
+					panel.Curves = append(panel.Curves, figure.Curve{Name: "Wilson's law with the noise of " + d.Position, X: d.Z, Y: d.BelowTheory, Style: figure.Ghost})
 				}
 			}
 			if len(panel.Curves) > 0 {
@@ -109,7 +109,7 @@ func distributionsFigure(r *analysis.Result) *View {
 		}
 		fv.add(kind, p)
 	}
-	g := newGrid("Share of reflections below a strength, over that of Wilson's law", "position", "kind", "reflections", "at z = 0.1", "at z = 0.5").words(1)
+	g := newGrid("Share of reflections below a strength: measured, and by Wilson's law with the noise of the position", "position", "kind", "reflections", "at z = 0.1", "at z = 0.5").words(1)
 	for i := range r.Distributions {
 		d := &r.Distributions[i]
 		g.add(d.Crystal+"/"+d.Position, d.Kind, count(d.N), shareAt(d, 0.1), shareAt(d, 0.5))
