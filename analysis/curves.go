@@ -13,6 +13,7 @@ import (
 
 func (s *Study) curveSettings(x *Compared, purpose string) *curve.Settings {
 	o := s.settings.Curve
+	o.Flips = s.settings.Flips
 	o.Resample = resample.Settings{
 		Replicates: s.settings.Replicates, Level: s.settings.Level, Workers: s.settings.Workers,
 		Seed: s.seed(x.Result.Crystal, x.Result.ThickCrystal, x.Result.Thin+" - "+x.Result.Thick, purpose),

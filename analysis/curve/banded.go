@@ -26,6 +26,8 @@ type Settings struct {
 	S2 []float64
 	// NoTest leaves out the flip test.
 	NoTest bool
+	// Flips is the number of random flips of the test; 0 = as many as replicates.
+	Flips int
 	// Shells is the number of equal-count shells of ByResolution; 0 = 12.
 	Shells int
 	// Resample are the settings of the bootstrap and of the flips; Blocks is parallel
@@ -173,7 +175,11 @@ func (p *pairs) test(ctx context.Context, windows []resample.Window, s *Settings
 		order, _ := ascending(p.s2)
 		sets = append(sets, resample.FlipSet{Order: order, Windows: windows})
 	}
-	return resample.FlipTest(ctx, z, sets, &s.Resample)
+	o := s.Resample
+	if s.Flips > 0 {
+		o.Replicates = s.Flips
+	}
+	return resample.FlipTest(ctx, z, sets, &o)
 }
 
 // fixedLine is a local line at fixed points with fixed kernels, for many sets of

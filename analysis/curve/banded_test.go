@@ -161,3 +161,13 @@ func TestByStrengthFew(t *testing.T) {
 		t.Errorf("error %v", err)
 	}
 }
+
+func TestByStrengthFlips(t *testing.T) {
+	x, y, w, _ := invented(400, 0, "flips")
+	for _, c := range []struct{ flips, want int }{{0, 60}, {90, 90}} {
+		b := must[*Banded](t)(ByStrength(bg, x, y, w, &Settings{Flips: c.flips, Grid: 10, Resample: resample.Settings{Replicates: 60, Seed: seedOf("f")}}))
+		if b.Flip.Flips != c.want {
+			t.Errorf("Flips %d: %d flips, want %d", c.flips, b.Flip.Flips, c.want)
+		}
+	}
+}
