@@ -70,6 +70,9 @@ func (s *Study) intakeStep(ctx context.Context) (*Intake, error) {
 				warnings = append(warnings, w)
 			}
 		}
+		if text := oneTurn(in.Positions[i]); text != "" {
+			warnings = append(warnings, turned(c.Name, text))
+		}
 		s.progress("intake", i+1, len(s.Series.Crystals))
 	}
 	indexing, said, err := s.settle(ctx, in.Positions)
