@@ -125,7 +125,7 @@ func (p *Pairs) choose(ctx context.Context) error {
 		why = "one of the positions has no angles"
 	}
 	if why == "" {
-		p.match()
+		inThin, inThick := p.match()
 		if err := ctx.Err(); err != nil {
 			return err
 		}
@@ -133,6 +133,7 @@ func (p *Pairs) choose(ctx context.Context) error {
 		if n > 0 && (s.settings.Matching == MatchAlways || float64(n) >= s.settings.LeastMatched*float64(p.Counts.Common)) {
 			p.Matched = true
 			p.Counts.MatchedObservations = len(s.single)
+			p.warnAlone(inThin, inThick)
 			return nil
 		}
 		why = fmt.Sprintf("only %d of %d common reflections have observations at the same angle within %.3g degrees", n, p.Counts.Common, s.settings.AngleToleranceDeg)
@@ -156,8 +157,28 @@ func countUnique(s []single) int {
 	return n
 }
 
-// match pairs observations one to one, in the order of unique, raw and angle.
-func (p *Pairs) match() {
+// leastPartnered is the share of the observations of either position within the
+// common range of angles that should find a partner.
+const leastPartnered = 0.8
+
+// warnAlone says how many observations matching one to one leaves out.
+func (p *Pairs) warnAlone(inThin, inThick int) {
+	n := len(p.source.single)
+	for _, side := range []struct {
+		name string
+		in   int
+	}{{"thin", inThin}, {"thick", inThick}} {
+		if float64(n) < leastPartnered*float64(side.in) {
+			p.Warnings = append(p.Warnings, intensity.Warning{Code: "unpartnered", Text: fmt.Sprintf(
+				"%d of %d observations of the %s position within the common range of angles have no partner at the same angle and are left out of the difference (of repeats of one index only as many are used as the other position has)",
+				side.in-n, side.in, side.name)})
+		}
+	}
+}
+
+// match pairs observations one to one, in the order of unique, raw and angle. It
+// returns how many of either position could have been paired by their angle.
+func (p *Pairs) match() (inThin, inThick int) {
 	s := &p.source
 	lo, hi := commonRange(s.thin.Phi, s.thick.Phi, s.settings.AngleToleranceDeg)
 	a, outA := p.sorted(s.thin, lo, hi)
@@ -178,6 +199,7 @@ func (p *Pairs) match() {
 			j++
 		}
 	}
+	return len(a), len(b)
 }
 
 func commonRange(a, b []float64, tolerance float64) (lo, hi float64) {

@@ -282,3 +282,22 @@ func TestNormalScale(t *testing.T) {
 	}
 	floatcmp.Check(t, "score at 4", sum, 1, 1e-8, 0)
 }
+
+func TestPairSaysWhatFindsNoPartner(t *testing.T) {
+	w := newTruth(t, 0.02)
+	thin := w.position(invention{seed: 1, crystal: 1, gain: 100, background: 0.2})
+	thick := w.position(invention{seed: 2, crystal: 1, gain: 100, background: 0.2})
+	twice := &intensity.Scaled{}
+	for range 2 {
+		twice.Unique, twice.Raw = append(twice.Unique, thin.Unique...), append(twice.Raw, thin.Raw...)
+		twice.I, twice.Var, twice.Phi = append(twice.I, thin.I...), append(twice.Var, thin.Var...), append(twice.Phi, thin.Phi...)
+	}
+	once := mustPair(t, thin, thick, w.cat, &Settings{SameCrystal: true})
+	p := mustPair(t, twice, thick, w.cat, &Settings{SameCrystal: true})
+	if p.Counts.MatchedObservations != once.Counts.MatchedObservations {
+		t.Errorf("%d matched, %d of single observations", p.Counts.MatchedObservations, once.Counts.MatchedObservations)
+	}
+	if len(p.Warnings) != 1 || p.Warnings[0].Code != "unpartnered" || !strings.Contains(p.Warnings[0].Text, "thin position") {
+		t.Errorf("%v", p.Warnings)
+	}
+}
