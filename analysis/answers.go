@@ -62,9 +62,12 @@ func crystalsOf(n int, list []*ContrastResult) string {
 
 func answerDiffer(list []*ContrastResult) Answer {
 	a := Answer{Question: "Do the intensities differ at all?", Section: "strength", Verdict: VerdictNo}
-	n, known := 0, 0
+	n, known, merged := 0, 0, 0
 	var parts []string
 	for _, c := range list {
+		if !c.Matched {
+			merged++
+		}
 		if math.IsNaN(c.Correlation.R) {
 			parts = append(parts, fmt.Sprintf("%s: not estimable (%s)", label(c), c.Correlation.Why))
 			continue
@@ -83,7 +86,10 @@ func answerDiffer(list []*ContrastResult) Answer {
 		a.Text = "Beyond counting noise no difference between thinnest and thickest position is seen (a true correlation r of 1 is identical)."
 	default:
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("Thinnest and thickest position differ beyond counting noise in %s (a true correlation r of 1 is identical).", crystalsOf(n, list))
+		a.Text = fmt.Sprintf("Thinnest and thickest position differ beyond counting noise in %s (a true correlation r of 1 is identical). Bending, mosaicity, dose and errors of frames lower r as thickness does.", crystalsOf(n, list))
+		if merged > 0 {
+			a.Text += fmt.Sprintf(" In %s the observations could not be matched by angle, so that another geometry lowers r too.", crystalsOf(merged, list))
+		}
 	}
 	a.Detail = parts
 	return a

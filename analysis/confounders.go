@@ -113,6 +113,13 @@ func (s *Study) crossings(i, j int) *evidence.Crossings {
 // as of high, tilt.
 const tiltShare = 0.4
 
+// tiltOf is the angle in degrees, 0 to 90, between the beam and the normal of a slab that
+// faces the beam at zero: seen from behind a slab is as thick as from before.
+func tiltOf(phi, zero float64) float64 {
+	d := math.Mod(math.Abs(phi-zero), 180)
+	return math.Min(d, 180-d)
+}
+
 // tilt compares equivalents at low and at high tilt within the thick position.
 func (s *Study) tilt(ctx context.Context, x *Compared) (evidence.Finding, error) {
 	dark := func(why string) (evidence.Finding, error) {
@@ -127,7 +134,7 @@ func (s *Study) tilt(ctx context.Context, x *Compared) (evidence.Finding, error)
 	}
 	tilt := make([]float64, len(x.thick.Phi))
 	for o, phi := range x.thick.Phi {
-		tilt[o] = math.Abs(phi - p.TiltZeroDeg)
+		tilt[o] = tiltOf(phi, p.TiltZeroDeg)
 	}
 	sorted := slices.Clone(tilt)
 	slices.Sort(sorted)
@@ -149,7 +156,7 @@ func (s *Study) tilt(ctx context.Context, x *Compared) (evidence.Finding, error)
 	r.model = size.M
 	pairs, err := r.pair(ctx, scaledRows(x.thick, a), scaledRows(x.thick, b), difference.MatchNever)
 	if err != nil {
-		return dark(err.Error())
+		return dark("too few reflections have equivalents at low and at high tilt")
 	}
 	v, err := r.ofPairs(ctx, pairs)
 	if err != nil {

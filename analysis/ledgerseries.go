@@ -51,18 +51,7 @@ func (s *Study) doseOrder() (together, known int) {
 		if len(order) < 2 {
 			continue
 		}
-		var time []float64
-		for _, j := range order {
-			v := c.Positions[j].DosePerA2
-			if v == 0 {
-				v = float64(c.Positions[j].Order)
-			}
-			if v == 0 {
-				time = nil
-				break
-			}
-			time = append(time, v)
-		}
+		time := timesOf(c, order)
 		if time == nil {
 			continue
 		}
@@ -72,6 +61,27 @@ func (s *Study) doseOrder() (together, known int) {
 		}
 	}
 	return together, known
+}
+
+// timesOf gives the dose of the positions, or where that is not known of all the order
+// in which they were measured; nil when neither is.
+func timesOf(c *Specimen, positions []int) []float64 {
+	var dose, order []float64
+	for _, j := range positions {
+		if v := c.Positions[j].DosePerA2; v > 0 {
+			dose = append(dose, v)
+		}
+		if v := c.Positions[j].Order; v > 0 {
+			order = append(order, float64(v))
+		}
+	}
+	switch len(positions) {
+	case len(dose):
+		return dose
+	case len(order):
+		return order
+	}
+	return nil
 }
 
 // damage is the slope of B against dose within crystals, pooled, with its

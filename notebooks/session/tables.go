@@ -187,7 +187,7 @@ func (s *Session) Scaling() *View {
 // Matters shows what the fitted exchange would do to amplitudes.
 func (s *Session) Matters() *View {
 	r := s.upTo(stepCrystals)
-	g := newGrid("Does it matter: what the fitted m does to amplitudes under Wilson's law", "crystal", "m", "agreement factor on |F| from the exchange alone", "mean |F| of weak reflections")
+	g := newGrid("Does it matter: what the fitted m does to amplitudes under Wilson's law", "crystal", "m", "agreement factor on |F| from the exchange alone", "mean |F| of reflections of strength below 0.2")
 	for _, m := range r.Matters {
 		g.add(m.Crystal, number(m.M, 3), percent(m.AgreementShift, 1), signed(m.WeakShift))
 	}
