@@ -6,7 +6,7 @@ import (
 )
 
 // Halves holds two independent halves of each position, parallel by
-// reflection, split by raw index; a NaN half leaves the reflection out of what
+// reflection, split by raw index, and alike in both positions; a NaN half leaves the reflection out of what
 // needs it.
 type Halves struct {
 	ThinA, ThinB, ThickA, ThickB []float64
@@ -32,7 +32,12 @@ type Correlation struct {
 // TrueCorrelation finds r and the moment ratio from products of halves, each
 // over its own shell mean,
 //
-//	V_p = <e_pA e_pB> - 1,  C = mean over the four pairs of halves of <e_thin e_thick> - 1.
+//	V_p = <e_pA e_pB> - 1,  C = (<e_thinA e_thickB> + <e_thinB e_thickA>)/2 - 1.
+//
+// Halves of one name must hold the same raw indices in both positions. A raw index has
+// deviations of its own (its orientation in the beam) that both positions see alike:
+// V is free of them because its halves share no raw index, so C must be too. With
+// the products of equal halves in C, r comes out above 1 wherever equivalents deviate.
 //
 // Standard errors are those of the delete-one jackknife (Tukey 1958; Efron 1982,
 // The Jackknife, ch. 3), shell means recomputed, the intervals Student's; a
@@ -75,11 +80,11 @@ func TrueCorrelation(h *Halves, w []float64, set *Settings) (*Correlation, error
 	vThick, dThick := h.product(e[2], e[3], weight, out.N)
 	var c float64
 	dC := make([]float64, len(weight))
-	for _, k := range [][2]int{{0, 2}, {0, 3}, {1, 2}, {1, 3}} {
+	for _, k := range [][2]int{{0, 3}, {1, 2}} {
 		v, d := h.product(e[k[0]], e[k[1]], weight, out.N)
-		c += v / 4
+		c += v / 2
 		for i := range dC {
-			dC[i] += d[i] / 4
+			dC[i] += d[i] / 2
 		}
 	}
 	out.describe(weight, df, [3]float64{vThin, vThick, c}, [3][]float64{dThin, dThick, dC})
