@@ -76,17 +76,17 @@ func answerDiffer(list []*ContrastResult) Answer {
 		if c.Correlation.Hi < 1 || c.MomentRatio.Lo > 0 || c.MomentRatio.Hi < 0 {
 			n++
 		}
-		parts = append(parts, fmt.Sprintf("%s r = %s", label(c), span(c.Correlation.R, c.Correlation.Lo, c.Correlation.Hi)))
+		parts = append(parts, fmt.Sprintf("%s r = %s, moment ratio %s", label(c), span(c.Correlation.R, c.Correlation.Lo, c.Correlation.Hi), span(c.MomentRatio.M, c.MomentRatio.Lo, c.MomentRatio.Hi)))
 	}
 	switch {
 	case known == 0:
 		a.Verdict = VerdictUnknown
 		a.Text = "It cannot be said: no position has enough symmetry equivalents to take the noise out of a correlation."
 	case n == 0:
-		a.Text = "Beyond counting noise no difference between thinnest and thickest position is seen (a true correlation r of 1 is identical)."
+		a.Text = "Beyond counting noise no difference between thinnest and thickest position is seen (identical positions have a true correlation r of 1 and a moment ratio of 0)."
 	default:
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("Thinnest and thickest position differ beyond counting noise in %s (a true correlation r of 1 is identical). Bending, mosaicity, dose and errors of frames lower r as thickness does.", crystalsOf(n, list))
+		a.Text = fmt.Sprintf("Thinnest and thickest position differ beyond counting noise in %s (identical positions have a true correlation r of 1 and a moment ratio of 0). Bending, mosaicity, dose and errors of frames lower r as thickness does.", crystalsOf(n, list))
 		if merged > 0 {
 			a.Text += fmt.Sprintf(" In %s the observations could not be matched by angle, so that another geometry lowers r too.", crystalsOf(merged, list))
 		}
