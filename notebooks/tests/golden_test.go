@@ -34,6 +34,7 @@ func runOn(t *testing.T, name string, set map[string]string) (*runner.Result, er
 func TestGolden(t *testing.T) {
 	for _, name := range names(t) {
 		t.Run(strings.TrimSuffix(name, ".ipynb"), func(t *testing.T) {
+			t.Parallel()
 			set := map[string]string{}
 			if name != "01-intake.ipynb" {
 				set["replicates"] = fewDraws

@@ -28,6 +28,7 @@ func TestOtherSeries(t *testing.T) {
 			continue // the report has all its views, and the controls take the time
 		}
 		t.Run(strings.TrimSuffix(name, ".ipynb"), func(t *testing.T) {
+			t.Parallel()
 			set := map[string]string{"series": filepath.Join(dir, "series.toml")}
 			if name != "01-intake.ipynb" {
 				set["replicates"] = "60"
