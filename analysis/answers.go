@@ -6,6 +6,8 @@ import (
 	"strings"
 
 	"thinward/analysis/intensity"
+	"thinward/analysis/resample"
+	"thinward/analysis/size"
 )
 
 // Verdicts of answers and of the ledger.
@@ -63,30 +65,39 @@ func crystalsOf(n int, list []*ContrastResult) string {
 func answerDiffer(list []*ContrastResult) Answer {
 	a := Answer{Question: "Do the intensities differ at all?", Section: "strength", Verdict: VerdictNo}
 	n, known, merged := 0, 0, 0
-	var parts []string
 	for _, c := range list {
 		if !c.Matched {
 			merged++
 		}
-		if math.IsNaN(c.Correlation.R) {
-			parts = append(parts, fmt.Sprintf("%s: not estimable (%s)", label(c), c.Correlation.Why))
+		if !math.IsNaN(c.Correlation.R) {
+			known++
+		}
+	}
+	f := asking(list, 2*known)
+	worst := 0.0
+	var parts []string
+	for _, c := range list {
+		r, m := c.Correlation, c.MomentRatio
+		if math.IsNaN(r.R) {
+			parts = append(parts, fmt.Sprintf("%s: not estimable (%s)", label(c), r.Why))
 			continue
 		}
-		known++
-		if c.Correlation.Hi < 1 || c.MomentRatio.Lo > 0 || c.MomentRatio.Hi < 0 {
+		if side(r.R, r.Lo, r.Hi, 1, f) < 0 || side(m.M, m.Lo, m.Hi, 0, f) != 0 {
 			n++
 		}
-		parts = append(parts, fmt.Sprintf("%s r = %s, moment ratio %s", label(c), span(c.Correlation.R, c.Correlation.Lo, c.Correlation.Hi), span(c.MomentRatio.M, c.MomentRatio.Lo, c.MomentRatio.Hi)))
+		worst = math.Max(worst, (m.Hi-m.Lo)/2/zOf(0.95))
+		parts = append(parts, fmt.Sprintf("%s r = %s, moment ratio %s", label(c), span(r.R, r.Lo, r.Hi), span(m.M, m.Lo, m.Hi)))
 	}
+	const same = "(identical positions have a true correlation r of 1 and a moment ratio of 0"
 	switch {
 	case known == 0:
 		a.Verdict = VerdictUnknown
 		a.Text = "It cannot be said: no position has enough symmetry equivalents to take the noise out of a correlation."
 	case n == 0:
-		a.Text = "Beyond counting noise no difference between thinnest and thickest position is seen (identical positions have a true correlation r of 1 and a moment ratio of 0)."
+		a.Text = "Beyond counting noise no difference between thinnest and thickest position is seen " + same + fmt.Sprintf("; one of %s would have been seen in each crystal with 80 %% power).", short(size.MinimumVisible(worst, 0.95, 0.8)))
 	default:
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("Thinnest and thickest position differ beyond counting noise in %s (identical positions have a true correlation r of 1 and a moment ratio of 0). Bending, mosaicity, dose and errors of frames lower r as thickness does.", crystalsOf(n, list))
+		a.Text = fmt.Sprintf("Thinnest and thickest position differ beyond counting noise in %s %s; %d tests are allowed for). Bending, mosaicity, dose and errors of frames lower r as thickness does.", crystalsOf(n, list), same, 2*known)
 		if merged > 0 {
 			a.Text += fmt.Sprintf(" In %s the observations could not be matched by angle, so that another geometry lowers r too.", crystalsOf(merged, list))
 		}
@@ -95,131 +106,16 @@ func answerDiffer(list []*ContrastResult) Answer {
 	return a
 }
 
-func answerExchange(r *Result, list []*ContrastResult) Answer {
-	a := Answer{Question: "Has intensity moved from strong to weak reflections?", Section: "sizes"}
-	positive, negative, estimable, worst := 0, 0, 0, 0.0
-	var parts []string
-	for _, c := range list {
-		e := c.Exchange
-		if math.IsNaN(e.M) {
-			parts = append(parts, fmt.Sprintf("%s: not estimable (%s)", label(c), e.Why))
-			continue
-		}
-		estimable++
-		worst = math.Max(worst, c.MinimumM)
-		lo, hi, note := widened(c)
-		switch {
-		case lo > 0:
-			positive++
-		case hi < 0:
-			negative++
-		}
-		parts = append(parts, fmt.Sprintf("%s m = %s%s", label(c), span(e.M, e.Lo, e.Hi), note))
-	}
-	if list[0].StrengthAxis == leadBracket {
-		return bracketAnswer(a, list)
-	}
-	a.Detail = parts
-	pooled := ""
-	if r.Crystals != nil && r.Crystals.N > 1 && !math.IsNaN(r.Crystals.InThese.Value) {
-		p := r.Crystals
-		pooled = fmt.Sprintf(" In these crystals together m = %s; in crystals like these m = %s.", span(p.InThese.Value, p.InThese.Lo, p.InThese.Hi), span(p.LikeThese.Value, p.LikeThese.Lo, p.LikeThese.Hi))
-	}
-	switch {
-	case estimable == 0:
-		a.Verdict, a.Text = VerdictUnknown, "The exchange cannot be estimated."
-	case positive > 0 && negative == 0:
-		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("Yes, in %s.%s", crystalsOf(positive, list), pooled)
-	case positive == 0 && negative == 0:
-		a.Verdict = VerdictNo
-		a.Text = fmt.Sprintf("No exchange is seen.%s An exchange of m = %s would have been seen in each crystal with 80 %% power.", pooled, short(worst))
-	default:
-		a.Verdict = VerdictUnsure
-		a.Text = fmt.Sprintf("The crystals disagree: %d up, %d down.%s", positive, negative, pooled)
-	}
-	if estimable > 0 {
-		a.Text += qualified(r, list)
-	}
-	return a
-}
-
-// firmF is the first-stage F below which the interval of a fit is too short.
-const firmF = 50
-
-// widened is the interval by which a contrast counts: that of its fit, and on a weak
-// axis wide enough to hold the Anderson-Rubin interval of the instrument too, which
-// holds its level there.
-func widened(c *ContrastResult) (lo, hi float64, note string) {
-	lo, hi = c.Exchange.Lo, c.Exchange.Hi
-	if !(c.Exchange.F < firmF) {
-		return lo, hi, ""
-	}
-	note = ", too short because the axis is weak"
-	for _, m := range c.Models {
-		if m.Model == "instrument" && m.M.Lo <= m.M.Hi {
-			lo, hi = math.Min(lo, m.M.Lo), math.Max(hi, m.M.Hi)
-			note += fmt.Sprintf(" (Anderson-Rubin interval %s to %s)", short(m.M.Lo), short(m.M.Hi))
-		}
-	}
-	return lo, hi, note
-}
-
-// qualified says what keeps m from being taken at its word: a curve of another shape
-// than the model's, or a loss in the detector.
-func qualified(r *Result, list []*ContrastResult) string {
-	misfit := 0
-	for _, c := range list {
-		if c.OverIdent.P < 0.001 {
-			misfit++
-		}
-	}
-	text := ""
-	if misfit > 0 {
-		text += fmt.Sprintf(" The model does not describe the curve in %s, so that this m is a number for another shape: look at the curve.", crystalsOf(misfit, list))
-	}
-	for _, e := range r.Ledger {
-		if e.Check == "high counts" && e.Verdict != VerdictFine && e.Verdict != VerdictUnknown {
-			return text + " A loss of the strongest is seen as well, which the detector could have made; it raises m too."
-		}
-	}
-	return text
-}
-
-// bracketAnswer says what one crystal, or a pair of crystals, can say.
-func bracketAnswer(a Answer, list []*ContrastResult) Answer {
-	var parts []string
-	open := 0
-	for _, c := range list {
-		b := c.Bracket
-		parts = append(parts, fmt.Sprintf("%s: m between %s (half of the thick position, errs downward) and %s (half of the thin, errs upward); moment ratio %s",
-			label(c), span(b.Thick.Value, b.Thick.Lo, b.Thick.Hi), span(b.Thin.Value, b.Thin.Lo, b.Thin.Hi), span(c.MomentRatio.M, c.MomentRatio.Lo, c.MomentRatio.Hi)))
-		if !(b.Lo > 0 || b.Hi < 0) {
-			open++
-		}
-	}
-	a.Detail = parts
-	text := "Only a bracket can be given, since no other crystal of the series says how strong each reflection is."
-	if open > 0 {
-		a.Verdict = VerdictUnsure
-		a.Text = text + " The bracket holds 0."
-	} else {
-		a.Verdict = VerdictYes
-		a.Text = text + " The bracket excludes 0, which holds only if the deviations of the two positions are unrelated."
-	}
-	if list[0].ThickCrystal != "" {
-		a.Text += " The two positions lie on two crystals: nothing here attributes a difference to thickness."
-	}
-	return a
-}
-
 func answerWhere(list []*ContrastResult) Answer {
 	a := Answer{Question: "In weak or in strong reflections?", Section: "strength", Verdict: VerdictNo}
 	seen, weak, strong := 0, 0, 0
-	for _, c := range list {
-		if c.Strength.P < 0.05 {
+	known, err := jointly(list)
+	for _, p := range known {
+		if p < 0.05 {
 			seen++
 		}
+	}
+	for _, c := range list {
 		a.Detail = append(a.Detail, fmt.Sprintf("%s %s; %s", label(c), span(c.Classes.Floor.Eps, c.Classes.Floor.Lo, c.Classes.Floor.Hi), span(c.Classes.Top.Eps, c.Classes.Top.Lo, c.Classes.Top.Hi)))
 		if c.Classes.Floor.Hi < 0 {
 			weak++
@@ -236,28 +132,55 @@ func answerWhere(list []*ContrastResult) Answer {
 	}
 	if seen > 0 {
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("The curve against strength is not flat in %s (joint test, p < 0.05): the weakest gain with thickness in %d, the strongest lose in %d.%s", crystalsOf(seen, list), weak, strong, units)
+		a.Text = fmt.Sprintf("The curve against strength is not flat in %s (joint test of each, p < 0.05 with all crystals allowed for): the weakest gain with thickness in %d, the strongest lose in %d.%s", crystalsOf(seen, list), weak, strong, units)
 		return a
 	}
-	a.Text = fmt.Sprintf("The curve against strength is flat within its noise in %s.%s", crystalsOf(len(list), list), units)
+	if err != nil || len(known) == 0 {
+		a.Verdict, a.Text = VerdictUnknown, "The curve against strength could not be tested."+units
+		return a
+	}
+	a.Text = fmt.Sprintf("The curve against strength is flat within its noise in %s.%s", crystalsOf(len(known), list), units)
 	return a
+}
+
+// jointly gives the p-values of the curves that were tested, the number of crystals
+// allowed for (Holm 1979).
+func jointly(list []*ContrastResult) ([]float64, error) {
+	var p []float64
+	for _, c := range list {
+		if !math.IsNaN(c.Strength.P) {
+			p = append(p, c.Strength.P)
+		}
+	}
+	return resample.Holm(p)
 }
 
 func answerResolution(list []*ContrastResult) Answer {
 	a := Answer{Question: "At low or at high resolution?", Section: "resolution", Verdict: VerdictNo}
-	seen := 0
+	seen, known := 0, 0
+	for _, c := range list {
+		if !math.IsNaN(c.Resolution.DeltaB) {
+			known++
+		}
+	}
+	f := asking(list, known)
+	worst := 0.0
 	for _, c := range list {
 		r := c.Resolution
-		if r.DeltaBLo > 0 || r.DeltaBHi < 0 {
+		worst = math.Max(worst, (r.DeltaBHi-r.DeltaBLo)/2/zOf(0.95))
+		if side(r.DeltaB, r.DeltaBLo, r.DeltaBHi, 0, f) != 0 {
 			seen++
 		}
 		a.Detail = append(a.Detail, fmt.Sprintf("%s %s \u00c5\u00b2", label(c), span(r.DeltaB, r.DeltaBLo, r.DeltaBHi)))
 	}
-	if seen > 0 {
+	switch {
+	case known == 0:
+		a.Verdict, a.Text = VerdictUnknown, "The growth of the ratio with resolution could not be estimated."
+	case seen > 0:
 		a.Verdict = VerdictYes
 		a.Text = fmt.Sprintf("The ratio of the positions falls or rises with resolution in %s. A B factor, radiation damage, redistribution by thickness, background and saturation of the detector look alike here. Below, B of the thick position minus B of the thin.", crystalsOf(seen, list))
-	} else {
-		a.Text = "No trend with resolution is seen. Below, B of the thick position minus B of the thin."
+	default:
+		a.Text = fmt.Sprintf("No trend with resolution is seen; a difference in B of %s \u00c5\u00b2 would have been seen in each crystal with 80 %% power.", short(size.MinimumVisible(worst, 0.95, 0.8))) + " Below, B of the thick position minus B of the thin."
 	}
 	return a
 }
@@ -269,6 +192,8 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 	for i := range r.Forbidden {
 		none = none && r.Forbidden[i].Why == intensity.NoneForbidden
 	}
+	var z []float64
+	worst := 0.0
 	for _, c := range list {
 		thin, thick := forbiddenOf(r, c.Crystal, c.Thin), forbiddenOf(r, c.Crystal, c.Thick)
 		if c.ThickCrystal != "" {
@@ -278,11 +203,14 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 			continue
 		}
 		known++
-		rise, su := thick.Ratio-thin.Ratio, math.Hypot(thick.SU, thin.SU)
-		if rise > 2*su {
+		su := math.Hypot(thick.SU, thin.SU)
+		z, worst = append(z, (thick.Ratio-thin.Ratio)/su), math.Max(worst, su)
+		a.Detail = append(a.Detail, fmt.Sprintf("%s %s to %s", label(c), pm(thin.Ratio, thin.SU), pm(thick.Ratio, thick.SU)))
+	}
+	for _, v := range z {
+		if v > 2*asking(list, known) {
 			up++
 		}
-		a.Detail = append(a.Detail, fmt.Sprintf("%s %s to %s", label(c), pm(thin.Ratio, thin.SU), pm(thick.Ratio, thick.SU)))
 	}
 	switch {
 	case none:
@@ -294,7 +222,7 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 		a.Text = fmt.Sprintf("They rise with thickness in %d of %d crystals that recorded them in both positions. No scale can do this, but background left in the intensities and spots that run into each other can; a wrong space group fills them at every thickness. Below, their mean over the local mean, thin to thick.", up, known)
 	default:
 		a.Verdict = VerdictNo
-		a.Text = "They do not rise with thickness."
+		a.Text = fmt.Sprintf("No rise with thickness is seen; one of %s of the local mean would have been seen in each crystal with 80 %% power. Below, their mean over the local mean, thin to thick.", short(size.MinimumVisible(worst, 0.95, 0.8)))
 	}
 	return a
 }
@@ -319,13 +247,12 @@ func answerThickness(r *Result) *Answer {
 		a.Verdict, a.Text = VerdictUnknown, "The growth with thickness cannot be estimated: "+t.Why+"."
 		return a
 	}
-	positions := 0
-	for _, l := range t.Lines {
-		positions = max(positions, len(l.T))
-	}
+	positions, used := 0, 0
 	slope := span(t.Slope.Value, t.Slope.Lo, t.Slope.Hi)
 	for _, l := range t.Lines {
 		if l.Why == "" {
+			used++
+			positions = max(positions, len(l.T))
 			a.Detail = append(a.Detail, fmt.Sprintf("%s %s", l.Crystal, span(l.Slope.Value, l.Slope.Lo, l.Slope.Hi)))
 		} else {
 			a.Detail = append(a.Detail, l.Crystal+": "+l.Why)
@@ -337,9 +264,9 @@ func answerThickness(r *Result) *Answer {
 		a.Text = fmt.Sprintf("With two thicknesses a crystal there is a difference but no trend; per 100 nm it would be %s.", slope)
 	case t.Slope.Lo > 0:
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("\u03bc = \u2212ln(1\u2212m) grows by %s per 100 nm over %d crystals.", slope, len(t.Lines))
+		a.Text = fmt.Sprintf("\u03bc = \u2212ln(1\u2212m) grows by %s per 100 nm over %d crystals.", slope, used)
 	default:
-		a.Text = fmt.Sprintf("No growth is seen: \u03bc = \u2212ln(1\u2212m) changes by %s per 100 nm over %d crystals.", slope, len(t.Lines))
+		a.Text = fmt.Sprintf("No growth is seen: \u03bc = \u2212ln(1\u2212m) changes by %s per 100 nm over %d crystals.", slope, used)
 	}
 	return a
 }

@@ -100,3 +100,79 @@ func TestPageTrendRunsAlongThickness(t *testing.T) {
 		t.Error("positions of equal thickness have no order, but a trend was tested")
 	}
 }
+
+// crystalsWith are contrasts whose m has a standard error of 0.01.
+func crystalsWith(m ...float64) ([]*ContrastResult, *CrystalsResult) {
+	var list []*ContrastResult
+	sum := 0.0
+	for _, v := range m {
+		i := Interval{Value: v, Lo: v - 0.0196, Hi: v + 0.0196}
+		list = append(list, answered(i, i, 100, 0.4))
+		sum += v / float64(len(m))
+	}
+	half := 0.0196 / math.Sqrt(float64(len(m)))
+	return list, &CrystalsResult{N: len(m), InThese: Interval{Value: sum, Lo: sum - half, Hi: sum + half}}
+}
+
+// Of three crystals in which there is nothing, one interval of 95 % misses 0 in one
+// series of seven: alone it is no yes. All below 0 is not a disagreement.
+func TestAnswerExchangeAllowsForCrystals(t *testing.T) {
+	for _, c := range []struct {
+		name    string
+		m       []float64
+		verdict string
+		says    string
+	}{
+		{"one alone, not firmly", []float64{0.022, -0.005, -0.006}, VerdictUnsure, "1 up, 0 down"},
+		{"one firmly", []float64{0.03, -0.015, -0.015}, VerdictYes, "Yes, in 1 of 3 crystals"},
+		{"none alone, together", []float64{0.018, 0.017, 0.016}, VerdictYes, "though in none of them alone"},
+		{"nothing", []float64{0.005, -0.008, 0.002}, VerdictNo, "of 0.016 in the crystals together"},
+		{"all below", []float64{-0.05, -0.06, -0.04}, VerdictNo, "the other way: m lies below 0 in 3 of 3"},
+		{"both ways", []float64{0.05, -0.05, 0.05}, VerdictUnsure, "disagree: 2 up, 1 down"},
+	} {
+		list, together := crystalsWith(c.m...)
+		a := answerExchange(&Result{Crystals: together}, list)
+		if a.Verdict != c.verdict || !strings.Contains(a.Text, c.says) {
+			t.Errorf("%s: %q: %s", c.name, a.Verdict, a.Text)
+		}
+	}
+}
+
+// Smallest p of three at 0.02: Holm's is 0.06.
+func TestAnswersAllowForCrystals(t *testing.T) {
+	curve := func(p ...float64) (list []*ContrastResult) {
+		for _, v := range p {
+			list = append(list, &ContrastResult{StrengthAxis: "crystals", Strength: Curve{P: v}})
+		}
+		return list
+	}
+	for _, c := range []struct {
+		list    []*ContrastResult
+		verdict string
+	}{{curve(0.02, 0.5, 0.6), VerdictNo}, {curve(0.02), VerdictYes}, {curve(0.01, 0.5, 0.6), VerdictYes}, {curve(0.02, math.NaN()), VerdictYes}, {curve(math.NaN()), VerdictUnknown}} {
+		if a := answerWhere(c.list); a.Verdict != c.verdict {
+			t.Errorf("curves: %q: %s", a.Verdict, a.Text)
+		}
+	}
+	b := func(z ...float64) (list []*ContrastResult) {
+		for _, v := range z {
+			list = append(list, &ContrastResult{Resolution: Resolution{DeltaB: v, DeltaBLo: v - 1.96, DeltaBHi: v + 1.96},
+				Correlation: Correlation{R: 1, Lo: 0.9, Hi: 1.1}, MomentRatio: MomentRatio{M: v, Lo: v - 1.96, Hi: v + 1.96}})
+		}
+		return list
+	}
+	for _, c := range []struct {
+		z                []float64
+		differ, resolved string
+	}{
+		{[]float64{2.3}, VerdictYes, VerdictYes}, {[]float64{2.1}, VerdictNo, VerdictYes}, {[]float64{2.3, 0, 0}, VerdictNo, VerdictNo}, {[]float64{0, 2.5, 0}, VerdictNo, VerdictYes},
+		{[]float64{0, -2.7, 0}, VerdictYes, VerdictYes}, {[]float64{math.NaN()}, VerdictNo, VerdictUnknown},
+	} {
+		if a := answerDiffer(b(c.z...)); a.Verdict != c.differ {
+			t.Errorf("differ, z %v: %q: %s", c.z, a.Verdict, a.Text)
+		}
+		if a := answerResolution(b(c.z...)); a.Verdict != c.resolved {
+			t.Errorf("resolution, z %v: %q: %s", c.z, a.Verdict, a.Text)
+		}
+	}
+}

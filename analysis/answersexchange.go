@@ -1,0 +1,169 @@
+package analysis
+
+import (
+	"fmt"
+	"math"
+
+	"thinward/analysis/size"
+)
+
+func answerExchange(r *Result, list []*ContrastResult) Answer {
+	a := Answer{Question: "Has intensity moved from strong to weak reflections?", Section: "sizes"}
+	var seen readings
+	worst := 0.0
+	for _, c := range list {
+		if !math.IsNaN(c.Exchange.M) {
+			seen.estimable++
+		}
+	}
+	f := asking(list, seen.estimable)
+	for _, c := range list {
+		e := c.Exchange
+		if math.IsNaN(e.M) {
+			a.Detail = append(a.Detail, fmt.Sprintf("%s: not estimable (%s)", label(c), e.Why))
+			continue
+		}
+		worst = math.Max(worst, c.MinimumM)
+		lo, hi, note := widened(c)
+		seen.weak = seen.weak || e.F < firmF
+		seen.count(side(e.M, lo, hi, 0, 1), side(e.M, lo, hi, 0, f))
+		a.Detail = append(a.Detail, fmt.Sprintf("%s m = %s%s", label(c), span(e.M, e.Lo, e.Hi), note))
+	}
+	if list[0].StrengthAxis == leadBracket {
+		return bracketAnswer(a, list)
+	}
+	together := ""
+	limit := fmt.Sprintf(" An exchange of m = %s would have been seen in each crystal with 80 %% power", short(worst))
+	if p := r.Crystals; p != nil && p.N > 1 && !math.IsNaN(p.InThese.Value) {
+		together = fmt.Sprintf(" In these crystals together m = %s; in crystals like these m = %s.", span(p.InThese.Value, p.InThese.Lo, p.InThese.Hi), span(p.LikeThese.Value, p.LikeThese.Lo, p.LikeThese.Hi))
+		limit += fmt.Sprintf(", and of %s in the crystals together", short(size.MinimumVisible((p.InThese.Hi-p.InThese.Lo)/2/zOf(0.95), 0.95, 0.8)))
+		// Where an axis is weak the standard errors that pool are too short.
+		if !seen.weak {
+			seen.pooled = side(p.InThese.Value, p.InThese.Lo, p.InThese.Hi, 0, 1)
+		}
+	}
+	a.Verdict, a.Text = seen.answer(list)
+	a.Text += together
+	if a.Verdict == VerdictNo && seen.negative == 0 && seen.pooled == 0 {
+		a.Text += limit + "."
+	}
+	if seen.estimable > 0 {
+		a.Text += qualified(r, list)
+	}
+	return a
+}
+
+// readings count the crystals whose m is clear of 0: each by its own interval, and
+// firmly, with the number of crystals asked allowed for. pooled is the side of the
+// crystals together.
+type readings struct {
+	estimable, positive, negative, up, down, pooled int
+	weak                                            bool
+}
+
+func (s *readings) count(own, firm int) {
+	switch own {
+	case 1:
+		s.positive++
+	case -1:
+		s.negative++
+	}
+	switch firm {
+	case 1:
+		s.up++
+	case -1:
+		s.down++
+	}
+}
+
+// answer takes the crystals together, or one of them firmly, as reason for a yes:
+// one of three that is clear of 0 by its own interval alone comes in one of seven
+// series in which there is nothing.
+func (s *readings) answer(list []*ContrastResult) (verdict, text string) {
+	up, down := s.up > 0 || s.pooled > 0, s.down > 0 || s.pooled < 0
+	switch {
+	case s.estimable == 0:
+		return VerdictUnknown, "The exchange cannot be estimated."
+	case up && down || s.up > 0 && s.negative > 0:
+		return VerdictUnsure, fmt.Sprintf("The crystals disagree: %d up, %d down.", s.positive, s.negative)
+	case up && s.positive == 0:
+		return VerdictYes, "Yes, in the crystals together, though in none of them alone."
+	case up:
+		return VerdictYes, fmt.Sprintf("Yes, in %s.", crystalsOf(s.positive, list))
+	case down:
+		return VerdictNo, fmt.Sprintf("No, the other way: m lies below 0 in %s, which no exchange makes; look for removed negatives, an offset or a wrong order of positions.", crystalsOf(s.negative, list))
+	case s.positive+s.negative > 0:
+		return VerdictUnsure, fmt.Sprintf("Undecided: by its own interval m is clear of 0 in %s (%d up, %d down), but not with %d crystals asked allowed for, and not in the crystals together.",
+			crystalsOf(s.positive+s.negative, list), s.positive, s.negative, s.estimable)
+	}
+	return VerdictNo, "No exchange is seen."
+}
+
+// firmF is the first-stage F below which the interval of a fit is too short.
+const firmF = 50
+
+// widened is the interval by which a contrast counts: that of its fit, and on a weak
+// axis wide enough to hold the Anderson-Rubin interval of the instrument too, which
+// holds its level there.
+func widened(c *ContrastResult) (lo, hi float64, note string) {
+	lo, hi = c.Exchange.Lo, c.Exchange.Hi
+	if !(c.Exchange.F < firmF) {
+		return lo, hi, ""
+	}
+	note = ", too short because the axis is weak"
+	for _, m := range c.Models {
+		if m.Model == "instrument" && m.M.Lo <= m.M.Hi {
+			lo, hi = math.Min(lo, m.M.Lo), math.Max(hi, m.M.Hi)
+			note += fmt.Sprintf(" (Anderson-Rubin interval %s to %s)", short(m.M.Lo), short(m.M.Hi))
+		}
+	}
+	return lo, hi, note
+}
+
+// qualified says what keeps m from being taken at its word: a curve of another shape
+// than the model's, or a loss in the detector.
+func qualified(r *Result, list []*ContrastResult) string {
+	misfit := 0
+	for _, c := range list {
+		if c.OverIdent.P < 0.001 {
+			misfit++
+		}
+	}
+	text := ""
+	if misfit > 0 {
+		text += fmt.Sprintf(" The model does not describe the curve in %s, so that this m is a number for another shape: look at the curve.", crystalsOf(misfit, list))
+	}
+	for _, e := range r.Ledger {
+		if e.Check == "high counts" && e.Verdict != VerdictFine && e.Verdict != VerdictUnknown {
+			return text + " A loss of the strongest is seen as well, which the detector could have made; it raises m too."
+		}
+	}
+	return text
+}
+
+// bracketAnswer says what one crystal, or a pair of crystals, can say.
+func bracketAnswer(a Answer, list []*ContrastResult) Answer {
+	var parts []string
+	open := 0
+	for _, c := range list {
+		b := c.Bracket
+		parts = append(parts, fmt.Sprintf("%s: m between %s (half of the thick position, errs downward) and %s (half of the thin, errs upward); moment ratio %s",
+			label(c), span(b.Thick.Value, b.Thick.Lo, b.Thick.Hi), span(b.Thin.Value, b.Thin.Lo, b.Thin.Hi), span(c.MomentRatio.M, c.MomentRatio.Lo, c.MomentRatio.Hi)))
+		if !(b.Lo > 0 || b.Hi < 0) {
+			open++
+		}
+	}
+	a.Detail = parts
+	text := "Only a bracket can be given, since no other crystal of the series says how strong each reflection is."
+	if open > 0 {
+		a.Verdict = VerdictUnsure
+		a.Text = text + " The bracket holds 0."
+	} else {
+		a.Verdict = VerdictYes
+		a.Text = text + " The bracket excludes 0, which holds only if the deviations of the two positions are unrelated."
+	}
+	if list[0].ThickCrystal != "" {
+		a.Text += " The two positions lie on two crystals: nothing here attributes a difference to thickness."
+	}
+	return a
+}
