@@ -119,7 +119,7 @@ func (s *Study) growth(ctx context.Context) (*ThicknessResult, error) {
 	t := &ThicknessResult{Slope: none()}
 	var slopes, errors []float64
 	for i := range s.Series.Crystals {
-		line, err := s.crystalLine(ctx, i)
+		line, se, err := s.crystalLine(ctx, i)
 		if err != nil {
 			return nil, err
 		}
@@ -128,8 +128,7 @@ func (s *Study) growth(ctx context.Context) (*ThicknessResult, error) {
 		}
 		t.Lines = append(t.Lines, *line)
 		if line.Why == "" {
-			slopes = append(slopes, line.Slope.Value)
-			errors = append(errors, (line.Slope.Hi-line.Slope.Lo)/(2*zOf(s.settings.Level)))
+			slopes, errors = append(slopes, line.Slope.Value), append(errors, se)
 		}
 	}
 	if len(slopes) == 0 {
@@ -141,8 +140,16 @@ func (s *Study) growth(ctx context.Context) (*ThicknessResult, error) {
 		t.Why = err.Error()
 		return t, nil
 	}
-	t.Slope = interval(e.Fixed, e.FixedLo, e.FixedHi, "")
+	t.Slope = s.slope(e.Fixed, e.FixedSE)
 	return t, nil
+}
+
+// slope is a growth with its interval, widened by the relative error that all
+// thicknesses share. It multiplies every slope alike, so it neither moves one nor
+// falls with the number of crystals.
+func (s *Study) slope(v, se float64) Interval {
+	half := zOf(s.settings.Level) * math.Hypot(se, s.Series.ThicknessScaleSU*v)
+	return interval(v, v-half, v+half, "")
 }
 
 // againstThinnest lists the contrasts of crystal i whose thin side is that of
@@ -166,28 +173,30 @@ func (s *Study) againstThinnest(i int) []*Compared {
 	return out
 }
 
-func (s *Study) crystalLine(ctx context.Context, i int) (*ThicknessLine, error) {
+// crystalLine fits one crystal. All its points are against the thinnest position and
+// share the error of that thickness. se leaves out what all crystals share.
+func (s *Study) crystalLine(ctx context.Context, i int) (line *ThicknessLine, se float64, err error) {
 	list := s.againstThinnest(i)
 	if len(list) == 0 {
-		return nil, nil
+		return nil, 0, nil
 	}
 	c := &s.Series.Crystals[i]
-	line := &ThicknessLine{Crystal: c.Name, Slope: none(), Chi2: math.NaN()}
+	line = &ThicknessLine{Crystal: c.Name, Slope: none(), Chi2: math.NaN()}
 	thin := c.Positions[list[0].Contrast.Thin]
 	line.T, line.Mu, line.MuSE = []float64{thin.ThicknessNM}, []float64{0}, []float64{0}
 	for _, x := range list {
 		if x.Fit == nil || math.IsNaN(x.Fit.M.Value) || x.Fit.M.Value >= 1 {
 			line.Why = fmt.Sprintf("m is not estimable in %s - %s", x.Result.Thin, x.Result.Thick)
-			return line, nil
+			return line, 0, nil
 		}
 	}
 	cov, err := s.muCovariance(ctx, list)
 	if err != nil {
 		if ctx.Err() != nil {
-			return nil, ctx.Err()
+			return nil, 0, ctx.Err()
 		}
 		line.Why = err.Error()
-		return line, nil
+		return line, 0, nil
 	}
 	var x, y, own, shared []float64
 	for k, v := range list {
@@ -196,18 +205,17 @@ func (s *Study) crystalLine(ctx context.Context, i int) (*ThicknessLine, error) 
 		line.T, line.Mu, line.MuSE = append(line.T, p.ThicknessNM), append(line.Mu, mu), append(line.MuSE, math.Sqrt(cov.At(k, k)))
 		dt := (p.ThicknessNM - thin.ThicknessNM) / 100
 		x, y = append(x, dt), append(y, mu)
-		own = append(own, math.Hypot(p.ThicknessSU, thin.ThicknessSU)/100)
-		shared = append(shared, math.Abs(dt)*s.Series.ThicknessScaleSU)
+		own, shared = append(own, p.ThicknessSU/100), append(shared, thin.ThicknessSU/100)
 	}
 	fit, err := pool.ThroughOrigin(x, y, cov, own, shared, s.settings.Level)
 	if err != nil {
 		line.Why = err.Error()
-		return line, nil
+		return line, 0, nil
 	}
-	line.Slope = interval(fit.Slope, fit.SlopeLo, fit.SlopeHi, "")
+	line.Slope = s.slope(fit.Slope, fit.SlopeSE)
 	line.Chi2, line.DF = fit.Chi2, fit.DF
 	line.ascend()
-	return line, nil
+	return line, fit.SlopeSE, nil
 }
 
 // ascend puts the positions in the order of thickness; contrasts stand with the
