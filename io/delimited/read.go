@@ -230,7 +230,7 @@ func (r *reader) header() error {
 	for _, f := range fields {
 		if _, _, ok := text.ParseNumber(f); ok || null(f) && len(f) > 0 {
 			if len(r.roles) == 0 {
-				return r.fault(r.i, "", "the columns are not declared: there is no header line with their names", "declare the order of the columns by the names "+knownNames)
+				return r.fault(r.i, "", "the columns are not declared: there is no header line with their names", "declare the order of the columns in the manifest, [columns] order = [\"h\", \"k\", \"l\", \"intensity\", \"sigma\", \"phi\"], by the names "+knownNames)
 			}
 			return nil
 		}
@@ -261,7 +261,7 @@ func (r *reader) header() error {
 		}
 	}
 	if _, _, problem := rolesOf(known); problem != "" {
-		return r.fault(r.i, "header", "the header does not name the columns: "+problem, "use the names "+knownNames+", or declare the order")
+		return r.fault(r.i, "header", "the header does not name the columns: "+problem, "use the names "+knownNames+", or declare the order in the manifest, [columns] order = [...]")
 	}
 	r.setHeader(names)
 	r.i = next

@@ -62,6 +62,12 @@ func lineOf(data []byte, want place, key string) int {
 	return header
 }
 
+// Energies beyond these are taken for a slip of the unit. Both are chosen wide; no source.
+const (
+	leastKeV = 1
+	mostKeV  = 5000
+)
+
 // check validates in the order of the file; the first fault is returned.
 func (f *File) check(name string, data []byte) error {
 	c := &checker{name, data}
@@ -72,8 +78,8 @@ func (f *File) check(name string, data []byte) error {
 	if f.SpaceGroup != "" && len(f.Operators) > 0 {
 		return c.fail(top, "operators", "space_group and operators are both given", "keep one of them")
 	}
-	if f.EnergyKeV < 0 || math.IsNaN(f.EnergyKeV) || math.IsInf(f.EnergyKeV, 0) {
-		return c.fail(top, "energy_keV", fmt.Sprintf("%g is no energy", f.EnergyKeV), "give kilo-electronvolts, such as 300.0")
+	if f.EnergyKeV != 0 && !(f.EnergyKeV >= leastKeV && f.EnergyKeV <= mostKeV) {
+		return c.fail(top, "energy_keV", fmt.Sprintf("%g keV is no energy of an electron microscope", f.EnergyKeV), "give kilo-electronvolts, such as 300.0")
 	}
 	if f.CellTolerance < 0 || math.IsNaN(f.CellTolerance) {
 		return c.fail(top, "cell_tolerance", fmt.Sprintf("%g is no tolerance", f.CellTolerance), "give a relative tolerance such as 0.02")
@@ -90,10 +96,33 @@ func (f *File) check(name string, data []byte) error {
 			return err
 		}
 	}
+	if err := f.checkFilesOnce(c); err != nil {
+		return err
+	}
 	for i := range f.Between {
 		for _, s := range []string{f.Between[i].Thin, f.Between[i].Thick} {
 			if strings.Count(s, "/") != 1 {
 				return c.fail(place{"between", -1, -1}, "thin", fmt.Sprintf("%q is not CRYSTAL/POSITION", s), `write for instance thin = "L1/thin"`)
+			}
+		}
+	}
+	return nil
+}
+
+// checkFilesOnce refuses a data set that stands in two positions: it would differ
+// from itself by nothing, and count twice as a strength.
+func (f *File) checkFilesOnce(c *checker) error {
+	seen := map[string]string{}
+	for i := range f.Crystal {
+		for j := range f.Crystal[i].Position {
+			p := &f.Crystal[i].Position[j]
+			where := f.Crystal[i].Name + "/" + p.Name
+			for _, path := range p.Files {
+				id := filepath.Clean(path) + "\x00" + p.Block
+				if other, ok := seen[id]; ok {
+					return c.fail(place{"crystal.position", i, j}, "files", fmt.Sprintf("%q stands in %s and in %s", path, other, where), "give each position its own file, or its own block of the file")
+				}
+				seen[id] = where
 			}
 		}
 	}

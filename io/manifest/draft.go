@@ -2,12 +2,14 @@ package manifest
 
 import (
 	"bytes"
+	"errors"
 	"fmt"
 	"path/filepath"
 	"strconv"
 	"strings"
 
 	"thinward/io/cif"
+	"thinward/io/delimited"
 )
 
 // Draft returns the text of a first manifest for the given reflection files: one
@@ -21,7 +23,7 @@ func Draft(paths []string) ([]byte, error) {
 			return nil, err
 		}
 	}
-	return d.text(), nil
+	return d.manifest(), nil
 }
 
 type drafter struct {
@@ -45,8 +47,7 @@ func (d *drafter) file(path string) error {
 	}
 	base := stem(path)
 	if !isCIF {
-		d.columns = true
-		d.positions = append(d.positions, draftPosition{name: base, file: path})
+		d.text(path, base)
 		return nil
 	}
 	f, err := cif.ReadFile(path)
@@ -110,7 +111,7 @@ func (d *drafter) list(f *cif.File, path, base, pick string, l cif.List) {
 		p.notes = append(p.notes, fmt.Sprintf("the file says %s = %g %s", t.Item, t.Value, t.Unit))
 	}
 	if r.Columns.Phi == nil {
-		p.notes = append(p.notes, "no rotation angles: observations of two positions cannot be matched")
+		p.notes = append(p.notes, noAngles)
 	}
 	d.cell = d.cell || r.Cell != nil
 	if d.energy == 0 {
@@ -126,14 +127,38 @@ func (d *drafter) list(f *cif.File, path, base, pick string, l cif.List) {
 	d.positions = append(d.positions, p)
 }
 
+// text looks into column text: a header that names the columns needs no [columns].
+func (d *drafter) text(path, base string) {
+	p := draftPosition{name: base, file: path}
+	r, err := delimited.ReadFile(path, nil)
+	if err != nil {
+		d.columns = true
+		why := err.Error()
+		var fault *delimited.Error
+		if errors.As(err, &fault) {
+			why = fault.Problem
+		}
+		p.notes = append(p.notes, "??? declare its columns in [columns]: "+why)
+	} else {
+		p.notes = append(p.notes, fmt.Sprintf("%d rows, %d usable; columns %s", r.Rows, r.Columns.Len(), strings.Join(r.Order, " ")))
+		if r.Columns.Phi == nil {
+			p.notes = append(p.notes, noAngles)
+		}
+	}
+	d.positions = append(d.positions, p)
+}
+
+const noAngles = "no rotation angles: observations of two positions cannot be matched"
+
 func stem(path string) string {
 	base := strings.TrimSuffix(filepath.Base(path), ".gz")
 	return strings.TrimSuffix(base, filepath.Ext(base))
 }
 
-func (d *drafter) text() []byte {
+func (d *drafter) manifest() []byte {
 	var b bytes.Buffer
-	b.WriteString("# A first manifest. Answer every line marked ???, then: thinward intake series.toml\n\n")
+	b.WriteString("# A first manifest. Answer every line marked ???, then: thinward intake series.toml\n")
+	b.WriteString("# Paths of files are relative to the folder of the manifest: save it where thinward draft was run.\n\n")
 	b.WriteString("title = \"???\"\n")
 	if d.energy > 0 {
 		fmt.Fprintf(&b, "energy_keV = %.1f   # from the files\n", d.energy)
@@ -151,7 +176,7 @@ func (d *drafter) text() []byte {
 		b.WriteString("\n[cell]   # ??? the files do not say\na = 0.0\nb = 0.0\nc = 0.0\nalpha = 90.0\nbeta = 90.0\ngamma = 90.0\n")
 	}
 	if d.columns {
-		b.WriteString("\n[columns]   # of column text without a header of these names\norder = [\"h\", \"k\", \"l\", \"intensity\", \"sigma\"]   # ??? add phi (degrees) and frame if there, skip for others\n")
+		b.WriteString("\n[columns]   # of column text without a header of these names\norder = [\"h\", \"k\", \"l\", \"intensity\", \"sigma\"]   # ??? in the order of the file, phi (degrees) and frame if there, skip for others\n")
 	}
 	b.WriteString("\n# ??? Put the positions of one crystal below one [[crystal]].\n")
 	for i, p := range d.positions {

@@ -136,9 +136,28 @@ func decodeError(name string, err error) error {
 	var bad *toml.DecodeError
 	if errors.As(err, &bad) {
 		line, _ := bad.Position()
-		return &Error{File: name, Line: line, Key: strings.Join(bad.Key(), "."), Problem: strings.TrimPrefix(bad.Error(), "toml: "), Remedy: "see the manifest section of the README", Err: err}
+		problem, remedy := plainly(strings.TrimPrefix(bad.Error(), "toml: "))
+		return &Error{File: name, Line: line, Key: strings.Join(bad.Key(), "."), Problem: problem, Remedy: remedy, Err: err}
 	}
 	return &Error{File: name, Problem: strings.TrimPrefix(err.Error(), "toml: "), Remedy: "see the manifest section of the README", Err: err}
+}
+
+// plainly says what the TOML decoder says in words of the manifest.
+func plainly(problem string) (plain, remedy string) {
+	remedy = "see the manifest section of the README"
+	switch {
+	case strings.Contains(problem, "into struct field") && strings.Contains(problem, "of type float64"):
+		return "a number is wanted here", "write it without quotes, with a decimal point and without its unit, such as 140.0"
+	case strings.Contains(problem, "into struct field") && strings.Contains(problem, "type []string"):
+		return "a list is wanted here", `write it in brackets, such as ["a", "b"]`
+	case strings.Contains(problem, "into struct field") && strings.Contains(problem, "of type string"):
+		return "a text is wanted here", "write it in double quotes"
+	case strings.Contains(problem, "U+002C ','"):
+		return problem, "TOML has decimal points, and commas only inside lists"
+	case strings.Contains(problem, "invalid character"):
+		return problem, "a manifest is text in TOML, as thinward draft FILES writes it; thinward peek shows what a reflection file holds"
+	}
+	return problem, remedy
 }
 
 var known = map[string][]string{

@@ -18,6 +18,10 @@ import (
 // of angles in radians, that files of one series may show.
 const defaultCellTolerance = 0.02
 
+// energyTolerance is the relative difference of beam energies that is passed over:
+// more than the rounding of a wavelength to three digits makes.
+const energyTolerance = 0.02
+
 // Load reads a manifest and its files and makes a Study with default settings.
 func Load(path string) (*analysis.Study, error) { return LoadWith(path, nil) }
 
@@ -126,12 +130,16 @@ func (l *loader) position(p *Position, at place, crystalName string) (*analysis.
 		if !filepath.IsAbs(path) {
 			path = filepath.Join(l.dir, path)
 		}
-		r, err := l.read(path, p.Block)
+		r, err := l.read(path, p.Block, at)
 		if err != nil {
 			return nil, err
 		}
-		if l.out.EnergyKeV == 0 {
+		switch {
+		case l.out.EnergyKeV == 0:
 			l.out.EnergyKeV = r.energyKeV
+		case r.energyKeV > 0 && math.Abs(r.energyKeV/l.out.EnergyKeV-1) > energyTolerance:
+			l.out.Warnings = append(l.out.Warnings, intensity.Warning{Code: "energy-differs", Where: where + ", " + filepath.Base(name),
+				Text: fmt.Sprintf("the file gives %.4g keV, the series uses %.4g", r.energyKeV, l.out.EnergyKeV)})
 		}
 		for _, w := range r.warnings {
 			w.Where = where + ", " + filepath.Base(name)
@@ -212,10 +220,14 @@ func (l *loader) symmetry() error {
 			continue
 		}
 		if g.group.LaueClass() != l.out.Group.LaueClass() {
-			text := fmt.Sprintf("%s gives Laue class %s, the series uses %s", g.file, g.group.LaueClass(), l.out.Group.LaueClass())
 			if f.SpaceGroup == "" && len(f.Operators) == 0 {
+				text := fmt.Sprintf("%s gives Laue class %s, the files before it %s", g.file, g.group.LaueClass(), l.out.Group.LaueClass())
 				return l.fail(top, "space_group", text, "fix the group for all files with space_group", nil)
 			}
+			text := fmt.Sprintf("the file gives Laue class %s, the manifest %s", g.group.LaueClass(), l.out.Group.LaueClass())
+			l.out.Warnings = append(l.out.Warnings, intensity.Warning{Code: "group-differs", Text: text, Where: g.file})
+		} else if g.group.Number() > 0 && l.out.Group.Number() > 0 && g.group.Number() != l.out.Group.Number() {
+			text := fmt.Sprintf("the file gives space group %s, the series uses %s: they forbid different reflections", nameOf(g.group), nameOf(l.out.Group))
 			l.out.Warnings = append(l.out.Warnings, intensity.Warning{Code: "group-differs", Text: text, Where: g.file})
 		}
 	}
@@ -223,6 +235,15 @@ func (l *loader) symmetry() error {
 		return l.fail(top, "space_group", "neither the manifest nor a file gives the symmetry", `add space_group = "P 21 21 21" or operators = [...]`, nil)
 	}
 	return nil
+}
+
+func nameOf(g *crystal.Group) string {
+	for _, s := range []string{g.HM(), g.Hall()} {
+		if s != "" {
+			return s
+		}
+	}
+	return fmt.Sprintf("of %d operators", len(g.Operators()))
 }
 
 func (l *loader) cell() error {

@@ -121,6 +121,11 @@ func TestFaults(t *testing.T) {
 		want       []string
 	}{
 		{"not TOML", "title = \n", 1, []string{"series.toml:1"}},
+		{"number with its unit", replace("thickness_nm = 200.0", `thickness_nm = "200 nm"`), 18, []string{"a number is wanted", "without its unit"}},
+		{"decimal comma", replace("thickness_nm = 200.0", "thickness_nm = 200,5"), 18, []string{"decimal points"}},
+		{"not text", "\x1f\x8b\x08\n", 1, []string{"thinward draft"}},
+		{"one file in two positions", replace(`["thick.txt"]`, `["./thin.txt"]`), 19, []string{"stands in L1/thin and in L1/thick"}},
+		{"energy in volts", replace("seed = 3", "seed = 3\nenergy_keV = 300000.0"), 4, []string{"300000 keV is no energy", "kilo-electronvolts"}},
 		{"wrong type", replace("seed = 3", `seed = "three"`), 3, []string{"series.toml:3", "seed"}},
 		{"unknown key", replace("seed = 3", "sead = 3"), 3, []string{"sead: unknown key", "did you mean seed?"}},
 		{"unknown key of a position", replace("thickness_nm = 100.0", "thicknes_nm = 100.0"), 14, []string{"unknown key", "did you mean thickness_nm?"}},
@@ -141,7 +146,7 @@ func TestFaults(t *testing.T) {
 		{"no files", replace(`files = ["thick.txt"]`, "files = []"), 19, []string{"L1/thick names no file"}},
 		{"empty path", replace(`["thick.txt"]`, `[""]`), 19, []string{"names an empty path"}},
 		{"path leaves the folder", replace(`["thick.txt"]`, `["../thick.txt"]`), 19, []string{"leaves the folder of the manifest", "absolute path"}},
-		{"missing file", replace(`["thick.txt"]`, `["gone.txt"]`), 0, []string{"gone.txt cannot be read", "relative to the manifest"}},
+		{"missing file", replace(`["thick.txt"]`, `["gone.txt"]`), 19, []string{"gone.txt cannot be read", "relative to the manifest"}},
 		{"rows not known", replace("thickness_nm = 200.0", "thickness_nm = 200.0\nrows = \"twice\""), 19, []string{`"twice" is not known`, "slices"}},
 		{"replicate of nothing", replace("thickness_nm = 200.0", "thickness_nm = 200.0\nreplicate_of = \"mid\""), 19, []string{`"mid" is not another position`}},
 		{"shell not positive", replace("thickness_nm = 200.0", "thickness_nm = 200.0\nexclude = { shells_A = [[0.0, 3.0]] }"), 19, []string{"is no shell"}},

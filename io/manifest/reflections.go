@@ -27,10 +27,10 @@ type reflections struct {
 	warnings  []intensity.Warning
 }
 
-func (l *loader) read(path, pick string) (*reflections, error) {
+func (l *loader) read(path, pick string, at place) (*reflections, error) {
 	kind, err := LooksLikeCIF(path)
 	if err != nil {
-		return nil, &Error{File: l.path, Key: "files", Problem: fmt.Sprintf("%s cannot be read: %s", path, cause(err)), Remedy: "check the path; it is relative to the manifest", Err: err}
+		return nil, l.fail(at, "files", fmt.Sprintf("%s cannot be read: %s", path, cause(err)), "check the path; it is relative to the manifest", err)
 	}
 	if kind {
 		return readCIF(path, pick)

@@ -35,6 +35,14 @@ func (a *app) examine() *cobra.Command {
 	c := &cobra.Command{
 		Use:   "examine SERIES.toml",
 		Short: "Make the report of a series: report.html, report.ipynb, pairs.csv, result.json",
+		Long: `Makes the report of a series: report.html, report.ipynb, pairs.csv, result.json.
+
+Values that --set changes:
+  seed        of all random numbers; 0 takes that of the manifest
+  axis        crystals, bracket, third, inverse-variance, thin, thick or mean: the
+              strength that leads; empty takes crystals where there are two or more
+  replicates  resamplings behind each interval (default 2000)
+  long        true for more replicas behind the controls`,
 		Example: `  thinward examine fixtures/tarn/series.toml
   thinward examine series.toml --out monday --set replicates=5000 --set long=true`,
 		Args: cobra.ExactArgs(1),

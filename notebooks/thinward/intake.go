@@ -41,11 +41,26 @@ func (a *app) intake() *cobra.Command {
 					Warnings  []analysis.WarningResult  `json:"warnings"`
 				}{table, indexing, warnings})
 			}
-			return printIntake(a.out, table, indexing, warnings)
+			return printIntake(a.out, table, indexing, append(setAside(&study.Series), warnings...))
 		},
 	}
 	c.Flags().BoolVar(&a.json, "json", false, "print JSON")
 	return c
+}
+
+// setAside says which rows could not be used.
+func setAside(s *analysis.Series) []analysis.WarningResult {
+	var out []analysis.WarningResult
+	for _, c := range s.Crystals {
+		for _, p := range c.Positions {
+			for _, f := range p.Sources {
+				for _, x := range f.SetAside {
+					out = append(out, analysis.WarningResult{Where: c.Name + "/" + p.Name + ", " + f.Path, Text: fmt.Sprintf("%s set aside: %s (first on line %d)", plural(x.N, "row"), x.Reason, x.FirstLine)})
+				}
+			}
+		}
+	}
+	return out
 }
 
 func printIntake(w io.Writer, table []analysis.IntakeResult, indexing []analysis.IndexingResult, warnings []analysis.WarningResult) error {
@@ -69,12 +84,20 @@ func printIntake(w io.Writer, table []analysis.IntakeResult, indexing []analysis
 			fmt.Fprintf(&b, "  propose in the manifest: reindex = %q\n", x.Proposal)
 		}
 	}
+	for _, r := range table {
+		if r.Multiplicity < onceSeen {
+			fmt.Fprintf(&b, "%s/%s: almost every reflection stands once, as in a merged list: sigmas cannot be checked and no halves be made; give the observations before merging\n", r.Crystal, r.Position)
+		}
+	}
 	for _, x := range warnings {
 		fmt.Fprintf(&b, "%s: %s\n", x.Where, x.Text)
 	}
 	_, err := io.WriteString(w, b.String())
 	return err
 }
+
+// onceSeen is the multiplicity below which a list is called merged; chosen, no source.
+const onceSeen = 1.1
 
 func dash(v float64, decimals int) string {
 	if math.IsNaN(v) {

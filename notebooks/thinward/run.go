@@ -7,6 +7,7 @@ import (
 	"io"
 	"os"
 	"os/signal"
+	"strings"
 
 	"github.com/spf13/cobra"
 
@@ -56,9 +57,17 @@ func run(args []string, stdout, stderr io.Writer) int {
 	status := statusOf(err)
 	fmt.Fprintf(stderr, "thinward: %v\n", err)
 	if status == exitUsage {
-		fmt.Fprintln(stderr, "See thinward --help.")
+		fmt.Fprintf(stderr, "See %s --help.\n", a.verbOf(root, args))
 	}
 	return status
+}
+
+// verbOf names the command that the arguments reach, for the pointer to its help.
+func (a *app) verbOf(root *cobra.Command, args []string) string {
+	if c, _, err := root.Find(args); err == nil {
+		return c.CommandPath()
+	}
+	return root.CommandPath()
 }
 
 // interrupts gives a context that the first Ctrl-C cancels and a channel that
@@ -141,15 +150,20 @@ SERIES.toml shows what came in, thinward examine SERIES.toml makes the report.`,
 		Version:       session.Version(),
 		SilenceErrors: true,
 		SilenceUsage:  true,
-		Args: func(_ *cobra.Command, args []string) error {
+		Args: func(c *cobra.Command, args []string) error {
 			if len(args) > 0 {
-				return usageError{fmt.Errorf("no verb %q", args[0])}
+				near := ""
+				if list := c.SuggestionsFor(args[0]); len(list) > 0 {
+					near = "; did you mean " + strings.Join(list, " or ") + "?"
+				}
+				return usageError{fmt.Errorf("no verb %q%s", args[0], near)}
 			}
 			return nil
 		},
 		RunE: func(c *cobra.Command, _ []string) error { return c.Help() },
 	}
 	root.PersistentFlags().BoolVarP(&a.quiet, "quiet", "q", false, "print results only")
+	root.SuggestionsMinimumDistance = 2
 	root.SetFlagErrorFunc(func(_ *cobra.Command, err error) error { return usageError{err} })
 	root.AddCommand(a.examine(), a.notebook(), a.kernel(), a.invent(), a.doctor(), a.intake(), a.peek(), a.group(), a.draft(), a.tables(), a.plan(), a.again(), a.bundle(), a.compare(), a.gather())
 	for _, c := range root.Commands() {
@@ -165,9 +179,13 @@ func wrapArgs(c *cobra.Command) {
 		return
 	}
 	c.Args = func(c *cobra.Command, args []string) error {
-		if err := check(c, args); err != nil {
-			return usageError{fmt.Errorf("%s: %w", c.Name(), err)}
+		if check(c, args) == nil {
+			return nil
 		}
-		return nil
+		quotes := ""
+		if len(args) > 1 {
+			quotes = "; an argument with blanks in it stands in quotes"
+		}
+		return usageError{fmt.Errorf("%s: %s given; write thinward %s%s", c.Name(), plural(len(args), "argument"), c.Use, quotes)}
 	}
 }
