@@ -19,6 +19,7 @@ import (
 type confounders struct {
 	bleed, double, jitter     []placed // positions
 	tilt, ice, common, tipped []placed // primary contrasts
+	lying                     []placed // crystals that take strengths from others
 }
 
 // Ledger looks for confounders in the observations and returns all entries of the
@@ -56,6 +57,7 @@ func (s *Study) Ledger(ctx context.Context) ([]LedgerEntry, error) {
 	if err != nil {
 		return nil, err
 	}
+	f.lying = s.lying(list)
 	s.found = f
 	s.progress("ledger", 1, 1)
 	return s.ledger(), nil
@@ -72,6 +74,7 @@ func (s *Study) ledgerFound(b *ledgerBook) {
 	b.fold("tilt within a position", "crystals", 0, f.tilt)
 	b.fold("ice rings", "crystals", 0, f.ice)
 	b.fold("common reflections", "crystals", 1, f.common)
+	b.fold("crystals that lie alike", "crystals", 90, f.lying)
 	b.fold("tipping ratio", "crystals", math.Inf(1), f.tipped)
 }
 

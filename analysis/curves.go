@@ -150,7 +150,7 @@ func (s *Study) axes(ctx context.Context, x *Compared) error {
 		}
 	}
 	if x.Leading == leadCrystals {
-		add(x.Strengths, "shares neither noise nor geometry with the difference")
+		add(x.Strengths, "shares no noise with the difference, and no geometry unless crystals lay alike")
 	}
 	for _, axis := range []difference.Axis{difference.AxisHalfThin, difference.AxisHalfThick} {
 		remark := "errs upward"

@@ -7,7 +7,8 @@ type Axis int
 
 const (
 	// AxisCrystals is the merged strength in the other crystals of the series:
-	// it shares neither noise nor geometry with the difference.
+	// it shares no noise with the difference, and no geometry unless the crystals lay
+	// alike.
 	AxisCrystals Axis = iota
 	// AxisHalfThin is half of the thin position, by raw index, with the
 	// difference taken from the other half; an exchange read off it errs upward.

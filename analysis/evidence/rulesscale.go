@@ -275,13 +275,34 @@ func Recorded(n int) Finding {
 // AxisOf judges the agreement of the other crystals' strengths with the pair's.
 func AxisOf(correlation float64, leading string, independent bool) Finding {
 	if independent {
-		f := Finding{Value: correlation, Unit: "correlation with the other crystals", Verdict: Fine, Why: "strength comes from the other crystals, which share neither noise nor geometry with the difference"}
+		f := Finding{Value: correlation, Unit: "correlation with the other crystals", Verdict: Fine, Why: "strength comes from the other crystals, which share no noise with the difference, and no geometry unless they lay alike"}
 		if correlation < 0.7 {
 			f.Verdict, f.Why = Caution, "strength comes from the other crystals, but they agree poorly with this one"
 		}
 		return f
 	}
 	return Finding{Value: correlation, Unit: "correlation with the other crystals", Verdict: Caution, Why: "no independent strength: the axis is " + leading + ", which shares its crystal, or its noise, with the difference"}
+}
+
+// alikeDeg is the angle between rotation axes below which two crystals meet mostly the
+// same orientations: many-beam intensities change over a degree or less, but
+// both axes are known to that only, and crystals of one habit scatter by a few.
+const alikeDeg = 5
+
+// LyingOf judges the least angle in degrees between the rotation axis of a crystal and
+// that of another whose strengths it uses, both in the frame of the crystal. NaN is not
+// known. Caution below 5.
+func LyingOf(deg float64, other string) Finding {
+	if math.IsNaN(deg) {
+		return unknown("angles are missing or do not tell how the crystals lay")
+	}
+	f := Finding{Value: deg, Unit: "degrees between rotation axes in the crystal", Verdict: Fine,
+		Why: fmt.Sprintf("the nearest, %s, was turned about another axis of its own (%.0f degrees away)", other, deg)}
+	if deg < alikeDeg {
+		f.Verdict = Caution
+		f.Why = fmt.Sprintf("%s was turned about nearly the same axis of its own (%.1f degrees away): reflections meet the same orientations in both, so that strengths from there can share their dynamical deviations and m then errs like one from the same crystal", other, deg)
+	}
+	return f
 }
 
 // AgainstLeading judges m on another axis against the leading one: caution when the

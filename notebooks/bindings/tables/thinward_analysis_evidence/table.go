@@ -40,6 +40,7 @@ func init() {
 			"IceOf":             reflect.ValueOf(evidence.IceOf),
 			"Indexing":          reflect.ValueOf(evidence.Indexing),
 			"JitterOf":          reflect.ValueOf(evidence.JitterOf),
+			"LyingOf":           reflect.ValueOf(evidence.LyingOf),
 			"Negatives":         reflect.ValueOf(evidence.Negatives),
 			"NewShrunk":         reflect.ValueOf(evidence.NewShrunk),
 			"NotKnown":          reflect.ValueOf(evidence.NotKnown),
