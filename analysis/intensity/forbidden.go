@@ -5,8 +5,8 @@ import "math"
 // Forbidden describes the reflections that one symmetry element of the group
 // forbids, as measured in one position. Ratio is the mean of J over the local
 // mean of allowed reflections (epsilon divided out of those), SU its standard
-// uncertainty: from the scatter of the ratios when there are five or more,
-// from the variances otherwise. MeanZ is the mean of J/sqrt(Var). With N = 0
+// uncertainty: from the variances, or from the scatter of the ratios where there are
+// five or more and that is larger (of a few it may be small by chance). MeanZ is the mean of J/sqrt(Var). With N = 0
 // the three are NaN and Why says so in words.
 type Forbidden struct {
 	Element string // "all" for every forbidden reflection
@@ -67,10 +67,11 @@ func summarise(ratio, relVar []float64) Forbidden {
 		variance += relVar[i] / (n * n)
 	}
 	if f.N >= 5 {
-		variance = 0
+		scatter := 0.0
 		for _, r := range ratio {
-			variance += (r - f.Ratio) * (r - f.Ratio) / (n * (n - 1))
+			scatter += (r - f.Ratio) * (r - f.Ratio) / (n * (n - 1))
 		}
+		variance = math.Max(variance, scatter)
 	}
 	f.SU = math.Sqrt(variance)
 	return f

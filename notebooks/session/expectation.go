@@ -23,7 +23,9 @@ func (s *Session) Expectation() *View {
 	g.add("interaction constant (rad/(V nm))", number(e.InteractionVnm, 5), "")
 	g.add("elastic mean free path (nm)", number(e.ElasticMFPNM, 0), e.Source)
 	g.add("inelastic mean free path (nm)", number(e.InelasticMFPNM, 0), e.Source)
-	g.add("uncertainty of both", percent(e.Uncertainty, 0), "")
+	if e.Uncertainty > 0 {
+		g.add("uncertainty of what is estimated", percent(e.Uncertainty, 0), "")
+	}
 	g.add("extinction distance at strength 1 (nm)", number(e.TwoBeam.ExtinctionNM, 0), "random light atoms, d = "+number(e.TwoBeam.DA, 2)+" \u00c5; strength 1 is the mean there")
 	for _, strength := range []float64{1, 4} {
 		g.add("two-beam over kinematic intensity at strength "+number(strength, 0)+", thinnest and thickest", twoBeamAt(e.TwoBeam.ThicknessNM[0], e.TwoBeam.ExtinctionNM, strength)+", "+twoBeamAt(e.TwoBeam.ThicknessNM[1], e.TwoBeam.ExtinctionNM, strength),
