@@ -1,0 +1,42 @@
+package analysis
+
+import (
+	"context"
+	"math"
+	"testing"
+
+	"thinward/analysis/difference"
+	"thinward/analysis/size"
+)
+
+// One crystal without deviations, its thick position with a curb or an offset and
+// no exchange: both ends of the bracket come from the leading model and hold 0. With
+// the instrument alone the end that should err downward lies above 0.
+func TestBracketOfOneCrystal(t *testing.T) {
+	for _, c := range []cell{{sigma: 1, curb: 0.02}, {sigma: 1, offset: 0.02}} {
+		p := c.plan(1)
+		p.Crystals = p.Crystals[:1]
+		s := studyOf(t, p, quick())
+		if _, err := s.Scale(context.Background()); err != nil {
+			t.Fatal(err)
+		}
+		x, err := s.paired(context.Background(), s.primaryContrasts()[0])
+		if err != nil {
+			t.Fatal(err)
+		}
+		if err := s.sizes(context.Background(), x); err != nil {
+			t.Fatal(err)
+		}
+		e := x.Result.Exchange
+		if b := x.Result.Bracket; !(b.Lo <= 0 && b.Hi >= 0) || b.Lo != e.Lo || b.Hi != e.Hi || !math.IsNaN(e.M) {
+			t.Errorf("%+v: bracket %+v, exchange %+v", c, b, e)
+		}
+		alone, err := size.ExchangeCross(s.bracketLegs(x, difference.AxisHalfThick), nil, nil)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if !(alone.Lo > 0) {
+			t.Errorf("%+v: the instrument gives %.4f to %.4f, which shows nothing", c, alone.Lo, alone.Hi)
+		}
+	}
+}
