@@ -1,6 +1,7 @@
 package analysis
 
 import (
+	"fmt"
 	"math"
 
 	"thinward/analysis/difference"
@@ -72,7 +73,8 @@ func (s *Study) judgeContrast(x *Compared, put func(check, where string, f evide
 				turn.Lo, turn.Hi, turn.N = math.Min(turn.Lo, g.M.Value), math.Max(turn.Hi, g.M.Value), turn.N+1
 			}
 		}
-		put("giants", where, evidence.ChoiceOf("strongest reflections to leave out", lead, 1.5*r.Exchange.SE, turn))
+		what := fmt.Sprintf("strongest reflections to leave out, read by the instrument, which gives %.3g with all", lead)
+		put("giants", where, evidence.ChoiceOf(what, lead, 1.5*r.Exchange.SE, turn))
 	}
 }
 

@@ -24,7 +24,8 @@ func (s *Study) ledgerSeries(b *ledgerBook) {
 				n += f.N
 			}
 		}
-		b.add("forbidden reflections", "", evidence.Recorded(n))
+		least, element := alwaysFilled(s.forbidden)
+		b.add("forbidden reflections", "", evidence.Recorded(n, least, element))
 	}
 	measured, failed := 0, 0
 	for i := range s.Series.Crystals {
@@ -40,6 +41,37 @@ func (s *Study) ledgerSeries(b *ledgerBook) {
 		}
 	}
 	b.add("replicate position", "", evidence.ReplicateOf(measured, failed))
+}
+
+// fewestForbidden is the number of forbidden reflections of an element below which
+// their mean says nothing of the element: intensities scatter as much as they are large.
+const fewestForbidden = 5
+
+// alwaysFilled finds the symmetry element whose forbidden reflections are never
+// weak: the largest over elements of the smallest ratio among positions, each less
+// two standard uncertainties; NaN where too few were recorded anywhere.
+func alwaysFilled(list []Forbidden) (least float64, element string) {
+	lowest, order := map[string]float64{}, []string{}
+	for _, f := range list {
+		if f.N < fewestForbidden || math.IsNaN(f.Ratio) || math.IsNaN(f.SU) {
+			continue
+		}
+		if _, ok := lowest[f.Element]; !ok {
+			lowest[f.Element] = math.Inf(1)
+			order = append(order, f.Element)
+		}
+		lowest[f.Element] = math.Min(lowest[f.Element], f.Ratio-2*f.SU)
+	}
+	least = math.NaN()
+	for _, e := range order {
+		if e == "all" && len(order) > 1 {
+			continue // the elements say it by name
+		}
+		if math.IsNaN(least) || lowest[e] > least {
+			least, element = lowest[e], e
+		}
+	}
+	return least, element
 }
 
 // doseOrder counts the crystals whose dose, or order of measurement, rises with
