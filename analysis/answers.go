@@ -217,6 +217,9 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 		a.Text = "The space group forbids no reflection, so there is nothing to look at."
 	case known == 0:
 		a.Text = "Not recorded: the lists hold no forbidden reflection in both positions, so nothing can be said, and not that they are absent."
+	case filledThroughout(r):
+		a.Verdict = VerdictUnsure
+		a.Text = "At every thickness they are about as strong as allowed ones: the space group is wrong, and says nothing of scattering more than once. Below, their mean over the local mean, thin to thick."
 	case up > 0:
 		a.Verdict = VerdictYes
 		a.Text = fmt.Sprintf("They rise with thickness in %d of %d crystals that recorded them in both positions. No scale can do this, but background left in the intensities and spots that run into each other can; a wrong space group fills them at every thickness. Below, their mean over the local mean, thin to thick.", up, known)
@@ -225,6 +228,16 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 		a.Text = fmt.Sprintf("No rise with thickness is seen; one of %s of the local mean would have been seen in each crystal with 80 %% power. Below, their mean over the local mean, thin to thick.", short(size.MinimumVisible(worst, 0.95, 0.8)))
 	}
 	return a
+}
+
+// filledThroughout reports whether the ledger calls the space group wrong.
+func filledThroughout(r *Result) bool {
+	for _, e := range r.Ledger {
+		if e.Check == "forbidden reflections" && e.Verdict == VerdictFails {
+			return true
+		}
+	}
+	return false
 }
 
 func forbiddenOf(r *Result, crystal, position string) *Forbidden {

@@ -59,6 +59,10 @@ func TestAnswerForbiddenCountsOnlyWhatWasRecorded(t *testing.T) {
 	if a := answerForbidden(r, list); a.Verdict != VerdictYes || !strings.Contains(a.Text, "1 of 1 crystals that recorded them") {
 		t.Errorf("%q: %s", a.Verdict, a.Text)
 	}
+	r.Ledger = []LedgerEntry{{Check: "forbidden reflections", Verdict: VerdictFails}}
+	if a := answerForbidden(r, list); a.Verdict != VerdictUnsure || !strings.Contains(a.Text, "the space group is wrong") {
+		t.Errorf("%q: %s", a.Verdict, a.Text)
+	}
 	for i := range r.Forbidden {
 		r.Forbidden[i].N, r.Forbidden[i].Why = 0, intensity.NoneForbidden
 	}
