@@ -180,3 +180,27 @@ func TestAnswersAllowForCrystals(t *testing.T) {
 		}
 	}
 }
+
+func TestBracketAnswerBySign(t *testing.T) {
+	at := func(lo, hi float64) *ContrastResult {
+		return &ContrastResult{Crystal: "L1", StrengthAxis: leadBracket, Bracket: Bracket{Thick: interval(lo, lo, lo, ""), Thin: interval(hi, hi, hi, ""), Lo: lo, Hi: hi}}
+	}
+	nan := math.NaN()
+	for _, c := range []struct {
+		name    string
+		list    []*ContrastResult
+		verdict string
+		says    string
+	}{
+		{"above 0", []*ContrastResult{at(0.02, 0.08)}, VerdictYes, "between 0.020 and 0.080"},
+		{"below 0", []*ContrastResult{at(-0.08, -0.02)}, VerdictNo, "the reverse"},
+		{"holds 0", []*ContrastResult{at(-0.02, 0.08)}, VerdictUnsure, "Undecided"},
+		{"one of two holds 0", []*ContrastResult{at(0.01, 0.08), at(-0.02, 0.04)}, VerdictUnsure, "0.080"},
+		{"not estimable", []*ContrastResult{at(nan, nan)}, VerdictUnknown, "too few symmetry equivalents"},
+	} {
+		a := bracketAnswer(Answer{}, c.list)
+		if a.Verdict != c.verdict || !strings.Contains(a.Text, c.says) {
+			t.Errorf("%s: %q: %s", c.name, a.Verdict, a.Text)
+		}
+	}
+}

@@ -144,23 +144,37 @@ func qualified(r *Result, list []*ContrastResult) string {
 // bracketAnswer says what one crystal, or a pair of crystals, can say.
 func bracketAnswer(a Answer, list []*ContrastResult) Answer {
 	var parts []string
-	open := 0
+	known, up, down := 0, 0, 0
+	lo, hi := math.Inf(1), math.Inf(-1)
 	for _, c := range list {
 		b := c.Bracket
 		parts = append(parts, fmt.Sprintf("%s: m between %s (half of the thick position, errs downward) and %s (half of the thin, errs upward); moment ratio %s",
 			label(c), span(b.Thick.Value, b.Thick.Lo, b.Thick.Hi), span(b.Thin.Value, b.Thin.Lo, b.Thin.Hi), span(c.MomentRatio.M, c.MomentRatio.Lo, c.MomentRatio.Hi)))
-		if !(b.Lo > 0 || b.Hi < 0) {
-			open++
+		if math.IsNaN(b.Lo) || math.IsNaN(b.Hi) || math.IsNaN(b.Thick.Value) || math.IsNaN(b.Thin.Value) {
+			continue
+		}
+		known++
+		lo, hi = math.Min(lo, b.Lo), math.Max(hi, b.Hi)
+		switch {
+		case b.Lo > 0:
+			up++
+		case b.Hi < 0:
+			down++
 		}
 	}
 	a.Detail = parts
-	text := "Only a bracket can be given, since no other crystal of the series says how strong each reflection is."
-	if open > 0 {
-		a.Verdict = VerdictUnsure
-		a.Text = text + " The bracket holds 0."
-	} else {
-		a.Verdict = VerdictYes
-		a.Text = text + " The bracket excludes 0, which holds only if the deviations of the two positions are unrelated."
+	const why = " Only a bracket can be given, since no other crystal of the series says how strong each reflection is."
+	width := fmt.Sprintf("m lies between %s and %s", short(lo), short(hi))
+	const unrelated = "This holds only if the deviations of the two positions are unrelated."
+	switch {
+	case known == 0:
+		a.Verdict, a.Text = VerdictUnknown, "It cannot be said: strengths would have to come from halves of the same position, and too few symmetry equivalents are there to make them."
+	case up == len(list):
+		a.Verdict, a.Text = VerdictYes, "Yes, as far as a bracket tells: "+width+"."+why+" "+unrelated
+	case down == len(list):
+		a.Verdict, a.Text = VerdictNo, "No, as far as a bracket tells, rather the reverse: "+width+"."+why+" "+unrelated
+	default:
+		a.Verdict, a.Text = VerdictUnsure, "Undecided: "+width+"."+why
 	}
 	if list[0].ThickCrystal != "" {
 		a.Text += " The two positions lie on two crystals: nothing here attributes a difference to thickness."
