@@ -29,8 +29,10 @@ type Compared struct {
 	Halves *size.Halves
 	Band   *curve.Banded
 	Result ContrastResult
-	// thin and thick are the positions that were paired.
+	// thin and thick are the positions that were paired, b the B factors that their
+	// scale took off.
 	thin, thick *intensity.Scaled
+	b           [2]float64
 }
 
 // Names of the leading axis in results.
@@ -56,12 +58,14 @@ func (s *Study) compareStep(ctx context.Context, c Contrast) (*Compared, error) 
 	}
 	x := &Compared{Contrast: c}
 	if c.Across() {
-		x.thin, x.thick, err = s.across(ctx, c)
+		x.thin, x.thick, x.b, err = s.across(ctx, c)
 		if err != nil {
 			return nil, err
 		}
 	} else {
-		x.thin, x.thick = scaled[c.Crystal].Positions[c.Thin], scaled[c.Crystal].Positions[c.Thick]
+		sc := scaled[c.Crystal]
+		x.thin, x.thick = sc.Positions[c.Thin], sc.Positions[c.Thick]
+		x.b = [2]float64{sc.Fit.B[sc.slot[c.Thin]], sc.Fit.B[sc.slot[c.Thick]]}
 	}
 	if err := s.pair(ctx, x); err != nil {
 		return nil, err
@@ -87,24 +91,24 @@ func (s *Study) compareStep(ctx context.Context, c Contrast) (*Compared, error) 
 
 // across scales two positions of two crystals to each other, angles left out:
 // frames and angles of two crystals do not correspond.
-func (s *Study) across(ctx context.Context, c Contrast) (thin, thick *intensity.Scaled, err error) {
+func (s *Study) across(ctx context.Context, c Contrast) (thin, thick *intensity.Scaled, b [2]float64, err error) {
 	in, err := s.intakeStep(ctx)
 	if err != nil {
-		return nil, nil, err
+		return nil, nil, b, err
 	}
 	var parts []*Accepted
 	for _, a := range []*Accepted{&in.Positions[c.Crystal][c.Thin], &in.Positions[c.ThickCrystal][c.Thick]} {
 		o := *a.Observations
 		o.Phi = nil
-		b := *a
-		b.Observations = &o
-		parts = append(parts, &b)
+		part := *a
+		part.Observations = &o
+		parts = append(parts, &part)
 	}
 	sc, err := scaleTogether(ctx, in.Catalogue, parts, &s.settings.Scaling, &s.settings.Noise, s.settings.Workers)
 	if err != nil {
-		return nil, nil, err
+		return nil, nil, b, err
 	}
-	return sc.Positions[0], sc.Positions[1], nil
+	return sc.Positions[0], sc.Positions[1], [2]float64(sc.Fit.B), nil
 }
 
 func (s *Study) pair(ctx context.Context, x *Compared) error {

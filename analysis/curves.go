@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"slices"
 
 	"thinward/analysis/curve"
 	"thinward/analysis/difference"
@@ -60,10 +61,23 @@ func curveResult(b *curve.Banded) Curve {
 	return c
 }
 
+// withB gives the intensities of the pairs under their scale as a curve in the angle
+// but with the fitted B factors put back: with B taken off no trend with resolution
+// is left to see.
+func (x *Compared) withB() (thin, thick []float64) {
+	thin, thick = slices.Clone(x.Input.Thin), slices.Clone(x.Input.Thick)
+	for i, s2 := range x.Pairs.S2 {
+		thin[i] *= math.Exp(-2 * x.b[0] * s2)
+		thick[i] *= math.Exp(-2 * x.b[1] * s2)
+	}
+	return thin, thick
+}
+
 func (s *Study) resolution(ctx context.Context, x *Compared) error {
 	o := s.curveSettings(x, "resolution")
 	o.Shells = min(12, max(3, x.Pairs.Len()/s.settings.ShellPairs))
-	sh, err := curve.ByResolution(ctx, x.Pairs.S2, x.Input.Thin, x.Input.Thick, o)
+	thin, thick := x.withB()
+	sh, err := curve.ByResolution(ctx, x.Pairs.S2, thin, thick, o)
 	if err != nil {
 		if ctx.Err() != nil {
 			return ctx.Err()
