@@ -59,14 +59,14 @@ func (s *Session) Shells() *View {
 }
 
 func qualityTable(r *analysis.Result, caption string, wanted func(*analysis.Quality) bool) *View {
-	g := newGrid(caption, "position", "d (\u00c5)", "observations", "unique", "possible", "complete", "multiplicity", "I/\u03c3", "R_merge", "R_meas", "R_pim", "CC1/2", "CC1/2 (\u03c3-\u03c4)", "CC*")
+	g := newGrid(caption, "position", "d (\u00c5)", "complete", "multiplicity", "observations", "unique", "within reach", "I/\u03c3", "R_merge", "R_meas", "R_pim", "CC1/2", "CC1/2 (\u03c3-\u03c4)", "CC*")
 	for i := range r.Quality {
 		q := &r.Quality[i]
 		if !wanted(q) {
 			continue
 		}
-		g.add(q.Crystal+"/"+q.Position, number(q.DLong, 2)+"\u2013"+number(q.DShort, 2), count(q.Observations), count(q.Unique), count(q.Possible), percent(q.Completeness, 0),
-			number(q.Multiplicity, 1), number(q.IOverSigma, 1), number(q.RMerge, 3), number(q.RMeas, 3), number(q.RPim, 3), number(q.CCHalf, 3), number(q.CCHalfTau, 3), number(q.CCStar, 3))
+		g.add(q.Crystal+"/"+q.Position, number(q.DLong, 2)+"\u2013"+number(q.DShort, 2), percent(q.Completeness, 0), number(q.Multiplicity, 1),
+			count(q.Observations), count(q.Unique), count(q.Possible), number(q.IOverSigma, 1), number(q.RMerge, 3), number(q.RMeas, 3), number(q.RPim, 3), number(q.CCHalf, 3), number(q.CCHalfTau, 3), number(q.CCStar, 3))
 	}
 	return g.view("Precision")
 }

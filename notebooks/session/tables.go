@@ -98,7 +98,7 @@ func (s *Session) Sizes() *View {
 // reflections left out.
 func (s *Session) Models() *View {
 	r := s.upTo(stepDifferences)
-	g := newGrid("The primary contrasts under each model", "contrast", "model", "m", "q", "o", "p of the fit").words(1)
+	g := newGrid("The primary contrasts under each model; quote the one that leads, since the instrument and (m) read curb and offset as exchange", "contrast", "model", "m", "q", "o", "p of the fit").words(1)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
 		if !c.Primary {
@@ -119,7 +119,7 @@ func (s *Session) Models() *View {
 // Axes shows m on every axis that can be built.
 func (s *Session) Axes() *View {
 	r := s.upTo(stepDifferences)
-	g := newGrid("Exchange on every strength axis (instrument, one number)", "contrast", "axis", "pairs", "m", "difference from the leading axis", "remark").words(1, 5)
+	g := newGrid("Exchange on every strength axis, by the instrument: for comparing axes, not for quoting, since it reads curb and offset as exchange", "contrast", "axis", "pairs", "m", "difference from the leading axis", "remark").words(1, 5)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
 		if !c.Primary {
