@@ -5,6 +5,8 @@ import (
 	"math"
 	"strings"
 
+	"gonum.org/v1/gonum/stat/distuv"
+
 	"thinward/analysis/intensity"
 	"thinward/analysis/resample"
 	"thinward/analysis/size"
@@ -278,10 +280,29 @@ func answerThickness(r *Result) *Answer {
 	case t.Slope.Lo > 0:
 		a.Verdict = VerdictYes
 		a.Text = fmt.Sprintf("\u03bc = \u2212ln(1\u2212m) grows by %s per 100 nm over %d crystals.", slope, used)
+		if p := straight(t.Lines); p < 0.05 {
+			a.Verdict = VerdictUnsure
+			a.Text = fmt.Sprintf("\u03bc = \u2212ln(1\u2212m) is above 0 in the thicker positions, by %s per 100 nm over %d crystals, but does not grow in proportion to thickness (p = %s): look at the points.", slope, used, short(p))
+		}
 	default:
 		a.Text = fmt.Sprintf("No growth is seen: \u03bc = \u2212ln(1\u2212m) changes by %s per 100 nm over %d crystals.", slope, used)
 	}
 	return a
+}
+
+// straight is the p-value of the points of all crystals against their lines through the
+// thinnest position; NaN with two positions a crystal.
+func straight(lines []ThicknessLine) float64 {
+	chi2, df := 0.0, 0
+	for _, l := range lines {
+		if l.Why == "" && l.DF > 0 {
+			chi2, df = chi2+l.Chi2, df+l.DF
+		}
+	}
+	if df == 0 {
+		return math.NaN()
+	}
+	return distuv.ChiSquared{K: float64(df)}.Survival(chi2)
 }
 
 func answerElse(r *Result) Answer {

@@ -204,3 +204,19 @@ func TestBracketAnswerBySign(t *testing.T) {
 		}
 	}
 }
+
+// A line through the thinnest position rises as soon as the thicker ones lie above it;
+// that it grows needs the points to lie on it. Chi-squared of 3.84 with one degree of
+// freedom has p = 0.05.
+func TestAnswerThicknessAsksForALine(t *testing.T) {
+	for _, c := range []struct {
+		chi2    float64
+		verdict string
+	}{{3.7, VerdictYes}, {4, VerdictUnsure}} {
+		line := ThicknessLine{Crystal: "L1", T: []float64{140, 220, 310}, Mu: []float64{0, 0.08, 0.08}, Slope: Interval{Value: 0.06, Lo: 0.04, Hi: 0.08}, Chi2: c.chi2, DF: 1}
+		a := answerThickness(&Result{Thickness: &ThicknessResult{Slope: line.Slope, Lines: []ThicknessLine{line, {Crystal: "L2", Why: "m is not estimable"}}}})
+		if a.Verdict != c.verdict || !strings.Contains(a.Text, "over 1 crystals") {
+			t.Errorf("chi2 %g: %q: %s", c.chi2, a.Verdict, a.Text)
+		}
+	}
+}
