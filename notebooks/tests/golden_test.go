@@ -29,8 +29,9 @@ func runOn(t *testing.T, name string, set map[string]string) (*runner.Result, er
 	return runner.Run(ctx, open(t, name), &runner.Options{KernelPath: kernelPath, WorkDir: root, Set: set, Timeout: 3 * time.Minute})
 }
 
-// TestGolden runs every notebook on the demo, headless and offline, and compares
-// the plain text of its outputs.
+// TestGolden runs every notebook headless and offline, the report on the
+// demonstration and the others on its coarse form, and compares the plain text of
+// their outputs.
 func TestGolden(t *testing.T) {
 	for _, name := range names(t) {
 		t.Run(strings.TrimSuffix(name, ".ipynb"), func(t *testing.T) {
@@ -38,6 +39,9 @@ func TestGolden(t *testing.T) {
 			set := map[string]string{}
 			if name != "01-intake.ipynb" {
 				set["replicates"] = fewDraws
+			}
+			if name != "report.ipynb" {
+				set["series"] = coarse
 			}
 			begin := time.Now()
 			res, err := runOn(t, name, set)

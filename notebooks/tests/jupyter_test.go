@@ -30,14 +30,14 @@ func jupyterHome(t *testing.T) (home string, env []string) {
 	return home, env
 }
 
-// placed writes a committed notebook into a folder, with the demo series and few
-// draws as its parameters.
+// placed writes a committed notebook into a folder, with the coarse series and
+// few draws as its parameters.
 func placed(t *testing.T, name, dir string) string {
 	t.Helper()
 	nb := open(t, name)
 	for _, c := range nb.Cells {
 		if c.HasTag("parameters") {
-			c.Source = strings.Replace(c.Source, `"fixtures/tarn/series.toml"`, strconv.Quote(filepath.Join(root, "fixtures", "tarn", "series.toml")), 1)
+			c.Source = strings.Replace(c.Source, `"fixtures/tarn/series.toml"`, strconv.Quote(coarse), 1)
 			c.Source = strings.Replace(c.Source, "replicates := 2000", "replicates := "+fewDraws, 1)
 		}
 	}

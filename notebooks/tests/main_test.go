@@ -8,13 +8,17 @@ import (
 	"sort"
 	"testing"
 
+	"thinward/analysis/simulate"
+	"thinward/io/manifest"
 	"thinward/notebooks"
 	"thinward/notebooks/kernel"
 	"thinward/notebooks/runner"
 )
 
-// kernelPath is the binary all tests run, root the folder of our go.mod.
-var kernelPath, root string
+// kernelPath is the binary all tests run, root the folder of our go.mod, coarse
+// the manifest of the demonstration to lower resolution, a third of its size, which
+// all notebooks but the report run on to save time.
+var kernelPath, root, coarse string
 
 func TestMain(m *testing.M) {
 	// Nothing here may need a network: what is not in the module cache is an error.
@@ -28,7 +32,20 @@ func TestMain(m *testing.M) {
 		fmt.Fprintln(os.Stderr, err)
 		os.Exit(1)
 	}
-	os.Exit(m.Run())
+	dir, err := os.MkdirTemp("", "thinward-coarse-*")
+	if err == nil {
+		plan := simulate.Tarn()
+		plan.Title, plan.DMin = "Tarn peptide to lower resolution", 1.6
+		coarse = filepath.Join(dir, "series.toml")
+		err = manifest.Invent(context.Background(), plan, dir)
+	}
+	if err != nil {
+		fmt.Fprintln(os.Stderr, err)
+		os.Exit(1)
+	}
+	status := m.Run()
+	os.RemoveAll(dir)
+	os.Exit(status)
 }
 
 // names lists the committed notebooks in order.
