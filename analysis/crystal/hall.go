@@ -15,6 +15,9 @@ import (
 // quote without an axis before it refers to z. Upper and lower case are alike.
 // The error names the part that cannot be read.
 func FromHall(symbol string) (*Group, error) {
+	if err := tooLong(symbol); err != nil {
+		return nil, err
+	}
 	g, err := expandHall(symbol)
 	if err != nil {
 		return nil, fmt.Errorf("Hall symbol %q: %w", symbol, err)

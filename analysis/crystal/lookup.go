@@ -25,6 +25,9 @@ import (
 // two groups ("P 3 2" is a Hall symbol of number 149 and a spelling of P 32) is
 // an error that names both; an unknown symbol is one that suggests near ones.
 func Lookup(symbol string) (*Group, error) {
+	if err := tooLong(symbol); err != nil {
+		return nil, err
+	}
 	text, suffix := splitChoice(plainSymbol(symbol))
 	if text == "" {
 		return nil, fmt.Errorf("space group %q: empty symbol", symbol)
@@ -291,4 +294,15 @@ func editDistance(a, b string) int {
 		}
 	}
 	return rows[len(a)][len(b)]
+}
+
+// longestSymbol is far beyond any symbol of a space group in bytes; looking for
+// names near a longer text would take long and help nobody.
+const longestSymbol = 200
+
+func tooLong(symbol string) error {
+	if len(symbol) <= longestSymbol {
+		return nil
+	}
+	return fmt.Errorf("space group %.40q...: %d bytes are no symbol, the longest allowed is %d", symbol, len(symbol), longestSymbol)
 }

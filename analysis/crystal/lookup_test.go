@@ -216,3 +216,13 @@ func TestOperatorsAreCopied(t *testing.T) {
 		t.Error("changing the list that Operators returns changes the group")
 	}
 }
+
+// A text of ten thousand letters is no symbol, and is refused at once.
+func TestLongTextIsRefused(t *testing.T) {
+	long := "P" + strings.Repeat("x", 10000)
+	for name, f := range map[string]func(string) (*Group, error){"Lookup": Lookup, "FromHall": FromHall} {
+		if _, err := f(long); err == nil || !strings.Contains(err.Error(), "10001 bytes are no symbol") || len(err.Error()) > 200 {
+			t.Errorf("%s: %.200v", name, err)
+		}
+	}
+}
