@@ -112,9 +112,9 @@ func (c *ControlResult) judge(passed bool) {
 func intervalOf(e evidence.Estimate) Interval { return interval(e.Value, e.Lo, e.Hi, "") }
 
 // falseAlarm is the two-sided chance at which a single null control that reads
-// an effect is called failed: with a dozen controls a report, one in twenty would
-// fail on sound data more often than not.
-const falseAlarm = 0.01
+// an effect is called failed. Three crystals have six halves, each with m and the p
+// of the curve: at one in a hundred one report in nine would hold a failure by chance.
+const falseAlarm = 0.002
 
 // nullPassed says whether an estimate that should be 0 is within the range that
 // its error allows at the level of falseAlarm.

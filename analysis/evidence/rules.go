@@ -58,7 +58,14 @@ func Negatives(near [3]int, observed []int, expected []float64) Finding {
 // beyond reports whether a value is beyond three standard errors of 0, by its 95 %
 // interval: a ledger asks the same of several crystals, and one in twenty would be
 // cautioned for nothing.
-func beyond(v, lo, hi float64) bool { return math.Abs(v) > 3.0/1.96*(hi-lo)/2 }
+func beyond(v, lo, hi float64) bool { return past(3, v, lo, hi) }
+
+func past(errors, v, lo, hi float64) bool { return math.Abs(v) > errors/1.96*(hi-lo)/2 }
+
+// clearCurb is the number of its standard errors beyond which a q is believed. It
+// rests on a few strong reflections: in sound series of small deviations q over its
+// standard error scatters by 1.6 and not by 1 (30 contrasts, three of them beyond 3).
+const clearCurb = 5
 
 // OffsetOf judges an additive constant o, in units of the mean intensity of the
 // lowest third in s^2, with its 95 % interval. Caution beyond three standard errors;
@@ -113,7 +120,7 @@ type CurbForm struct {
 const CountRate = "count rate"
 
 // HighCounts asks whether a loss of the strongest could be the detector's. Fine
-// when no form finds a q beyond three standard errors, or the data refuse the count rate; caution when a q is
+// when no form finds a q beyond five standard errors (see clearCurb), or the data refuse the count rate; caution when a q is
 // found and the count rate fits best or cannot be refused.
 func HighCounts(forms []CurbForm) Finding {
 	if len(forms) == 0 {
@@ -127,7 +134,7 @@ func HighCounts(forms []CurbForm) Finding {
 		if f.Name == CountRate {
 			rate = k
 		}
-		seen = seen || f.Q > 0 && beyond(f.Q, f.Lo, f.Hi)
+		seen = seen || f.Q > 0 && past(clearCurb, f.Q, f.Lo, f.Hi)
 	}
 	out := Finding{Value: forms[best].Q, Unit: "q of the form that fits best, " + forms[best].Name, Verdict: Fine}
 	switch {

@@ -11,9 +11,9 @@ import (
 func TestRules(t *testing.T) {
 	nan, inf := math.NaN(), math.Inf(1)
 	weak := CurbForm{Name: "intensity", Q: 0.01, Lo: -0.01, Hi: 0.03, J: 5}
-	seen := CurbForm{Name: "intensity", Q: 0.05, Lo: 0.03, Hi: 0.07, J: 5}
+	seen := CurbForm{Name: "intensity", Q: 0.05, Lo: 0.035, Hi: 0.065, J: 5}
 	rate := func(j float64, refused bool) CurbForm {
-		return CurbForm{Name: CountRate, Q: 0.05, Lo: 0.03, Hi: 0.07, J: j, Refused: refused}
+		return CurbForm{Name: CountRate, Q: 0.05, Lo: 0.035, Hi: 0.065, J: j, Refused: refused}
 	}
 	for _, c := range []struct {
 		name string
@@ -39,6 +39,7 @@ func TestRules(t *testing.T) {
 		{"deviations, shared axis", Deviations(0.9, 0.88, 0.92, 0.3, 0.1, -0.1, false), Caution, "shares that"},
 		{"no correlation", Deviations(nan, nan, nan, 0, 0, 0, true), NotKnown, ""},
 		{"no loss", HighCounts([]CurbForm{weak}), Fine, "no loss"},
+		{"loss beyond three errors, not five", HighCounts([]CurbForm{{Name: "intensity", Q: 0.02, Lo: 0.0102, Hi: 0.0298}}), Fine, "no loss"},
 		{"loss, rate unknown", HighCounts([]CurbForm{seen}), Caution, "not known"},
 		{"loss, rate refused", HighCounts([]CurbForm{seen, rate(20, true)}), Fine, "refuse"},
 		{"loss with the rate", HighCounts([]CurbForm{seen, rate(2, false)}), Caution, "dead time"},
