@@ -29,7 +29,7 @@ func TestAnswerExchangeSaysWhatWeakensIt(t *testing.T) {
 		{"firm axis", answered(clear, open, 80, 0.4), nil, VerdictYes, []string{"Yes, in 1 of 1 crystal."}, []string{"weak", "shape", "detector"}},
 		{"weak axis, the wider interval holds 0", answered(clear, open, 20, 0.4), nil, VerdictNo, []string{"weak"}, nil},
 		{"weak axis, both clear", answered(clear, clear, 20, 0.4), nil, VerdictYes, []string{"weak", "Anderson-Rubin"}, nil},
-		{"curve of another shape", answered(clear, clear, 80, 1e-8), nil, VerdictYes, []string{"does not describe the curve in 1 of 1 crystal"}, []string{"detector"}},
+		{"curve of another shape", answered(clear, clear, 80, 1e-8), nil, VerdictUnsure, []string{"does not describe the curve in 1 of 1 crystal"}, []string{"detector"}},
 		{"loss of the strongest", answered(clear, clear, 80, 0.4), []LedgerEntry{loss}, VerdictYes, []string{"detector"}, []string{"shape"}},
 	} {
 		got := answerExchange(&Result{Ledger: c.ledger}, []*ContrastResult{c.x})

@@ -50,7 +50,21 @@ func answerExchange(r *Result, list []*ContrastResult) Answer {
 	if seen.estimable > 0 {
 		a.Text += qualified(r, list)
 	}
+	if a.Verdict == VerdictYes && 2*misfits(list) > len(list) {
+		a.Verdict = VerdictUnsure
+	}
 	return a
+}
+
+// misfits counts the contrasts whose curve the leading model does not describe.
+func misfits(list []*ContrastResult) int {
+	n := 0
+	for _, c := range list {
+		if c.OverIdent.P < 0.001 {
+			n++
+		}
+	}
+	return n
 }
 
 // readings count the crystals whose m is clear of 0: each by its own interval, and
@@ -123,14 +137,8 @@ func widened(c *ContrastResult) (lo, hi float64, note string) {
 // qualified says what keeps m from being taken at its word: a curve of another shape
 // than the model's, or a loss in the detector.
 func qualified(r *Result, list []*ContrastResult) string {
-	misfit := 0
-	for _, c := range list {
-		if c.OverIdent.P < 0.001 {
-			misfit++
-		}
-	}
 	text := ""
-	if misfit > 0 {
+	if misfit := misfits(list); misfit > 0 {
 		text += fmt.Sprintf(" The model does not describe the curve in %s, so that this m is a number for another shape: look at the curve.", crystalsOf(misfit, list))
 	}
 	for _, e := range r.Ledger {
