@@ -6,6 +6,7 @@ import (
 	"testing"
 
 	"thinward/analysis/difference"
+	"thinward/analysis/internal/floatcmp"
 	"thinward/analysis/size"
 )
 
@@ -39,4 +40,26 @@ func TestBracketOfOneCrystal(t *testing.T) {
 			t.Errorf("%+v: the instrument gives %.4f to %.4f, which shows nothing", c, alone.Lo, alone.Hi)
 		}
 	}
+}
+
+// Reported sigmas of one position that are all wrong by one factor change nothing: the
+// noise model takes the factor up.
+func TestSizesIgnoreAFactorOnSigmas(t *testing.T) {
+	read := func(factor float64) (m, se, a float64) {
+		s := studyOf(t, cell{m: 0.05, deviation: 0.3, sigma: factor}.plan(1), quick())
+		if _, err := s.Scale(context.Background()); err != nil {
+			t.Fatal(err)
+		}
+		x, err := s.paired(context.Background(), s.primaryContrasts()[0])
+		if err != nil {
+			t.Fatal(err)
+		}
+		if err := s.sizes(context.Background(), x); err != nil {
+			t.Fatal(err)
+		}
+		return x.Result.Exchange.M, x.Result.Exchange.SE, s.scaled[0].Noise.Position[0].A
+	}
+	m, se, a := read(1)
+	mHalf, seHalf, aHalf := read(0.5)
+	floatcmp.CheckSlice(t, "m, its error and a", []float64{mHalf, seHalf, aHalf / 2}, []float64{m, se, a}, 1e-4, 1e-6)
 }
