@@ -3,7 +3,9 @@ package tests
 import (
 	"bytes"
 	"context"
+	"encoding/json"
 	"fmt"
+	"io"
 	"net"
 	"net/http"
 	"os"
@@ -11,6 +13,7 @@ import (
 	"path/filepath"
 	"strings"
 	"sync"
+	"syscall"
 	"testing"
 	"time"
 
@@ -85,6 +88,42 @@ func TestJupyterBrowserNotebook(t *testing.T) {
 	p.shot("end")
 	for _, f := range faults() {
 		t.Errorf("the page threw: %s", f)
+	}
+}
+
+// endKernels asks the server to end its kernels, which it may leave running when it
+// is told to stop.
+func endKernels(t *testing.T, base string) {
+	t.Helper()
+	ctx, cancel := context.WithTimeout(context.Background(), 5*time.Second)
+	defer cancel()
+	ask := func(method, path string) ([]byte, error) {
+		r, err := http.NewRequestWithContext(ctx, method, base+path, nil)
+		if err != nil {
+			return nil, err
+		}
+		r.Header.Set("Authorization", "token "+pass)
+		answer, err := http.DefaultClient.Do(r)
+		if err != nil {
+			return nil, err
+		}
+		defer answer.Body.Close()
+		return io.ReadAll(answer.Body)
+	}
+	data, err := ask(http.MethodGet, "/api/kernels")
+	if err != nil {
+		t.Logf("kernels of the server: %v", err)
+		return
+	}
+	var kernels []struct{ ID string }
+	if err := json.Unmarshal(data, &kernels); err != nil {
+		t.Logf("kernels of the server: %v: %s", err, data)
+		return
+	}
+	for _, k := range kernels {
+		if _, err := ask(http.MethodDelete, "/api/kernels/"+k.ID); err != nil {
+			t.Logf("kernel %s: %v", k.ID, err)
+		}
 	}
 }
 
@@ -219,6 +258,8 @@ func serve(t *testing.T, program, folder string, env []string) string {
 	cmd.Dir, cmd.Env = folder, env
 	var log bytes.Buffer
 	cmd.Stdout, cmd.Stderr = &log, &log
+	// A kernel that outlives the server holds its output open; do not wait for it.
+	cmd.WaitDelay = 2 * time.Second
 	if err := cmd.Start(); err != nil {
 		t.Fatal(err)
 	}
@@ -227,9 +268,10 @@ func serve(t *testing.T, program, folder string, env []string) string {
 		_ = cmd.Wait()
 		close(over)
 	}()
+	base := fmt.Sprintf("http://127.0.0.1:%d", port)
 	t.Cleanup(func() {
-		_ = cmd.Process.Signal(os.Interrupt)
-		_ = cmd.Process.Signal(os.Interrupt) // the second one needs no answer
+		endKernels(t, base)
+		_ = cmd.Process.Signal(syscall.SIGTERM)
 		select {
 		case <-over:
 		case <-time.After(5 * time.Second):
@@ -240,7 +282,6 @@ func serve(t *testing.T, program, folder string, env []string) string {
 			t.Logf("Jupyter's log:\n%s", strings.TrimSpace(log.String()))
 		}
 	})
-	base := fmt.Sprintf("http://127.0.0.1:%d", port)
 	for range 200 {
 		if r, err := http.Get(base + "/api"); err == nil {
 			r.Body.Close()
