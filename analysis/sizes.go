@@ -148,6 +148,11 @@ func (s *Study) lead(x *Compared) {
 	}
 	r.OverIdent = OverIdent{J: f.J, DF: f.JDF, P: f.JP}
 	r.MinimumM = size.MinimumVisible(f.M.SE, s.settings.Level, 0.8)
+	if f.F < firmF {
+		// The error of a weak axis is too short, and so is what it says would show.
+		lo, hi, _ := widened(r)
+		r.MinimumM = math.Max(r.MinimumM, size.MinimumVisible((hi-lo)/2/zOf(s.settings.Level), s.settings.Level, 0.8))
+	}
 }
 
 func (s *Study) noSizes(x *Compared, why string) {

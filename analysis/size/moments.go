@@ -103,7 +103,7 @@ func Leads(in *Input, w []float64) (model Model, span float64, err error) {
 // not describe the curve.
 //
 // A first-order model: its curb is that of small q. Intervals of q rest on few
-// strong reflections and cover .90 to .94 in place of .95 at 2000. Errors as in ExchangeWith,
+// strong reflections and cover .86 to .94 in place of .95 at 2000. Errors as in ExchangeWith,
 // and a curb without VarThin or halves, CurbRate without Exposure.
 func Moments(in *Input, w []float64, model Model, set *Settings) (*Fit, error) {
 	if err := set.check(); err != nil {
