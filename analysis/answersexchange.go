@@ -158,6 +158,10 @@ func bracketAnswer(a Answer, list []*ContrastResult) Answer {
 		b := c.Bracket
 		parts = append(parts, fmt.Sprintf("%s: m between %s (half of the thick position, errs downward) and %s (half of the thin, errs upward); moment ratio %s",
 			label(c), span(b.Thick.Value, b.Thick.Lo, b.Thick.Hi), span(b.Thin.Value, b.Thin.Lo, b.Thin.Hi), span(c.MomentRatio.M, c.MomentRatio.Lo, c.MomentRatio.Hi)))
+		if !math.IsNaN(b.ThickSlope.Value) && !math.IsNaN(b.ThinSlope.Value) {
+			parts = append(parts, fmt.Sprintf("%s: by one slope, which reads curb and offset as exchange, between %s and %s", label(c),
+				span(b.ThickSlope.Value, b.ThickSlope.Lo, b.ThickSlope.Hi), span(b.ThinSlope.Value, b.ThinSlope.Lo, b.ThinSlope.Hi)))
+		}
 		if math.IsNaN(b.Lo) || math.IsNaN(b.Hi) || math.IsNaN(b.Thick.Value) || math.IsNaN(b.Thin.Value) {
 			continue
 		}

@@ -276,6 +276,10 @@ type Bracket struct {
 	Thin  Interval `json:"half_of_thin"`
 	Thick Interval `json:"half_of_thick"`
 	Why   string   `json:"why,omitempty"`
+	// ThinSlope and ThickSlope are the same by the instrument, one slope that reads
+	// curb and offset as exchange.
+	ThinSlope  Interval `json:"half_of_thin_one_slope"`
+	ThickSlope Interval `json:"half_of_thick_one_slope"`
 }
 
 // Naive is what a naive axis shows and what noise alone would show on it: the

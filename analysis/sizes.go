@@ -171,11 +171,11 @@ func (s *Study) noSizes(x *Compared, why string) {
 // weak axis it holds the Anderson-Rubin interval of the instrument too.
 func (s *Study) bracket(x *Compared) {
 	r, set := &x.Result, s.sizeSettings()
-	r.Bracket = Bracket{Lo: math.Inf(-1), Hi: math.Inf(1), Thin: none(), Thick: none()}
+	r.Bracket = Bracket{Lo: math.Inf(-1), Hi: math.Inf(1), Thin: none(), Thick: none(), ThinSlope: none(), ThickSlope: none()}
 	ends := []struct {
-		axis difference.Axis
-		into *Interval
-	}{{difference.AxisHalfThin, &r.Bracket.Thin}, {difference.AxisHalfThick, &r.Bracket.Thick}}
+		axis        difference.Axis
+		into, slope *Interval
+	}{{difference.AxisHalfThin, &r.Bracket.Thin, &r.Bracket.ThinSlope}, {difference.AxisHalfThick, &r.Bracket.Thick, &r.Bracket.ThickSlope}}
 	for _, e := range ends {
 		legs := s.bracketLegs(x, e.axis)
 		if legs == nil {
@@ -190,7 +190,12 @@ func (s *Study) bracket(x *Compared) {
 			continue
 		}
 		*e.into = interval(fit.M.Value, fit.M.Lo, fit.M.Hi, fit.Why)
-		if m, err := size.ExchangeCross(legs, nil, set); err == nil && fit.F < firmF {
+		m, err := size.ExchangeCross(legs, nil, set)
+		if err != nil {
+			continue
+		}
+		*e.slope = interval(m.M, m.Lo, m.Hi, m.Why)
+		if fit.F < firmF {
 			e.into.Lo, e.into.Hi = math.Min(e.into.Lo, m.Lo), math.Max(e.into.Hi, m.Hi)
 		}
 	}

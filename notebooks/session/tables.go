@@ -151,10 +151,10 @@ func (s *Session) Classes() *View {
 // Brackets shows m from halves of either position.
 func (s *Session) Brackets() *View {
 	r := s.upTo(stepDifferences)
-	g := newGrid("Bracket of m from halves of the same positions", "contrast", "half of the thick position (errs downward)", "half of the thin position (errs upward)", "whole bracket", "moment ratio", "remark").words(5)
+	g := newGrid("Bracket of m from halves of the same positions", "contrast", "half of the thick position (errs downward)", "half of the thin position (errs upward)", "whole bracket", "by one slope: half of the thick", "half of the thin", "moment ratio", "remark").words(7)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
-		g.add(contrastName(c), withInterval(c.Bracket.Thick, 3), withInterval(c.Bracket.Thin, 3), between(c.Bracket.Lo, c.Bracket.Hi, 3), number(c.MomentRatio.M, 3), c.Bracket.Why)
+		g.add(contrastName(c), withInterval(c.Bracket.Thick, 3), withInterval(c.Bracket.Thin, 3), between(c.Bracket.Lo, c.Bracket.Hi, 3), withInterval(c.Bracket.ThickSlope, 3), withInterval(c.Bracket.ThinSlope, 3), number(c.MomentRatio.M, 3), c.Bracket.Why)
 	}
 	return g.view("Bracket")
 }
