@@ -68,24 +68,62 @@ func (s *Study) Quality(ctx context.Context) ([]Quality, []Distribution, error) 
 	var rows []Quality
 	var laws []Distribution
 	for i, sc := range scaled {
+		c := s.Series.Crystals[i].Name
 		for j, p := range sc.Positions {
-			c, name := s.Series.Crystals[i].Name, s.Series.Crystals[i].Positions[j].Name
-			shells, all, err := intensity.Precise(ctx, p, s.intake.Catalogue, &intensity.PrecisionSettings{Shells: qualityShells, Key: s.seed(c, "halves").Stream(0).Uint64()})
+			own, err := s.precision(ctx, p, c, s.Series.Crystals[i].Positions[j].Name)
 			if err != nil {
 				return nil, nil, fmt.Errorf("%s: %w", s.place(i, j), err)
 			}
-			for k, x := range append([]intensity.Precision{*all}, shells...) {
-				rows = append(rows, Quality{
-					Crystal: c, Position: name, Shell: k, DLong: x.DLong, DShort: x.DShort, Observations: x.Observations, Unique: x.Unique, Possible: x.Possible,
-					Completeness: x.Completeness, Multiplicity: x.Multiplicity, IOverSigma: x.IOverSigma, RMerge: x.R.Merge, RMeas: x.R.Meas, RPim: x.R.Pim,
-					CCHalf: x.CCHalf, CCHalfTau: x.CCHalfTau, CCStar: x.CCStar,
-				})
+			rows = append(rows, own...)
+			laws = append(laws, s.distributionsOf(p, c, s.Series.Crystals[i].Positions[j].Name)...)
+		}
+		if len(sc.Positions) > 1 {
+			across, err := s.precision(ctx, together(sc.Positions), c, AllPositions)
+			if err != nil {
+				return nil, nil, fmt.Errorf("crystal %s, all positions: %w", c, err)
 			}
-			laws = append(laws, s.distributionsOf(p, c, name)...)
+			rows = append(rows, across...)
 		}
 	}
 	s.quality, s.distributions = rows, laws
 	return rows, laws, nil
+}
+
+// AllPositions stands in place of a position for the agreement across all
+// positions of a crystal: what thickness does lowers it.
+const AllPositions = "all positions"
+
+// together joins scaled positions into one; angles are kept when all have them.
+func together(list []*intensity.Scaled) *intensity.Scaled {
+	out := &intensity.Scaled{}
+	angles := true
+	for _, p := range list {
+		out.Unique, out.Raw = append(out.Unique, p.Unique...), append(out.Raw, p.Raw...)
+		out.I, out.Var = append(out.I, p.I...), append(out.Var, p.Var...)
+		out.Phi = append(out.Phi, p.Phi...)
+		angles = angles && p.Phi != nil
+	}
+	if !angles {
+		out.Phi = nil
+	}
+	return out
+}
+
+// precision gives the row of all shells and one a shell.
+func (s *Study) precision(ctx context.Context, p *intensity.Scaled, crystal, position string) ([]Quality, error) {
+	shells, all, err := intensity.Precise(ctx, p, s.intake.Catalogue, &intensity.PrecisionSettings{Shells: qualityShells, Key: s.seed(crystal, "halves").Stream(0).Uint64()})
+	if err != nil {
+		return nil, err
+	}
+	var rows []Quality
+	for k, x := range append([]intensity.Precision{*all}, shells...) {
+		rows = append(rows, Quality{
+			Crystal: crystal, Position: position, Shell: k, DLong: x.DLong, DShort: x.DShort, Observations: x.Observations, Unique: x.Unique, Possible: x.Possible,
+			Completeness: x.Completeness, Multiplicity: x.Multiplicity, IOverSigma: x.IOverSigma, RMerge: x.R.Merge, RMeas: x.R.Meas, RPim: x.R.Pim,
+			CCHalf: x.CCHalf, CCHalfTau: x.CCHalfTau, CCStar: x.CCStar,
+		})
+	}
+	return rows, nil
 }
 
 func (s *Study) distributionsOf(p *intensity.Scaled, crystal, position string) []Distribution {

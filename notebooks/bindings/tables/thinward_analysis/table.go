@@ -16,6 +16,7 @@ func init() {
 	imports.Packages["thinward/analysis"] = imports.Package{
 		Name: "analysis",
 		Binds: map[string]reflect.Value{
+			"AllPositions":   reflect.ValueOf(analysis.AllPositions),
 			"New":            reflect.ValueOf(analysis.New),
 			"Schema":         reflect.ValueOf(analysis.Schema),
 			"VerdictCaution": reflect.ValueOf(analysis.VerdictCaution),
@@ -101,6 +102,7 @@ func init() {
 			"WarningResult":   reflect.TypeOf((*analysis.WarningResult)(nil)).Elem(),
 		},
 		Untypeds: map[string]string{
+			"AllPositions":   "string:all positions",
 			"Schema":         "string:thinward.result/1",
 			"VerdictCaution": "string:caution",
 			"VerdictFails":   "string:fails",
