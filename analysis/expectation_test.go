@@ -45,7 +45,7 @@ func expect(t *testing.T, s Series) *Expectation {
 
 func TestExpectation(t *testing.T) {
 	e := expect(t, expectationSeries(200))
-	// checks.md 11.1
+	// CODATA 2018 constants worked with mpmath.
 	floatcmp.Check(t, "wavelength", e.WavelengthA, 0.02507934045, 0, 1e-8)
 	floatcmp.Check(t, "interaction", e.InteractionVnm, 0.00728840104, 0, 1e-8)
 	floatcmp.Check(t, "uncertainty", e.Uncertainty, 0.3, 0, 0)

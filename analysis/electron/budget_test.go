@@ -9,7 +9,7 @@ import (
 )
 
 func TestPoisson(t *testing.T) {
-	// checks.md 11.3
+	// Worked in R and mpmath.
 	for _, c := range []struct {
 		mean float64
 		want []float64
@@ -72,7 +72,7 @@ func TestShares(t *testing.T) {
 }
 
 func TestCrossSections(t *testing.T) {
-	// The formula worked elsewhere (checks.md 11.5); it is from memory, so this checks arithmetic.
+	// The formula worked elsewhere; it is from memory, so this checks arithmetic.
 	keV := []float64{100, 120, 200, 300}
 	for _, c := range []struct {
 		element            string
@@ -118,7 +118,7 @@ func TestFreePathsOfKnownSolids(t *testing.T) {
 	}{
 		// Vitreous ice: Rice et al. 2018, J. Struct. Biol. 204, 38 (300 kV); 203 +- 33 nm at
 		// 120 kV. Protein crystals, calculated: Martynowycz et al. 2021, PNAS 118,
-		// e2108884118. All numbers from memory (checks.md 11.5); 0.3 is the uncertainty we state.
+		// e2108884118. All numbers from memory; 0.3 is the uncertainty we state.
 		{"ice", 300, ice, 395, estimateSU}, {"ice", 120, ice, 203, estimateSU},
 		{"protein crystal", 120, Macromolecular(), 214, estimateSU}, {"protein crystal", 200, Macromolecular(), 272, estimateSU}, {"protein crystal", 300, Macromolecular(), 317, estimateSU},
 	} {

@@ -8,7 +8,7 @@ import (
 )
 
 func TestRelativisticElectron(t *testing.T) {
-	// CODATA 2018 constants worked with mpmath (checks.md 11.1). Without relativity the
+	// CODATA 2018 constants worked with mpmath. Without relativity the
 	// wavelength at 200 and 300 kV would be 0.02742 and 0.02239.
 	for _, c := range []struct{ keV, lambda, beta, gamma, sigma, rel float64 }{
 		{60, 0.04866060503, 0.446224616, 1.117417071, 0.0113569053, 1e-8},
@@ -37,7 +37,7 @@ func TestRelativisticElectron(t *testing.T) {
 }
 
 func TestBraggAngle(t *testing.T) {
-	// checks.md 11.1: d = 1 angstrom, in mrad.
+	// d = 1 angstrom, in mrad, by the same constants.
 	floatcmp.Check(t, "200 kV", 1e3*math.Asin(Wavelength(200)/2), 12.5399989, 0, 1e-8)
 	floatcmp.Check(t, "300 kV", 1e3*math.Asin(Wavelength(300)/2), 9.8439035, 0, 1e-8)
 }

@@ -11,7 +11,7 @@ import (
 )
 
 func TestReciprocalBasisGivesD(t *testing.T) {
-	// Low albite (checks.md 12.1): d of 20-1, 130, 2-13.
+	// Low albite: d of 20-1, 130, 2-13.
 	cell := crystal.Cell{A: 8.144, B: 12.787, C: 7.160, Alpha: 94.26, Beta: 116.6, Gamma: 87.67}
 	m := reciprocalBasis(cell)
 	for _, c := range []struct {

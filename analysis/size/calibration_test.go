@@ -9,10 +9,10 @@ import (
 	"thinward/analysis/internal/floatcmp"
 )
 
-// Figures to meet are those of science.md; every band is widened by three
+// Figures to meet are those of earlier simulations of the same questions, written in another language; every band is widened by three
 // standard errors of the simulation, so few repeats stay honest.
 
-// The interval of m covers .93 to .97 (science.md 1.12 [inf] and T10).
+// The interval of m covers .93 to .97.
 func TestCoverage(t *testing.T) {
 	for _, c := range []struct {
 		name string
@@ -43,7 +43,7 @@ func TestCoverage(t *testing.T) {
 	}
 }
 
-// Curb and exchange are told apart (science.md 1.5 [gmm], T4): for N = 2000
+// Curb and exchange are told apart: for N = 2000
 // (0, .02) comes back as -.001 +- .017 and .021 +- .008, while the exchange
 // alone reads m near .03. The many-repeat form checks J's level of 4 to 7.5 %.
 func TestCurb(t *testing.T) {
@@ -74,7 +74,7 @@ func TestCurb(t *testing.T) {
 }
 
 // An offset of .01 with sixteenfold falloff reads as m = .052 with one slope;
-// with o in the model m is consistent with the truth (science.md 1.5 [off], T3).
+// with o in the model m is consistent with the truth.
 func TestOffset(t *testing.T) {
 	for _, c := range []struct{ m, o float64 }{{0, .01}, {.05, .01}, {0, 0}} {
 		var m, o, alone, cover, coverO tally
@@ -109,7 +109,7 @@ func TestOffset(t *testing.T) {
 }
 
 // A weak axis (noise three times the shell mean, 500 reflections: F = 4,
-// science.md 1.12) gives no estimate and an Anderson-Rubin set that covers.
+// the same simulations) gives no estimate and an Anderson-Rubin set that covers.
 func TestWeakAxis(t *testing.T) {
 	g := stream(44)
 	var f, cover, open tally
@@ -155,7 +155,7 @@ func geometry(r *rand.Rand, rho float64) (x [3]float64) {
 
 // Deviations of 10, 20, 30 % that neighbours in thickness share (.7): the axis
 // from other crystals stays within .015 of the truth, the third position of the
-// same crystal reads -.043 for 0 and .007 for .05 (science.md 1.1 [dyn], T2).
+// same crystal reads -.043 for 0 and .007 for .05.
 func TestDeviations(t *testing.T) {
 	size := [3]float64{.1, .2, .3}
 	for _, c := range []struct{ m, mid float64 }{{0, -.043}, {.05, .007}} {
@@ -198,7 +198,7 @@ func TestDeviations(t *testing.T) {
 }
 
 // Floor contrasts for m = .05 shrink with the noise of the axis, m_class does
-// not (science.md 1.13 [l]).
+// not.
 func TestClassesOnNoisyAxis(t *testing.T) {
 	for _, c := range []struct{ noise, contrast, strength float64 }{
 		{.1, -.044, .12}, {.3, -.040, .20}, {.6, -.034, .33}, {1, -.028, .45},
@@ -244,7 +244,7 @@ func TestClassesWithFew(t *testing.T) {
 }
 
 // The forms of the curb are told apart where the shell level, or the exposure,
-// varies enough, and not within one shell (science.md 1.6).
+// varies enough, and not within one shell.
 func TestCompareCurbs(t *testing.T) {
 	base := plan{n: 8000, shells: 12, falloff: 9, q: .06, noise: [3]float64{.02, .02, .02}, error: .05}
 	for _, byStrength := range []bool{false, true} {
@@ -299,7 +299,7 @@ func TestCompareCurbs(t *testing.T) {
 }
 
 // Weights 1/(v + 2 (b z)^2) narrow the spread from .0315 to .0208 at 25 % errors
-// (science.md 1.12) and bias nothing.
+// and bias nothing.
 func TestPrecisionWeights(t *testing.T) {
 	var plain, weighted tally
 	g := stream(54)

@@ -28,7 +28,7 @@ func halves(r *rand.Rand, n, shells int, m, dev, noise float64) *Halves {
 }
 
 // Without deviations r = 1 and the moment ratio is m; with them, E x^2 = 1 + d,
-// V = (1+d) <y^2> - 1 and C = <y1 y2> - 1, y the strengths (science.md 1.4).
+// V = (1+d) <y^2> - 1 and C = <y1 y2> - 1, y the strengths.
 func TestTrueCorrelation(t *testing.T) {
 	for _, c := range []struct{ m, dev float64 }{{.1, 0}, {0, .3}, {.1, .3}} {
 		var r, ratio, inR, inRatio tally
@@ -119,7 +119,7 @@ func TestBracket(t *testing.T) {
 			t.Fatalf("bracket %g to %g around %g and %g", b.Lo, b.Hi, b.FromThick.M, b.FromThin.M)
 		}
 	}
-	// Limit by the formula of science.md 1.1: b = V/(V + C), V = 1 and C = 2
+	// Limit by the formula b = V/(V + C), V = 1 and C = 2
 	// (exp(.2^2) - 1) what the halves of one position share beyond the law.
 	want := 1 - 1/(1+2*math.Expm1(.04))
 	inBand(t, "axis from thin", up.mean(), want-.012, want+.004)

@@ -11,7 +11,7 @@ import (
 	"thinward/analysis/internal/floatcmp"
 )
 
-// Quantiles used by the intervals; values: checks.md 15 (R, tolerance 1e-10).
+// Quantiles used by the intervals; values by R 4.2.2, tolerance 1e-10.
 func TestQuantiles(t *testing.T) {
 	for _, c := range []struct {
 		what      string
@@ -23,7 +23,7 @@ func TestQuantiles(t *testing.T) {
 		{"t .975, 10", tQuantile(.95, 10), 2.22813885199, 1e-9},
 		{"chi-square .95, 10", distuv.ChiSquared{K: 10}.Quantile(.95), 18.3070380533, 1e-9},
 		{"chi-square above 3.84, 1", distuv.ChiSquared{K: 1}.Survival(3.84), 1 - .949956478751, 1e-10},
-		{"smallest visible at 95 and 80 %", MinimumVisible(1, 0, 0), 1.96 + 0.84, 2e-3}, // science.md, rounded
+		{"smallest visible at 95 and 80 %", MinimumVisible(1, 0, 0), 1.96 + 0.84, 2e-3}, // standard normal points, rounded
 		{"smallest visible, half power", MinimumVisible(2, .95, .5), 2 * 1.95996398454, 1e-9},
 	} {
 		floatcmp.Check(t, c.what, c.got, c.want, c.tol, 0)

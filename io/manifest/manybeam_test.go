@@ -122,7 +122,7 @@ func on(t *testing.T, r *analysis.ContrastResult, axis difference.Axis) analysis
 
 // TestManyBeamAxes: on intensities of many beams the axis of other crystals gives the m
 // of the true axis, to 0.02 in every contrast of every crystal, and the third position of the same
-// crystal gives less: its deviations are those of its neighbours (science.md 1.1). Equivalents
+// crystal gives less: its deviations are those of its neighbours. Equivalents
 // that are averaged weaken that, and the bootstrap gives the distance in one crystal a
 // standard error of 0.005 to 0.03, so the third position must miss by more than 0.02 in the
 // mean over the crystals, and beyond its own interval in one of them.
