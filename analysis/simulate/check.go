@@ -25,6 +25,7 @@ func (p *Plan) check() error {
 	faults.want(p.EnergyKeV > 0 && p.EnergyKeV <= 10000, "energy_keV %g is not between 0 and 10000", p.EnergyKeV)
 	faults.want(p.DMin > 0 && !math.IsInf(p.DMin, 0), "d_min %g is not positive", p.DMin)
 	faults.want(p.Shells >= 0, "shells %d is negative", p.Shells)
+	faults.want(!p.Population || p.Structure.Wilson, "population needs structure.wilson: of placed atoms no law gives the mean")
 	faults.add(p.checkCell())
 	faults.add(p.Structure.check())
 	faults.want(len(p.Crystals) > 0, "the plan has no crystal; write at least one [[crystal]]")

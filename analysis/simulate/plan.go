@@ -22,6 +22,10 @@ type Plan struct {
 	// the exchange is taken; 0 is one shell for every 50 allowed unique
 	// reflections, at least 1 and at most 40.
 	Shells int `toml:"shells,omitempty"`
+	// Population makes that local mean the one which Wilson's law expects of the
+	// shell in place of that of just these reflections, so that a shell mean is one of a
+	// sample; it needs Structure.Wilson.
+	Population bool `toml:"population,omitempty"`
 	// Common holds what all positions share: wherever a position's own field is
 	// zero, the value here is taken, and where both are zero the default.
 	Common   Position  `toml:"common,omitempty"`

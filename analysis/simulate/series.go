@@ -25,8 +25,10 @@ type Truth struct {
 	Centric []bool
 	Absent  []bool
 	Shell   []int32   // shell of the local mean
-	Local   []float64 // mean J of the allowed reflections of that shell
+	Local   []float64 // mean J of the allowed reflections of that shell; with Plan.Population the mean expected
 	Atoms   []Atom    // of the asymmetric unit; empty for Wilson intensities
+
+	expected []float64 // J by Wilson's law, with Plan.Population
 }
 
 // Specimen is one crystal of the series.

@@ -34,9 +34,14 @@ func (t *Truth) intensities(ctx context.Context, p *Plan, group *crystal.Group, 
 			t.J[i] = 0
 		}
 	}
-	t.normalise()
+	unit := t.normalise()
 	t.shells(p.Shells)
-	t.Local = t.shellMean(t.J)
+	if !p.Population {
+		t.Local = t.shellMean(t.J)
+		return nil
+	}
+	t.expect(p.Structure.B, unit)
+	t.Local = t.shellMean(t.expected)
 	return nil
 }
 
@@ -56,8 +61,9 @@ func (t *Truth) wilson(rnd *resample.Stream) []float64 {
 	return j
 }
 
-// normalise makes the mean over the allowed third of lowest s^2 equal 1.
-func (t *Truth) normalise() {
+// normalise makes the mean over the allowed third of lowest s^2 equal 1 and returns
+// what it was.
+func (t *Truth) normalise() float64 {
 	allowed := 0
 	for _, a := range t.Absent {
 		if !a {
@@ -72,11 +78,12 @@ func (t *Truth) normalise() {
 		}
 	}
 	if sum <= 0 {
-		return
+		return 1
 	}
 	for i := range t.J {
 		t.J[i] /= sum / float64(n)
 	}
+	return sum / float64(n)
 }
 
 func (t *Truth) shells(n int) {
@@ -143,6 +150,10 @@ func (t *Truth) lawOf(p *Position) law {
 			u = j / t.Local[i]
 		}
 		l.curbed[i] = j * math.Exp(-p.Curb*u)
+	}
+	if t.expected != nil {
+		l.local = t.shellMean(t.curbedMeans(p))
+		return l
 	}
 	l.local = t.shellMean(l.curbed)
 	return l
