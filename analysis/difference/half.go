@@ -83,7 +83,7 @@ func (p *Pairs) halves(axis Axis, key uint64, k uint8) (own, other *Pairs) {
 func (s *source) matchedThin() *intensity.Scaled {
 	m := &intensity.Scaled{Unique: make([]int32, len(s.single)), Raw: make([]int32, len(s.single))}
 	for i, x := range s.single {
-		m.Unique[i], m.Raw[i] = x.unique, s.thin.Raw[x.thin]
+		m.Unique[i], m.Raw[i] = x.thin.unique, x.thin.raw
 	}
 	return m
 }

@@ -45,6 +45,12 @@ func (p *Pairs) localMeans() error {
 	}
 	if int(kept) < sh.N {
 		before := p.Len()
+		for i, k := range keep {
+			if !k {
+				p.Counts.Thin.drop(int(p.NThin[i]))
+				p.Counts.Thick.drop(int(p.NThick[i]))
+			}
+		}
 		p.filter(keep)
 		p.Counts.Unusable = before - p.Len()
 		p.Warnings = append(p.Warnings, intensity.Warning{Code: "shells-without-signal", Text: fmt.Sprintf(
@@ -55,6 +61,11 @@ func (p *Pairs) localMeans() error {
 		return fmt.Errorf("none of the %d resolution shells has a mean intensity above its noise in both positions", sh.N)
 	}
 	return nil
+}
+
+func (c *SideCounts) drop(n int) {
+	c.Used -= n
+	c.Unusable += n
 }
 
 // shellCount is the default number of shells: 75 reflections each leave the

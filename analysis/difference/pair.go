@@ -1,11 +1,9 @@
 package difference
 
 import (
-	"cmp"
 	"context"
 	"fmt"
 	"math"
-	"slices"
 
 	"thinward/analysis/intensity"
 )
@@ -16,12 +14,6 @@ type source struct {
 	catalogue   *intensity.Catalogue
 	single      []single
 	settings    Settings
-}
-
-// single is one matched pair of observations: of thin and of thick.
-type single struct {
-	unique      int32
-	thin, thick int32
 }
 
 func (o *Settings) filled() Settings {
@@ -46,11 +38,15 @@ func (o *Settings) filled() Settings {
 // Matched pairs are of observations with the same raw index and angles within
 // the tolerance, one to one in the order of angle, averaged over equivalents
 // with weights 1/(v1 + v2), so that both positions saw the same geometry; it
-// needs real angles in both and one crystal. Merged pairs are of the
-// inverse-variance means of each position. Forbidden reflections are left out
-// of both and counted. Local means are taken over equal-count shells of the
-// pairs; shells whose mean is not positive in both positions are left out with
-// a warning. VarD is refitted as RefitVarD does.
+// needs real angles in both and one crystal. Repeats of one index within one
+// tolerance of angle are averaged first, with weights 1/v. Only the angles that
+// both positions cover count. Where the angles as given do not coincide, those of
+// thick are turned by Align, if it is clear, and a warning names the turn. Angles that
+// coincide hardly more often than unrelated ones would are not matched.
+// Merged pairs are of the inverse-variance means of each position. Forbidden
+// reflections are left out of both and counted. Local means are taken over equal-count
+// shells of the pairs; shells whose mean is not positive in both positions are left
+// out with a warning. VarD is refitted as RefitVarD does.
 //
 // Errors: observations that Scaled.Check refuses, matching demanded and not
 // possible, fewer than two pairs. thin and thick are kept, not copied.
@@ -78,6 +74,7 @@ func Pair(ctx context.Context, thin, thick *intensity.Scaled, cat *intensity.Cat
 	} else {
 		p.join(mt, mk)
 	}
+	p.settle()
 	p.angles()
 	if err := p.localMeans(); err != nil {
 		return nil, err
@@ -123,22 +120,19 @@ func (p *Pairs) choose(ctx context.Context) error {
 		why = "the positions lie on different crystals"
 	case s.thin.Phi == nil || s.thick.Phi == nil:
 		why = "one of the positions has no angles"
+	default:
+		if why = p.match(Turn{}); why != "" {
+			why = p.matchTurned(why)
+		}
+	}
+	if err := ctx.Err(); err != nil {
+		return err
 	}
 	if why == "" {
-		inThin, inThick := p.match()
-		if err := ctx.Err(); err != nil {
-			return err
-		}
-		n := countUnique(s.single)
-		if n > 0 && (s.settings.Matching == MatchAlways || float64(n) >= s.settings.LeastMatched*float64(p.Counts.Common)) {
-			p.Matched = true
-			p.Counts.MatchedObservations = len(s.single)
-			p.warnAlone(inThin, inThick)
-			return nil
-		}
-		why = fmt.Sprintf("only %d of %d common reflections have observations at the same angle within %.3g degrees", n, p.Counts.Common, s.settings.AngleToleranceDeg)
-		s.single, p.Counts.OutsideRange = nil, 0
+		p.Matched = true
+		return nil
 	}
+	s.single, p.Counts.MatchedObservations = nil, 0
 	if s.settings.Matching == MatchAlways {
 		return fmt.Errorf("observations cannot be matched: %s", why)
 	}
@@ -147,84 +141,28 @@ func (p *Pairs) choose(ctx context.Context) error {
 	return nil
 }
 
-func countUnique(s []single) int {
-	n := 0
-	for i := range s {
-		if i == 0 || s[i].unique != s[i-1].unique {
-			n++
-		}
-	}
-	return n
-}
-
-// leastPartnered is the share of the observations of either position within the
-// common range of angles that should find a partner.
-const leastPartnered = 0.8
-
-// warnAlone says how many observations matching one to one leaves out.
-func (p *Pairs) warnAlone(inThin, inThick int) {
-	n := len(p.source.single)
-	for _, side := range []struct {
-		name string
-		in   int
-	}{{"thin", inThin}, {"thick", inThick}} {
-		if float64(n) < leastPartnered*float64(side.in) {
-			p.Warnings = append(p.Warnings, intensity.Warning{Code: "unpartnered", Text: fmt.Sprintf(
-				"%d of %d observations of the %s position within the common range of angles have no partner at the same angle and are left out of the difference (of repeats of one index only as many are used as the other position has)",
-				side.in-n, side.in, side.name)})
-		}
-	}
-}
-
-// match pairs observations one to one, in the order of unique, raw and angle. It
-// returns how many of either position could have been paired by their angle.
-func (p *Pairs) match() (inThin, inThick int) {
+// matchTurned matches after the angles of thick were turned; why says what was wrong
+// without, and what it returns what is wrong still, empty for nothing.
+func (p *Pairs) matchTurned(why string) string {
 	s := &p.source
-	lo, hi := commonRange(s.thin.Phi, s.thick.Phi, s.settings.AngleToleranceDeg)
-	a, outA := p.sorted(s.thin, lo, hi)
-	b, outB := p.sorted(s.thick, lo, hi)
-	p.Counts.OutsideRange = outA + outB
-	for i, j := 0, 0; i < len(a) && j < len(b); {
-		x, y := a[i], b[j]
-		c := cmp.Or(cmp.Compare(s.thin.Unique[x], s.thick.Unique[y]), cmp.Compare(s.thin.Raw[x], s.thick.Raw[y]))
-		gap := s.thin.Phi[x] - s.thick.Phi[y]
-		switch {
-		case c < 0 || (c == 0 && gap < -s.settings.AngleToleranceDeg):
-			i++
-		case c > 0 || gap > s.settings.AngleToleranceDeg:
-			j++
-		default:
-			s.single = append(s.single, single{s.thin.Unique[x], x, y})
-			i++
-			j++
-		}
+	a := Align(Angled{s.thin.Raw, s.thin.Phi}, Angled{s.thick.Raw, s.thick.Phi}, s.settings.AngleToleranceDeg)
+	if !a.Clear {
+		return why + ", and " + a.Why
 	}
-	return len(a), len(b)
+	if still := p.match(a.Turn); still != "" {
+		return why + "; with " + a.Turn.String() + " for the thick position, " + still
+	}
+	p.Warnings = append(p.Warnings, intensity.Warning{Code: "angles-aligned", Text: a.describe("thick")})
+	return ""
 }
 
-func commonRange(a, b []float64, tolerance float64) (lo, hi float64) {
-	if len(a) == 0 || len(b) == 0 {
-		return math.Inf(1), math.Inf(-1)
+// describe says what a turn of the position called name does.
+func (a *Alignment) describe(name string) string {
+	how := "count from another zero"
+	if a.Turn.Reversed {
+		how = "run the other way"
 	}
-	return max(slices.Min(a), slices.Min(b)) - tolerance, min(slices.Max(a), slices.Max(b)) + tolerance
-}
-
-// sorted returns the usable observations of allowed reflections between the
-// angles lo and hi, and how many lie outside.
-func (p *Pairs) sorted(s *intensity.Scaled, lo, hi float64) (order []int32, outside int) {
-	for o, u := range s.Unique {
-		switch {
-		case p.source.catalogue.Absent[u] || math.IsInf(s.Var[o], 1):
-		case s.Phi[o] < lo || s.Phi[o] > hi:
-			outside++
-		default:
-			order = append(order, int32(o))
-		}
-	}
-	slices.SortFunc(order, func(a, b int32) int {
-		return cmp.Or(cmp.Compare(s.Unique[a], s.Unique[b]), cmp.Compare(s.Raw[a], s.Raw[b]), cmp.Compare(s.Phi[a], s.Phi[b]), cmp.Compare(a, b))
-	})
-	return order, outside
+	return fmt.Sprintf("the rotation angles of the %s position %s: %s brings %d of %d observations of one index to the same angle, where chance would %.0f; they were matched after that", name, how, a.Turn, a.Within, a.Common, a.Chance)
 }
 
 // average fills the pairs from the matched singles for whose place keep is true
@@ -234,23 +172,24 @@ func (p *Pairs) average(keep func(int) bool) {
 	list := s.single
 	for i := 0; i < len(list); {
 		var w, thin, thick, vt, vk float64
-		n := int32(0)
-		u := list[i].unique
-		for ; i < len(list) && list[i].unique == u; i++ {
+		var nt, nk int32
+		u := list[i].thin.unique
+		for ; i < len(list) && list[i].thin.unique == u; i++ {
 			if keep != nil && !keep(i) {
 				continue
 			}
-			v1, v2 := s.thin.Var[list[i].thin], s.thick.Var[list[i].thick]
-			x := 1 / (v1 + v2)
+			a, b := &list[i].thin, &list[i].thick
+			x := 1 / (a.v + b.v)
 			w += x
-			thin += x * s.thin.I[list[i].thin]
-			thick += x * s.thick.I[list[i].thick]
-			vt += x * x * v1
-			vk += x * x * v2
-			n++
+			thin += x * a.i
+			thick += x * b.i
+			vt += x * x * a.v
+			vk += x * x * b.v
+			nt += a.rows
+			nk += b.rows
 		}
-		if n > 0 {
-			p.add(u, thin/w, thick/w, vt/(w*w), vk/(w*w), n, n)
+		if nt > 0 {
+			p.add(u, thin/w, thick/w, vt/(w*w), vk/(w*w), nt, nk)
 		}
 	}
 }
@@ -287,22 +226,56 @@ func (p *Pairs) angles() {
 		return
 	}
 	sum, count := make([]float64, p.Len()), make([]float64, p.Len())
-	put := func(o int32) {
-		if i := place[s.thin.Unique[o]] - 1; i >= 0 && !math.IsInf(s.thin.Var[o], 1) {
-			sum[i] += s.thin.Phi[o]
-			count[i]++
+	put := func(u int32, phi, rows float64) {
+		if i := place[u] - 1; i >= 0 {
+			sum[i] += rows * phi
+			count[i] += rows
 		}
 	}
 	if p.Matched {
 		for _, x := range s.single {
-			put(x.thin)
+			put(x.thin.unique, x.thin.phi, float64(x.thin.rows))
 		}
 	} else {
-		for o := range s.thin.I {
-			put(int32(o))
+		for o, u := range s.thin.Unique {
+			if !math.IsInf(s.thin.Var[o], 1) {
+				put(u, s.thin.Phi[o], 1)
+			}
 		}
 	}
 	for i := range sum {
 		p.Phi[i] = sum[i] / count[i]
+	}
+}
+
+// settle counts where the observations of either position went. Merged positions have
+// no range and no partners: what is alone lies in reflections that the other lacks.
+func (p *Pairs) settle() {
+	s := &p.source
+	for _, x := range []struct {
+		s    *intensity.Scaled
+		n    []int32
+		side *SideCounts
+	}{{s.thin, p.NThin, &p.Counts.Thin}, {s.thick, p.NThick, &p.Counts.Thick}} {
+		if !p.Matched {
+			*x.side = SideCounts{}
+			for o, u := range x.s.Unique {
+				switch {
+				case s.catalogue.Absent[u]:
+					x.side.Absent++
+				case math.IsInf(x.s.Var[o], 1):
+					x.side.WithoutWeight++
+				default:
+					x.side.Alone++
+				}
+			}
+		}
+		for _, n := range x.n {
+			x.side.Used += int(n)
+		}
+		x.side.Alone -= x.side.Used
+	}
+	if p.Matched {
+		p.warnAlone()
 	}
 }

@@ -42,11 +42,23 @@ type Counts struct {
 	ThinObservations, ThickObservations int // given
 	ThinUnique, ThickUnique             int // measured, allowed
 	Common                              int // measured in both, allowed
-	MatchedObservations                 int // pairs of single observations
-	OutsideRange                        int // observations outside the common angle range, when matched
+	MatchedObservations                 int // couples of observations, or of means of repeats, at one angle
 	Absent                              int // forbidden reflections left out
 	Unusable                            int // in shells without a positive mean
 	Pairs                               int
+	// Thin and Thick say where the observations of either position went.
+	Thin, Thick SideCounts
+}
+
+// SideCounts says what became of the observations of one position; its numbers add
+// up to those given.
+type SideCounts struct {
+	Absent        int // of forbidden reflections
+	WithoutWeight int // of infinite variance
+	OutsideRange  int // outside the angles that both positions cover, when matched
+	Alone         int // without a partner at their angle, or of reflections the other position lacks when merged
+	Unusable      int // in pairs whose shell has no positive mean
+	Used          int // in the pairs
 }
 
 // Pairs holds one entry a reflection measured in both positions. Thin and
