@@ -1,0 +1,104 @@
+package analysis
+
+import (
+	"context"
+	"math"
+	"testing"
+
+	"thinward/analysis/internal/floatcmp"
+	"thinward/analysis/simulate"
+)
+
+// The smallest m that would have been seen is (z.975 + z.8) standard errors, 1.95996398454
+// and 0.841621233573 by R qnorm, and infinite where m is not known. The simultaneous band is
+// mean and multiplier times the error; its multiplier lies between Sidak's for the twenty
+// disjoint windows of 5 % (3.016, less what correlation and 400 draws may take) and
+// for as many as are drawn.
+func TestContrastSaysWhatWouldBeSeen(t *testing.T) {
+	p := small()
+	p.DMin = 1.4
+	s := studyOf(t, p, &Settings{Replicates: 400, Flips: 100})
+	x := primaryOf(t, s, 0)
+	r := &x.Result
+	if r.Exchange.F < firmF {
+		t.Fatalf("the axis is weak (F = %g): another rule holds", r.Exchange.F)
+	}
+	floatcmp.Check(t, "smallest m", r.MinimumM, (1.95996398454+0.841621233573)*r.Exchange.SE, 0, 1e-9)
+	if !(r.Exchange.SE > 0.001) {
+		t.Errorf("the error of m is %g", r.Exchange.SE)
+	}
+	c := &r.Strength
+	sidak := func(k float64) float64 { return zOf(math.Pow(0.95, 1/k)) }
+	floatcmp.Check(t, "Sidak's multiplier of 20", sidak(20), 3.01599453349, 1e-9, 0)
+	for g, mean := range c.Mean {
+		up, down := (c.HiSim[g]-mean)/x.Band.SE[g], (mean-c.LoSim[g])/x.Band.SE[g]
+		if !(up > sidak(20)-0.35 && up < sidak(float64(len(c.Mean)))+0.3) {
+			t.Fatalf("window %d: the simultaneous band is %.3f errors wide", g, up)
+		}
+		floatcmp.Check(t, "lower side", down, up, 0, 1e-9)
+	}
+	p.Crystals = p.Crystals[:1]
+	one := primaryOf(t, studyOf(t, p, &Settings{Replicates: 50, Flips: 50}), 0)
+	floatcmp.Check(t, "smallest m where there is a bracket only", one.Result.MinimumM, math.Inf(1), 0, 0)
+}
+
+// Wilson 1949: a reflection that epsilon rotations leave alone is epsilon times as strong in
+// the mean. In P m m m every zone has 2. With epsilon divided out they are as
+// strong as the others, on the axis, in what the sizes are read from and in the
+// halves; without, they would be twice as strong.
+func TestEpsilonIsDividedOut(t *testing.T) {
+	p := simulate.Sound(5)
+	p.SpaceGroup, p.DMin, p.Crystals, p.Structure.Wilson = "P m m m", 1.35, p.Crystals[:2], true
+	s := studyOf(t, p, &Settings{Replicates: 50, Flips: 50})
+	if _, err := s.Scale(context.Background()); err != nil {
+		t.Fatal(err)
+	}
+	x, err := s.paired(context.Background(), s.primaryContrasts()[0])
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, c := range []struct {
+		name string
+		v    []float64
+	}{
+		{"axis", x.Strengths.Z}, {"thin", x.Input.Thin}, {"thick", x.Input.Thick}, {"half of thin", x.Halves.ThinA}, {"half of thick", x.Halves.ThickB},
+		{"thin over local mean", quotient(x.Pairs.Thin, x.Pairs.MeanPooled)},
+	} {
+		// Means by shell of the general reflections; the zones over them.
+		sum, n := make([]float64, x.Pairs.Shells), make([]float64, x.Pairs.Shells)
+		for i, k := range x.Pairs.Shell {
+			if x.Pairs.Epsilon[i] == 1 && !math.IsNaN(c.v[i]) {
+				sum[k] += c.v[i]
+				n[k]++
+			}
+		}
+		var ratio []float64
+		for i, k := range x.Pairs.Shell {
+			if x.Pairs.Epsilon[i] == 2 && !math.IsNaN(c.v[i]) && n[k] > 0 {
+				ratio = append(ratio, c.v[i]*n[k]/sum[k])
+			}
+		}
+		mean, square := 0.0, 0.0
+		for _, v := range ratio {
+			mean += v / float64(len(ratio))
+		}
+		for _, v := range ratio {
+			square += (v - mean) * (v - mean) / float64(len(ratio)-1)
+		}
+		se := math.Sqrt(square / float64(len(ratio)))
+		t.Logf("%s: %d reflections of zones, mean strength %.3f +- %.3f", c.name, len(ratio), mean, se)
+		if !(se < 0.15) {
+			t.Errorf("%s: a mean uncertain by %.2f tells nothing", c.name, se)
+		}
+		// The mean of a shell of general reflections adds a tenth to the error.
+		floatcmp.Check(t, c.name, mean, 1, 4*se, 0.05)
+	}
+}
+
+func quotient(a, b []float64) []float64 {
+	out := make([]float64, len(a))
+	for i := range out {
+		out[i] = a[i] / b[i]
+	}
+	return out
+}
