@@ -45,7 +45,7 @@ func browser(t *testing.T) context.Context {
 	ctx, stopTab := chromedp.NewContext(ctx)
 	t.Cleanup(stopTab)
 	do(t, ctx, chromedp.EmulateViewport(1280, 800))
-	ctx, stop := context.WithTimeout(ctx, 90*time.Second)
+	ctx, stop := context.WithTimeout(ctx, 240*time.Second)
 	t.Cleanup(stop)
 	return ctx
 }
