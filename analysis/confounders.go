@@ -135,9 +135,10 @@ func (s *Study) tilt(ctx context.Context, x *Compared) (evidence.Finding, error)
 	case x.thick.Phi == nil:
 		return dark("no rotation angles")
 	}
+	zero := s.intake.Positions[x.Contrast.ThickCrystal][x.Contrast.Thick].Turn.Of(p.TiltZeroDeg)
 	tilt := make([]float64, len(x.thick.Phi))
 	for o, phi := range x.thick.Phi {
-		tilt[o] = tiltOf(phi, p.TiltZeroDeg)
+		tilt[o] = tiltOf(phi, zero)
 	}
 	sorted := slices.Clone(tilt)
 	slices.Sort(sorted)

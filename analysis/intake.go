@@ -6,6 +6,7 @@ import (
 	"math"
 	"slices"
 
+	"thinward/analysis/difference"
 	"thinward/analysis/intensity"
 )
 
@@ -24,6 +25,8 @@ type Accepted struct {
 	Unique, Raw []int32
 	// Excluded counts observations that the manifest sets aside, by reason.
 	Excluded map[string]int
+	// Turn brought its rotation angles to those of the thinnest position of its crystal.
+	Turn difference.Turn
 }
 
 // Ice rings of hexagonal and cubic ice as d in angstrom (common practice, no
@@ -81,6 +84,7 @@ func (s *Study) intakeStep(ctx context.Context) (*Intake, error) {
 	}
 	warnings = append(warnings, said...)
 	for i := range in.Positions {
+		warnings = append(warnings, s.align(i, in.Positions[i])...)
 		for j := range in.Positions[i] {
 			sets = append(sets, in.Positions[i][j].Observations)
 		}

@@ -100,7 +100,7 @@ func Align(thin, thick Angled, toleranceDeg float64) *Alignment {
 		best = 1
 	}
 	if found[best].n == 0 {
-		out.Why = "no index was measured in both positions"
+		out.judge()
 		return out
 	}
 	at := sharpen(sorted[best], found[best].at, toleranceDeg)
@@ -112,9 +112,33 @@ func Align(thin, thick Angled, toleranceDeg float64) *Alignment {
 	return out
 }
 
+// AlignAny aligns every way to index thick and returns the one that brings most couples
+// within the tolerance, RunnerUp counting what the other ways do. It panics as Align does
+// and without a way.
+func AlignAny(thin Angled, ways []Angled, toleranceDeg float64) (way int, best *Alignment) {
+	list := make([]*Alignment, len(ways))
+	for k := range ways {
+		list[k] = Align(thin, ways[k], toleranceDeg)
+		if list[k].Within > list[way].Within {
+			way = k
+		}
+	}
+	best = list[way]
+	for k, a := range list {
+		if k != way {
+			best.RunnerUp = max(best.RunnerUp, a.Within)
+		}
+	}
+	best.Clear, best.Why = false, ""
+	best.judge()
+	return way, best
+}
+
 func (a *Alignment) judge() {
 	n, other := float64(a.Within), float64(a.RunnerUp)
 	switch {
+	case a.Within == 0:
+		a.Why = "no index was measured in both positions"
 	case n < alignShare*float64(a.Common):
 		a.Why = fmt.Sprintf("no one offset brings more than %d of %d observations of one index to one angle", a.Within, a.Common)
 	case n < a.Chance+alignClear*math.Sqrt(a.Chance+1):
