@@ -37,9 +37,42 @@ func TestContrastSaysWhatWouldBeSeen(t *testing.T) {
 		}
 		floatcmp.Check(t, "lower side", down, up, 0, 1e-9)
 	}
+	// One p for strength and resolution under the same flips lies between the smaller of
+	// both and their sum (Bonferroni).
+	if own := x.Band.Flip.SetP; len(own) != 2 || c.P < math.Min(own[0], own[1]) || c.P > own[0]+own[1] {
+		t.Errorf("p = %g of orders with %v", c.P, x.Band.Flip.SetP)
+	}
 	p.Crystals = p.Crystals[:1]
 	one := primaryOf(t, studyOf(t, p, &Settings{Replicates: 50, Flips: 50}), 0)
 	floatcmp.Check(t, "smallest m where there is a bracket only", one.Result.MinimumM, math.Inf(1), 0, 0)
+}
+
+// Deviations of 30 % that two positions do not share and no exchange: an axis from
+// halves of the thin position reads V/(V + C) of the covariance with thick, and one from
+// halves of the thick position of that with thin, V the variance of the strengths
+// (between 1 and 2, Wilson 1949) and C = (1 + V)(exp(0.09) - 1) what halves share beside
+// them: the slopes lie about 0.16 above 0 and 0.2 below. The model with curb and offset
+// takes most of that up, so that of it only the hull is asked to hold 0.
+func TestBracketEndsErrOnTheirSides(t *testing.T) {
+	p := simulate.Null(3)
+	p.DMin, p.Crystals = 1.3, p.Crystals[:1]
+	p.Crystals[0].Neighbours = 0
+	s := studyOf(t, p, quick())
+	if _, err := s.Scale(context.Background()); err != nil {
+		t.Fatal(err)
+	}
+	x, err := s.paired(context.Background(), s.primaryContrasts()[0])
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := s.sizes(context.Background(), x); err != nil {
+		t.Fatal(err)
+	}
+	b := &x.Result.Bracket
+	t.Logf("half of thin %+v, half of thick %+v", b.ThinSlope, b.ThickSlope)
+	if !(b.ThinSlope.Lo > 0 && b.ThinSlope.Value < 0.3 && b.ThickSlope.Hi < 0 && b.ThickSlope.Value > -0.4 && b.Lo < 0 && b.Hi > 0) {
+		t.Errorf("%+v", b)
+	}
 }
 
 // Wilson 1949: a reflection that epsilon rotations leave alone is epsilon times as strong in
