@@ -16,10 +16,13 @@ import (
 type comparisonReport struct {
 	First       string              `json:"first"`
 	Second      string              `json:"second"`
+	SameSeries  bool                `json:"same_series"`
+	Series      [2]string           `json:"series"`
 	SameInputs  bool                `json:"same_inputs"`
 	Numbers     int                 `json:"numbers"`
 	Differ      int                 `json:"differ"`
 	Main        []mainNumbers       `json:"main"`
+	Steps       []stepAgreement     `json:"steps"`
 	Differences []result.Difference `json:"differences"`
 }
 
@@ -42,6 +45,10 @@ func (a *app) compare() *cobra.Command {
 	c := &cobra.Command{
 		Use:   "compare DIR DIR",
 		Short: "Two reports side by side: the main numbers, and which numbers differ",
+		Long: `Sets the main numbers of the primary contrasts side by side, counts step by step
+how many numbers and words differ and by how much, and lists the first of them.
+Two reports count as of one series when their titles are the same or any of
+their inputs is.`,
 		Example: `  thinward compare monday friday
   thinward compare monday friday --all`,
 		Args: cobra.ExactArgs(2),
@@ -68,7 +75,9 @@ func (a *app) compare() *cobra.Command {
 
 func compareReports(names []string, first, second *analysis.Result) *comparisonReport {
 	c := result.Compare(first, second, tolerance)
-	r := &comparisonReport{First: names[0], Second: names[1], SameInputs: sameInputs(first, second), Numbers: c.Numbers, Differ: len(c.Differences), Differences: c.Differences}
+	r := &comparisonReport{First: names[0], Second: names[1], Series: [2]string{first.Series, second.Series}, SameSeries: sameSeries(first, second),
+		SameInputs: sameInputs(first, second), Numbers: c.Numbers, Differ: len(c.Differences), Differences: c.Differences,
+		Steps: agreements(first, second, c.Differences)}
 	at := map[string]int{}
 	for side, x := range []*analysis.Result{first, second} {
 		for i := range x.Contrasts {
@@ -139,12 +148,74 @@ func sameInputs(a, b *analysis.Result) bool {
 	return true
 }
 
+// sameSeries tells whether two reports can be of the same crystals: one title, or
+// an input in common.
+func sameSeries(a, b *analysis.Result) bool {
+	if a.Series == b.Series {
+		return true
+	}
+	sums := map[string]bool{}
+	for i := range a.Inputs {
+		sums[a.Inputs[i].SHA256] = true
+	}
+	for i := range b.Inputs {
+		if sums[b.Inputs[i].SHA256] {
+			return true
+		}
+	}
+	return false
+}
+
 func (a *app) printComparison(r *comparisonReport, all bool) error {
+	if !r.SameSeries {
+		fmt.Fprintf(a.out, "Different series: %q and %q have no input in common. Contrasts of one name need not be of one crystal.\n\n", r.Series[0], r.Series[1])
+	}
+	if err := a.printMain(r, all); err != nil {
+		return err
+	}
+	inputs := "different inputs"
+	if r.SameInputs {
+		inputs = "the same inputs"
+	}
+	if r.Differ == 0 {
+		fmt.Fprintf(a.out, "The two reports have %s and say the same: %d numbers agree.\n", inputs, r.Numbers)
+		return nil
+	}
+	fmt.Fprintln(a.out)
+	if err := printAgreements(a.out, r.Steps); err != nil {
+		return err
+	}
+	fmt.Fprintln(a.out)
+	if all || r.SameSeries {
+		printDifferences(a, r.Differences, all)
+	}
+	more := ""
+	if !all && !r.SameSeries {
+		more = "; --all lists them"
+	}
+	fmt.Fprintf(a.out, "The two reports have %s and %s%s.\n", inputs, plural(r.Differ, "difference"), more)
+	return nil
+}
+
+// printMain writes the main numbers of the primary contrasts that both reports
+// have; those of one report alone are only named.
+func (a *app) printMain(r *comparisonReport, all bool) error {
 	t := tabwriter.NewWriter(a.out, 0, 0, 2, ' ', 0)
-	fmt.Fprintf(t, "contrast\tnumber\t%s\t%s\t\n", r.First, r.Second)
+	var alone [2][]string
+	shown := 0
 	for _, c := range r.Main {
-		if !c.Primary && !all {
+		switch {
+		case !c.In["second"]:
+			alone[0] = append(alone[0], c.Contrast)
 			continue
+		case !c.In["first"]:
+			alone[1] = append(alone[1], c.Contrast)
+			continue
+		case !c.Primary && !all:
+			continue
+		}
+		if shown++; shown == 1 {
+			fmt.Fprintf(t, "contrast\tnumber\t%s\t%s\t\n", r.First, r.Second)
 		}
 		for i, n := range c.Numbers {
 			name := ""
@@ -161,23 +232,20 @@ func (a *app) printComparison(r *comparisonReport, all bool) error {
 	if err := t.Flush(); err != nil {
 		return err
 	}
-	if all {
-		fmt.Fprintln(a.out)
-		printDifferences(a, r.Differences, r.Differ, true)
-	}
-	inputs := "different inputs"
-	if r.SameInputs {
-		inputs = "the same inputs"
-	}
-	switch {
-	case r.Differ == 0:
-		fmt.Fprintf(a.out, "The two reports have %s and say the same: %d numbers agree.\n", inputs, r.Numbers)
-	case all:
-		fmt.Fprintf(a.out, "The two reports have %s and %s.\n", inputs, plural(r.Differ, "difference"))
-	default:
-		fmt.Fprintf(a.out, "The two reports have %s and %s; --all lists them.\n", inputs, plural(r.Differ, "difference"))
+	for side, names := range alone {
+		if len(names) > 0 {
+			fmt.Fprintf(a.out, "Only in %s: %s.\n", []string{r.First, r.Second}[side], shortList(names, 6))
+		}
 	}
 	return nil
+}
+
+// shortList joins the first names and counts the rest.
+func shortList(names []string, most int) string {
+	if len(names) <= most {
+		return strings.Join(names, "; ")
+	}
+	return fmt.Sprintf("%s; and %d more", strings.Join(names[:most], "; "), len(names)-most)
 }
 
 func sameNumber(a, b analysis.Interval) bool {

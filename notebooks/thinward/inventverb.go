@@ -13,11 +13,16 @@ import (
 
 func (a *app) invent() *cobra.Command {
 	var out string
+	var replace bool
 	c := &cobra.Command{
 		Use:   "invent PLAN.toml",
 		Short: "Write an invented series with a known truth",
+		Long: `Writes reflection lists, manifest and truth.json of a series that a plan invents.
+The folder must be empty or new. --replace writes over a series that was
+invented there before; a folder with anything else in it is left alone.`,
 		Example: `  thinward invent fixtures/tarn/plan.toml --out mine
-  thinward examine mine/series.toml`,
+  thinward examine mine/series.toml
+  thinward invent mine/plan.toml --out mine --replace`,
 		Args: cobra.ExactArgs(1),
 		RunE: func(c *cobra.Command, args []string) error {
 			if out == "" {
@@ -31,6 +36,9 @@ func (a *app) invent() *cobra.Command {
 				if _, err := os.Stat(filepath.Join(out, "truth.json")); err != nil {
 					return fmt.Errorf("--out %s holds other files: choose an empty folder", out)
 				}
+				if !replace {
+					return fmt.Errorf("--out %s holds an invented series already: choose another folder, or give --replace to write over it", out)
+				}
 			}
 			if err := manifest.Invent(c.Context(), plan, out); err != nil {
 				return err
@@ -40,5 +48,6 @@ func (a *app) invent() *cobra.Command {
 		},
 	}
 	c.Flags().StringVarP(&out, "out", "o", "", "folder for the series")
+	c.Flags().BoolVar(&replace, "replace", false, "write over an invented series that is there")
 	return c
 }
