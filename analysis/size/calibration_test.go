@@ -12,7 +12,9 @@ import (
 // Figures to meet are those of earlier simulations of the same questions, written in another language; every band is widened by three
 // standard errors of the simulation, so few repeats stay honest.
 
-// The interval of m covers .93 to .97.
+// The interval of m covers .93 to .97, by the instrument and by moments. The exchange is
+// with the mean of the law, so that a shell mean is one of a sample: at .15 and little
+// noise an error without the shell means would be half of what it must be.
 func TestCoverage(t *testing.T) {
 	for _, c := range []struct {
 		name string
@@ -23,12 +25,16 @@ func TestCoverage(t *testing.T) {
 		{"300 reflections", plan{n: 300, m: .05, noise: [3]float64{.25, .3, .2}, error: .25}},
 		{"heavy tails", plan{n: 2000, m: .05, noise: [3]float64{.25, .3, .2}, error: .3, heavy: true}},
 		{"12 shells", plan{n: 2000, shells: 12, m: .05, noise: [3]float64{.25, .3, .2}, error: .25}},
+		{"a large exchange", plan{n: 2000, shells: 12, m: .15, noise: [3]float64{.05, .05, .05}}},
 	} {
 		t.Run(c.name, func(t *testing.T) {
-			var m, se, cover tally
+			var m, se, cover, moments tally
 			g := stream(41)
 			for range repeats(250, 1500) {
-				x, err := Exchange(c.p.draw(g), nil)
+				in := c.p.draw(g)
+				f, err := Moments(in, nil, M, nil)
+				moments.add(within(c.p.m, must(t, f, err).M))
+				x, err := Exchange(in, nil)
 				x = must(t, x, err)
 				m.add(x.M)
 				se.add(x.SE)
@@ -36,6 +42,7 @@ func TestCoverage(t *testing.T) {
 			}
 			s := 3 * cover.binomial(.95)
 			inBand(t, "coverage", cover.mean(), .93-s, .97+s)
+			inBand(t, "coverage by moments", moments.mean(), .93-s, .97+s)
 			inBand(t, "bias", m.mean()-c.p.m, -.003-3*m.se(), .003+3*m.se())
 			spread := 3 / math.Sqrt(2*float64(len(m.v)))
 			inBand(t, "claimed over true error", se.mean()/m.sd(), .93-spread, 1.07+spread)
@@ -46,6 +53,8 @@ func TestCoverage(t *testing.T) {
 // Curb and exchange are told apart: for N = 2000
 // (0, .02) comes back as -.001 +- .017 and .021 +- .008, while the exchange
 // alone reads m near .03. The many-repeat form checks J's level of 4 to 7.5 %.
+// With errors in proportion to the intensity the interval of q covers as it says because
+// weights follow the variance of strong reflections.
 func TestCurb(t *testing.T) {
 	for _, c := range []struct{ m, q, alone float64 }{{0, 0, 0}, {.05, 0, .05}, {0, .02, .037}, {.05, .02, .085}} {
 		var m, q, alone, refused, coverM, coverQ tally
@@ -69,7 +78,7 @@ func TestCurb(t *testing.T) {
 		inBand(t, "exchange alone", alone.mean(), c.alone-.006, c.alone+.006)
 		inBand(t, "J refuses", refused.mean(), 0, .075+3*refused.binomial(.06))
 		inBand(t, "coverage of m", coverM.mean(), .92-3*coverM.binomial(.95), 1)
-		inBand(t, "coverage of q", coverQ.mean(), .90-3*coverQ.binomial(.95), 1)
+		inBand(t, "coverage of q", coverQ.mean(), .92-3*coverQ.binomial(.95), .98+3*coverQ.binomial(.95))
 	}
 }
 

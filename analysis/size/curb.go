@@ -88,7 +88,7 @@ func CompareCurbs(in *Input, w []float64, model Model, set *Settings) (*CurbComp
 		if !fit.Estimable {
 			return &CurbComparison{Why: fit.Why}, nil
 		}
-		sol := sys.solve(set.flat())
+		sol := sys.solve(set)
 		systems = append(systems, sys)
 		out.Rivals = append(out.Rivals, CurbRival{Form: form, Fit: fit})
 		if best == nil || sol.j < best.j {
@@ -122,7 +122,7 @@ func (c *CurbComparison) judge(systems []*system, best *solution) {
 		r := &c.Rivals[i]
 		r.J = r.Fit.J
 		if common {
-			m := sys.sums(best.shell)
+			m := sys.sums(best.rows)
 			if theta := linear(m.a, best.omega, m.g); theta != nil {
 				r.J = distance(m, theta, &ch)
 			}

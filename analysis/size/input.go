@@ -39,7 +39,8 @@ type Settings struct {
 	Clip       float64   // of the axis in Exchange, in shell means; 6
 	Knots      []float64 // of the functions min(z, knot) in Moments; .3, 1, 3, 8
 	Curb       CurbForm  // what the curb grows with; CurbCommon
-	FlatShells bool      // Moments weights all shells alike; default false: by residual variance of the shell
+	FlatShells bool      // Moments weights all reflections alike; default false: by their expected residual variance
+	FirstOrder bool      // Moments takes J (1 - q u) for the curb; default false: J exp(-q u) to second order in q
 }
 
 // Interval is closed; an open end is an infinity.
@@ -74,6 +75,8 @@ func (s *Settings) curb() CurbForm {
 }
 
 func (s *Settings) flat() bool { return s != nil && s.FlatShells }
+
+func (s *Settings) firstOrder() bool { return s != nil && s.FirstOrder }
 
 // check reports settings that mean nothing.
 func (s *Settings) check() error {

@@ -86,25 +86,29 @@ func Leads(in *Input, w []float64) (model Model, span float64, err error) {
 // (Hansen 1982, Econometrica 50:1029): the functions f = min(z, knot) of the
 // axis, centred by shell, are orthogonal to
 //
-//	y1 - y2 - (m + (1-m) o/S_s)(y1 - 1) - q (h Q - <h Q> y1),
+//	y1 - y2 - (m + (1-m) o/S_s)(y1 - 1) - (1-m) q (t - <t> y1),
 //
-// y = I over its shell mean, S_s the shell mean of Thick, Q = y1^2 - v1 (or the
-// product of the halves of the thin position), h = 1 for CurbStrength, the
+// that is, what is left of the curb J exp(-q h y1) is exchanged, and the offset comes
+// last. y = I over its shell mean, S_s the shell mean of Thick, h = 1 for CurbStrength, the
 // shell mean of Thin over that of the lowest third in s^2 for CurbCommon, times
-// Exposure for CurbRate. With o the functions of the two knots below the
-// highest times 1/S_s join: the offset is known by how m_s varies with 1/S_s.
+// Exposure for CurbRate; t is h Q, Q = y1^2 - v1 (or the product of the halves of the
+// thin position), and the second order in q of the exponential,
+// q (h Q <h Q> - h^2 T/2), T = y1^3 - 3 y1 v1, at the q that is found. With o the
+// functions of the two knots below the highest times 1/S_s join: the offset is known by
+// how m_s varies with 1/S_s.
 //
-// The first step weights all shells alike, the second by the inverse of their
-// residual variance (FlatShells keeps them alike) and the moments by the
-// inverse of their covariance. That and the sandwich covariance of the estimate
-// include the influence of the shell means and of <h Q>, the sandwich in the
-// jackknife form of ExchangeWith. J is the over-identification
-// statistic with JDF degrees of freedom: a small JP says that these numbers do
-// not describe the curve.
+// The first step weights all reflections alike, the second by the inverse of the
+// variance of their residual, a_s + b z^2 by shell and axis (FlatShells keeps them alike),
+// and the moments by the inverse of their covariance. Without the b z^2 few strong
+// reflections decide what the data say of their own weight, and the error of q comes out a
+// fifth too small. The covariance of the moments and the sandwich covariance of the estimate
+// include the influence of the shell means and of <t>, the sandwich in the
+// jackknife form of ExchangeWith; each interval is Student's with the degrees of freedom of
+// its own variance. J is the over-identification statistic with JDF degrees of freedom: a
+// small JP says that these numbers do not describe the curve.
 //
-// A first-order model: its curb is that of small q. Intervals of q rest on few
-// strong reflections and cover .86 to .94 in place of .95 at 2000. Errors as in ExchangeWith,
-// and a curb without VarThin or halves, CurbRate without Exposure.
+// Errors as in ExchangeWith, and a curb without VarThin or halves, CurbRate without
+// Exposure.
 func Moments(in *Input, w []float64, model Model, set *Settings) (*Fit, error) {
 	if err := set.check(); err != nil {
 		return nil, err
@@ -168,7 +172,7 @@ func (s *system) fit(set *Settings) (*Fit, error) {
 		out.Why = fmt.Sprintf("not estimable: the axis hardly follows the thin position (first-stage F = %.3g, below %d)", out.F, inestimableF)
 		return out, nil
 	}
-	sol := s.solve(set.flat())
+	sol := s.solve(set)
 	if sol == nil {
 		out.Why = fmt.Sprintf("not estimable: the data do not tell %s apart", s.model)
 		return out, nil
@@ -189,11 +193,11 @@ func (s *system) describe(out *Fit, sol *solution) {
 		grad.Set(i, i, 1)
 	}
 	theta := append([]float64(nil), sol.theta...)
-	if s.model == MQO {
-		m, slope := theta[0], theta[2]
-		theta[2] = slope / (1 - m)
-		grad.Set(2, 0, slope/((1-m)*(1-m)))
-		grad.Set(2, 2, 1/(1-m))
+	for k := 1; k < p; k++ {
+		m, slope := theta[0], theta[k]
+		theta[k] = slope / (1 - m)
+		grad.Set(k, 0, slope/((1-m)*(1-m)))
+		grad.Set(k, k, 1/(1-m))
 	}
 	var half, full mat.Dense
 	half.Mul(grad, sol.cov)
@@ -203,8 +207,8 @@ func (s *system) describe(out *Fit, sol *solution) {
 			cov.SetSym(i, j, (full.At(i, j)+full.At(j, i))/2)
 		}
 	}
-	t := tQuantile(out.Level, out.DF)
 	for i, v := range []*Value{&out.M, &out.Q, &out.O}[:p] {
+		t := tQuantile(out.Level, math.Min(out.DF, sol.width[i]))
 		*v = newValue(theta[i], math.Sqrt(math.Max(0, cov.At(i, i))), t)
 	}
 	out.Cov, out.Estimable = cov, true

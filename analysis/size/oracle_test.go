@@ -98,16 +98,16 @@ func TestTwoInstruments(t *testing.T) {
 	if err := beta.SolveVec(&zx, &zy); err != nil {
 		t.Fatal(err)
 	}
-	// e2 = const + (1 - m + q M2) e1 - q Q.
-	q := -beta.AtVec(2)
+	// e2 = const + (1 - m + (1-m) q M2) e1 - (1-m) q Q.
+	slope := -beta.AtVec(2)
 	var m2 float64
 	for i := range n {
 		m2 += x.At(i, 2) / float64(n)
 	}
-	f, err := Moments(in, nil, MQ, &Settings{Knots: []float64{1, 5}, Curb: CurbStrength})
+	f, err := Moments(in, nil, MQ, &Settings{Knots: []float64{1, 5}, Curb: CurbStrength, FirstOrder: true})
 	f = must(t, f, err)
-	floatcmp.Check(t, "q", f.Q.Value, q, 1e-10, 0)
-	floatcmp.Check(t, "m", f.M.Value, 1+q*m2-beta.AtVec(1), 1e-10, 0)
+	floatcmp.Check(t, "m", f.M.Value, 1+slope*m2-beta.AtVec(1), 1e-10, 0)
+	floatcmp.Check(t, "q", f.Q.Value, slope/(1-f.M.Value), 1e-10, 0)
 	if f.JDF != 0 || f.J > 1e-12 || f.JP != 1 {
 		t.Errorf("just identified: J = %g with %d", f.J, f.JDF)
 	}

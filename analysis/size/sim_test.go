@@ -33,8 +33,9 @@ type plan struct {
 }
 
 // draw makes exponential (acentric Wilson) strengths and an independent axis.
-// The curb takes 1 - q min(x, 8), x the intensity before it, on the common scale
-// or over the shell level.
+// The curb comes first and takes exp(-q x), x the intensity before it, on the common
+// scale or over the shell level; what is left is exchanged with its mean under the law,
+// 1/(1 + q level)^2 of the level, so that a shell mean is one of a sample.
 func (p plan) draw(r *rand.Rand) *Input {
 	shells := max(p.shells, 1)
 	in := &Input{Shells: shells, S2: make([]float64, p.n), Shell: make([]int32, p.n)}
@@ -58,12 +59,12 @@ func (p plan) draw(r *rand.Rand) *Input {
 		in.Shell[i] = int32(i * shells / p.n)
 		level := math.Exp(-p.falloff * s2)
 		e := r.ExpFloat64()
-		thick := (1-p.m)*e + p.m
-		x := thick * level
+		unit := level
 		if p.curbByStrength {
-			x = thick
+			unit = 1
 		}
-		thick = thick*level*(1-p.q*math.Min(x, 8)) + p.o
+		left := e * math.Exp(-p.q*e*unit)
+		thick := ((1-p.m)*left+p.m/math.Pow(1+p.q*unit, 2))*level + p.o
 		seen := func(j, noise float64) float64 {
 			return j*math.Max(0, 1+p.error*scatter()) + noise*r.NormFloat64()
 		}

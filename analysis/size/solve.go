@@ -13,7 +13,8 @@ type solution struct {
 	j     float64
 	df    int
 	omega *mat.SymDense // sum of psi psi' at the first step
-	shell [][]float64   // weights of shells; nil for ones
+	rows  [][]float64   // weights by leg and row; nil for ones
+	width []float64     // degrees of freedom of each variance in cov
 }
 
 // weighted holds the weighted, centred functions and the linear moment sums
@@ -26,17 +27,40 @@ type weighted struct {
 	b *mat.SymDense // sum of (u f)(u f)'
 }
 
-// solve is nil when the parameters cannot be told apart.
-func (s *system) solve(flat bool) *solution {
-	var shell [][]float64
+// solve is nil when the parameters cannot be told apart. The curb is taken to
+// second order at the q that was found until that stays.
+func (s *system) solve(set *Settings) *solution {
+	sol := s.solveOnce(set.flat())
+	if s.model < MQ || set.firstOrder() {
+		return sol
+	}
+	for range 8 {
+		if sol == nil {
+			return nil
+		}
+		before := sol.theta[1]
+		s.bend(before / (1 - sol.theta[0]))
+		if sol = s.solveOnce(set.flat()); sol != nil && math.Abs(sol.theta[1]-before) <= 1e-4*math.Abs(before)+1e-12 {
+			break
+		}
+	}
+	return sol
+}
+
+func (s *system) solveOnce(flat bool) *solution {
+	var rows [][]float64
 	m := s.sums(nil)
 	theta := linear(m.a, m.b, m.g)
 	if theta == nil {
 		return nil
 	}
-	if !flat {
-		shell = s.shellWeights(theta)
-		m = s.sums(shell)
+	// The law of the residual is found twice, as the first theta is a rough one.
+	for range 2 {
+		if flat {
+			break
+		}
+		rows = s.rowWeights(theta)
+		m = s.sums(rows)
 		if theta = linear(m.a, m.b, m.g); theta == nil {
 			return nil
 		}
@@ -44,7 +68,7 @@ func (s *system) solve(flat bool) *solution {
 	omega := s.covarianceOfMoments(m, theta, nil)
 	sol := s.secondStep(m, theta, omega)
 	if sol != nil {
-		sol.shell = shell
+		sol.rows = rows
 	}
 	return sol
 }
@@ -85,6 +109,7 @@ func (s *system) secondStep(m *weighted, theta []float64, omega *mat.SymDense) *
 	half.Mul(&bread, &meat)
 	sol.cov = mat.NewDense(p, p, nil)
 	sol.cov.Mul(&half, &bread)
+	sol.width = s.width(m, &lever, sol.theta)
 	if !exact {
 		sol.j = distance(m, sol.theta, &ch)
 	}
@@ -151,15 +176,15 @@ func linear(a *mat.Dense, weight *mat.SymDense, g *mat.VecDense) []float64 {
 	return out
 }
 
-// sums builds the moments; shell, when not nil, multiplies the weights by leg
-// and shell. Functions that repeat the ones before them are left out.
-func (s *system) sums(shell [][]float64) *weighted {
+// sums builds the moments; rows, when not nil, multiplies the weights by leg
+// and row. Functions that repeat the ones before them are left out.
+func (s *system) sums(rows [][]float64) *weighted {
 	m := &weighted{}
 	for l, c := range s.legs {
 		u := append([]float64(nil), c.u...)
-		if shell != nil {
-			for i, sh := range c.in.Shell {
-				u[i] *= shell[l][sh]
+		if rows != nil {
+			for i := range u {
+				u[i] *= rows[l][i]
 			}
 		}
 		f := make([][]float64, len(c.f))
@@ -262,31 +287,6 @@ func independent(g *mat.SymDense) []int {
 		}
 	}
 	return keep
-}
-
-// shellWeights is the inverse of the weighted residual variance of each shell
-// over the mean of these; ones where there is no residue.
-func (s *system) shellWeights(theta []float64) [][]float64 {
-	out := make([][]float64, len(s.legs))
-	for l, c := range s.legs {
-		r := c.residual(theta)
-		sum, n := make([]float64, c.in.Shells), make([]float64, c.in.Shells)
-		for i, sh := range c.in.Shell {
-			if c.u[i] > 0 {
-				sum[sh] += c.w[i] * c.u[i] * r[i] * r[i]
-				n[sh] += c.w[i]
-			}
-		}
-		out[l] = make([]float64, c.in.Shells)
-		for sh := range out[l] {
-			out[l][sh] = 1
-			if v := sum[sh] / n[sh]; v > 1e-20 {
-				// A shell of a few reflections must not outweigh all others by chance.
-				out[l][sh] = (n[sh] - 1) / (n[sh] + 1) / v
-			}
-		}
-	}
-	return out
 }
 
 // leverage is the share of each reflection in its own fitted value, x' k (u f)

@@ -13,6 +13,7 @@ type system struct {
 	curb       CurbForm
 	ref1, ref2 float64 // mean of thin and thick over the lowest third in s^2
 	rate       float64 // mean count rate of the thin intensity there
+	strongest  float64 // greatest expected h y of the axis
 	used       float64
 	present    float64
 	shells     int
@@ -22,8 +23,10 @@ type system struct {
 type conditions struct {
 	*frame
 	x       [][]float64
-	t       []float64 // h Q
+	t       []float64 // h Q, less its second order in q
 	tMean   []float64 // by shell
+	first   []float64 // h Q
+	second  []float64 // h^2 T
 	power   float64   // t goes as mean1^-power
 	f       [][]float64
 	inverse []float64 // by shell: reference over mean2
@@ -96,7 +99,7 @@ func (s *system) references(legs []*frame) {
 	s.ref1, s.ref2, s.rate = n1/n, n2/n, nr/n
 }
 
-// addCurb appends the column h Q - <h Q> y1.
+// addCurb appends the column of the curb, of first order until bend is called.
 func (s *system) addCurb(c *conditions) error {
 	in := c.in
 	halves := in.ThinA != nil && in.ThinB != nil
@@ -110,37 +113,87 @@ func (s *system) addCurb(c *conditions) error {
 	if s.curb == CurbStrength {
 		c.power = 2
 	}
-	c.t = make([]float64, len(c.w))
-	c.tMean = make([]float64, in.Shells)
+	n := len(c.w)
+	c.first, c.second, c.t, c.tMean = make([]float64, n), make([]float64, n), make([]float64, n), make([]float64, in.Shells)
 	for i, sh := range in.Shell {
 		if c.w[i] == 0 {
 			continue
 		}
-		var q float64
-		if halves {
-			q = in.ThinA[i] * in.ThinB[i]
+		// Powers of the intensity less what their noise adds: E I^2 = J^2 + v and
+		// E I^3 = J^3 + 3 J v.
+		var square, cube float64
+		if j := in.Thin[i]; halves {
+			square = in.ThinA[i] * in.ThinB[i]
+			mean, d := (in.ThinA[i]+in.ThinB[i])/2, in.ThinA[i]-in.ThinB[i]
+			cube = mean * (mean*mean - 3*d*d/4)
 		} else {
-			q = in.Thin[i]*in.Thin[i] - in.VarThin[i]
+			square, cube = j*j-in.VarThin[i], j*(j*j-3*in.VarThin[i])
 		}
+		unit := s.curbUnit(c, i)
 		mean := c.mean1[sh]
-		switch s.curb {
-		case CurbCommon:
-			c.t[i] = q / (mean * s.ref1)
-		case CurbStrength:
-			c.t[i] = q / (mean * mean)
-		case CurbRate:
-			c.t[i] = q * in.Exposure[i] / (mean * s.rate)
-		}
-		c.tMean[sh] += c.w[i] * c.t[i] / c.sum[sh]
-	}
-	x := make([]float64, len(c.w))
-	for i, sh := range in.Shell {
-		if c.w[i] > 0 {
-			x[i] = c.t[i] - c.tMean[sh]*c.y1[i]
+		c.first[i] = square / (mean * unit)
+		c.second[i] = cube / (mean * unit * unit)
+		if c.u[i] > 0 {
+			s.strongest = math.Max(s.strongest, c.z[i]*mean/unit)
 		}
 	}
-	c.x = append(c.x, x)
+	c.x = append(c.x, make([]float64, n))
+	c.bend(0)
 	return nil
+}
+
+// curbUnit is the intensity at which the curb of row i is q.
+func (s *system) curbUnit(c *conditions, i int) float64 {
+	switch s.curb {
+	case CurbStrength:
+		return c.mean1[c.in.Shell[i]]
+	case CurbRate:
+		return s.rate / c.in.Exposure[i]
+	}
+	return s.ref1
+}
+
+// bend writes the column of the curb at an estimate q of its size. With
+// y' = y exp(-q h y) over its own shell mean,
+//
+//	y - y' = q (t - <t> y),  t = h Q + q (h Q <h Q> - h^2 T/2) + O(q^2),
+//
+// <t> being taken of t.
+func (c *conditions) bend(q float64) {
+	mean := make([]float64, len(c.tMean))
+	for i, sh := range c.in.Shell {
+		if c.w[i] > 0 {
+			mean[sh] += c.w[i] * c.first[i] / c.sum[sh]
+		}
+	}
+	clear(c.tMean)
+	for i, sh := range c.in.Shell {
+		if c.w[i] > 0 {
+			c.t[i] = c.first[i] + q*(c.first[i]*mean[sh]-c.second[i]/2)
+			c.tMean[sh] += c.w[i] * c.t[i] / c.sum[sh]
+		}
+	}
+	for i, sh := range c.in.Shell {
+		if c.w[i] > 0 {
+			c.x[1][i] = c.t[i] - c.tMean[sh]*c.y1[i]
+		}
+	}
+}
+
+// mostCurbed bounds the loss q h y of the strongest reflection in the second order,
+// whose series holds for small losses only: at this one the next term is a sixth of
+// its square, 4 %.
+const mostCurbed = 0.5
+
+// bend takes the curb of all legs to second order at q.
+func (s *system) bend(q float64) {
+	if s.strongest > 0 {
+		most := mostCurbed / s.strongest
+		q = math.Max(-most, math.Min(q, most))
+	}
+	for _, c := range s.legs {
+		c.bend(q)
+	}
 }
 
 // addFunctions appends min(z, knot), times factor where that is not nil.
