@@ -15,15 +15,15 @@ const firstRoom = 2048
 
 // plainStart marks the bytes with which a value begins that is certainly an
 // unquoted word and no heading or keyword.
-var plainStart = func() *[256]bool {
-	var t [256]bool
+var plainStart = func() *text.ByteSet {
+	var t text.ByteSet
 	for c := 33; c < 127; c++ {
 		t[c] = !strings.ContainsRune("\"#$'_[]{;dDlLsSgG", rune(c))
 	}
 	return &t
 }()
 
-var neverPlain [256]bool
+var neverPlain text.ByteSet
 
 // reflections reads the rows of a loop from its first value, p.tok, into columns.
 // Numbers and words that stand in the usual form are taken straight from the
@@ -47,23 +47,25 @@ func (p *parser) readRows(l *list) (int, error) {
 	if p.version == "2.0" {
 		q.plain = &neverPlain
 	}
+	q.rows = text.Rows{Between: blanks, Pad: blanks, Word: q.plain}
 	i, start, columns := p.i, p.i, len(l.plan.roles)
 	room := firstRoom
-	l.grow(room)
-	q.aim()
-	for n := 0; ; n++ {
+	q.aim(room)
+	for n, c := 0, 0; ; {
 		if n == room {
 			room = max(n+n/16, int(float64(p.src.SizeHint()-start)/float64(i-start)*float64(n)*1.01)+64)
-			l.grow(room)
-			q.aim()
+			q.aim(room)
 		}
-		if n%rowsPerMark == 0 {
+		if n%rowsPerMark == 0 && c == 0 {
 			l.marks = append(l.marks, i)
 		}
-		for c := 0; ; c++ {
-			if i, c = q.row(p.data, i, n, c); c == columns {
-				break
-			}
+		i, n, c = q.rows.Read(p.data, i, n, min(room, n-n%rowsPerMark+rowsPerMark), c)
+		if n == room || n%rowsPerMark == 0 && c == 0 && n/rowsPerMark == len(l.marks) {
+			continue
+		}
+		if j := q.word(p.data, i, n, c); j > 0 {
+			i = j
+		} else {
 			p.i = i
 			tok, err := p.next()
 			if err != nil {
@@ -81,92 +83,52 @@ func (p *parser) readRows(l *list) (int, error) {
 			}
 			i = p.i
 		}
+		if c++; c == columns {
+			n, c = n+1, 0
+		}
 	}
 }
 
-// quick is the path of values in the usual form: where each role stores.
+var blanks = text.Bytes(" \t\r\n")
+
+// quick is the path of values in the usual form.
 type quick struct {
 	*list
+	rows  text.Rows
 	class *[256]uint8
-	plain *[256]bool
-	index [3][]int16   // by role, from roleH
-	value [5][]float64 // by role, from roleIntensity
+	plain *text.ByteSet
 }
 
-// aim takes up the columns after they have grown.
-func (q *quick) aim() {
+// aim makes room for n rows and points the columns of rows there.
+func (q *quick) aim(n int) {
+	q.grow(n)
 	r := &q.raw
-	q.index = [3][]int16{r.H, r.K, r.L}
-	q.value = [5][]float64{r.I, r.I, r.Sigma, r.Phi, r.Partiality}
+	columns := make([]text.Column, len(q.plan.roles))
+	for c, of := range q.plan.roles {
+		columns[c] = map[role]text.Column{
+			roleSkip:       {Kind: text.ColumnSkip},
+			roleH:          {Kind: text.ColumnIndex, Index: r.H},
+			roleK:          {Kind: text.ColumnIndex, Index: r.K},
+			roleL:          {Kind: text.ColumnIndex, Index: r.L},
+			roleIntensity:  {Kind: text.ColumnValue, Value: r.I},
+			roleSigma:      {Kind: text.ColumnValue, Value: r.Sigma},
+			rolePhi:        {Kind: text.ColumnValue, Value: r.Phi},
+			rolePartiality: {Kind: text.ColumnValue, Value: r.Partiality},
+			roleFrame:      {Kind: text.ColumnCount, Count: r.Frame},
+			roleScaleGroup: {Kind: text.ColumnCount, Count: r.Frame, Code: q.scale.of},
+		}[of]
+	}
+	q.rows.Columns = columns
+	q.rows.Prepare()
 }
 
-// row stores the values of row n from column c on, the text from d[i] on, until the
-// row is full or a value is not in the usual form or not complete; it returns the
-// offset and column reached.
-func (q *quick) row(d []byte, i, n, c int) (int, int) {
-	cls := q.class
-	roles := q.plan.roles
-	for ; c < len(roles); c++ {
-		for i < len(d) && cls[d[i]] == blank {
-			i++
-		}
-		if i >= len(d) {
-			return i, c
-		}
-		switch r := roles[c]; r {
-		case roleH, roleK, roleL:
-			j, x := i, 0
-			if d[j] == '-' {
-				j++
-			}
-			from := j
-			for j < len(d) && d[j]-'0' <= 9 {
-				x = x*10 + int(d[j]-'0')
-				j++
-			}
-			if j == from || j > from+5 || j >= len(d) || cls[d[j]] != blank || x > math.MaxInt16 {
-				return i, c
-			}
-			if from > i {
-				x = -x
-			}
-			q.index[r-roleH][n] = int16(x)
-			i = j
-		case roleIntensity, roleSigma, rolePhi, rolePartiality:
-			x, j, ok := text.FastFloat(d, i)
-			if !ok || j >= len(d) || cls[d[j]] != blank {
-				return i, c
-			}
-			q.value[r-roleIntensity][n] = x
-			i = j
-		default:
-			j := q.word(d, i, n, r)
-			if j == 0 {
-				return i, c
-			}
-			i = j
-		}
+// word stores what Rows leaves: a word of column c at d[i], or a null. It returns
+// the offset behind it, 0 when it is anything else or not complete.
+func (q *quick) word(d []byte, i, n, c int) int {
+	for i < len(d) && q.class[d[i]] == blank {
+		i++
 	}
-	return i, c
-}
-
-// word is row for the roles that are no plain numbers; 0 is its refusal.
-func (q *quick) word(d []byte, i, n int, r role) int {
-	switch r {
-	case roleFrame, roleScaleGroup:
-		x, j, ok := text.FastInt(d, i)
-		if !ok || x < 0 || j >= len(d) || q.class[d[j]] != blank {
-			return 0
-		}
-		q.raw.Frame[n] = int32(x)
-		if r == roleScaleGroup {
-			q.scale.of[n] = -1
-		}
-		return j
-	case roleIntensitySU, roleScaleSet:
-		return 0
-	}
-	if !q.plain[d[i]] {
+	if i == len(d) || !q.plain[d[i]] {
 		return 0
 	}
 	j := i + 1
@@ -176,9 +138,11 @@ func (q *quick) word(d []byte, i, n int, r role) int {
 	if j == len(d) || q.class[d[j]] != blank {
 		return 0
 	}
-	switch r {
+	null := j == i+1 && (d[i] == '?' || d[i] == '.')
+	switch q.plan.roles[c] {
+	case roleSkip:
 	case roleDataSet:
-		if j == i+1 && (d[i] == '?' || d[i] == '.') {
+		if null {
 			return 0
 		}
 		q.dataSet.of[n] = q.dataSet.id(d[i:j])
@@ -187,6 +151,8 @@ func (q *quick) word(d []byte, i, n int, r role) int {
 			return 0
 		}
 		q.setStatus(n, d[i:j])
+	default:
+		return 0
 	}
 	return j
 }

@@ -9,19 +9,26 @@ import (
 	"thinward/io/internal/text"
 )
 
-// body reads rows until the end, or a row of index 0 0 0. A row in the usual form is
+// body reads rows until the end, or a row of index 0 0 0. Rows in the usual form are
 // taken straight from the bytes; any other goes field by field.
 func (r *reader) body() error {
+	rows := r.fast()
 	room := firstRoom
-	r.grow(room)
+	r.aim(rows, room)
 	start := r.i
-	for n := 0; ; n++ {
+	for n := 0; ; {
 		if n == room {
 			room = max(n+n/16, int(float64(r.src.SizeHint()-start)/float64(r.i-start)*float64(n)*1.01)+64)
-			r.grow(room)
+			r.aim(rows, room)
 		}
 		if n%rowsPerMark == 0 {
 			r.marks = append(r.marks, r.i)
+		}
+		if r.delimiter != 0 {
+			r.i, n, _ = rows.Read(r.data, r.i, n, min(room, n-n%rowsPerMark+rowsPerMark), 0)
+			if n == room || n == len(r.marks)*rowsPerMark {
+				continue
+			}
 		}
 		next, err := r.row(n)
 		if err != nil {
@@ -33,6 +40,7 @@ func (r *reader) body() error {
 			return r.src.Err()
 		}
 		r.i = next
+		n++
 	}
 }
 
@@ -42,8 +50,6 @@ func (r *reader) row(n int) (int, error) {
 		next := 0
 		if r.delimiter == 0 {
 			next = r.quickFixed(n)
-		} else {
-			next = r.quick(n)
 		}
 		if next == 0 {
 			if !r.more(r.i) {
@@ -66,51 +72,51 @@ func (r *reader) row(n int) (int, error) {
 	}
 }
 
-// quick returns 0 when the row is not in the usual form or not complete.
-func (r *reader) quick(n int) int {
-	d, i := r.data, r.i
-	delimiter, last := r.delimiter, len(r.roles)-1
-	for c, role := range r.roles {
-		for i < len(d) && (d[i] == ' ' || d[i] == '\t' && delimiter != '\t') {
-			i++
-		}
-		if i >= len(d) {
-			return 0
-		}
-		j := r.store(d, i, n, role)
-		if j == 0 || j >= len(d) {
-			return 0
-		}
-		i = j
-		if delimiter == ' ' && c < last {
-			if d[i] != ' ' && d[i] != '\t' {
-				return 0
-			}
-			continue
-		}
-		for i < len(d) && (d[i] == ' ' || d[i] == '\t' && delimiter != '\t') {
-			i++
-		}
-		if i >= len(d) {
-			return 0
-		}
-		if c < last {
-			if d[i] != delimiter {
-				return 0
-			}
-			i++
-		}
+// fast sets up the reading of rows in the usual form, which fixed widths are not.
+func (r *reader) fast() *text.Rows {
+	rows := &text.Rows{Lines: true, Word: wordStart}
+	switch r.delimiter {
+	case ' ':
+		rows.Between, rows.Pad = text.Bytes(" \t"), text.Bytes(" \t")
+	case '\t':
+		rows.Between, rows.Pad = text.Bytes("\t"), text.Bytes(" ")
+	default:
+		rows.Between, rows.Pad = text.Bytes(string(r.delimiter)), text.Bytes(" \t")
 	}
-	if d[i] == '\r' && i+1 < len(d) {
-		i++
-		if d[i] != '\n' {
-			return i
-		}
+	return rows
+}
+
+// wordStart is what a field that is skipped may begin with when it is neither quoted
+// nor a comment.
+var wordStart = func() *text.ByteSet {
+	var t text.ByteSet
+	for b := 33; b < 127; b++ {
+		t[b] = b != '"' && !comment(byte(b))
 	}
-	if d[i] != '\n' {
-		return 0
+	return &t
+}()
+
+// aim makes room for n rows and points the columns of rows there.
+func (r *reader) aim(rows *text.Rows, n int) {
+	r.grow(n)
+	c := &r.raw
+	rows.Columns = make([]text.Column, len(r.roles))
+	for j, of := range r.roles {
+		rows.Columns[j] = map[role]text.Column{
+			roleSkip:       {Kind: text.ColumnSkip},
+			roleH:          {Kind: text.ColumnIndex, Index: c.H},
+			roleK:          {Kind: text.ColumnIndex, Index: c.K},
+			roleL:          {Kind: text.ColumnIndex, Index: c.L},
+			roleIntensity:  {Kind: text.ColumnValue, Value: c.I},
+			roleSigma:      {Kind: text.ColumnValue, Value: c.Sigma},
+			rolePhi:        {Kind: text.ColumnValue, Value: c.Phi},
+			roleFrame:      {Kind: text.ColumnCount, Count: c.Frame},
+			rolePartiality: {Kind: text.ColumnValue, Value: c.Partiality},
+		}[of]
 	}
-	return i + 1
+	if r.delimiter != 0 {
+		rows.Prepare()
+	}
 }
 
 // store reads the number or word at d[i] and returns the offset behind it, 0 when
@@ -138,14 +144,6 @@ func (r *reader) store(d []byte, i, n int, role role) int {
 		}
 		r.raw.Frame[n] = int32(x)
 		return j
-	case roleSkip:
-		if d[i] == '"' {
-			return 0
-		}
-		for i < len(d) && d[i] != '\n' && d[i] != '\r' && !r.ends(d[i]) {
-			i++
-		}
-		return i
 	}
 	x, j, ok := text.FastFloat(d, i)
 	if !ok {
@@ -164,7 +162,8 @@ func (r *reader) store(d []byte, i, n int, role role) int {
 	return j
 }
 
-// quickFixed is quick for fixed widths: a field is blanks, a number, blanks.
+// quickFixed reads a row of fixed widths in the usual form: a field is blanks, a
+// number, blanks. It returns 0 for any other row and one that is not complete.
 func (r *reader) quickFixed(n int) int {
 	rest := r.data[r.i:]
 	end := bytes.IndexByte(rest, '\n')

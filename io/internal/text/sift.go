@@ -43,36 +43,29 @@ func Sift(raw *intensity.Columns, skip func(row int) string, line func(row int) 
 	use.Phi = unlessAllNaN(raw.Phi)
 	use.Partiality = unlessAllNaN(raw.Partiality)
 	use.Frame = unlessAllNull(raw.Frame)
+	if skip == nil && faultless(&use) {
+		return &use, nil
+	}
 	var asides []Aside
-	keep := make([]int32, 0)
-	all := true
+	keep := make([]int32, 0, len(raw.I))
 	for i := range raw.I {
 		reason := ""
 		if skip != nil {
 			reason = skip(i)
 		}
-		if reason == "" && !plain(&use, i) {
+		if reason == "" {
 			reason = fault(&use, i)
 		}
-		if reason == "" {
-			if !all {
-				keep = append(keep, int32(i))
-			}
-			continue
-		}
-		if all {
-			all = false
-			keep = make([]int32, i, len(raw.I))
-			for j := range keep {
-				keep[j] = int32(j)
-			}
-		}
-		if reason != OtherSet {
+		switch reason {
+		case "":
+			keep = append(keep, int32(i))
+		case OtherSet:
+		default:
 			asides = count(asides, reason, i, line)
 		}
 	}
-	if all {
-		return &use, asides
+	if len(keep) == len(raw.I) {
+		return &use, nil
 	}
 	return pick(&use, keep), asides
 }
@@ -80,10 +73,32 @@ func Sift(raw *intensity.Columns, skip func(row int) string, line func(row int) 
 // OtherSet is what skip of Sift returns for a row of a data set that was not asked for.
 const OtherSet = "\x00"
 
-// plain is the quick answer for a row of the usual kind; no column may hide a fault.
-func plain(c *intensity.Columns, i int) bool {
-	return c.H[i] > 0 && c.K[i] > NullIndex && c.L[i] > NullIndex && c.I[i] == c.I[i] && c.Sigma[i] > 0 &&
-		(c.Phi == nil || c.Phi[i] == c.Phi[i]) && c.Frame == nil && c.Partiality == nil
+// faultless reports that no row has a fault, a column at a time, as is usual.
+func faultless(c *intensity.Columns) bool {
+	h, k, l := c.H, c.K[:len(c.H)], c.L[:len(c.H)]
+	for i := range h {
+		if h[i]|k[i]|l[i] == 0 || h[i] == NullIndex || k[i] == NullIndex || l[i] == NullIndex {
+			return false
+		}
+	}
+	for _, x := range c.Sigma {
+		if !(x > 0) {
+			return false
+		}
+	}
+	for _, column := range [...][]float64{c.I, c.Phi, c.Partiality} {
+		for _, x := range column {
+			if x != x {
+				return false
+			}
+		}
+	}
+	for _, x := range c.Frame {
+		if x == NullFrame {
+			return false
+		}
+	}
+	return true
 }
 
 func fault(c *intensity.Columns, i int) string {

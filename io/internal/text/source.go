@@ -10,7 +10,7 @@ import (
 	"github.com/klauspost/compress/gzip"
 )
 
-const inflateStep = 1 << 20
+const inflateStep = 1 << 17
 
 // Source is a text that may still be growing: Bytes is what is there, More waits
 // for the next piece. Gzip data inflate in one goroutine while the caller reads,
