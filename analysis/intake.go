@@ -83,8 +83,18 @@ func (s *Study) intakeStep(ctx context.Context) (*Intake, error) {
 		return nil, err
 	}
 	warnings = append(warnings, said...)
+	var turns []TurnResult
 	for i := range in.Positions {
+		// What the indices say of the angles first: it is sharper, and turn then asks
+		// whether anything is left.
 		warnings = append(warnings, s.align(i, in.Positions[i])...)
+		own, said, err := s.turn(i, in.Positions[i])
+		if err != nil {
+			return nil, err
+		}
+		turns, warnings = append(turns, own...), append(warnings, said...)
+	}
+	for i := range in.Positions {
 		for j := range in.Positions[i] {
 			sets = append(sets, in.Positions[i][j].Observations)
 		}
@@ -106,7 +116,7 @@ func (s *Study) intakeStep(ctx context.Context) (*Intake, error) {
 		}
 	}
 	s.warnings = append(s.warnings, warnings...)
-	s.indexing = indexing
+	s.indexing, s.turns = indexing, turns
 	s.intake = in
 	return in, nil
 }

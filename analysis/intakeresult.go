@@ -2,9 +2,11 @@ package analysis
 
 import (
 	"context"
+	"fmt"
 	"math"
 	"slices"
 
+	"thinward/analysis/evidence"
 	"thinward/analysis/intensity"
 )
 
@@ -19,39 +21,77 @@ func (s *Study) IntakeTable(ctx context.Context) ([]IntakeResult, error) {
 	return s.intakeResults(ctx)
 }
 
+// IntakeDetails gives IntakeTable and all else that is known before scaling: what the
+// positions have in common, what was set aside, lattice centring, angles, indexing and
+// warnings.
+func (s *Study) IntakeDetails(ctx context.Context) (*IntakeDetails, error) {
+	if _, err := s.IntakeTable(ctx); err != nil {
+		return nil, err
+	}
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	out := &IntakeDetails{
+		Positions: s.table, Common: s.sharing, Remarks: s.remarks, Centring: s.centring, Turns: s.turns, Indexing: s.indexing,
+	}
+	for _, w := range s.warnings {
+		out.Warnings = append(out.Warnings, WarningResult{Code: w.Code, Where: w.Where, Text: w.Text})
+	}
+	return out, nil
+}
+
 func (s *Study) intakeResults(ctx context.Context) ([]IntakeResult, error) {
 	if s.table != nil {
 		return s.table, nil
 	}
+	list := s.standings()
+	limit := math.Inf(1)
+	for _, x := range list {
+		limit = math.Min(limit, s.reach(x))
+	}
+	_, reachable, err := intensity.Possible(s.Series.Cell, s.Series.Group, limit*(1+1e-9), s.Series.FriedelApart)
+	if err != nil {
+		return nil, err
+	}
 	var out []IntakeResult
-	for i := range s.Series.Crystals {
-		c := &s.Series.Crystals[i]
-		thin := c.byThickness()[0]
-		for j := range c.Positions {
-			r, err := s.intakeResult(ctx, i, j, thin)
-			if err != nil {
-				return nil, err
-			}
-			out = append(out, *r)
+	for _, x := range list {
+		if err := ctx.Err(); err != nil {
+			return nil, err
+		}
+		r, err := s.intakeResult(ctx, x, s.Series.Crystals[x.crystal].byThickness()[0])
+		if err != nil {
+			return nil, err
+		}
+		r.InOthers = s.inOthers(x, list)
+		r.CommonDMin = 1 / (2 * math.Sqrt(limit))
+		r.CompletenessCommon = float64(s.within(x, limit)) / float64(len(reachable))
+		out = append(out, *r)
+		s.remarks = append(s.remarks, s.remarksOn(x.crystal, x.position, r)...)
+	}
+	s.sharing = s.commonResults(list)
+	s.centring = s.centringResults(list)
+	for _, c := range s.centring {
+		if c.Verdict == evidence.Caution.String() || c.Verdict == evidence.Fails.String() {
+			s.warn("centring", "lattice "+c.Centring, "%s", c.Why)
+		}
+	}
+	for _, c := range s.sharing {
+		if c.Why != "" && c.Crystal == c.WithCrystal {
+			s.warn("common", c.Crystal+"/"+c.Position+" and "+c.WithCrystal+"/"+c.WithPosition, "%s", c.Why)
 		}
 	}
 	s.table = out
 	return out, nil
 }
 
-func (s *Study) intakeResult(ctx context.Context, i, j, thin int) (*IntakeResult, error) {
+func (s *Study) intakeResult(ctx context.Context, x *standing, thin int) (*IntakeResult, error) {
+	i, j := x.crystal, x.position
 	p, a, cat := &s.Series.Crystals[i].Positions[j], &s.intake.Positions[i][j], s.intake.Catalogue
-	raw := &intensity.Scaled{Unique: a.Unique, Raw: a.Raw, I: a.Observations.I, Var: make([]float64, len(a.Unique)), Phi: a.Observations.Phi}
-	for r, sigma := range a.Observations.Sigma {
-		raw.Var[r] = sigma * sigma
-	}
-	_, all, err := intensity.Precise(ctx, raw, cat, &intensity.PrecisionSettings{Shells: 1, Key: s.Series.Seed})
+	_, all, err := intensity.Precise(ctx, s.raw(i, j), cat, &intensity.PrecisionSettings{Shells: 1, Key: s.Series.Seed})
 	if err != nil {
 		return nil, err
 	}
-	merged := intensity.Merge(cat.Len(), raw)
-	sh := cat.Shells(s.shellCount([]*intensity.Merged{merged}), merged)
-	negatives := intensity.CountNegatives(a.Unique, a.Observations.I, a.Observations.Sigma, cat, sh)
+	negatives := intensity.CountNegatives(a.Unique, a.Observations.I, a.Observations.Sigma, cat, x.shells)
+	sigmas := intensity.CheckSigmas(a.Unique, a.Observations)
 	cuts := intensity.FindCuts(a.Observations)
 	r := &IntakeResult{
 		Crystal: s.Series.Crystals[i].Name, Position: p.Name, ThicknessNM: p.ThicknessNM,
@@ -60,6 +100,11 @@ func (s *Study) intakeResult(ctx context.Context, i, j, thin int) (*IntakeResult
 		AngleLo: math.NaN(), AngleHi: math.NaN(), AngleGap: math.NaN(), MeanISigma: all.IOverSigma,
 		Negative: negatives.Observed[:], NegativeExp: negatives.Expected[:],
 		RMeas: all.R.Meas, RPim: all.R.Pim, CCHalf: all.CCHalf, Overlap: s.overlap(i, j, thin),
+		Cell:   s.Series.cellAgreement(p),
+		Sigmas: sigmaResult(sigmas),
+	}
+	for _, w := range sigmas.Warnings {
+		s.warn(w.Code, s.place(i, j), "%s", w.Text)
 	}
 	for _, n := range a.Excluded {
 		r.Excluded += n
@@ -84,6 +129,14 @@ func (s *Study) intakeResult(ctx context.Context, i, j, thin int) (*IntakeResult
 		r.Why = "no rotation angles: observations cannot be matched, the scale is one constant and B"
 	}
 	return r, nil
+}
+
+func sigmaResult(c *intensity.Sigmas) SigmaResult {
+	r := SigmaResult{Same: c.Same, Proportional: c.Proportional, Ceiling: c.Ceiling, Chi2: c.Chi2, Chi2SE: c.Chi2SE, Pairs: c.Pairs, AnyAngle: c.AnyAngle}
+	if math.IsNaN(c.Chi2) {
+		r.Why = fmt.Sprintf("%d pairs of near equivalents are too few to check the size of the sigmas", c.Pairs)
+	}
+	return r
 }
 
 // aroundZero counts observations up to half a sigma below and above zero. Noise

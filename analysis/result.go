@@ -15,6 +15,10 @@ type Result struct {
 	Seed          uint64           `json:"seed"`
 	Inputs        []InputResult    `json:"inputs"`
 	Intake        []IntakeResult   `json:"intake"`
+	Common        []CommonResult   `json:"common_reflections,omitempty"`
+	Remarks       []IntakeRemark   `json:"intake_remarks,omitempty"`
+	Centring      []CentringResult `json:"centring,omitempty"`
+	Turns         []TurnResult     `json:"turns,omitempty"`
 	Indexing      []IndexingResult `json:"indexing,omitempty"`
 	Scaling       []ScalingResult  `json:"scaling"`
 	Contrasts     []ContrastResult `json:"contrasts"`
@@ -69,9 +73,18 @@ type IntakeResult struct {
 	RPim         float64   `json:"r_pim"`
 	CCHalf       float64   `json:"cc_half"`
 	Overlap      float64   `json:"overlap_with_thinnest"`
-	Excluded     int       `json:"excluded"`
-	Truncated    string    `json:"truncated,omitempty"`
-	Why          string    `json:"why,omitempty"`
+	// InOthers is the share of the unique reflections that another crystal has too;
+	// NaN with one crystal.
+	InOthers float64 `json:"share_in_other_crystals"`
+	// CommonDMin is the resolution that every position of the series reaches, and
+	// CompletenessCommon the completeness to it.
+	CommonDMin         float64       `json:"common_d_min_a"`
+	CompletenessCommon float64       `json:"completeness_to_common_limit"`
+	Cell               CellAgreement `json:"cell"`
+	Sigmas             SigmaResult   `json:"sigmas"`
+	Excluded           int           `json:"excluded"`
+	Truncated          string        `json:"truncated,omitempty"`
+	Why                string        `json:"why,omitempty"`
 }
 
 // ScalingResult is the scale and the noise model of one position. LnK is the
@@ -152,15 +165,19 @@ type Left struct {
 type ThicknessResult struct {
 	Lines []ThicknessLine `json:"lines"`
 	Slope Interval        `json:"slope_per_100nm"`
-	Why   string          `json:"why,omitempty"`
+	// Across is the line through separate crystals.
+	Across *AcrossLine `json:"across_crystals,omitempty"`
+	Why    string      `json:"why,omitempty"`
 }
 
-// ThicknessLine is one crystal's line through its positions.
+// ThicknessLine is one crystal's line through its positions. Rising is the non-decreasing
+// sequence nearest to Mu.
 type ThicknessLine struct {
 	Crystal string    `json:"crystal"`
 	T       []float64 `json:"thickness_nm"`
 	Mu      []float64 `json:"mu"`
 	MuSE    []float64 `json:"mu_se"`
+	Rising  []float64 `json:"rising"`
 	Slope   Interval  `json:"slope_per_100nm"`
 	Chi2    float64   `json:"chi2"`
 	DF      int       `json:"df"`

@@ -24,6 +24,9 @@ type Series struct {
 	// ElasticMFPNM and InelasticMFPNM are mean free paths of the electrons in nm; 0
 	// when not given.
 	ElasticMFPNM, InelasticMFPNM float64
+	// CellTolerance is the largest relative difference of a cell length, and of an
+	// angle in radians, between a file and Cell; 0 = 0.02.
+	CellTolerance float64
 	// FriedelApart keeps Friedel mates as reflections of their own.
 	FriedelApart bool
 	Primary      Primary
@@ -78,6 +81,8 @@ type Exclusion struct {
 type Source struct {
 	Path, SHA256 string
 	Rows         int
+	// Cell as this file gives it, in the indexing of the series; zero when it gives none.
+	Cell crystal.Cell
 	// SetAside counts rows that could not be used, by reason.
 	SetAside []SetAside
 }
@@ -136,6 +141,9 @@ func (s *Series) check() error {
 	}
 	if s.ThicknessScaleSU < 0 || math.IsNaN(s.ThicknessScaleSU) {
 		return fmt.Errorf("thickness_scale_su is %g: it must be 0 or more", s.ThicknessScaleSU)
+	}
+	if err := s.checkCells(); err != nil {
+		return err
 	}
 	_, err := s.contrasts()
 	return err

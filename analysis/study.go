@@ -68,6 +68,10 @@ type Study struct {
 	list          []Contrast
 	intake        *Intake
 	table         []IntakeResult
+	sharing       []CommonResult
+	remarks       []IntakeRemark
+	centring      []CentringResult
+	turns         []TurnResult
 	indexing      []IndexingResult
 	scaled        []*ScaledCrystal
 	compared      map[Contrast]*Compared

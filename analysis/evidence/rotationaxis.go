@@ -14,6 +14,12 @@ type Axis struct {
 	// ResidualDeg is the rms angle by which crossings miss the plane across the
 	// beam at their angle.
 	ResidualDeg float64
+	// Beam and Beam90 are unit vectors along the beam in the crystal at 0 and at 90
+	// degrees. Their common sign follows from the curvature of the sphere and is
+	// known when Sense is true: when the mean of (u cos phi + w sin phi) . x/|x| is
+	// below zero by five of its standard errors.
+	Beam, Beam90 [3]float64
+	Sense        bool
 }
 
 // RotationAxis finds the axis of a rotation series without an orientation
@@ -61,8 +67,30 @@ func RotationAxis(x [][3]float64, phiDeg []float64) (*Axis, error) {
 	d := [3]float64{u[1]*w[2] - u[2]*w[1], u[2]*w[0] - u[0]*w[2], u[0]*w[1] - u[1]*w[0]}
 	n := math.Sqrt(dot(d, d))
 	out := &Axis{Direction: [3]float64{d[0] / n, d[1] / n, d[2] / n}}
+	out.orient(u, w, x, phiDeg)
 	out.ResidualDeg = math.Asin(math.Min(1, math.Sqrt(eig.Values(nil)[0]/float64(len(x)))/math.Sqrt(nu*nw))) * 180 / math.Pi
 	return out, nil
+}
+
+// orient sets the directions of the beam.
+func (a *Axis) orient(u, w [3]float64, x [][3]float64, phiDeg []float64) {
+	nu, nw := math.Sqrt(dot(u, u)), math.Sqrt(dot(w, w))
+	sum, square := 0.0, 0.0
+	for i, v := range x {
+		s, c := math.Sincos(phiDeg[i] * math.Pi / 180)
+		r := (float64(c*dot(u, v)) + float64(s*dot(w, v))) / math.Sqrt(dot(v, v))
+		sum += r
+		square += r * r
+	}
+	n := float64(len(x))
+	sign := 1.0
+	if sum > 0 {
+		sign = -1
+	}
+	a.Sense = math.Abs(sum) > 5*math.Sqrt(math.Max(square-sum*sum/n, 0))
+	for k := range 3 {
+		a.Beam[k], a.Beam90[k] = sign*u[k]/nu, sign*w[k]/nw
+	}
 }
 
 func crossingRow(v [3]float64, phiDeg float64) [6]float64 {

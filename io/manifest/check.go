@@ -174,6 +174,10 @@ func (p *Position) check(c *checker, at place, crystal string, seen map[string]b
 		return c.fail(at, "dose_e_per_A2", fmt.Sprintf("%s: %g is no dose", where, p.Dose), "give electrons per square angstrom, 0 or more")
 	case p.Order < 0:
 		return c.fail(at, "order", fmt.Sprintf("%s: %d is no order", where, p.Order), "count measurements from 1")
+	case math.IsNaN(p.AngleFactor) || math.IsInf(p.AngleFactor, 0):
+		return c.fail(at, "angle_factor", fmt.Sprintf("%s: %g is no factor", where, p.AngleFactor), "give what turns the angles of the file into degrees, such as -1.0 or 57.29578, or leave it out")
+	case math.IsNaN(p.AngleShiftDeg) || math.IsInf(p.AngleShiftDeg, 0):
+		return c.fail(at, "angle_shift_deg", fmt.Sprintf("%s: %g is no angle", where, p.AngleShiftDeg), "give degrees, or leave it out")
 	case len(p.Files) == 0:
 		return c.fail(at, "files", where+" names no file", `add files = ["..."]`)
 	}

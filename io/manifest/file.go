@@ -78,6 +78,8 @@ type Position struct {
 	Files         []string `toml:"files"`
 	Block         string   `toml:"block,omitempty"`
 	Reindex       string   `toml:"reindex,omitempty"`
+	AngleFactor   float64  `toml:"angle_factor,omitempty"`    // 0 stands for 1
+	AngleShiftDeg float64  `toml:"angle_shift_deg,omitempty"` // added after the factor
 	Exclude       Exclude  `toml:"exclude,omitempty"`
 }
 
@@ -167,7 +169,7 @@ var known = map[string][]string{
 	"cell":                     {"a", "b", "c", "alpha", "beta", "gamma"},
 	"columns":                  {"order", "widths", "delimiter"},
 	"crystal":                  {"name", "position"},
-	"crystal.position":         {"name", "thickness_nm", "thickness_su_nm", "order", "dose_e_per_A2", "tilt_zero_deg", "replicate_of", "rows", "files", "block", "reindex", "exclude"},
+	"crystal.position":         {"name", "thickness_nm", "thickness_su_nm", "order", "dose_e_per_A2", "tilt_zero_deg", "replicate_of", "rows", "files", "block", "reindex", "angle_factor", "angle_shift_deg", "exclude"},
 	"crystal.position.exclude": {"frames", "shells_A", "ice"},
 	"between":                  {"thin", "thick"},
 }

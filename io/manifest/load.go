@@ -14,10 +14,6 @@ import (
 	"thinward/analysis/intensity"
 )
 
-// defaultCellTolerance is the largest relative difference of cell lengths, and
-// of angles in radians, that files of one series may show.
-const defaultCellTolerance = 0.02
-
 // energyTolerance is the relative difference of beam energies that is passed over:
 // more than the rounding of a wavelength to three digits makes.
 const energyTolerance = 0.02
@@ -65,6 +61,7 @@ type found struct {
 type foundCell struct {
 	file string
 	cell crystal.Cell
+	at   place
 }
 
 func (l *loader) fail(at place, key, problem, remedy string, cause error) error {
@@ -81,8 +78,8 @@ func (l *loader) series() (*analysis.Series, error) {
 	f := l.file
 	l.out = analysis.Series{
 		Title: f.Title, EnergyKeV: f.EnergyKeV, Seed: f.Seed, ThicknessScaleSU: f.ThicknessScaleSU,
-		FriedelApart: f.FriedelApart,
-		Primary:      analysis.Primary{Thin: f.Primary.Thin, Thick: f.Primary.Thick},
+		FriedelApart: f.FriedelApart, CellTolerance: f.CellTolerance,
+		Primary: analysis.Primary{Thin: f.Primary.Thin, Thick: f.Primary.Thick},
 	}
 	if m := f.MeanFreePath; m != nil {
 		l.out.ElasticMFPNM, l.out.InelasticMFPNM = m.ElasticNM, m.InelasticNM
@@ -116,6 +113,14 @@ func (l *loader) position(p *Position, at place, crystalName string) (*analysis.
 	if err != nil {
 		return nil, l.fail(at, "rows", err.Error(), "", err)
 	}
+	var by *crystal.Reindexing
+	if p.Reindex != "" {
+		r, err := crystal.ParseReindexing(p.Reindex)
+		if err != nil {
+			return nil, l.fail(at, "reindex", err.Error(), `write for instance reindex = "k,h,-l"`, err)
+		}
+		by = &r
+	}
 	where := crystalName + "/" + p.Name
 	out := &analysis.Position{
 		Name: p.Name, ThicknessNM: p.ThicknessNM, ThicknessSU: p.ThicknessSUNM, Order: p.Order, DosePerA2: p.Dose,
@@ -145,11 +150,18 @@ func (l *loader) position(p *Position, at place, crystalName string) (*analysis.
 			w.Where = where + ", " + filepath.Base(name)
 			l.out.Warnings = append(l.out.Warnings, w)
 		}
-		if r.cell != nil {
-			if out.Cell == (crystal.Cell{}) {
-				out.Cell = *r.cell
+		if by != nil {
+			if err := r.reset(*by); err != nil {
+				return nil, l.fail(at, "reindex", err.Error(), `write for instance reindex = "k,h,-l"`, err)
 			}
-			l.cells = append(l.cells, foundCell{name, *r.cell})
+		}
+		var cell crystal.Cell
+		if r.cell != nil {
+			cell = *r.cell
+			if out.Cell == (crystal.Cell{}) {
+				out.Cell = cell
+			}
+			l.cells = append(l.cells, foundCell{name, cell, at})
 		}
 		if r.group != nil {
 			l.groups = append(l.groups, found{name, r.group})
@@ -159,17 +171,32 @@ func (l *loader) position(p *Position, at place, crystalName string) (*analysis.
 		if err != nil {
 			return nil, &Error{File: path, Problem: cause(err), Err: err}
 		}
-		out.Sources = append(out.Sources, analysis.Source{Path: name, SHA256: sum, Rows: r.rows, SetAside: r.aside})
+		out.Sources = append(out.Sources, analysis.Source{Path: name, SHA256: sum, Rows: r.rows, Cell: cell, SetAside: r.aside})
 		if out.Rows, err = join(out.Rows, r.columns); err != nil {
 			return nil, l.fail(at, "files", where+": "+err.Error(), "give files of one kind to a position", err)
 		}
 	}
-	if p.Reindex != "" {
-		if err := reindex(out.Rows, p.Reindex); err != nil {
-			return nil, l.fail(at, "reindex", err.Error(), `write for instance reindex = "k,h,-l"`, err)
-		}
+	if err := recount(out.Rows, p.AngleFactor, p.AngleShiftDeg); err != nil {
+		return nil, l.fail(at, "angle_factor", err.Error(), "leave angle_factor and angle_shift_deg out", err)
 	}
 	return out, nil
+}
+
+// reset brings indices, cell and symmetry of a file to other axes.
+func (r *reflections) reset(by crystal.Reindexing) error {
+	if err := reindex(r.columns, by); err != nil {
+		return err
+	}
+	if r.cell != nil {
+		cell := by.Cell(*r.cell)
+		r.cell = &cell
+	}
+	if r.group == nil {
+		return nil
+	}
+	var err error
+	r.group, err = by.Group(r.group)
+	return err
 }
 
 // join appends b to a. Frame numbers of b are moved beyond those of a, since
@@ -258,30 +285,27 @@ func (l *loader) cell() error {
 	} else {
 		return l.fail(top, "cell", "neither the manifest nor a file gives the unit cell", "add a [cell] table with a, b, c, alpha, beta, gamma", nil)
 	}
-	tolerance := l.file.CellTolerance
-	if tolerance == 0 {
-		tolerance = defaultCellTolerance
-	}
 	for _, c := range l.cells {
-		if worst := cellDistance(l.out.Cell, c.cell); worst > tolerance {
-			return l.fail(top, "cell_tolerance", fmt.Sprintf("the cell of %s differs by %.1f %% from that of the series, more than %.1f %%", c.file, 100*worst, 100*tolerance),
-				"check that the file belongs to the series and is indexed in the same setting, or raise cell_tolerance", nil)
+		if text := l.out.CellOff(c.cell); text != "" {
+			return l.fail(c.at, "files", c.file+": "+text, remedyForCell(l.out.Cell, c.cell), nil)
 		}
 	}
 	return nil
 }
 
-// cellDistance is the largest relative difference of a length or difference of
-// an angle in radians.
-func cellDistance(a, b crystal.Cell) float64 {
-	worst := 0.0
-	for _, p := range [][2]float64{{a.A, b.A}, {a.B, b.B}, {a.C, b.C}} {
-		worst = math.Max(worst, math.Abs(p[1]/p[0]-1))
+// remedyForCell proposes another order of the axes where that brings the cells
+// together.
+func remedyForCell(series, file crystal.Cell) string {
+	for _, text := range []string{"l,h,k", "k,l,h", "k,h,-l", "-h,l,k", "l,-k,h"} {
+		by, err := crystal.ParseReindexing(text)
+		if err != nil {
+			continue
+		}
+		if d := crystal.CompareCells(series, by.Cell(file)); d.Length < 0.01 && d.Angle < 1 {
+			return fmt.Sprintf("its axes look named in another order: write reindex = %q for this position", text)
+		}
 	}
-	for _, p := range [][2]float64{{a.Alpha, b.Alpha}, {a.Beta, b.Beta}, {a.Gamma, b.Gamma}} {
-		worst = math.Max(worst, math.Abs(p[1]-p[0])*math.Pi/180)
-	}
-	return worst
+	return "check that the file belongs to the series and is indexed in the same setting, or raise cell_tolerance"
 }
 
 func (c *Cell) whole() crystal.Cell {

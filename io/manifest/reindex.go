@@ -3,38 +3,39 @@ package manifest
 import (
 	"fmt"
 	"math"
-	"strings"
 
 	"thinward/analysis/crystal"
 	"thinward/analysis/intensity"
 )
 
-// reindex replaces the indices of c by those that text names, such as "k,h,-l".
-// The text must be a whole-number change with determinant 1 or -1.
-func reindex(c *intensity.Columns, text string) error {
-	xyz := strings.NewReplacer("h", "x", "k", "y", "l", "z", "H", "x", "K", "y", "L", "z").Replace(text)
-	op, err := crystal.ParseOp(xyz)
-	if err != nil {
-		return fmt.Errorf("%q is no change of indices: %w", text, err)
-	}
-	if op.T != [3]int8{} {
-		return fmt.Errorf("%q is no change of indices: it holds a constant", text)
-	}
-	if d := op.Det(); d != 1 && d != -1 {
-		return fmt.Errorf("%q is no change of indices: its determinant is %d", text, d)
-	}
+// reindex replaces the indices of c by their images.
+func reindex(c *intensity.Columns, by crystal.Reindexing) error {
 	for r := range c.H {
-		old := [3]int{int(c.H[r]), int(c.K[r]), int(c.L[r])}
-		var now [3]int
-		for j := range 3 {
-			for i := range 3 {
-				now[j] += int(op.R[j][i]) * old[i]
-			}
-			if now[j] < math.MinInt16 || now[j] > math.MaxInt16 {
-				return fmt.Errorf("index %v is too large after %q", old, text)
+		old := crystal.HKL{H: int(c.H[r]), K: int(c.K[r]), L: int(c.L[r])}
+		n := by.Apply(old)
+		for _, v := range []int{n.H, n.K, n.L} {
+			if v < math.MinInt16 || v > math.MaxInt16 {
+				return fmt.Errorf("index %d %d %d is too large after %q", old.H, old.K, old.L, by)
 			}
 		}
-		c.H[r], c.K[r], c.L[r] = int16(now[0]), int16(now[1]), int16(now[2])
+		c.H[r], c.K[r], c.L[r] = int16(n.H), int16(n.K), int16(n.L)
+	}
+	return nil
+}
+
+// recount brings the angles of c to factor phi + shift in degrees.
+func recount(c *intensity.Columns, factor, shift float64) error {
+	if factor == 0 {
+		factor = 1
+	}
+	if factor == 1 && shift == 0 {
+		return nil
+	}
+	if c.Phi == nil {
+		return fmt.Errorf("the files of this position have no rotation angles")
+	}
+	for r := range c.Phi {
+		c.Phi[r] = factor*c.Phi[r] + shift
 	}
 	return nil
 }

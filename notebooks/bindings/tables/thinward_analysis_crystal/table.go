@@ -29,6 +29,7 @@ func init() {
 			"Lookup":               reflect.ValueOf(crystal.Lookup),
 			"ParseOp":              reflect.ValueOf(crystal.ParseOp),
 			"ParseOperators":       reflect.ValueOf(crystal.ParseOperators),
+			"ParseReindexing":      reflect.ValueOf(crystal.ParseReindexing),
 			"ScrewAxis":            reflect.ValueOf(crystal.ScrewAxis),
 			"Tabulated":            reflect.ValueOf(crystal.Tabulated),
 			"Twentyfourths":        reflect.ValueOf(crystal.Twentyfourths),

@@ -17,6 +17,8 @@ func init() {
 		Name: "difference",
 		Binds: map[string]reflect.Value{
 			"Agree":               reflect.ValueOf(difference.Agree),
+			"Align":               reflect.ValueOf(difference.Align),
+			"AlignAny":            reflect.ValueOf(difference.AlignAny),
 			"AxisCrystals":        reflect.ValueOf(difference.AxisCrystals),
 			"AxisHalfThick":       reflect.ValueOf(difference.AxisHalfThick),
 			"AxisHalfThin":        reflect.ValueOf(difference.AxisHalfThin),
@@ -37,6 +39,8 @@ func init() {
 		},
 		Types: map[string]reflect.Type{
 			"Agreement":       reflect.TypeOf((*difference.Agreement)(nil)).Elem(),
+			"Alignment":       reflect.TypeOf((*difference.Alignment)(nil)).Elem(),
+			"Angled":          reflect.TypeOf((*difference.Angled)(nil)).Elem(),
 			"Axis":            reflect.TypeOf((*difference.Axis)(nil)).Elem(),
 			"Counts":          reflect.TypeOf((*difference.Counts)(nil)).Elem(),
 			"Fold":            reflect.TypeOf((*difference.Fold)(nil)).Elem(),
@@ -48,9 +52,11 @@ func init() {
 			"RefusedError":    reflect.TypeOf((*difference.RefusedError)(nil)).Elem(),
 			"Score":           reflect.TypeOf((*difference.Score)(nil)).Elem(),
 			"Settings":        reflect.TypeOf((*difference.Settings)(nil)).Elem(),
+			"SideCounts":      reflect.TypeOf((*difference.SideCounts)(nil)).Elem(),
 			"Strengths":       reflect.TypeOf((*difference.Strengths)(nil)).Elem(),
 			"Tipping":         reflect.TypeOf((*difference.Tipping)(nil)).Elem(),
 			"TippingSettings": reflect.TypeOf((*difference.TippingSettings)(nil)).Elem(),
+			"Turn":            reflect.TypeOf((*difference.Turn)(nil)).Elem(),
 		},
 		Untypeds: map[string]string{
 			"LeastCorrelation": "float:1/2",

@@ -17,6 +17,7 @@ func init() {
 		Name: "intensity",
 		Binds: map[string]reflect.Value{
 			"CCStar":            reflect.ValueOf(intensity.CCStar),
+			"CheckSigmas":       reflect.ValueOf(intensity.CheckSigmas),
 			"Collapse":          reflect.ValueOf(intensity.Collapse),
 			"Correlate":         reflect.ValueOf(intensity.Correlate),
 			"CountNegatives":    reflect.ValueOf(intensity.CountNegatives),
@@ -50,6 +51,7 @@ func init() {
 			"WilsonBelow":       reflect.ValueOf(intensity.WilsonBelow),
 			"WilsonMoment":      reflect.ValueOf(intensity.WilsonMoment),
 			"WilsonNoisyBelow":  reflect.ValueOf(intensity.WilsonNoisyBelow),
+			"WindowDeg":         reflect.ValueOf(intensity.WindowDeg),
 		},
 		Types: map[string]reflect.Type{
 			"Catalogue":         reflect.TypeOf((*intensity.Catalogue)(nil)).Elem(),
@@ -69,12 +71,14 @@ func init() {
 			"RowsUnclearError":  reflect.TypeOf((*intensity.RowsUnclearError)(nil)).Elem(),
 			"Scaled":            reflect.TypeOf((*intensity.Scaled)(nil)).Elem(),
 			"Shells":            reflect.TypeOf((*intensity.Shells)(nil)).Elem(),
+			"Sigmas":            reflect.TypeOf((*intensity.Sigmas)(nil)).Elem(),
 			"Warning":           reflect.TypeOf((*intensity.Warning)(nil)).Elem(),
 		},
 		Untypeds: map[string]string{
 			"LimitOfRows":   "float:1/20",
 			"MaxIndex":      "int:32767",
 			"NoneForbidden": "string:the group forbids none",
+			"WindowDeg":     "int:5",
 		},
 	}
 }
