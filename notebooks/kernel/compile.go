@@ -41,8 +41,11 @@ func (b *builder) compile(ctx context.Context, in *inputs, path string) (fresh s
 	return fresh, clear, b.build(ctx, overlay, fresh, total)
 }
 
-// writeOverlay writes the edited copies and the overlay that lays them and the
-// unchanged sources beside our main package. Their place is the same for every
+// docsFile is the source with the comments, made for the build.
+const docsFile = "docs_table.go"
+
+// writeOverlay writes the edited copies, the comments and the overlay that lays
+// them and the unchanged sources beside our main package. Their place is the same for every
 // build, so that the Go tool finds its own cached results again; the lock keeps
 // two builds from writing at once.
 func (b *builder) writeOverlay(in *inputs) (string, error) {
@@ -51,6 +54,15 @@ func (b *builder) writeOverlay(in *inputs) (string, error) {
 		return "", err
 	}
 	replace := map[string]string{}
+	text, err := in.documentation()
+	if err != nil {
+		return "", err
+	}
+	place := filepath.Join(dir, docsFile)
+	if err := writeIfNew(place, text); err != nil {
+		return "", err
+	}
+	replace[filepath.Join(b.root, "notebooks", "kernel", "main", docsFile)] = place
 	for _, name := range in.sources {
 		from := filepath.Join(in.dir, name)
 		if text, ok := in.edited[name]; ok {
@@ -61,7 +73,7 @@ func (b *builder) writeOverlay(in *inputs) (string, error) {
 		}
 		replace[filepath.Join(b.root, "notebooks", "kernel", "main", "gophernotes_"+name)] = from
 	}
-	text, err := json.MarshalIndent(map[string]any{"Replace": replace}, "", "\t")
+	text, err = json.MarshalIndent(map[string]any{"Replace": replace}, "", "\t")
 	if err != nil {
 		return "", err
 	}

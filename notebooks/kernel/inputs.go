@@ -16,6 +16,9 @@ import (
 	"sort"
 	"strings"
 	"time"
+
+	"thinward/notebooks/bindings"
+	"thinward/notebooks/kernel/docs"
 )
 
 const (
@@ -31,6 +34,7 @@ type inputs struct {
 	dir     string            // of gophernotes' sources
 	sources []string          // their names, without those left out
 	edited  map[string]string // name to text, of those that edits change
+	docs    []listed          // the packages whose comments cells can ask for
 }
 
 type listed struct {
@@ -78,6 +82,9 @@ func (b *builder) inputs(ctx context.Context) (*inputs, error) {
 		case p.Module != nil && p.Module.Main:
 			ours = append(ours, p)
 		}
+		if bindings.Holds(p.ImportPath) && len(p.GoFiles) > 0 {
+			in.docs = append(in.docs, p)
+		}
 	}
 	if in.dir == "" {
 		return nil, &BuildError{Step: "sources", Err: errors.New("no sources of " + gophernotes), Remedy: "It must stand in go.mod as a tool."}
@@ -123,6 +130,20 @@ func (in *inputs) edit(sum hash.Hash) error {
 	}
 	in.sources = rest
 	return nil
+}
+
+// documentation makes the source that carries the comments of all packages that
+// cells can import.
+func (in *inputs) documentation() ([]byte, error) {
+	packages := map[string]*docs.Package{}
+	for _, p := range in.docs {
+		extracted, err := docs.Extract(p.ImportPath, p.Dir, p.GoFiles)
+		if err != nil {
+			return nil, err
+		}
+		packages[p.ImportPath] = extracted
+	}
+	return docs.Source(packages)
 }
 
 // part adds a name and a content to a sum so that no two lists of parts give the

@@ -9,6 +9,7 @@ import (
 	"strings"
 	"testing"
 	"time"
+	"unicode/utf8"
 
 	"github.com/go-zeromq/zmq4"
 )
@@ -199,6 +200,52 @@ func TestCompletion(t *testing.T) {
 		if got["status"] != "ok" || got["cursor_start"] != c.start || got["cursor_end"] != c.end || c.match != "" && !slices.Contains(matches, any(c.match)) || c.match == "" && len(matches) > 0 {
 			t.Errorf("%q: %v", c.code, got)
 		}
+	}
+}
+
+func TestInspection(t *testing.T) {
+	r := openKernel(t)
+	if _, err := r.try("import (\n\"strings\"\n\"thinward/analysis/crystal\"\n\"thinward/notebooks/session\"\n\"gonum.org/v1/gonum/stat\"\n\"display\"\n)\n_ = display.HTML\nvar s *session.Session\nc := crystal.Cell{}\nn := 3"); err != nil {
+		t.Fatal(err)
+	}
+	for _, c := range []struct {
+		name, code, at string // the cursor stands behind the first at
+		want           []string
+	}{
+		{"function", "session.OpenWith", "OpenWith", []string{"func OpenWith(path string, o Options) *Session", "OpenWith is Open with options."}},
+		{"among the arguments", "t := session.NewTable(\"a\", ", "\"a\", ", []string{"func NewTable(", "*Table"}},
+		{"inside a name", "session.OpenWith(x)", "session.Op", []string{"func OpenWith("}},
+		{"behind letters of two bytes", "m := \"häß→\"; strings.Repeat", "Repeat", []string{"func Repeat(s string, count int) string", "Repeat returns a new string"}},
+		{"method of a variable", "s.Result()", "Result", []string{"func (s *Session) Result() *analysis.Result", "Result runs every step"}},
+		{"method of what a call gives", "x := s.Study().Find", "Find", []string{"func (s *Study) Find("}},
+		{"field", "c.Alpha", "Alpha", []string{"field Alpha float64"}},
+		{"field of an element", "s.Result().Contrasts[0].Pairs", "Pairs", []string{"field Pairs"}},
+		{"type", "crystal.Cell", "Cell", []string{"type Cell struct"}},
+		{"variable", "s", "s", []string{"s *session.Session", "type Session struct", "Session is one series on its way"}},
+		{"variable of no package", "n + 1", "n", []string{"n int"}},
+		{"package", "session.", "session", []string{"package session // import \"thinward/notebooks/session\"", "OpenWith"}},
+		{"another's function", "stat.Mean", "Mean", []string{"func Mean(x, weights []float64) float64"}},
+		{"constant", "session.OutEnv", "OutEnv", []string{"const OutEnv"}},
+		{"half a cell", "if x := session.Open(", "Open(", []string{"func Open(path string) *Session"}},
+		{"no name", "1 + 2", "1", nil},
+		{"unknown name", "nothingLikeThis", "This", nil},
+		{"unknown member", "s.Nope", "Nope", nil},
+		{"not run yet", "later := 3\nlater", "later", nil},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			head := c.code[:strings.Index(c.code, c.at)+len(c.at)]
+			got := r.ask(t, r.client.shell, "inspect_request", map[string]any{"code": c.code, "cursor_pos": utf8.RuneCountInString(head), "detail_level": 0})
+			data, _ := got["data"].(map[string]any)
+			text, _ := data["text/plain"].(string)
+			if got["status"] != "ok" || got["found"] != (c.want != nil) || (text == "") != (c.want == nil) {
+				t.Fatalf("%v", got)
+			}
+			for _, w := range c.want {
+				if !strings.Contains(text, w) {
+					t.Errorf("%q is not in\n%s", w, text)
+				}
+			}
+		})
 	}
 }
 

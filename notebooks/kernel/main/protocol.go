@@ -71,9 +71,12 @@ func completions(ir *interp.Interp, code string, at int) (head string, matches [
 	return head, matches
 }
 
-// answerOther replies to requests that front ends wait for and that there is
-// nothing to say to.
+// answerOther replies to inspect requests, and to requests that front ends wait
+// for and that there is nothing to say to.
 func answerOther(receipt msgReceipt) error {
+	if receipt.Msg.Header.MsgType == "inspect_request" {
+		return replyInspect(receipt)
+	}
 	content, ok := emptyReplies[receipt.Msg.Header.MsgType]
 	if !ok {
 		return nil
@@ -85,8 +88,6 @@ var emptyReplies = map[string]struct {
 	typ  string
 	body map[string]interface{}
 }{
-	"inspect_request": {"inspect_reply", map[string]interface{}{
-		"status": "ok", "found": false, "data": map[string]interface{}{}, "metadata": map[string]interface{}{}}},
 	"history_request":   {"history_reply", map[string]interface{}{"status": "ok", "history": []interface{}{}}},
 	"comm_info_request": {"comm_info_reply", map[string]interface{}{"status": "ok", "comms": map[string]interface{}{}}},
 }
