@@ -141,8 +141,25 @@ func answerWhere(list []*ContrastResult) Answer {
 		a.Verdict, a.Text = VerdictUnknown, "The curve against strength could not be tested."+units
 		return a
 	}
-	a.Text = fmt.Sprintf("The curve against strength is flat within its noise in %s.%s", crystalsOf(len(known), list), units)
+	a.Text = fmt.Sprintf("The curve against strength is flat within its noise in %s; a mean of %s in the weakest class, or of %s in the strongest, would have been seen in each crystal with 80 %% power.%s",
+		crystalsOf(len(known), list), leastClass(list, false), leastClass(list, true), units)
 	return a
+}
+
+// leastClass is the contrast of the weakest or strongest class that would have been seen
+// in the crystal where it is known worst.
+func leastClass(list []*ContrastResult, strongest bool) string {
+	worst := math.Inf(-1)
+	for _, c := range list {
+		k := c.Classes.Floor
+		if strongest {
+			k = c.Classes.Top
+		}
+		if half := (k.Hi - k.Lo) / 2; !math.IsNaN(half) {
+			worst = math.Max(worst, half/zOf(0.95))
+		}
+	}
+	return short(size.MinimumVisible(math.Abs(worst), 0.95, 0.8))
 }
 
 // jointly gives the p-values of the curves that were tested, the number of crystals
@@ -235,7 +252,7 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 // filledThroughout reports whether the ledger calls the space group wrong.
 func filledThroughout(r *Result) bool {
 	for _, e := range r.Ledger {
-		if e.Check == "forbidden reflections" && e.Verdict == VerdictFails {
+		if e.Check == checkGroup && e.Verdict == VerdictFails {
 			return true
 		}
 	}
@@ -273,21 +290,34 @@ func answerThickness(r *Result) *Answer {
 			a.Detail = append(a.Detail, l.Crystal+": "+l.Why)
 		}
 	}
+	if x := t.Across; x != nil && x.Why == "" {
+		a.Detail = append(a.Detail, fmt.Sprintf("between %s, by the step in thickness of each: %s, with %s where the step is 0", plural(len(x.Crystals), "crystal"),
+			span(x.Slope.Value, x.Slope.Lo, x.Slope.Hi), span(x.Intercept.Value, x.Intercept.Lo, x.Intercept.Hi)))
+	}
 	switch {
 	case positions < 3:
 		a.Verdict = VerdictUnsure
 		a.Text = fmt.Sprintf("With two thicknesses a crystal there is a difference but no trend; per 100 nm it would be %s.", slope)
 	case t.Slope.Lo > 0:
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("\u03bc = \u2212ln(1\u2212m) grows by %s per 100 nm over %d crystals.", slope, used)
+		a.Text = fmt.Sprintf("\u03bc = \u2212ln(1\u2212m) grows by %s per 100 nm over %s.", slope, plural(used, "crystal"))
 		if p := straight(t.Lines); p < 0.05 {
 			a.Verdict = VerdictUnsure
-			a.Text = fmt.Sprintf("\u03bc = \u2212ln(1\u2212m) is above 0 in the thicker positions, by %s per 100 nm over %d crystals, but does not grow in proportion to thickness (p = %s): look at the points.", slope, used, short(p))
+			a.Text = fmt.Sprintf("\u03bc = \u2212ln(1\u2212m) is above 0 in the thicker positions, by %s per 100 nm over %s, but does not grow in proportion to thickness (p = %s): look at the points.", slope, plural(used, "crystal"), short(p))
 		}
 	default:
-		a.Text = fmt.Sprintf("No growth is seen: \u03bc = \u2212ln(1\u2212m) changes by %s per 100 nm over %d crystals.", slope, used)
+		a.Text = fmt.Sprintf("No growth is seen: \u03bc = \u2212ln(1\u2212m) changes by %s per 100 nm over %s; %s per 100 nm would have been seen with 80 %% power.", slope, plural(used, "crystal"),
+			short(size.MinimumVisible((t.Slope.Hi-t.Slope.Lo)/2/zOf(0.95), 0.95, 0.8)))
 	}
 	return a
+}
+
+// plural writes a number of things.
+func plural(n int, thing string) string {
+	if n == 1 {
+		return "1 " + thing
+	}
+	return fmt.Sprintf("%d %ss", n, thing)
 }
 
 // straight is the p-value of the points of all crystals against their lines through the

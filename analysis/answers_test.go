@@ -59,7 +59,7 @@ func TestAnswerForbiddenCountsOnlyWhatWasRecorded(t *testing.T) {
 	if a := answerForbidden(r, list); a.Verdict != VerdictYes || !strings.Contains(a.Text, "1 of 1 crystals that recorded them") {
 		t.Errorf("%q: %s", a.Verdict, a.Text)
 	}
-	r.Ledger = []LedgerEntry{{Check: "forbidden reflections", Verdict: VerdictFails}}
+	r.Ledger = []LedgerEntry{{Check: checkGroup, Verdict: VerdictFails}}
 	if a := answerForbidden(r, list); a.Verdict != VerdictUnsure || !strings.Contains(a.Text, "the space group is wrong") {
 		t.Errorf("%q: %s", a.Verdict, a.Text)
 	}

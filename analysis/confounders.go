@@ -20,6 +20,8 @@ type confounders struct {
 	bleed, double, jitter     []placed // positions
 	tilt, ice, common, tipped []placed // primary contrasts
 	lying                     []placed // crystals that take strengths from others
+	giants                    []placed // primary contrasts
+	group                     evidence.Finding
 }
 
 // Ledger looks for confounders in the observations and returns all entries of the
@@ -39,7 +41,7 @@ func (s *Study) Ledger(ctx context.Context) ([]LedgerEntry, error) {
 		return nil, err
 	}
 	n := len(list)
-	f.tilt, f.ice, f.common, f.tipped = make([]placed, n), make([]placed, n), make([]placed, n), make([]placed, n)
+	f.tilt, f.ice, f.common, f.tipped, f.giants = make([]placed, n), make([]placed, n), make([]placed, n), make([]placed, n), make([]placed, n)
 	err = parallel.For(ctx, n, s.settings.Workers, func(ctx context.Context, i int) error {
 		x := list[i]
 		name := x.Result.Crystal
@@ -50,6 +52,11 @@ func (s *Study) Ledger(ctx context.Context) ([]LedgerEntry, error) {
 			return err
 		}
 		f.tilt[i] = placed{name, tilt}
+		giants, err := s.giantsMove(ctx, x)
+		if err != nil {
+			return err
+		}
+		f.giants[i] = placed{name, giants}
 		tipped, err := s.tipping(ctx, x)
 		f.tipped[i] = placed{name, tipped}
 		return err
@@ -57,7 +64,7 @@ func (s *Study) Ledger(ctx context.Context) ([]LedgerEntry, error) {
 	if err != nil {
 		return nil, err
 	}
-	f.lying = s.lying(list)
+	f.lying, f.group = s.lying(list), s.symmetry()
 	s.found = f
 	s.progress("ledger", 1, 1)
 	return s.ledger(), nil
@@ -68,14 +75,16 @@ func (s *Study) ledgerFound(b *ledgerBook) {
 	if f == nil {
 		return
 	}
-	b.fold("bleed from neighbours", "positions", 0, f.bleed)
-	b.fold("double scattering", "positions", 0, f.double)
-	b.fold("scatter of frames", "positions", 0, f.jitter)
-	b.fold("tilt within a position", "crystals", 0, f.tilt)
-	b.fold("ice rings", "crystals", 0, f.ice)
-	b.fold("common reflections", "crystals", 1, f.common)
-	b.fold("crystals that lie alike", "crystals", 90, f.lying)
-	b.fold("tipping ratio", "crystals", math.Inf(1), f.tipped)
+	b.fold(checkGiants, "crystals", 0, f.giants)
+	b.fold(checkBleed, "positions", 0, f.bleed)
+	b.fold(checkDouble, "positions", 0, f.double)
+	b.fold(checkFrames, "positions", 0, f.jitter)
+	b.fold(checkTilt, "crystals", 0, f.tilt)
+	b.fold(checkIce, "crystals", 0, f.ice)
+	b.fold(checkCommon, "crystals", 1, f.common)
+	b.fold(checkLying, "crystals", 90, f.lying)
+	b.fold(checkTipping, "crystals", math.Inf(1), f.tipped)
+	b.add(checkGroup, "", f.group)
 }
 
 // lookAtFrames asks what reflections on common frames do to each other.

@@ -19,6 +19,11 @@ func judgedSeries(t *testing.T, series Series) []LedgerEntry {
 	if err != nil {
 		t.Fatal(err)
 	}
+	return judgedStudy(t, s)
+}
+
+func judgedStudy(t *testing.T, s *Study) []LedgerEntry {
+	t.Helper()
 	ctx := context.Background()
 	if _, err := s.IntakeTable(ctx); err != nil {
 		t.Fatal(err)

@@ -32,6 +32,7 @@ type placed struct {
 }
 
 func (b *ledgerBook) add(check, where string, f evidence.Finding) {
+	mustBeCheck(check)
 	b.entries = append(b.entries, LedgerEntry{Check: check, Where: where, Value: f.Value, Unit: f.Unit, Verdict: f.Verdict.String(), Why: f.Why})
 }
 
@@ -95,13 +96,15 @@ func (s *Study) ledgerIntake(b *ledgerBook) {
 		where := r.Crystal + "/" + r.Position
 		rows = append(rows, placed{where, evidence.Rows(r.Rows, r.Observations+r.Excluded, r.RowsAs)})
 		negatives = append(negatives, placed{where, evidence.Negatives(near[k], r.Negative, r.NegativeExp)})
+		f := evidence.Finding{Value: math.NaN(), Verdict: evidence.Fine, Why: "no sharp cut in I/sigma and no ceiling"}
 		if r.Truncated != "" {
-			cut = append(cut, placed{where, evidence.Finding{Value: math.NaN(), Verdict: evidence.Caution, Why: r.Truncated}})
+			f.Verdict, f.Why = evidence.Caution, r.Truncated
 		}
+		cut = append(cut, placed{where, f})
 	}
-	b.fold("rows against observations", "positions", 1, rows)
-	b.fold("negatives removed", "positions", 1, negatives)
-	b.fold("cut or clipped list", "positions", 0, cut)
+	b.fold(checkRows, "positions", 1, rows)
+	b.fold(checkNegatives, "positions", 1, negatives)
+	b.fold(checkCut, "positions", 0, cut)
 }
 
 // nearZero counts observations with I/sigma from -0.5 to 0, to 0.5 and to 1.
@@ -119,9 +122,9 @@ func (s *Study) ledgerIndexing(b *ledgerBook) {
 	for _, x := range s.indexing {
 		list = append(list, placed{x.Where, evidence.Indexing(x.Z, x.Ambiguous, x.Proposal != "", x.Text)})
 	}
-	b.fold("indexing margin", "positions", math.Inf(1), list)
+	b.fold(checkIndexing, "positions", math.Inf(1), list)
 	if s.intake != nil && len(s.indexing) == 0 {
-		b.add("indexing margin", "", evidence.Finding{Value: math.NaN(), Verdict: evidence.Fine, Why: "the lattice allows one way to index only"})
+		b.add(checkIndexing, "", evidence.Finding{Value: math.NaN(), Verdict: evidence.Fine, Why: "the lattice allows one way to index only"})
 	}
 }
 
@@ -159,10 +162,10 @@ func (s *Study) ledgerScale(b *ledgerBook) {
 		}
 		scatter = append(scatter, placed{c.Name, f})
 	}
-	b.fold("sigma calibration", "positions", 1, sigmas)
-	b.fold("scale curve", "positions", 0, curves)
-	b.fold("scale ratio against thickness ratio", "crystals", 1, ratios)
-	b.fold("scatter of equivalents", "crystals", 0, scatter)
+	b.fold(checkSigmas, "positions", 1, sigmas)
+	b.fold(checkScaleCurve, "positions", 0, curves)
+	b.fold(checkScaleRatio, "crystals", 1, ratios)
+	b.fold(checkScatter, "crystals", 0, scatter)
 }
 
 // primaryContrasts lists the primary contrasts within crystals without needing them

@@ -1,7 +1,6 @@
 package analysis
 
 import (
-	"fmt"
 	"math"
 
 	"thinward/analysis/difference"
@@ -23,8 +22,8 @@ func (s *Study) ledgerContrasts(b *ledgerBook) {
 		name  string
 		ideal float64
 	}{
-		{"strength axis", 1}, {"deviations", 1}, {"additive offset", 0}, {"high counts", 0}, {"model against curve", 1},
-		{"axis third against leading", 0}, {"axis inverse-variance against leading", 0}, {"ghost of noise", 1}, {"giants", 0},
+		{checkAxis, 1}, {checkDeviations, 1}, {checkOffset, 0}, {checkHighCounts, 0}, {checkModel, 1},
+		{checkThird, 0}, {checkWeighted, 0}, {checkGhost, 1},
 	} {
 		b.fold(check.name, "contrasts", check.ideal, kinds[check.name])
 	}
@@ -33,18 +32,18 @@ func (s *Study) ledgerContrasts(b *ledgerBook) {
 func (s *Study) judgeContrast(x *Compared, put func(check, where string, f evidence.Finding)) {
 	r, where := &x.Result, s.Name(x.Contrast)
 	independent := x.Leading == leadCrystals
-	put("strength axis", where, evidence.AxisOf(r.AxisAgreement, x.Leading, independent))
-	put("deviations", where, evidence.Deviations(r.Correlation.R, r.Correlation.Lo, r.Correlation.Hi, r.PairNoise, r.Bracket.Thin.Value, r.Bracket.Thick.Value, independent))
+	put(checkAxis, where, evidence.AxisOf(r.AxisAgreement, x.Leading, independent))
+	put(checkDeviations, where, evidence.Deviations(r.Correlation.R, r.Correlation.Lo, r.Correlation.Hi, r.PairNoise, r.Bracket.Thin.Value, r.Bracket.Thick.Value, independent))
 	if x.Leading != leadBracket {
-		put("additive offset", where, evidence.OffsetOf(r.Offset.O, r.Offset.Lo, r.Offset.Hi))
-		put("model against curve", where, evidence.Describes(r.OverIdent.P, r.OverIdent.DF))
+		put(checkOffset, where, evidence.OffsetOf(r.Offset.O, r.Offset.Lo, r.Offset.Hi))
+		put(checkModel, where, evidence.Describes(r.OverIdent.P, r.OverIdent.DF))
 	}
 	if independent {
 		var forms []evidence.CurbForm
 		for _, f := range r.CurbForms {
 			forms = append(forms, evidence.CurbForm{Name: f.Form, Q: f.Q.Value, Lo: f.Q.Lo, Hi: f.Q.Hi, J: f.J, Refused: f.Refused})
 		}
-		put("high counts", where, evidence.HighCounts(forms))
+		put(checkHighCounts, where, evidence.HighCounts(forms))
 	}
 	for _, a := range r.Axes {
 		if math.IsNaN(a.Delta.Value) {
@@ -52,30 +51,16 @@ func (s *Study) judgeContrast(x *Compared, put func(check, where string, f evide
 		}
 		switch a.Axis {
 		case difference.AxisThird.String():
-			put("axis third against leading", where, evidence.AgainstLeading(a.Delta.Value, a.Delta.Lo, a.Delta.Hi, "deviations that neighbouring positions of this crystal share"))
+			put(checkThird, where, evidence.AgainstLeading(a.Delta.Value, a.Delta.Lo, a.Delta.Hi, "deviations that neighbouring positions of this crystal share"))
 		case difference.AxisInverseVariance.String():
-			put("axis inverse-variance against leading", where, evidence.AgainstLeading(a.Delta.Value, a.Delta.Lo, a.Delta.Hi, "position-specific deviations, or a wrong ratio of sigmas"))
+			put(checkWeighted, where, evidence.AgainstLeading(a.Delta.Value, a.Delta.Lo, a.Delta.Hi, "position-specific deviations, or a wrong ratio of sigmas"))
 		}
 	}
 	worst := 0.0
 	for _, name := range naiveNames(r) {
 		worst = math.Max(worst, r.Naive[name].GhostScore)
 	}
-	put("ghost of noise", where, evidence.GhostOf(worst, independent))
-	if len(r.Giants) > 1 {
-		turn := evidence.Turn{Lo: math.Inf(1), Hi: math.Inf(-1)}
-		lead := math.NaN()
-		for _, g := range r.Giants {
-			switch {
-			case math.IsInf(g.Above, 1):
-				lead = g.M.Value
-			case !math.IsNaN(g.M.Value):
-				turn.Lo, turn.Hi, turn.N = math.Min(turn.Lo, g.M.Value), math.Max(turn.Hi, g.M.Value), turn.N+1
-			}
-		}
-		what := fmt.Sprintf("strongest reflections to leave out, read by the instrument, which gives %.3g with all", lead)
-		put("giants", where, evidence.ChoiceOf(what, lead, 1.5*r.Exchange.SE, turn))
-	}
+	put(checkGhost, where, evidence.GhostOf(worst, independent))
 }
 
 // ledgerChoices judges how far m moves under other choices, from the
@@ -85,8 +70,8 @@ func (s *Study) ledgerChoices(b *ledgerBook) {
 		return
 	}
 	for _, kind := range []struct{ choice, check, what string }{
-		{choiceScale, "scale variants", "scale model"}, {choiceAnchor, "anchors", "anchor of the scale"},
-		{choiceLeave, "exclusions", "reflections to leave out"}, {choiceFriedel, "Friedel mates", "treatment of Friedel mates"},
+		{choiceScale, checkScale, "scale model"}, {choiceAnchor, checkAnchors, "anchor of the scale"},
+		{choiceLeave, checkExclusions, "reflections to leave out"}, {choiceFriedel, checkFriedel, "treatment of Friedel mates"},
 	} {
 		var list []placed
 		for _, x := range s.primaries() {

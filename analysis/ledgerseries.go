@@ -14,9 +14,9 @@ func (s *Study) ledgerSeries(b *ledgerBook) {
 	}
 	growth, se := s.damage()
 	together, known := s.doseOrder()
-	b.add("dose order", "", evidence.DoseOrder(together, known, growth, se))
-	b.add("growth of B with dose", "", evidence.DoseGrowth(growth, se))
-	b.add("number of crystals", "", evidence.Crystals(len(s.primaryContrasts())))
+	b.add(checkDoseOrder, "", evidence.DoseOrder(together, known, growth, se))
+	b.add(checkDoseGrowth, "", evidence.DoseGrowth(growth, se))
+	b.add(checkCrystals, "", evidence.Crystals(len(s.primaryContrasts())))
 	if s.forbidden != nil {
 		n := 0
 		for _, f := range s.forbidden {
@@ -24,8 +24,7 @@ func (s *Study) ledgerSeries(b *ledgerBook) {
 				n += f.N
 			}
 		}
-		least, element := alwaysFilled(s.forbidden)
-		b.add("forbidden reflections", "", evidence.Recorded(n, least, element))
+		b.add(checkForbidden, "", evidence.Recorded(n))
 	}
 	measured, failed := 0, 0
 	for i := range s.Series.Crystals {
@@ -40,38 +39,7 @@ func (s *Study) ledgerSeries(b *ledgerBook) {
 			failed++
 		}
 	}
-	b.add("replicate position", "", evidence.ReplicateOf(measured, failed))
-}
-
-// fewestForbidden is the number of forbidden reflections of an element below which
-// their mean says nothing of the element: intensities scatter as much as they are large.
-const fewestForbidden = 5
-
-// alwaysFilled finds the symmetry element whose forbidden reflections are never
-// weak: the largest over elements of the smallest ratio among positions, each less
-// two standard uncertainties; NaN where too few were recorded anywhere.
-func alwaysFilled(list []Forbidden) (least float64, element string) {
-	lowest, order := map[string]float64{}, []string{}
-	for _, f := range list {
-		if f.N < fewestForbidden || math.IsNaN(f.Ratio) || math.IsNaN(f.SU) {
-			continue
-		}
-		if _, ok := lowest[f.Element]; !ok {
-			lowest[f.Element] = math.Inf(1)
-			order = append(order, f.Element)
-		}
-		lowest[f.Element] = math.Min(lowest[f.Element], f.Ratio-2*f.SU)
-	}
-	least = math.NaN()
-	for _, e := range order {
-		if e == "all" && len(order) > 1 {
-			continue // the elements say it by name
-		}
-		if math.IsNaN(least) || lowest[e] > least {
-			least, element = lowest[e], e
-		}
-	}
-	return least, element
+	b.add(checkReplicates, "", evidence.ReplicateOf(measured, failed))
 }
 
 // doseOrder counts the crystals whose dose, or order of measurement, rises with

@@ -58,14 +58,7 @@ func Negatives(near [3]int, observed []int, expected []float64) Finding {
 // beyond reports whether a value is beyond three standard errors of 0, by its 95 %
 // interval: a ledger asks the same of several crystals, and one in twenty would be
 // cautioned for nothing.
-func beyond(v, lo, hi float64) bool { return past(3, v, lo, hi) }
-
-func past(errors, v, lo, hi float64) bool { return math.Abs(v) > errors/1.96*(hi-lo)/2 }
-
-// clearCurb is the number of its standard errors beyond which a q is believed. It
-// rests on a few strong reflections: in sound series of small deviations q over its
-// standard error scatters by 1.6 and not by 1 (30 contrasts, three of them beyond 3).
-const clearCurb = 5
+func beyond(v, lo, hi float64) bool { return math.Abs(v) > 3/1.96*(hi-lo)/2 }
 
 // OffsetOf judges an additive constant o, in units of the mean intensity of the
 // lowest third in s^2, with its 95 % interval. Caution beyond three standard errors;
@@ -119,14 +112,16 @@ type CurbForm struct {
 // CountRate is the form of a loss in the detector.
 const CountRate = "count rate"
 
-// HighCounts asks whether a loss of the strongest could be the detector's. Fine
-// when no form finds a q beyond five standard errors (see clearCurb), or the data refuse the count rate; caution when a q is
-// found and the count rate fits best or cannot be refused.
+// HighCounts asks whether a loss of the strongest could be the detector's. Fine when
+// the form that fits best finds no q beyond three standard errors, or the data refuse the
+// count rate, by a J more than 3.84 behind the best (size.CompareCurbs: it errs less than
+// 5 %). Caution when q is found and the count rate is not refused; whether it is then told
+// from the other forms by the same difference is said.
 func HighCounts(forms []CurbForm) Finding {
 	if len(forms) == 0 {
 		return unknown("the forms of the curb could not be compared")
 	}
-	best, rate, seen := 0, -1, false
+	best, rate := 0, -1
 	for k, f := range forms {
 		if f.J < forms[best].J {
 			best = k
@@ -134,18 +129,22 @@ func HighCounts(forms []CurbForm) Finding {
 		if f.Name == CountRate {
 			rate = k
 		}
-		seen = seen || f.Q > 0 && past(clearCurb, f.Q, f.Lo, f.Hi)
 	}
-	out := Finding{Value: forms[best].Q, Unit: "q of the form that fits best, " + forms[best].Name, Verdict: Fine}
+	told := true
+	for k, f := range forms {
+		told = told && (k == best || f.Refused)
+	}
+	lead := forms[best]
+	out := Finding{Value: lead.Q, Unit: "q of the form that fits best, " + lead.Name, Verdict: Fine}
 	switch {
-	case !seen:
-		out.Why = "no loss of the strongest reflections is seen in any of the forms"
+	case !(lead.Q > 0 && beyond(lead.Q, lead.Lo, lead.Hi)):
+		out.Why = "no loss of the strongest reflections is clear of its error"
 	case rate < 0:
 		out.Verdict, out.Why = Caution, "a loss of the strongest is seen; whether it goes with the count rate of the detector is not known"
 	case forms[rate].Refused:
 		out.Why = "a loss of the strongest is seen, and the data refuse that it goes with the count rate: it is not the detector's"
-	case rate == best:
-		out.Verdict, out.Why = Caution, "a loss of the strongest is seen, and of the forms tried the count rate describes it best, as dead time or saturation of the detector would have it; only another exposure can settle it"
+	case rate == best && told:
+		out.Verdict, out.Why = Caution, "a loss of the strongest is seen, it goes with the count rate, and the data refuse the other forms: dead time or saturation of the detector"
 	default:
 		out.Verdict, out.Why = Caution, "a loss of the strongest is seen, and the data cannot tell whether it goes with the intensity (scattering) or with the count rate (detector); only another exposure can"
 	}

@@ -12,6 +12,8 @@ func TestRules(t *testing.T) {
 	nan, inf := math.NaN(), math.Inf(1)
 	weak := CurbForm{Name: "intensity", Q: 0.01, Lo: -0.01, Hi: 0.03, J: 5}
 	seen := CurbForm{Name: "intensity", Q: 0.05, Lo: 0.035, Hi: 0.065, J: 5}
+	refused := seen
+	refused.Refused = true
 	rate := func(j float64, refused bool) CurbForm {
 		return CurbForm{Name: CountRate, Q: 0.05, Lo: 0.035, Hi: 0.065, J: j, Refused: refused}
 	}
@@ -39,10 +41,13 @@ func TestRules(t *testing.T) {
 		{"deviations, shared axis", Deviations(0.9, 0.88, 0.92, 0.3, 0.1, -0.1, false), Caution, "shares that"},
 		{"no correlation", Deviations(nan, nan, nan, 0, 0, 0, true), NotKnown, ""},
 		{"no loss", HighCounts([]CurbForm{weak}), Fine, "no loss"},
-		{"loss beyond three errors, not five", HighCounts([]CurbForm{{Name: "intensity", Q: 0.02, Lo: 0.0102, Hi: 0.0298}}), Fine, "no loss"},
+		{"loss at three errors", HighCounts([]CurbForm{{Name: "intensity", Q: 0.02, Lo: 0.0068, Hi: 0.0332}}), Fine, "no loss"},
+		{"loss beyond three errors", HighCounts([]CurbForm{{Name: "intensity", Q: 0.02, Lo: 0.0072, Hi: 0.0328}}), Caution, "not known"},
+		{"loss of a form that fits worse", HighCounts([]CurbForm{{Name: "intensity", Q: 0.02, Lo: -0.02, Hi: 0.06, J: 4}, rate(9, true)}), Fine, "no loss"},
 		{"loss, rate unknown", HighCounts([]CurbForm{seen}), Caution, "not known"},
 		{"loss, rate refused", HighCounts([]CurbForm{seen, rate(20, true)}), Fine, "refuse"},
-		{"loss with the rate", HighCounts([]CurbForm{seen, rate(2, false)}), Caution, "dead time"},
+		{"loss with the rate, the other open", HighCounts([]CurbForm{seen, rate(2, false)}), Caution, "cannot tell"},
+		{"loss with the rate", HighCounts([]CurbForm{refused, rate(1, false)}), Caution, "dead time"},
 		{"loss, not told", HighCounts([]CurbForm{seen, rate(6, false)}), Caution, "cannot tell"},
 		{"no forms", HighCounts(nil), NotKnown, ""},
 		{"no bleed", BleedOf(&Slope{Value: 0.01, SE: 0.004, Z: 2.5}, nil), Fine, "do not gain"},
@@ -102,11 +107,8 @@ func TestRules(t *testing.T) {
 		{"replicates agree", ReplicateOf(3, 0), Fine, ""},
 		{"one replicate differs", ReplicateOf(3, 1), Caution, "differ"},
 		{"all replicates differ", ReplicateOf(3, 3), Fails, "differ"},
-		{"forbidden ones stand there", Recorded(20, 0.1, "2_1 along a"), Fine, ""},
-		{"forbidden ones at the threshold", Recorded(20, 0.5, "2_1 along a"), Fine, ""},
-		{"forbidden ones always filled", Recorded(20, 0.51, "2_1 along a"), Fails, "that 2_1 along a forbids"},
-		{"forbidden ones of unknown ratio", Recorded(20, math.NaN(), ""), Fine, ""},
-		{"forbidden ones do not", Recorded(0, math.NaN(), ""), NotKnown, "not recorded"},
+		{"forbidden ones stand there", Recorded(20), Fine, "stand in the lists"},
+		{"forbidden ones do not", Recorded(0), NotKnown, "not recorded"},
 		{"own axis", AxisOf(0.95, "crystals", true), Fine, "other crystals"},
 		{"poor axis", AxisOf(0.6, "crystals", true), Caution, "poorly"},
 		{"shared axis", AxisOf(nan, "bracket", false), Caution, "bracket"},

@@ -268,20 +268,9 @@ func ReplicateOf(measured, failed int) Finding {
 	return f
 }
 
-// filledAlways is the ratio of forbidden over allowed intensity beyond which a
-// symmetry element that stays filled at every thickness is called wrong. A wrong
-// element gives 1, scattering more than once far less; chosen between, no source.
-const filledAlways = 0.5
-
-// Recorded judges whether the list has forbidden reflections at all, and whether
-// those of one symmetry element are as strong as allowed ones at every thickness.
-// least is the largest, over elements, of the smallest ratio less two standard
-// uncertainties among positions, and element its symbol; NaN is not known.
-func Recorded(n int, least float64, element string) Finding {
-	if n > 0 && least > filledAlways {
-		return Finding{Value: least, Unit: "of the allowed, at least, in every position", Verdict: Fails,
-			Why: fmt.Sprintf("reflections that %s forbids are about as strong as allowed ones at every thickness: the space group is wrong, and what it forbids is left out of the analysis", element)}
-	}
+// Recorded judges whether the lists hold forbidden reflections at all; n is how many
+// were measured, over all positions.
+func Recorded(n int) Finding {
 	if n == 0 {
 		return unknown("not recorded: the lists hold no forbidden reflection, so nothing can be said of them, and not that they are absent")
 	}
