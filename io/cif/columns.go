@@ -13,6 +13,8 @@ const (
 	roleIntensity
 	roleIntensitySU // intensity with its s.u. in parentheses, no column of its own
 	roleSigma
+	roleMate // intensity of the Friedel mate
+	roleMateSigma
 	rolePhi
 	rolePartiality
 	roleFrame
@@ -23,11 +25,14 @@ const (
 )
 
 // measure is one quantity that can serve as intensity, with the names of its
-// uncertainty; all without the category.
+// uncertainty; all without the category. mate is the same of the Friedel mate where
+// the two stand in one row.
 type measure struct {
 	name      string
 	sigmas    []string
 	amplitude bool
+	mate      string
+	mateSigma string
 }
 
 // category is one kind of reflection list. Its columns are found by table in both
@@ -77,8 +82,10 @@ var categories = []category{
 		measures: []measure{
 			{name: "intensity_meas", sigmas: []string{"intensity_sigma", "intensity_meas_su", "intensity_meas_sigma", "intensity_u"}},
 			{name: "F_squared_meas", sigmas: []string{"F_squared_sigma", "F_squared_meas_su", "F_squared_meas_sigma"}},
+			{name: "pdbx_I_plus", sigmas: []string{"pdbx_I_plus_sigma"}, mate: "pdbx_I_minus", mateSigma: "pdbx_I_minus_sigma"},
 			{name: "F_meas", sigmas: []string{"F_sigma", "F_meas_su", "F_meas_sigma"}, amplitude: true},
 			{name: "F_meas_au", sigmas: []string{"F_meas_sigma_au"}, amplitude: true},
+			{name: "pdbx_F_plus", sigmas: []string{"pdbx_F_plus_sigma"}, amplitude: true, mate: "pdbx_F_minus", mateSigma: "pdbx_F_minus_sigma"},
 		},
 		scaleGroup: "scale_group_code",
 		dataSet:    []string{"pdbx_diffrn_id", "crystal_id"},
@@ -92,6 +99,7 @@ type plan struct {
 	roles     []role
 	item      [roleStatus + 1]string // data name by role, as spelled in the file
 	amplitude bool
+	friedel   friedel
 	angles    []string // setting angles that are there and not used
 }
 
@@ -140,16 +148,17 @@ func planFor(names []string) *plan {
 // measured picks the best intensity that has an uncertainty, else the best.
 func (p *plan) measured(c *category, find func(string) int, use func(int, role)) {
 	best, sigma := -1, -1
-	for _, m := range c.measures {
-		j := find(m.name)
-		if j < 0 {
+	var chosen *measure
+	for i := range c.measures {
+		m := &c.measures[i]
+		j, s := find(m.name), first(find, m.sigmas)
+		if m.mate != "" && (j < 0 || s < 0) {
+			j, s = find(m.mate), find(m.mateSigma)
+		}
+		if j < 0 || best >= 0 && s < 0 {
 			continue
 		}
-		s := first(find, m.sigmas)
-		if best >= 0 && s < 0 {
-			continue
-		}
-		best, sigma, p.amplitude = j, s, m.amplitude
+		best, sigma, chosen = j, s, m
 		if s >= 0 {
 			break
 		}
@@ -157,12 +166,14 @@ func (p *plan) measured(c *category, find func(string) int, use func(int, role))
 	if best < 0 {
 		return
 	}
+	p.amplitude = chosen.amplitude
 	if sigma < 0 {
 		use(best, roleIntensitySU)
 		return
 	}
 	use(best, roleIntensity)
 	use(sigma, roleSigma)
+	p.mates(c, chosen, best, find, use)
 }
 
 func finder(category string, names []string) func(item string) int {

@@ -50,7 +50,11 @@ func (f *File) nested(b *Block, name string, s span) {
 	}
 	p := &parser{file: sub, lexer: lexer{name: f.Name, src: text.NewSource(f.Name, nil), data: data, i: s.start,
 		class: cls, version: f.Version, warned: map[string]bool{}}}
-	if err := p.run(); err != nil {
+	err := p.run()
+	if err == nil {
+		err = p.singles()
+	}
+	if err != nil {
 		l := &list{file: f, block: b, item: name, err: err, plan: &plan{category: &category{name: name}}, twinRow: -1}
 		f.lists = append(f.lists, l)
 		return

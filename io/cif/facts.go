@@ -13,8 +13,8 @@ import (
 // The data names of one fact, best first: old core, current core, macromolecular.
 var (
 	cellNames = [6][]string{
-		{"_cell_length_a", "_cell.length_a"}, {"_cell_length_b", "_cell.length_b"}, {"_cell_length_c", "_cell.length_c"},
-		{"_cell_angle_alpha", "_cell.angle_alpha"}, {"_cell_angle_beta", "_cell.angle_beta"}, {"_cell_angle_gamma", "_cell.angle_gamma"},
+		cellItem("length_a"), cellItem("length_b"), cellItem("length_c"),
+		cellItem("angle_alpha"), cellItem("angle_beta"), cellItem("angle_gamma"),
 	}
 	operatorNames = []string{"_space_group_symop_operation_xyz", "_space_group_symop.operation_xyz", "_symmetry_equiv_pos_as_xyz", "_symmetry_equiv.pos_as_xyz"}
 	hallNames     = []string{"_space_group_name_Hall", "_space_group.name_Hall", "_symmetry_space_group_name_Hall", "_symmetry.space_group_name_Hall"}
@@ -22,13 +22,25 @@ var (
 		"_symmetry_space_group_name_H-M", "_symmetry.space_group_name_H-M", "_symmetry.pdbx_full_space_group_name_H-M"}
 	numberNames     = []string{"_space_group_IT_number", "_space_group.IT_number", "_symmetry_Int_Tables_number", "_symmetry.Int_Tables_number"}
 	wavelengthNames = []string{"_diffrn_radiation_wavelength", "_diffrn_radiation_wavelength.value", "_diffrn_radiation_wavelength.wavelength",
-		"_diffrn_radiation_wavelength_value", "_diffrn_radiation_wavelength_wavelength", "_diffrn_radiation.pdbx_wavelength", "_diffrn_source.pdbx_wavelength"}
+		"_diffrn_radiation_wavelength_value", "_diffrn_radiation_wavelength_wavelength", "_diffrn_radiation.pdbx_wavelength", "_diffrn_source.pdbx_wavelength",
+		"_pdbx_diffrn_unmerged_cell.wavelength", "_cell_measurement_wavelength", "_cell_measurement.wavelength"}
 	weightNames      = []string{"_diffrn_radiation_wavelength_wt", "_diffrn_radiation_wavelength.wt"}
 	probeNames       = []string{"_diffrn_radiation_probe", "_diffrn_radiation.probe", "_diffrn_radiation.pdbx_scattering_type", "_diffrn_radiation_type", "_diffrn_radiation.type", "_exptl.method"}
 	voltageNames     = []string{"_diffrn_source_voltage", "_diffrn_source.voltage"}
 	temperatureNames = []string{"_diffrn_ambient_temperature", "_diffrn.ambient_temperature", "_diffrn_ambient_temp", "_diffrn.ambient_temp",
-		"_cell_measurement_temperature", "_cell_measurement.temp", "_cell_measurement_temp"}
+		"_cell_measurement_temperature", "_cell_measurement.temperature", "_cell_measurement.temp", "_cell_measurement_temp"}
 )
+
+// cellItem returns the names of one parameter of the cell, the last two those of
+// cells given by data set.
+func cellItem(item string) []string {
+	return []string{"_cell_" + item, "_cell." + item, "_pdbx_diffrn_cell." + item, "_pdbx_diffrn_unmerged_cell.cell_" + item}
+}
+
+// scaleItems are factors by scale group, of which only the first pair has a direction
+// that a dictionary defines.
+var scaleItems = []string{"_diffrn_scale_group_I_net", "_diffrn_scale_group.I_net", "_reflns_scale_meas_intensity", "_reflns_scale.meas_intensity",
+	"_reflns_scale_meas_F_squared", "_reflns_scale.meas_F_squared", "_reflns_scale_meas_F", "_reflns_scale.meas_F"}
 
 // thicknessItems are the items that may speak of thickness, with the unit that the
 // dictionary gives each: four units for one idea, so none is ever guessed.
@@ -51,7 +63,7 @@ type gatherer struct {
 
 func (f *File) facts(l *list, out *Reflections) error {
 	g := gatherer{f, l, out}
-	for _, step := range []func() error{g.cell, g.symmetry, g.radiation, g.temperature, g.thickness} {
+	for _, step := range []func() error{g.cell, g.symmetry, g.radiation, g.temperature, g.thickness, g.scaleFactors} {
 		if err := step(); err != nil {
 			return err
 		}
@@ -178,8 +190,10 @@ func (g *gatherer) cell() error {
 			}
 			return g.fault(b, lead, names[0], "the cell is not complete", "give all six of a, b, c, alpha, beta and gamma")
 		}
-		if len(values) > 1 {
-			return g.fault(b, values[1], item, "the block gives more than one cell", "leave the cell of this list only")
+		for _, v := range values[1:] {
+			if v.Text != values[0].Text {
+				return g.fault(b, v, item, "the block gives more than one cell", "leave the cell of this list only")
+			}
 		}
 		if j == 0 {
 			lead = values[0]
@@ -252,6 +266,23 @@ func (g *gatherer) temperature() error {
 		return g.fault(b, v, item, "the temperature is negative", "give it in kelvin")
 	}
 	g.out.TemperatureK = t
+	return nil
+}
+
+// scaleFactors says that factors by scale group are not applied: scales are fitted
+// anew, and in real files the intensities often carry the factors already.
+func (g *gatherer) scaleFactors() error {
+	if g.list.plan.item[roleScaleGroup]+g.list.plan.item[roleScaleSet] == "" {
+		return nil
+	}
+	for _, b := range g.own() {
+		for _, item := range scaleItems {
+			if b.Has(item) {
+				g.warn("scale-factors", item+" gives factors by scale group; they were not applied, as the intensities may carry them already")
+				return nil
+			}
+		}
+	}
 	return nil
 }
 

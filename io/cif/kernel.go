@@ -112,6 +112,8 @@ func (q *quick) aim(n int) {
 			roleL:          {Kind: text.ColumnIndex, Index: r.L},
 			roleIntensity:  {Kind: text.ColumnValue, Value: r.I},
 			roleSigma:      {Kind: text.ColumnValue, Value: r.Sigma},
+			roleMate:       {Kind: text.ColumnValue, Value: q.mate.I},
+			roleMateSigma:  {Kind: text.ColumnValue, Value: q.mate.Sigma},
 			rolePhi:        {Kind: text.ColumnValue, Value: r.Phi},
 			rolePartiality: {Kind: text.ColumnValue, Value: r.Partiality},
 			roleFrame:      {Kind: text.ColumnCount, Count: r.Frame},
@@ -168,7 +170,7 @@ func (p *parser) slowly(l *list, n, c int, tok token) error {
 	switch r {
 	case roleH, roleK, roleL:
 		return p.slowIndex(l, n, c, tok, null)
-	case roleIntensity, roleIntensitySU, roleSigma, rolePhi, rolePartiality:
+	case roleIntensity, roleIntensitySU, roleSigma, roleMate, roleMateSigma, rolePhi, rolePartiality:
 		x, su := math.NaN(), math.NaN()
 		if !null {
 			var ok bool
@@ -186,6 +188,10 @@ func (p *parser) slowly(l *list, n, c int, tok token) error {
 			}
 		case roleSigma:
 			l.raw.Sigma[n] = x
+		case roleMate:
+			l.mate.I[n] = x
+		case roleMateSigma:
+			l.mate.Sigma[n] = x
 		case rolePhi:
 			l.raw.Phi[n] = x
 		default:

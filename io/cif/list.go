@@ -23,7 +23,10 @@ type list struct {
 	dataSet codes
 	marks   []int // offset of every rowsPerMark-th row
 	nulls   int
-	plainSU int // s.u. read from parentheses
+	plainSU int               // s.u. read from parentheses
+	fold    int               // rows made of one row of the file when not 1
+	mate    intensity.Columns // I and Sigma of Friedel mates, until unfold
+	count   mateCount
 	odd     string
 
 	// Of a list inside a text field:
@@ -39,6 +42,7 @@ const (
 	statusAbsent
 	statusUnreliable
 	statusAmplitude // a negative structure amplitude
+	statusRepeated  // a Friedel mate that is the same measurement
 )
 
 const noFrame = -1
@@ -108,6 +112,7 @@ func (l *list) grow(n int) {
 	if has(roleStatus) || l.plan.amplitude {
 		l.status = text.Grown(l.status, n)
 	}
+	l.growMates(n)
 }
 
 // finish cuts the columns to n rows and turns amplitudes into intensities.
@@ -118,6 +123,8 @@ func (l *list) finish(n int) {
 	r.I, r.Sigma, r.Phi, r.Partiality = text.Cut(r.I, n), text.Cut(r.Sigma, n), text.Cut(r.Phi, n), text.Cut(r.Partiality, n)
 	r.Frame, l.status = text.Cut(r.Frame, n), text.Cut(l.status, n)
 	l.scale.of, l.dataSet.of = text.Cut(l.scale.of, n), text.Cut(l.dataSet.of, n)
+	l.mate.I, l.mate.Sigma = text.Cut(l.mate.I, n), text.Cut(l.mate.Sigma, n)
+	l.unfold()
 	if !l.plan.amplitude {
 		return
 	}
@@ -131,6 +138,7 @@ func (l *list) finish(n int) {
 
 // offset returns where row i begins, from the nearest mark before it.
 func (l *list) offset(i int) int {
+	i /= max(1, l.fold)
 	at := l.marks[i/rowsPerMark]
 	x := lexer{name: l.file.Name, src: text.NewSource("", nil), data: l.file.data, i: at, class: class, version: l.file.Version, warned: map[string]bool{}}
 	if l.file.Version == "2.0" {
@@ -162,6 +170,10 @@ func (l *list) describe() List {
 		Rows: l.rows, Columns: append([]string(nil), l.names...), Intensity: p.item[roleIntensity], Sigma: p.item[roleSigma],
 		Angle: p.item[rolePhi], Frame: p.item[roleFrame] + p.item[roleScaleGroup], Nulls: l.nulls,
 		DiffrnIDs: l.dataSet.sets(), ScaleSets: l.scale.sets()}
+	if p.friedel == friedelBoth {
+		d.Intensity += " and " + p.item[roleMate]
+		d.Sigma += " and " + p.item[roleMateSigma]
+	}
 	if s := p.item[roleIntensitySU]; s != "" {
 		d.Intensity = s
 		if l.plainSU > 0 {

@@ -31,6 +31,9 @@ func parse(name string, src *text.Source) (*File, error) {
 	if err := p.run(); err != nil {
 		return nil, err
 	}
+	if err := p.singles(); err != nil {
+		return nil, err
+	}
 	p.file.data = p.data
 	p.file.settle()
 	p.longLines()

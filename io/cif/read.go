@@ -24,7 +24,8 @@ const (
 // Rows that cannot be used (null values, sigma <= 0, status - or x, index 0 0 0) are
 // counted in SetAside; a list without any uncertainties, of twin components, or
 // without a usable row is an error. Amplitudes, where there is nothing better,
-// become F squared with sigma 2 F sigma(F), with a warning.
+// become F squared with sigma 2 F sigma(F), with a warning. Where I+ and I- stand in
+// one row and there is no mean, the row becomes two, (h k l) and (-h -k -l).
 func (f *File) Read(sel Selection) (*Reflections, error) {
 	c, err := f.choose(sel)
 	if err != nil {
@@ -77,6 +78,7 @@ func (l *list) warnings() []intensity.Warning {
 	if p.amplitude {
 		add("amplitudes", "the list holds structure amplitudes only: I = F^2 and sigma(I) = 2 F sigma(F) were formed; negative intensities are lost and weak ones are biased")
 	}
+	w = append(w, l.friedelWarnings()...)
 	if len(p.angles) > 0 {
 		add("setting-angles", "setting angles ("+strings.Join(p.angles, ", ")+") are there but no scan angle; they were not used, as their convention is not fixed")
 	}
@@ -110,6 +112,8 @@ func (l *list) cut(c *choice, all bool, r *Reflections) error {
 				return reasonUnreliable
 			case statusAmplitude:
 				return reasonAmplitude
+			case statusRepeated:
+				return reasonRepeated
 			}
 		}
 		if l.plainSU > 0 && !math.IsNaN(l.raw.I[i]) && math.IsNaN(l.raw.Sigma[i]) {
