@@ -3,6 +3,7 @@ package analysis
 import (
 	"fmt"
 	"math"
+	"strings"
 
 	"thinward/analysis/size"
 )
@@ -48,7 +49,7 @@ func answerExchange(r *Result, list []*ContrastResult) Answer {
 		a.Text += limit + "."
 	}
 	if seen.estimable > 0 {
-		a.Text += qualified(r, list)
+		a.Text += besides(list) + qualified(r, list)
 	}
 	if a.Verdict == VerdictYes && 2*misfits(list) > len(list) {
 		a.Verdict = VerdictUnsure
@@ -134,6 +135,37 @@ func widened(c *ContrastResult) (lo, hi float64, note string) {
 	return lo, hi, note
 }
 
+// besides says that a curb was found beside m: what thickness does to the strongest lies
+// partly there. The instrument is one slope that takes both together.
+func besides(list []*ContrastResult) string {
+	known, seen := 0, 0
+	for _, c := range list {
+		if !math.IsNaN(c.Curb.Q) {
+			known++
+		}
+	}
+	f := asking(list, known)
+	var slopes []string
+	for _, c := range list {
+		if side(c.Curb.Q, c.Curb.Lo, c.Curb.Hi, 0, f) > 0 {
+			seen++
+		}
+		for _, m := range c.Models {
+			if m.Model == "instrument" && !math.IsNaN(m.M.Value) {
+				slopes = append(slopes, short(m.M.Value))
+			}
+		}
+	}
+	if seen == 0 {
+		return ""
+	}
+	text := fmt.Sprintf(" A curb q, a loss that grows with strength, is seen beside it in %s and is no part of this m: dynamical scattering makes both, a detector that saturates makes a curb.", crystalsOf(seen, list))
+	if len(slopes) == len(list) {
+		text += fmt.Sprintf(" One slope, which takes both together, gives m = %s.", strings.Join(slopes, ", "))
+	}
+	return text
+}
+
 // qualified says what keeps m from being taken at its word: a curve of another shape
 // than the model's, or a loss in the detector.
 func qualified(r *Result, list []*ContrastResult) string {
@@ -143,7 +175,7 @@ func qualified(r *Result, list []*ContrastResult) string {
 	}
 	for _, e := range r.Ledger {
 		if e.Check == "high counts" && e.Verdict != VerdictFine && e.Verdict != VerdictUnknown {
-			return text + " A loss of the strongest is seen as well, which the detector could have made; it raises m too."
+			return text + " The detector could have made a loss of the strongest: see high counts in the ledger."
 		}
 	}
 	return text

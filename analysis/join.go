@@ -45,6 +45,7 @@ func (s *Study) joinStep(ctx context.Context) error {
 	if j.thickness, err = s.growth(ctx); err != nil {
 		return err
 	}
+	j.thickness.Across = s.separate()
 	s.pageTrend(j)
 	s.pooled = j
 	return nil
@@ -215,6 +216,7 @@ func (s *Study) crystalLine(ctx context.Context, i int) (line *ThicknessLine, se
 	line.Slope = s.slope(fit.Slope, fit.SlopeSE)
 	line.Chi2, line.DF = fit.Chi2, fit.DF
 	line.ascend()
+	line.rise()
 	return line, fit.SlopeSE, nil
 }
 

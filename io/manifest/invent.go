@@ -199,32 +199,35 @@ type TruthContrast struct {
 	M       float64 `json:"m"`
 }
 
-// TruthPosition is what one position was made with.
+// TruthPosition is what one position was made with. M, Q, O and Deviation are null when
+// the intensities come from a law of their own, in which they have no meaning: not
+// 0, which would say that thickness does nothing.
 type TruthPosition struct {
-	Crystal     string  `json:"crystal"`
-	Position    string  `json:"position"`
-	ThicknessNM float64 `json:"thickness_nm"`
-	M           float64 `json:"m"`
-	Q           float64 `json:"q"`
-	O           float64 `json:"o"`
-	Deviation   float64 `json:"deviation"`
-	B           float64 `json:"b"`
-	Rows        int     `json:"rows"`
+	Crystal     string   `json:"crystal"`
+	Position    string   `json:"position"`
+	ThicknessNM float64  `json:"thickness_nm"`
+	M           *float64 `json:"m"`
+	Q           *float64 `json:"q"`
+	O           *float64 `json:"o"`
+	Deviation   *float64 `json:"deviation"`
+	B           float64  `json:"b"`
+	Rows        int      `json:"rows"`
 }
 
 func truthOf(s *simulate.Series) *Truth {
 	t := &Truth{Title: s.Plan.Title, Unique: len(s.Truth.HKL)}
 	if s.Plan.Law != nil {
-		t.Note = "The intensities come from a law of their own; m, q, o and deviation had no part in them, and no contrast has an m by construction."
+		t.Note = "The intensities come from a law of their own; m, q, o and deviation have no part in them and are null, and no contrast has an m by construction."
 	}
 	for i := range s.Specimens {
 		list := s.Specimens[i].Positions
 		for j := range list {
 			p := &list[j].Plan
-			t.Positions = append(t.Positions, TruthPosition{
-				Crystal: s.Specimens[i].Name, Position: p.Name, ThicknessNM: p.ThicknessNM, M: p.Exchange, Q: p.Curb, O: p.Offset,
-				Deviation: p.Deviation, B: list[j].B, Rows: list[j].Rows.Len(),
-			})
+			made := TruthPosition{Crystal: s.Specimens[i].Name, Position: p.Name, ThicknessNM: p.ThicknessNM, B: list[j].B, Rows: list[j].Rows.Len()}
+			if s.Plan.Law == nil {
+				made.M, made.Q, made.O, made.Deviation = &p.Exchange, &p.Curb, &p.Offset, &p.Deviation
+			}
+			t.Positions = append(t.Positions, made)
 			for k := range list {
 				if list[k].Plan.ThicknessNM > p.ThicknessNM {
 					if m := s.ExchangeBetween(i, j, k); !math.IsNaN(m) {
