@@ -27,10 +27,14 @@ type weighted struct {
 	b *mat.SymDense // sum of (u f)(u f)'
 }
 
+// settled is the change of the curb, in its standard errors, at which its second order is
+// taken to be found.
+const settled = 0.01
+
 // solve is nil when the parameters cannot be told apart. The curb is taken to
 // second order at the q that was found until that stays.
 func (s *system) solve(set *Settings) *solution {
-	sol := s.solveOnce(set.flat())
+	sol := s.solveFrom(nil, set.flat())
 	if s.model < MQ || set.firstOrder() {
 		return sol
 	}
@@ -38,29 +42,37 @@ func (s *system) solve(set *Settings) *solution {
 		if sol == nil {
 			return nil
 		}
-		before := sol.theta[1]
-		s.bend(before / (1 - sol.theta[0]))
-		if sol = s.solveOnce(set.flat()); sol != nil && math.Abs(sol.theta[1]-before) <= 1e-4*math.Abs(before)+1e-12 {
+		before := sol
+		s.bend(before.theta[1] / (1 - before.theta[0]))
+		sol = s.solveFrom(before.theta, set.flat())
+		if sol != nil && math.Abs(sol.theta[1]-before.theta[1]) <= settled*math.Sqrt(sol.cov.At(1, 1))+1e-6*math.Abs(sol.theta[1]) {
 			break
 		}
 	}
 	return sol
 }
 
-func (s *system) solveOnce(flat bool) *solution {
+// solveFrom takes the law of the residual from theta or, when that is nil, from a
+// first step that weights all rows alike; the law is then found twice, as that theta is
+// a rough one.
+func (s *system) solveFrom(theta []float64, flat bool) *solution {
 	var rows [][]float64
-	m := s.sums(nil)
-	theta := linear(m.a, m.b, m.g)
-	if theta == nil {
-		return nil
+	var m *weighted
+	laws := 1
+	if flat || theta == nil {
+		m = s.sums(nil)
 	}
-	// The law of the residual is found twice, as the first theta is a rough one.
-	for range 2 {
-		if flat {
-			break
+	if theta == nil {
+		if theta = linear(m.a, m.b, m.g); theta == nil {
+			return nil
 		}
-		rows = s.rowWeights(theta)
-		m = s.sums(rows)
+		laws = 2
+	}
+	for range laws {
+		if !flat {
+			rows = s.rowWeights(theta)
+			m = s.sums(rows)
+		}
 		if theta = linear(m.a, m.b, m.g); theta == nil {
 			return nil
 		}

@@ -1,0 +1,347 @@
+package analysis
+
+import (
+	"context"
+	"fmt"
+	"math"
+	"os"
+	"strconv"
+	"strings"
+	"testing"
+
+	"gonum.org/v1/gonum/stat/distuv"
+
+	"thinward/analysis/internal/floatcmp"
+	"thinward/analysis/internal/parallel"
+	"thinward/analysis/resample"
+)
+
+// What the issue of an interval is to be: a share of series in which it holds the truth.
+const leastCover, mostCover = 0.92, 0.98
+
+// hits gathers intervals of one number, several from each series.
+type hits struct {
+	n, held            int
+	sum, square, claim float64
+	series             [][2]int // n and held of each
+}
+
+// open starts the next series.
+func (a *hits) open() { a.series = append(a.series, [2]int{}) }
+
+func (a *hits) add(v, lo, hi, truth float64) {
+	a.n++
+	last := &a.series[len(a.series)-1]
+	last[0]++
+	if lo <= truth && truth <= hi {
+		a.held++
+		last[1]++
+	}
+	d := v - truth
+	a.sum += d
+	a.square += d * d
+	a.claim += (hi - lo) / (2 * zOf(0.95))
+}
+
+func (a *hits) share() float64 { return float64(a.held) / float64(a.n) }
+func (a *hits) bias() float64  { return a.sum / float64(a.n) }
+func (a *hits) ratio() float64 {
+	n := float64(a.n)
+	return a.claim / n / math.Sqrt(a.square/n-a.bias()*a.bias())
+}
+
+func (a *hits) join(b *hits) {
+	a.n, a.held = a.n+b.n, a.held+b.held
+	a.sum, a.square, a.claim = a.sum+b.sum, a.square+b.square, a.claim+b.claim
+	a.series = append(a.series, b.series...)
+}
+
+// effective is n over the design effect: intervals of one series share their
+// reflections (Kish 1965, Survey Sampling, 8.2; variance of a share from that between
+// series). It is never more than n.
+func (a *hits) effective() float64 {
+	p, v := a.share(), 0.0
+	for _, s := range a.series {
+		d := float64(s[1]) - p*float64(s[0])
+		v += d * d
+	}
+	n := float64(a.n)
+	if plain := p * (1 - p) * n; v > plain && plain > 0 {
+		return n * plain / v
+	}
+	return n
+}
+
+// interval is that of Clopper & Pearson (1934, Biometrika 26:404) at 95 %, for the
+// effective number.
+func (a *hits) interval() (lo, hi float64) {
+	n := a.effective()
+	k := n * a.share()
+	lo, hi = 0, 1
+	if k > 0 {
+		lo = distuv.Beta{Alpha: k, Beta: n - k + 1}.Quantile(0.025)
+	}
+	if k < n {
+		hi = distuv.Beta{Alpha: k + 1, Beta: n - k}.Quantile(0.975)
+	}
+	return lo, hi
+}
+
+// outside is the chance of a share as far from 92 to 98 % as this one, of the
+// binomial law at the end that it is beyond (the beta law of order statistics); 1 within.
+func (a *hits) outside() float64 {
+	n, p := a.effective(), a.share()
+	k := n * p
+	switch {
+	case p < leastCover:
+		return 1 - distuv.Beta{Alpha: k + 1, Beta: n - k}.CDF(leastCover)
+	case p > mostCover:
+		return distuv.Beta{Alpha: k, Beta: n - k + 1}.CDF(mostCover)
+	}
+	return 1
+}
+
+// judge reports the kinds of series whose share lies outside 92 to 98 % when all are
+// asked together (Holm 1979) at 5 %.
+func judge(t *testing.T, what string, names []string, list []*hits) {
+	t.Helper()
+	p := make([]float64, len(list))
+	out := 0
+	for i, h := range list {
+		p[i] = h.outside()
+		if s := h.share(); s < leastCover || s > mostCover {
+			out++
+		}
+	}
+	adjusted, err := resample.Holm(p)
+	if err != nil {
+		t.Fatal(err)
+	}
+	bad := 0
+	for i, h := range list {
+		if adjusted[i] < 0.05 {
+			bad++
+			t.Errorf("%s: %s covers in %.3f of %d (p = %.2g, by Holm %.2g)", what, names[i], h.share(), h.n, p[i], adjusted[i])
+		}
+	}
+	t.Logf("%s: %d of %d kinds outside %.2f to %.2f, %d beyond chance by Holm at 0.05", what, out, len(list), leastCover, mostCover, bad)
+}
+
+// repeats is the number of series of each kind, THINWARD_REPEATS or otherwise.
+func repeats(otherwise int) int {
+	if n, err := strconv.Atoi(os.Getenv("THINWARD_REPEATS")); err == nil && n > 0 {
+		return n
+	}
+	return otherwise
+}
+
+// three, two and one are the crystals of the series, curb and offset those that three
+// find.
+type covered struct{ three, two, one, curb, offset hits }
+
+// reply is what one series says.
+type reply struct{ three, two, one []*ContrastResult }
+
+func (c cell) measure(t *testing.T, n int, first uint64) *covered {
+	got := make([]reply, n)
+	err := parallel.For(context.Background(), n, 0, func(ctx context.Context, k int) error {
+		s, err := New(seriesOf(t, c.plan(first+uint64(k))), &Settings{Workers: 1, Replicates: 50, Flips: 50})
+		if err != nil {
+			return err
+		}
+		if _, err := s.Scale(ctx); err != nil {
+			return err
+		}
+		read := func(s *Study, into *[]*ContrastResult) error {
+			for _, contrast := range s.primaryContrasts() {
+				x, err := s.paired(ctx, contrast)
+				if err != nil {
+					return err
+				}
+				if err := s.sizes(ctx, x); err != nil {
+					return err
+				}
+				*into = append(*into, &x.Result)
+			}
+			return nil
+		}
+		if err := read(s, &got[k].three); err != nil {
+			return err
+		}
+		if err := read(some(t, s, 0, 2), &got[k].two); err != nil {
+			return err
+		}
+		for i := range s.Series.Crystals {
+			if err := read(some(t, s, i, i+1), &got[k].one); err != nil {
+				return err
+			}
+		}
+		return nil
+	})
+	if err != nil {
+		t.Fatal(err)
+	}
+	out := &covered{}
+	for k := range got {
+		out.take(c, &got[k])
+	}
+	return out
+}
+
+func (v *covered) take(c cell, a *reply) {
+	for _, h := range []*hits{&v.three, &v.two, &v.one, &v.curb, &v.offset} {
+		h.open()
+	}
+	for _, r := range a.three {
+		v.three.add(r.Exchange.M, r.Exchange.Lo, r.Exchange.Hi, c.m)
+		v.curb.add(r.Curb.Q, r.Curb.Lo, r.Curb.Hi, c.curb)
+		v.offset.add(r.Offset.O, r.Offset.Lo, r.Offset.Hi, c.offset)
+	}
+	for _, r := range a.two {
+		v.two.add(r.Exchange.M, r.Exchange.Lo, r.Exchange.Hi, c.m)
+	}
+	for _, r := range a.one {
+		v.one.add((r.Exchange.Lo+r.Exchange.Hi)/2, r.Exchange.Lo, r.Exchange.Hi, c.m)
+	}
+}
+
+func (v *covered) join(w *covered) {
+	v.three.join(&w.three)
+	v.two.join(&w.two)
+	v.one.join(&w.one)
+	v.curb.join(&w.curb)
+	v.offset.join(&w.offset)
+}
+
+// header names the columns of row.
+const header = "contrasts of three | three crystals cover | (95 %) | bias of m | claimed over true error | two crystals cover | bias of m | one: bracket holds m | curb covers | bias of q | claimed over true error | offset covers |"
+
+func (v *covered) row() string {
+	lo, hi := v.three.interval()
+	return fmt.Sprintf("%d | %.3f | %.3f-%.3f | %+.4f | %.2f | %.3f | %+.4f | %.3f | %.3f | %+.4f | %.2f | %.3f |", v.three.n, v.three.share(), lo, hi, v.three.bias(), v.three.ratio(),
+		v.two.share(), v.two.bias(), v.one.share(), v.curb.share(), v.curb.bias(), v.curb.ratio(), v.offset.share())
+}
+
+// grid gathers kinds of series, each and by what they have in common.
+type grid struct {
+	rows           strings.Builder
+	cells, common  map[string]*covered
+	names, grouped []string
+}
+
+func (g *grid) add(c cell, v *covered) {
+	if g.cells == nil {
+		g.cells, g.common = map[string]*covered{}, map[string]*covered{}
+	}
+	g.names = append(g.names, c.String())
+	g.cells[c.String()] = v
+	fmt.Fprintf(&g.rows, "\n| %.2f | %.0f %% | %g | %.0f %% | %g | %s", c.m, 100*c.deviation, c.sigma, 100*c.offset, c.curb, v.row())
+	for _, name := range []string{"all", fmt.Sprintf("m = %g", c.m), fmt.Sprintf("deviations of %.0f %%", 100*c.deviation), fmt.Sprintf("thin sigmas times %g", c.sigma),
+		fmt.Sprintf("offset of %.0f %%", 100*c.offset), fmt.Sprintf("curb of %g", c.curb)} {
+		if g.common[name] == nil {
+			g.common[name] = &covered{}
+			g.grouped = append(g.grouped, name)
+		}
+		g.common[name].join(v)
+	}
+}
+
+// judge asks every kind by itself, then all with one thing in common.
+func (g *grid) judge(t *testing.T) {
+	t.Helper()
+	t.Logf("\n| m | deviations | thin sigmas | offset | curb | %s%s", header, g.rows.String())
+	text := ""
+	for _, name := range g.grouped {
+		text += fmt.Sprintf("\n| %s | %s", name, g.common[name].row())
+	}
+	t.Logf("\n| series with | %s%s", header, text)
+	for _, of := range []struct {
+		what  string
+		names []string
+		from  map[string]*covered
+	}{{"single kinds", g.names, g.cells}, {"kinds with one thing in common", g.grouped, g.common}} {
+		var three, two, curb []*hits
+		for _, name := range of.names {
+			v := of.from[name]
+			three, two, curb = append(three, &v.three), append(two, &v.two), append(curb, &v.curb)
+		}
+		judge(t, of.what+", m of three crystals", of.names, three)
+		judge(t, of.what+", m of two crystals", of.names, two)
+		judge(t, of.what+", q of three crystals", of.names, curb)
+	}
+	// A bracket may hold m more often than an interval.
+	if s := g.common["all"].one.share(); s < leastCover {
+		t.Errorf("the bracket of one crystal holds m in %.3f", s)
+	}
+}
+
+// The interval of m covers the truth in every kind of series. THINWARD_REPEATS sets
+// the number of series of each kind; the tables are those of DEVELOPERS.md.
+func TestCoverageGrid(t *testing.T) {
+	if !full() {
+		t.Skip("THINWARD_FULL=1 runs it")
+	}
+	n := repeats(8)
+	var g grid
+	for k, c := range cells() {
+		t.Run(c.String(), func(t *testing.T) {
+			// Series of their own: kinds that share them would not be so many repeats.
+			v := c.measure(t, n, uint64(1000*k+1))
+			g.add(c, v)
+			t.Logf("| %s | %s", c, v.row())
+		})
+	}
+	g.judge(t)
+}
+
+// With the mean of just these reflections in place of that of the law the interval of m is
+// too wide at a large exchange and small deviations: it counts shell means as those of a
+// sample. Both kinds are shown; that of the law must cover as it says.
+func TestExchangeWithEitherMean(t *testing.T) {
+	n := repeats(2)
+	if !full() && n < 3 {
+		t.Skip("THINWARD_FULL=1 runs it")
+	}
+	for _, sample := range []bool{false, true} {
+		c := cell{m: 0.15, sigma: 1, sample: sample}
+		v := c.measure(t, n, 90001)
+		t.Logf("sample %t | %s", sample, v.row())
+		if p := v.three.outside(); !sample && p < 0.01 {
+			t.Errorf("with the mean of the law the interval of m covers in %.3f", v.three.share())
+		}
+	}
+}
+
+// Ends of the interval and chances are those of sums of the binomial law itself (gonum
+// distuv); two contrasts of a series that always agree count as one.
+func TestCoverJudgement(t *testing.T) {
+	independent := func(n, held int) *hits {
+		h := &hits{}
+		for i := range n {
+			h.open()
+			h.add(0, 0, 0, map[bool]float64{false: 1}[i < held])
+		}
+		return h
+	}
+	atMost := func(k int, p float64) float64 {
+		sum := 0.0
+		for j := 0; j <= k; j++ {
+			sum += distuv.Binomial{N: 60, P: p}.Prob(float64(j))
+		}
+		return sum
+	}
+	lo, hi := independent(60, 57).interval()
+	floatcmp.Check(t, "lower end", 1-atMost(56, lo), 0.025, 1e-9, 0)
+	floatcmp.Check(t, "upper end", atMost(57, hi), 0.025, 1e-9, 0)
+	floatcmp.Check(t, "below", independent(60, 50).outside(), atMost(50, leastCover), 1e-9, 0)
+	floatcmp.Check(t, "within", independent(60, 57).outside(), 1, 0, 0)
+	floatcmp.Check(t, "above", independent(60, 60).outside(), math.Pow(mostCover, 60), 1e-12, 0)
+	twice := &hits{}
+	for i := range 60 {
+		twice.open()
+		for range 2 {
+			twice.add(0, 0, 0, map[bool]float64{false: 1}[i < 57])
+		}
+	}
+	floatcmp.Check(t, "effective", twice.effective(), 60, 1e-9, 0)
+}
