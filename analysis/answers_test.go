@@ -215,8 +215,52 @@ func TestAnswerThicknessAsksForALine(t *testing.T) {
 	}{{3.7, VerdictYes}, {4, VerdictUnsure}} {
 		line := ThicknessLine{Crystal: "L1", T: []float64{140, 220, 310}, Mu: []float64{0, 0.08, 0.08}, Slope: Interval{Value: 0.06, Lo: 0.04, Hi: 0.08}, Chi2: c.chi2, DF: 1}
 		a := answerThickness(&Result{Thickness: &ThicknessResult{Slope: line.Slope, Lines: []ThicknessLine{line, {Crystal: "L2", Why: "m is not estimable"}}}})
-		if a.Verdict != c.verdict || !strings.Contains(a.Text, "over 1 crystals") {
+		if a.Verdict != c.verdict || !strings.Contains(a.Text, "over 1 crystal") {
 			t.Errorf("chi2 %g: %q: %s", c.chi2, a.Verdict, a.Text)
+		}
+	}
+	// No growth: a half width of 0.0196 is a standard error of 0.01, of which 2.80 are seen with
+	// 80 % power (1.960 + 0.842).
+	flat := ThicknessLine{Crystal: "L1", T: []float64{140, 220, 310}, Mu: []float64{0, 0, 0}, Slope: Interval{Value: 0, Lo: -0.0196, Hi: 0.0196}}
+	line := &AcrossLine{Crystals: []string{"L1", "L2", "L3"}, Slope: Interval{Value: 0.011, Lo: -0.1, Hi: 0.1}, Intercept: Interval{Value: 0.002, Lo: -0.1, Hi: 0.1}}
+	a := answerThickness(&Result{Thickness: &ThicknessResult{Slope: flat.Slope, Lines: []ThicknessLine{flat, flat}, Across: line}})
+	if a.Verdict != VerdictNo || !strings.Contains(a.Text, "over 2 crystals; 0.028 per 100 nm would have been seen with 80 % power") {
+		t.Errorf("%q: %s", a.Verdict, a.Text)
+	}
+	if last := a.Detail[len(a.Detail)-1]; !strings.Contains(last, "between 3 crystals") || !strings.Contains(last, "0.011") || !strings.Contains(last, "0.002") {
+		t.Errorf("%q", a.Detail)
+	}
+	line.Why = "too few"
+	if a := answerThickness(&Result{Thickness: &ThicknessResult{Slope: flat.Slope, Lines: []ThicknessLine{flat}, Across: line}}); len(a.Detail) != 1 {
+		t.Errorf("%q", a.Detail)
+	}
+}
+
+// A curb beside m is said, with the one slope that takes both; it must be clear of 0 with all
+// crystals allowed for.
+func TestAnswerExchangeSaysWhatACurbTakes(t *testing.T) {
+	clear, slope := Interval{Value: 0.03, Lo: 0.01, Hi: 0.05}, Interval{Value: 0.11, Lo: 0.08, Hi: 0.14}
+	with := func(q, lo, hi float64) *ContrastResult {
+		c := answered(clear, slope, 80, 0.4)
+		c.Curb = Curb{Q: q, Lo: lo, Hi: hi}
+		return c
+	}
+	nan := math.NaN()
+	for _, c := range []struct {
+		name string
+		list []*ContrastResult
+		says string
+	}{
+		{"clear in both", []*ContrastResult{with(0.04, 0.02, 0.06), with(0.05, 0.02, 0.08)}, "in 2 of 2 crystals and is no part of this m"},
+		{"clear in one", []*ContrastResult{with(0.04, 0.02, 0.06), with(0.01, -0.02, 0.04)}, "in 1 of 2 crystals"},
+		{"clear of 0 only by its own interval", []*ContrastResult{with(0.0101, 0.0001, 0.0201), with(nan, nan, nan)}, "in 1 of 2 crystals"},
+		{"not with two asked", []*ContrastResult{with(0.0101, 0.0001, 0.0201), with(0, -0.01, 0.01)}, ""},
+		{"a gain of the strongest", []*ContrastResult{with(-0.04, -0.06, -0.02)}, ""},
+		{"not in the model", []*ContrastResult{with(nan, nan, nan)}, ""},
+	} {
+		a := answerExchange(&Result{}, c.list)
+		if got := strings.Contains(a.Text, "curb"); got != (c.says != "") || !strings.Contains(a.Text, c.says) || got && !strings.Contains(a.Text, "gives m = 0.110") {
+			t.Errorf("%s: %s", c.name, a.Text)
 		}
 	}
 }
