@@ -252,7 +252,7 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 // filledThroughout reports whether the ledger calls the space group wrong.
 func filledThroughout(r *Result) bool {
 	for _, e := range r.Ledger {
-		if e.Check == "forbidden reflections" && e.Verdict == VerdictFails {
+		if e.Check == checkGroup && e.Verdict == VerdictFails {
 			return true
 		}
 	}
