@@ -16,6 +16,9 @@ type choice struct {
 }
 
 func (f *File) choose(sel Selection) (*choice, error) {
+	if len(f.data) == 0 {
+		return nil, &Error{File: f.Name, Problem: "the file is empty", Remedy: "look whether it was cut off or never written"}
+	}
 	if len(f.lists) == 0 {
 		return nil, &Error{File: f.Name, Problem: "the file holds no reflection list; " + f.contents(), Remedy: "name a file with a _diffrn_refln or _refln loop"}
 	}

@@ -152,8 +152,8 @@ func (p *plan) measured(c *category, find func(string) int, use func(int, role))
 	for i := range c.measures {
 		m := &c.measures[i]
 		j, s := find(m.name), first(find, m.sigmas)
-		if m.mate != "" && (j < 0 || s < 0) {
-			j, s = find(m.mate), find(m.mateSigma)
+		if mate, su := find(m.mate), find(m.mateSigma); (j < 0 || s < 0) && mate >= 0 && (j < 0 || su >= 0) {
+			j, s = mate, su
 		}
 		if j < 0 || best >= 0 && s < 0 {
 			continue

@@ -113,12 +113,10 @@ func (l *lexer) begin() error {
 	for len(l.data) < 16 && l.fill() {
 	}
 	d := l.data
-	switch {
-	case len(d) >= 2 && (d[0] == 0xff && d[1] == 0xfe || d[0] == 0xfe && d[1] == 0xff):
-		return l.fault(0, "the file is UTF-16 text", "save it as plain ASCII or UTF-8")
-	case len(d) >= 4 && d[0] == 'P' && d[1] == 'K' && d[2] == 3 && d[3] == 4:
-		return l.fault(0, "the file is a zip archive", "unpack it first; only gzip is read directly")
-	case len(d) >= 3 && d[0] == 0xef && d[1] == 0xbb && d[2] == 0xbf:
+	if problem, remedy := text.Foreign(d); problem != "" {
+		return l.fault(0, problem, remedy)
+	}
+	if strings.HasPrefix(string(d[:min(3, len(d))]), "\xef\xbb\xbf") {
 		l.i = 3
 		l.once("byte-order-mark", "the file begins with a byte-order mark, which CIF 1.1 does not allow; it was skipped", 0)
 	}

@@ -208,6 +208,9 @@ func (r *reader) quickFixed(n int) int {
 
 // slow stores any row, with an error that names line and column.
 func (r *reader) slow(line []byte, n int) error {
+	if j := bytes.IndexByte(line, 0); j >= 0 {
+		return r.fault(r.i+j, "", "the line holds a NUL byte", "the file is damaged or not text; copy it again")
+	}
 	fields := r.split(line)
 	if r.delimiter == ' ' && len(fields) > len(r.roles) && (fields[len(r.roles)][0] == '#' || fields[len(r.roles)][0] == '!') {
 		fields = fields[:len(r.roles)]

@@ -88,14 +88,15 @@ func (r *reader) more(i int) bool {
 }
 
 func (r *reader) begin() error {
-	r.more(3)
+	r.more(15)
 	d := r.data
-	switch {
-	case len(d) >= 2 && (d[0] == 0xff && d[1] == 0xfe || d[0] == 0xfe && d[1] == 0xff):
-		return r.fault(0, "", "the file is UTF-16 text", "save it as plain ASCII or UTF-8")
-	case len(d) >= 4 && d[0] == 'P' && d[1] == 'K' && d[2] == 3 && d[3] == 4:
-		return r.fault(0, "", "the file is a zip archive", "unpack it first; only gzip is read directly")
-	case len(d) >= 3 && d[0] == 0xef && d[1] == 0xbb && d[2] == 0xbf:
+	if problem, remedy := text.Foreign(d); problem != "" {
+		return r.fault(0, "", problem, remedy)
+	}
+	if len(d) == 0 {
+		return r.fault(0, "", "the file is empty", "look whether it was cut off or never written")
+	}
+	if bytes.HasPrefix(d, []byte("\xef\xbb\xbf")) {
 		r.i = 3
 		r.warning(0, "byte-order-mark", "the file begins with a byte-order mark; it was skipped")
 	}

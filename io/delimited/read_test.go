@@ -130,11 +130,14 @@ func TestBadInput(t *testing.T) {
 		line                  int
 		item, problem, remedy string // the last two in part
 	}{
-		{"empty", "", nil, 1, "", "holds no rows", "cut off"},
+		{"empty", "", nil, 1, "", "the file is empty", "cut off or never written"},
 		{"only comments", "# a\n! b\n", nil, 3, "", "holds no rows", "cut off"},
 		{"UTF-16", "\xff\xfeh\x00", nil, 1, "", "UTF-16", "save it as plain ASCII"},
 		{"zip", "PK\x03\x04....", nil, 1, "", "zip archive", "unpack it first"},
-		{"gzip cut off", "\x1f\x8b\x08\x00\x00\x00\x00\x00\x00\x00\x4b\x4c", nil, 0, "", "damaged or cut off", "copy the file again"},
+		{"gzip cut off", "\x1f\x8b\x08\x00\x00\x00\x00\x00\x00\x00\x4b\x4c", nil, 1, "", "the gzip data are cut off after 1 bytes of text", "copy the file again"},
+		{"UTF-16 without mark", "\x001\x00 \x002", nil, 1, "", "UTF-16 text without a byte-order mark", "save it as plain ASCII"},
+		{"NUL", "1 2 3 4 5\n1 2 3 4\x00 5\n", &Options{Order: five}, 2, "", "the line holds a NUL byte", "damaged or not text"},
+		{"web page", "<html><body>", nil, 1, "", "the file is a web page", "download the list itself"},
 		{"nothing declared", "1 2 3 4 5\n", nil, 1, "", "columns are not declared", "declare the order"},
 		{"header lacks sigma", "h k l intensity error\n1 2 3 4 5\n", nil, 1, "header", "the column sigma is missing", "use the names h, k, l"},
 		{"header names twice", "h k l intensity sigma sigma\n1 2 3 4 5 6\n", nil, 1, "header", "the column sigma stands twice", "use the names"},

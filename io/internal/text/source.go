@@ -31,6 +31,9 @@ type Source struct {
 func OpenSource(path string) (*Source, error) {
 	data, err := os.ReadFile(path)
 	if err != nil {
+		if info, e := os.Stat(path); e == nil && info.IsDir() {
+			return nil, &Error{File: path, Problem: "is a folder, not a file", Remedy: "name the file in it"}
+		}
 		var pe *os.PathError
 		cause := err
 		if errors.As(err, &pe) {
@@ -78,6 +81,7 @@ func inflatedSize(data []byte) int {
 	return size
 }
 
+// inflate sends what it has at every step; a text may be of several gzip members.
 func (s *Source) inflate(data, dst []byte, stop <-chan struct{}) {
 	pieces := s.pieces
 	defer close(pieces)
@@ -86,45 +90,75 @@ func (s *Source) inflate(data, dst []byte, stop <-chan struct{}) {
 			s.fault = fmt.Errorf("panic while inflating: %v", r)
 		}
 	}()
-	z, err := gzip.NewReader(bytes.NewReader(data))
-	if err != nil {
-		s.fault = err
-		return
-	}
-	n := 0
-	for {
-		if n == len(dst) {
-			grown := make([]byte, 2*len(dst)+inflateStep)
-			copy(grown, dst)
-			dst = grown
+	n, sent := 0, 0
+	send := func() bool {
+		if sent == n {
+			return true
 		}
-		end := min(n+inflateStep, len(dst))
-		m, err := io.ReadFull(z, dst[n:end])
-		n += m
-		if m > 0 {
-			select {
-			case pieces <- dst[:n]:
-			case <-stop:
+		sent = n
+		select {
+		case pieces <- dst[:n]:
+			return true
+		case <-stop:
+			return false
+		}
+	}
+	rest := bytes.NewReader(data)
+	z, err := gzip.NewReader(rest)
+	for err == nil {
+		z.Multistream(false)
+		for err == nil {
+			if n == len(dst) {
+				grown := make([]byte, 2*len(dst)+inflateStep)
+				copy(grown, dst)
+				dst = grown
+			}
+			var m int
+			m, err = z.Read(dst[n:min(n+inflateStep, len(dst))])
+			if n += m; n-sent >= inflateStep && !send() {
 				return
 			}
 		}
-		switch {
-		case err == nil:
-		case err == io.EOF, err == io.ErrUnexpectedEOF && m > 0 && atEnd(z):
-			return
-		default:
-			s.fault = err
+		if err != io.EOF {
+			break
+		}
+		if rest.Len() == 0 {
+			send()
 			return
 		}
+		if at := len(data) - rest.Len(); rest.Len() < 2 || data[at] != 0x1f || data[at+1] != 0x8b {
+			err = errTrailing
+			break
+		}
+		err = z.Reset(rest)
 	}
+	send()
+	s.fault = err
 }
 
-// atEnd tells the short last piece that ReadFull reports from data cut off in the
-// middle: only a reader that is properly finished keeps answering io.EOF.
-func atEnd(z *gzip.Reader) bool {
-	var one [1]byte
-	_, err := z.Read(one[:])
-	return err == io.EOF
+var errTrailing = errors.New("something else stands behind their end")
+
+// damage says what is wrong with gzip data, on the line up to which they could be read.
+func (s *Source) damage() *Error {
+	n := len(s.buf)
+	e := &Error{File: s.name, Remedy: "copy the file again"}
+	if n > 0 {
+		e.Line = Line(s.buf, n)
+	}
+	switch {
+	case errors.Is(s.fault, io.ErrUnexpectedEOF) || errors.Is(s.fault, io.EOF):
+		e.Problem = fmt.Sprintf("the gzip data are cut off after %d bytes of text", n)
+	case errors.Is(s.fault, gzip.ErrChecksum):
+		e.Problem = fmt.Sprintf("the gzip data are damaged: the checksum of %d bytes of text is wrong", n)
+	case errors.Is(s.fault, gzip.ErrHeader):
+		e.Problem = "the gzip header is damaged"
+	case errors.Is(s.fault, errTrailing):
+		e.Problem = fmt.Sprintf("the gzip data end after %d bytes of text and something else stands behind them", n)
+		e.Remedy = "copy the file again, or unpack it and look at what is there"
+	default:
+		e.Problem = fmt.Sprintf("the gzip data are damaged after %d bytes of text: %v", n, s.fault)
+	}
+	return e
 }
 
 // Bytes returns the text that is there so far.
@@ -143,7 +177,7 @@ func (s *Source) More() bool {
 	if !ok {
 		s.pieces = nil
 		if s.fault != nil {
-			s.err = &Error{File: s.name, Problem: "gzip data are damaged or cut off: " + s.fault.Error(), Remedy: "copy the file again, or unpack it and look at what is there"}
+			s.err = s.damage()
 		}
 		return false
 	}

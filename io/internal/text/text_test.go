@@ -131,11 +131,25 @@ func TestSourceFailures(t *testing.T) {
 	whole := gz(t, bytes.Repeat([]byte("1 2 3 4 5\n"), 200000))
 	broken := append([]byte(nil), whole...)
 	broken[len(broken)-6] ^= 0xff
-	for what, in := range map[string][]byte{"cut": whole[:len(whole)/2], "cut in the tail": whole[:len(whole)-3], "checksum": broken, "rubbish behind": append(append([]byte(nil), whole...), "rubbish"...)} {
-		_, err := drain(NewSource("f.gz", in))
+	for _, tt := range []struct {
+		what string
+		in   []byte
+		want string
+	}{
+		{"cut", whole[:len(whole)/2], "the gzip data are cut off after 99"},
+		{"cut in the tail", whole[:len(whole)-3], "f.gz:200001: the gzip data are cut off after 2000000 bytes of text; copy the file again"},
+		{"checksum", broken, "f.gz:200001: the gzip data are damaged: the checksum of 2000000 bytes of text is wrong; copy the file again"},
+		{"rubbish behind", append(append([]byte(nil), whole...), "rubbish"...), "f.gz:200001: the gzip data end after 2000000 bytes of text and something else stands behind them; copy the file again, or unpack it and look at what is there"},
+		{"one byte behind", append(append([]byte(nil), whole...), 0x1f), "something else stands behind them"},
+		{"second member cut", append(append([]byte(nil), whole...), whole[:5]...), "f.gz:200001: the gzip data are cut off after 2000000 bytes of text"},
+		{"only the mark", []byte{0x1f, 0x8b}, "f.gz: the gzip data are cut off after 0 bytes of text"},
+		{"header", append([]byte{0x1f, 0x8b, 7}, make([]byte, 30)...), "f.gz: the gzip header is damaged; copy the file again"},
+		{"inside", append(append([]byte(nil), whole[:10]...), bytes.Repeat([]byte{0xff}, 99)...), "f.gz: the gzip data are damaged after 0 bytes of text: flate: corrupt input"},
+	} {
+		_, err := drain(NewSource("f.gz", tt.in))
 		var e *Error
-		if !errors.As(err, &e) || e.File != "f.gz" || !strings.Contains(e.Problem, "damaged or cut off") || !strings.Contains(e.Remedy, "copy the file again") {
-			t.Errorf("%s: %v", what, err)
+		if !errors.As(err, &e) || !strings.Contains(err.Error(), tt.want) || e.Remedy == "" {
+			t.Errorf("%s: got %v, want %s", tt.what, err, tt.want)
 		}
 	}
 	s := NewSource("f", whole)
