@@ -124,6 +124,14 @@ func TestMissingFile(t *testing.T) {
 	}
 }
 
+func TestFolderInsteadOfFile(t *testing.T) {
+	dir := t.TempDir()
+	_, err := ReadFile(dir)
+	if err == nil || err.Error() != dir+": is a folder, not a file; name the file in it" {
+		t.Errorf("got %v", err)
+	}
+}
+
 // The kernel takes numbers from the bytes, the lexer everything else: both must say
 // the same in the same place, wherever a value stands in a row.
 func TestErrorTextIsWhole(t *testing.T) {

@@ -28,6 +28,9 @@ type reflections struct {
 }
 
 func (l *loader) read(path, pick string, at place) (*reflections, error) {
+	if info, err := os.Stat(path); err == nil && info.IsDir() {
+		return nil, l.fail(at, "files", path+" is a folder, not a file", "name the files in it", nil)
+	}
 	kind, err := LooksLikeCIF(path)
 	if err != nil {
 		return nil, l.fail(at, "files", fmt.Sprintf("%s cannot be read: %s", path, cause(err)), "check the path; it is relative to the manifest", err)
