@@ -177,7 +177,7 @@ type ThicknessLine struct {
 	T       []float64 `json:"thickness_nm"`
 	Mu      []float64 `json:"mu"`
 	MuSE    []float64 `json:"mu_se"`
-	Rising  []float64 `json:"rising"`
+	Rising  []float64 `json:"rising,omitempty"`
 	Slope   Interval  `json:"slope_per_100nm"`
 	Chi2    float64   `json:"chi2"`
 	DF      int       `json:"df"`

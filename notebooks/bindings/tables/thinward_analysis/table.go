@@ -17,6 +17,7 @@ func init() {
 		Name: "analysis",
 		Binds: map[string]reflect.Value{
 			"AllPositions":   reflect.ValueOf(analysis.AllPositions),
+			"LedgerChecks":   reflect.ValueOf(analysis.LedgerChecks),
 			"New":            reflect.ValueOf(analysis.New),
 			"Schema":         reflect.ValueOf(analysis.Schema),
 			"VerdictCaution": reflect.ValueOf(analysis.VerdictCaution),
@@ -29,6 +30,7 @@ func init() {
 		},
 		Types: map[string]reflect.Type{
 			"Accepted":        reflect.TypeOf((*analysis.Accepted)(nil)).Elem(),
+			"AcrossLine":      reflect.TypeOf((*analysis.AcrossLine)(nil)).Elem(),
 			"AngleInfluence":  reflect.TypeOf((*analysis.AngleInfluence)(nil)).Elem(),
 			"Answer":          reflect.TypeOf((*analysis.Answer)(nil)).Elem(),
 			"AxisResult":      reflect.TypeOf((*analysis.AxisResult)(nil)).Elem(),
