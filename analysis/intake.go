@@ -88,10 +88,7 @@ func (s *Study) intakeStep(ctx context.Context) (*Intake, error) {
 		// What the indices say of the angles first: it is sharper, and turn then asks
 		// whether anything is left.
 		warnings = append(warnings, s.align(i, in.Positions[i])...)
-		own, said, err := s.turn(i, in.Positions[i])
-		if err != nil {
-			return nil, err
-		}
+		own, said := s.turn(i, in.Positions[i])
 		turns, warnings = append(turns, own...), append(warnings, said...)
 	}
 	for i := range in.Positions {

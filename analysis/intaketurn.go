@@ -92,9 +92,8 @@ func (f frame) against(g frame) (axis, zero float64) {
 }
 
 // turn compares the angles of every position of a crystal with those of its thinnest
-// one. Positions that are indexed by another equivalent choice of axes are brought
-// to the same; columns are replaced, not changed.
-func (s *Study) turn(i int, list []Accepted) ([]TurnResult, []intensity.Warning, error) {
+// one, by geometry alone: it needs no index in common. It changes nothing.
+func (s *Study) turn(i int, list []Accepted) ([]TurnResult, []intensity.Warning) {
 	c := &s.Series.Crystals[i]
 	first := c.byThickness()[0]
 	order := []int{first}
@@ -109,25 +108,20 @@ func (s *Study) turn(i int, list []Accepted) ([]TurnResult, []intensity.Warning,
 	for _, j := range order {
 		r := TurnResult{Crystal: c.Name, Position: c.Positions[j].Name, MisfitDeg: math.NaN(), AxisDeg: math.NaN(), ZeroDeg: math.NaN(), Verdict: evidence.NotKnown.String()}
 		own := s.ownTurn(list[j].Observations, &r)
-		if own != nil {
-			if reference == nil {
-				reference = own
-				r.Verdict, r.Why = evidence.Fine.String(), "the angles are those of one rotation; the other positions of the crystal are compared with it"
-			} else if by := s.sameTurn(*own, *reference, &r); by != nil {
-				changed, err := reindexed(list[j].Observations, *by)
-				if err != nil {
-					return nil, nil, fmt.Errorf("%s: %w", s.place(i, j), err)
-				}
-				list[j].Observations = changed
-				warnings = append(warnings, intensity.Warning{Code: "equivalent-indexing", Where: s.place(i, j), Text: r.Why})
-			}
+		switch {
+		case own == nil:
+		case reference == nil:
+			reference = own
+			r.Verdict, r.Why = evidence.Fine.String(), "the angles are those of one rotation; the other positions of the crystal are compared with it"
+		default:
+			s.sameTurn(*own, *reference, &r)
 		}
 		if r.Verdict == evidence.Caution.String() || r.Verdict == evidence.Fails.String() {
 			warnings = append(warnings, intensity.Warning{Code: "angles", Where: s.place(i, j), Text: r.Why})
 		}
 		out = append(out, r)
 	}
-	return out, warnings, nil
+	return out, warnings
 }
 
 // ownTurn finds the rotation of one position; nil when its angles do not tell it, r
@@ -188,40 +182,36 @@ func otherUnit(x [][3]float64, phi []float64) (factor, misfit float64) {
 	return factor, misfit
 }
 
-// sameTurn compares a position with the reference and fills r. The change of indices,
-// nil for none, is the one to apply.
-func (s *Study) sameTurn(own, reference frame, r *TurnResult) *crystal.Reindexing {
+// sameTurn compares a position with the reference and fills r.
+func (s *Study) sameTurn(own, reference frame, r *TurnResult) {
 	axis, zero := own.against(reference)
 	r.AxisDeg, r.ZeroDeg = axis, zero
 	if axis < sameAxisDeg && math.Abs(zero) < sameZeroDeg {
 		r.Verdict, r.Why = evidence.Fine.String(), "the angles agree with those of the reference"
-		return nil
+		return
 	}
+	r.Verdict = evidence.Caution.String()
 	for _, op := range s.equivalents(own.sense && reference.sense) {
 		seen := own.turned(op.cartesian(s.Series.Cell))
 		if op.inverts {
 			seen = seen.inverted()
 		}
-		a, z := seen.against(reference)
-		if a < sameAxisDeg && math.Abs(z) < sameZeroDeg {
+		if a, z := seen.against(reference); a < sameAxisDeg && math.Abs(z) < sameZeroDeg {
 			r.AxisDeg, r.ZeroDeg, r.Reindex = a, z, op.String()
-			r.Verdict = evidence.Fine.String()
-			r.Why = fmt.Sprintf("was indexed on other, equivalent axes than the reference and has been re-indexed by %s, so that observations can be matched by index and angle", op)
-			return &crystal.Reindexing{M: op.M, Den: 1}
+			r.Why = fmt.Sprintf("is indexed on other, equivalent axes than the reference: write reindex = %q for this position, or observations cannot be matched by index and angle", op)
+			return
 		}
 	}
-	r.Verdict = evidence.Caution.String()
 	back, ahead := own.reversed().against(reference)
 	switch {
 	case axis < sameAxisDeg:
 		r.Why = fmt.Sprintf("its angles are counted from another zero than those of the reference: write angle_shift_deg = %.2f for this position, or observations cannot be matched by angle", zero)
 	case back < sameAxisDeg:
 		r.AxisDeg, r.ZeroDeg, r.Reversed = back, ahead, true
-		r.Why = fmt.Sprintf("its angles run the other way than those of the reference: write angle_factor = -1 and angle_shift_deg = %.2f for this position, or observations cannot be matched by angle", ahead)
+		r.Why = fmt.Sprintf("its angles run the other way than those of the reference: write angle_factor = -1.0 and angle_shift_deg = %.2f for this position, or observations cannot be matched by angle", ahead)
 	default:
-		r.Why = fmt.Sprintf("the crystal was turned about another axis of its own than in the reference (%.0f degrees away): the position lies on another grain, or is indexed apart; it is compared after merging only", axis)
+		r.Why = fmt.Sprintf("the crystal was turned about another axis of its own than in the reference (%.0f degrees away): the position lies on another grain, or is indexed apart; it can be compared after merging only", axis)
 	}
-	return nil
 }
 
 // equivalent is a change of indices by the Laue class. Where it inverts, M is the

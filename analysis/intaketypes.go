@@ -108,8 +108,8 @@ type CentringResult struct {
 // plane across the beam at their angle. AxisDeg is the angle between the
 // rotation axes in the frame of the crystal, ZeroDeg what is to be added to the angles of
 // this position, Reversed that they run the other way and are to be negated before. Reindex is a change
-// of indices by a symmetry of the Laue class that was applied so that both
-// positions are indexed in one frame, empty for none.
+// of indices by a symmetry of the Laue class after which both agree, empty for none.
+// What the step before has mended by common indices no longer shows here.
 type TurnResult struct {
 	Crystal   string  `json:"crystal"`
 	Position  string  `json:"position"`

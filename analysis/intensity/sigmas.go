@@ -42,7 +42,9 @@ type Sigmas struct {
 	Pairs, NearPairs   int
 	WeakOnly, AnyAngle bool
 	Chi2, Chi2SE       float64 // NaN with fewer than 10 pairs
-	Warnings           []Warning
+	// Warnings call sigmas too small or too large when Chi2 is off by a factor of two
+	// and by three standard errors of its logarithm, and say what is made up.
+	Warnings []Warning
 }
 
 // WindowDeg is the rotation within which equivalents count as near, and over
@@ -170,10 +172,14 @@ func (s *Sigmas) warn() {
 	if s.AnyAngle {
 		which = "equivalents (at any angle, none being given)"
 	}
+	off := math.Log(s.Chi2)
+	if !(math.Abs(off) > math.Ln2 && math.Abs(off) > 3*s.Chi2SE/s.Chi2) {
+		return
+	}
 	switch {
-	case s.Chi2-3*s.Chi2SE > 2 && !s.AnyAngle:
+	case off > 0 && !s.AnyAngle:
 		add("sigma-small", "%s differ by %.1f times what their sigmas say (%d pairs): sigmas are too small; the noise model scales them up", which, math.Sqrt(s.Chi2), s.Pairs)
-	case s.Chi2+3*s.Chi2SE < 0.5:
+	case off < 0:
 		add("sigma-large", "%s differ by %.2f times what their sigmas say (%d pairs): sigmas are too large, or the observations are no independent ones", which, math.Sqrt(s.Chi2), s.Pairs)
 	}
 }

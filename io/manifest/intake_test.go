@@ -1,0 +1,246 @@
+package manifest
+
+import (
+	"context"
+	"fmt"
+	"math"
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+
+	"thinward/analysis"
+	"thinward/analysis/simulate"
+)
+
+// small invents two crystals of two positions in a folder, spoil having changed the
+// plan, and returns the manifest with old replaced by new, in pairs.
+func small(t *testing.T, spoil func(*simulate.Plan), replace ...string) string {
+	t.Helper()
+	p := simulate.Sound(5)
+	p.DMin = 1.9
+	p.Crystals = p.Crystals[:2]
+	for i := range p.Crystals {
+		p.Crystals[i].Positions = p.Crystals[i].Positions[:2]
+	}
+	spoil(p)
+	dir := t.TempDir()
+	if err := Invent(context.Background(), p, dir); err != nil {
+		t.Fatal(err)
+	}
+	path := filepath.Join(dir, "series.toml")
+	rewrite(t, path, replace...)
+	return path
+}
+
+func rewrite(t *testing.T, path string, replace ...string) {
+	t.Helper()
+	data, err := os.ReadFile(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	text := string(data)
+	for k := 0; k < len(replace); k += 2 {
+		if !strings.Contains(text, replace[k]) {
+			t.Fatalf("the manifest does not hold %q:\n%s", replace[k], text)
+		}
+		text = strings.Replace(text, replace[k], replace[k+1], 1)
+	}
+	if err := os.WriteFile(path, []byte(text), 0o644); err != nil {
+		t.Fatal(err)
+	}
+}
+
+func details(t *testing.T, path string) (*analysis.Study, *analysis.IntakeDetails) {
+	t.Helper()
+	s, err := LoadWith(path, &analysis.Settings{Replicates: 50, Flips: 50})
+	if err != nil {
+		t.Fatal(err)
+	}
+	d, err := s.IntakeDetails(context.Background())
+	if err != nil {
+		t.Fatal(err)
+	}
+	return s, d
+}
+
+func said(d *analysis.IntakeDetails, code, where string) string {
+	for _, w := range d.Warnings {
+		if w.Code == code && strings.Contains(w.Where, where) {
+			return w.Text
+		}
+	}
+	return ""
+}
+
+var (
+	hexagonal  = simulate.Cell{A: 14, B: 14, C: 11, Alpha: 90, Beta: 90, Gamma: 120}
+	tetragonal = simulate.Cell{A: 14, B: 14, C: 11, Alpha: 90, Beta: 90, Gamma: 90}
+)
+
+// A position that is indexed another way than the rest, in files on disk: it is found and
+// mended, by the manifest too, whichever member of a coset it was mixed up by
+// (International Tables A: for P 3 four cosets of -3 in the lattice rotations, for P 4
+// two), and the mended position pairs with the others by index and angle.
+func TestMixedIndexingOfFiles(t *testing.T) {
+	for _, c := range []struct {
+		group, mixed string
+		cell         simulate.Cell
+		options      int
+	}{
+		{"P 3", "-h,-k,l", hexagonal, 4},
+		{"P 3", "-k,-h,-l", hexagonal, 4},
+		{"P 3", "k,-h-k,l", hexagonal, 4}, // an equivalent, of order three
+		{"P 4", "k,h,-l", tetragonal, 2},
+		{"P 4", "h,-k,-l", tetragonal, 2},
+		{"P 4", "-k,h,l", tetragonal, 2}, // an equivalent, of order four
+	} {
+		t.Run(c.group+" "+c.mixed, func(t *testing.T) {
+			path := small(t, func(p *simulate.Plan) {
+				p.SpaceGroup, p.Cell = c.group, c.cell
+				p.Crystals[1].Positions[1].Reindex = c.mixed
+			})
+			s, d := details(t, path)
+			proposal := ""
+			for _, x := range d.Indexing {
+				if len(x.Options) != c.options || x.Ambiguous || !(x.Z > 4) {
+					t.Errorf("%s: %d options, z %.1f, ambiguous %v", x.Where, len(x.Options), x.Z, x.Ambiguous)
+				}
+				if x.Proposal != "" {
+					if x.Where != "L2/mid" {
+						t.Errorf("%s: re-indexed by %s", x.Where, x.Proposal)
+					}
+					proposal = x.Proposal
+				}
+			}
+			for _, x := range d.Turns {
+				if x.Verdict != "fine" {
+					t.Errorf("%+v", x)
+				}
+			}
+			if proposal == "" && said(d, "angles-aligned", "L2/mid") == "" {
+				t.Fatal("nothing was found")
+			}
+			contrast, err := s.Find("L2", "", "")
+			if err != nil {
+				t.Fatal(err)
+			}
+			x, err := s.Compare(context.Background(), contrast)
+			if err != nil {
+				t.Fatal(err)
+			}
+			if !x.Pairs.Matched || !(x.Result.Correlation.R > 0.95) {
+				t.Errorf("after mending: matched %v, correlation %.3f", x.Pairs.Matched, x.Result.Correlation.R)
+			}
+			if proposal == "" {
+				return
+			}
+			// What is proposed, written into the manifest, leaves nothing to propose.
+			rewrite(t, path, "files = ['L2-mid.cif.gz']", "files = ['L2-mid.cif.gz']\nreindex = '"+proposal+"'")
+			_, d = details(t, path)
+			for _, x := range d.Indexing {
+				if x.Proposal != "" || x.Ambiguous {
+					t.Errorf("after the proposal: %+v", x)
+				}
+			}
+		})
+	}
+}
+
+// Intensities of P 4 2 2 that are called P 4 cannot tell the two ways to index: that is
+// said of every position, and nothing is changed.
+func TestAmbiguousIndexingOfFiles(t *testing.T) {
+	path := small(t, func(p *simulate.Plan) { p.SpaceGroup, p.Cell = "P 4 2 2", tetragonal }, "space_group = 'P 4 2 2'", "space_group = 'P 4'")
+	_, d := details(t, path)
+	if len(d.Indexing) != 3 {
+		t.Fatalf("%d positions were asked", len(d.Indexing))
+	}
+	for _, x := range d.Indexing {
+		if !x.Ambiguous || x.Proposal != "" || said(d, "indexing-ambiguous", x.Where) == "" {
+			t.Errorf("%+v", x)
+		}
+	}
+}
+
+// A lattice that is named with the wrong centring, either way, as issue of the whole
+// reading: half of the reflections of a C or I lattice are absent exactly (Hahn 2005,
+// International Tables A, table 2.2.13.1).
+func TestWrongCentring(t *testing.T) {
+	cell := simulate.Cell{A: 11, B: 14.6, C: 18.2, Alpha: 90, Beta: 90, Gamma: 90}
+	for _, c := range []struct {
+		truth, stated string
+		recorded      bool // centring absences stand in the lists
+		find, verdict string
+		text          string
+	}{
+		{"C 2 2 21", "P 2 2 21", true, "C", "caution", "write the group of the centred lattice"},
+		{"I 2 2 2", "P 2 2 2", true, "I", "caution", "write the group of the centred lattice"},
+		{"F 2 2 2", "P 2 2 2", true, "F", "caution", "write the group of the centred lattice"},
+		{"C 2 2 21", "P 2 2 21", false, "C", "caution", "hardly any of the reflections"},
+		{"P 2 2 21", "C 2 2 21", true, "C", "fails", "what it forbids is there"},
+		{"P 2 2 2", "I 2 2 2", true, "I", "fails", "what it forbids is there"},
+		{"C 2 2 21", "I 2 2 2", true, "I", "fails", "what it forbids is there"},
+		{"C 2 2 21", "C 2 2 21", true, "", "", ""},
+		{"C 2 2 21", "C 2 2 21", false, "", "", ""},
+		{"P 2 2 21", "P 2 2 21", true, "", "", ""},
+	} {
+		name := fmt.Sprintf("%s called %s, absences recorded %v", c.truth, c.stated, c.recorded)
+		path := small(t, func(p *simulate.Plan) {
+			p.SpaceGroup, p.Cell, p.Common.WithCentring = c.truth, cell, c.recorded
+			for i := range p.Crystals {
+				for j := range p.Crystals[i].Positions {
+					p.Crystals[i].Positions[j].WithCentring = c.recorded
+				}
+			}
+		}, "space_group = '"+c.truth+"'", "space_group = '"+c.stated+"'")
+		_, d := details(t, path)
+		found := ""
+		for _, x := range d.Centring {
+			if x.Verdict != "caution" && x.Verdict != "fails" {
+				continue
+			}
+			if found != "" && x.Verdict == c.verdict {
+				t.Errorf("%s: %s and %s", name, found, x.Centring)
+			}
+			if x.Verdict == c.verdict {
+				found = x.Centring
+				if !strings.Contains(x.Why, c.text) || said(d, "centring", "lattice "+x.Centring) != x.Why {
+					t.Errorf("%s: %+v", name, x)
+				}
+			} else if c.verdict == "" {
+				t.Errorf("%s: a false alarm: %+v", name, x)
+			}
+		}
+		if found != c.find {
+			t.Errorf("%s: found %q, want %q: %+v", name, found, c.find, d.Centring)
+		}
+	}
+}
+
+// Sigmas that are half or twice the true errors are named before anything is scaled, and
+// right ones are not; chi squared is the square of the factor.
+func TestWrongSigmasOfFiles(t *testing.T) {
+	for _, c := range []struct {
+		factor float64
+		code   string
+	}{{0.5, "sigma-small"}, {1, ""}, {2, "sigma-large"}} {
+		_, d := details(t, small(t, func(p *simulate.Plan) {
+			for i := range p.Crystals {
+				for j := range p.Crystals[i].Positions {
+					p.Crystals[i].Positions[j].SigmaFactor = c.factor
+				}
+			}
+		}))
+		for _, r := range d.Positions {
+			x := r.Sigmas.Chi2 * c.factor * c.factor
+			if !(math.Abs(x-1) < 0.5) || r.Sigmas.AnyAngle || !(r.Sigmas.Pairs >= 30) {
+				t.Errorf("sigmas times %g: %s/%s: %+v", c.factor, r.Crystal, r.Position, r.Sigmas)
+			}
+			for _, code := range []string{"sigma-small", "sigma-large"} {
+				if (said(d, code, r.Crystal+"/"+r.Position) != "") != (code == c.code) {
+					t.Errorf("sigmas times %g: %s/%s: %s is wrong: %+v", c.factor, r.Crystal, r.Position, code, r.Sigmas)
+				}
+			}
+		}
+	}
+}
