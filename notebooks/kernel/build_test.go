@@ -197,6 +197,29 @@ func TestBuildErrors(t *testing.T) {
 	}
 }
 
+func TestVendorIsNamed(t *testing.T) {
+	noPrebuilt(t)
+	t.Setenv("GOFLAGS", "-mod=vendor")
+	_, err := Ensure(context.Background(), &Settings{CacheDir: t.TempDir()})
+	var failed *BuildError
+	if !errors.As(err, &failed) || !strings.Contains(failed.Remedy, "Unset GOFLAGS=-mod=vendor") {
+		t.Errorf("error %v", err)
+	}
+}
+
+// An older Go says what our go.mod wants; the words are those of the tool.
+func TestOlderGoIsNamed(t *testing.T) {
+	err := toolError(context.Background(), "sources", errors.New("exit status 1"), "go: go.mod requires go >= 1.26 (running go 1.24.1; GOTOOLCHAIN=local)")
+	var failed *BuildError
+	if !errors.As(err, &failed) || !strings.Contains(failed.Remedy, "Install a newer Go") {
+		t.Errorf("error %v", err)
+	}
+	text, readErr := os.ReadFile(filepath.Join("..", "..", "go.mod"))
+	if readErr != nil || !strings.Contains(string(text), "\ngo 1.26") || strings.Contains(string(text), "\ntoolchain ") {
+		t.Errorf("go.mod asks for another toolchain: %v", readErr)
+	}
+}
+
 func TestNoGoTool(t *testing.T) {
 	noPrebuilt(t)
 	t.Setenv("PATH", t.TempDir())

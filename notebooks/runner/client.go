@@ -39,7 +39,8 @@ const (
 	messagesCap = 64
 )
 
-var errNoAnswer = errors.New("the kernel does not answer")
+// ErrNoAnswer is a kernel that runs and does not answer, for half a minute.
+var ErrNoAnswer = errors.New("the kernel does not answer")
 
 // connect starts a kernel and waits until it answers on both channels.
 func connect(ctx context.Context, o *Options) (*client, error) {
@@ -137,7 +138,7 @@ func (c *client) meet(ctx context.Context, ports []int) error {
 	case <-ctx.Done():
 		return c.why(ctx)
 	case <-limit.C:
-		return errNoAnswer
+		return ErrNoAnswer
 	}
 	ask := time.NewTicker(infoEvery)
 	defer ask.Stop()
@@ -157,7 +158,7 @@ func (c *client) meet(ctx context.Context, ports []int) error {
 		case <-ctx.Done():
 			return c.why(ctx)
 		case <-limit.C:
-			return errNoAnswer
+			return ErrNoAnswer
 		}
 	}
 	return nil

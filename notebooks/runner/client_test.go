@@ -203,6 +203,16 @@ func TestCompletion(t *testing.T) {
 	}
 }
 
+// TestFirstCellIsHeard runs one short cell in fresh kernels: the published channel
+// joins later than the others, and what the first cell shows must not be lost.
+func TestFirstCellIsHeard(t *testing.T) {
+	for range 5 {
+		if got := must(t, Options{}, "40 + 2"); got[0] != "42" {
+			t.Fatalf("the first cell shows %q", got)
+		}
+	}
+}
+
 func TestInspection(t *testing.T) {
 	r := openKernel(t)
 	if _, err := r.try("import (\n\"strings\"\n\"thinward/analysis/crystal\"\n\"thinward/notebooks/session\"\n\"gonum.org/v1/gonum/stat\"\n\"display\"\n)\n_ = display.HTML\nvar s *session.Session\nc := crystal.Cell{}\nn := 3"); err != nil {

@@ -90,12 +90,16 @@ func (e *ShellError) Error() string {
 }
 
 // ParameterError is a value that was set for a name the notebook does not
-// declare, or a value that does not fit the declared one.
+// declare, or does not declare with a literal, or a value that does not fit the
+// declared one.
 type ParameterError struct {
 	Name   string
 	Value  string
-	Reason string   // "unknown", or what the value should have been
-	Known  []string // declared names, sorted
+	Reason string   // "unknown", "not settable", or what the value should have been
+	Known  []string // names that can be set, sorted
+	// Declared is the source of the value in the notebook, of a name that is not
+	// settable: a list, a call, or another expression.
+	Declared string
 }
 
 func (e *ParameterError) Error() string {
@@ -105,6 +109,9 @@ func (e *ParameterError) Error() string {
 	}
 	if e.Reason == "unknown" {
 		return fmt.Sprintf("the notebook has no parameter %q; %s", e.Name, known)
+	}
+	if e.Reason == "not settable" {
+		return fmt.Sprintf("parameter %s is %s in the notebook, which --set cannot change: it sets text, numbers, true and false; change the notebook, or set another; %s", e.Name, e.Declared, known)
 	}
 	return fmt.Sprintf("parameter %s: %q is not %s", e.Name, e.Value, e.Reason)
 }

@@ -29,20 +29,31 @@ type Parameter struct {
 // token.IDENT). Other statements of the cell declare no parameters. Two cells
 // with the tag, or one that does not parse, are errors.
 func Parameters(nb *Notebook) ([]Parameter, error) {
+	list, _, err := declarations(nb)
+	return list, err
+}
+
+// declarations gives the parameters, and the source of what the other names that
+// the cell declares are set to.
+func declarations(nb *Notebook) (out []Parameter, others map[string]string, err error) {
 	at, err := parametersCell(nb)
 	if err != nil || at < 0 {
-		return nil, err
+		return nil, nil, err
 	}
-	file, err := parser.ParseFile(token.NewFileSet(), "", "package p\nfunc _() {\n"+nb.Cells[at].Source+"\n}", 0)
+	source := "package p\nfunc _() {\n" + nb.Cells[at].Source + "\n}"
+	file, err := parser.ParseFile(token.NewFileSet(), "", source, 0)
 	if err != nil {
-		return nil, fmt.Errorf("the cell tagged %s does not parse: %w", parametersTag, err)
+		return nil, nil, fmt.Errorf("the cell tagged %s does not parse: %w", parametersTag, err)
 	}
-	var out []Parameter
+	others = map[string]string{}
 	declare := func(name string, value ast.Expr) {
 		if p, ok := literal(value); ok {
 			p.Name = name
 			out = append(out, p)
+			return
 		}
+		// Positions count from 1.
+		others[name] = source[value.Pos()-1 : value.End()-1]
 	}
 	for _, s := range file.Decls[0].(*ast.FuncDecl).Body.List {
 		switch s := s.(type) {
@@ -65,7 +76,7 @@ func Parameters(nb *Notebook) ([]Parameter, error) {
 			}
 		}
 	}
-	return out, nil
+	return out, others, nil
 }
 
 func parametersCell(nb *Notebook) (int, error) {
@@ -135,7 +146,7 @@ func (p Parameter) typed(value string) (lit, want string) {
 // them, in place of such a cell from an earlier run.
 func setParameters(nb *Notebook, set map[string]string) (used, declared map[string]string, err error) {
 	nb.Cells = slices.DeleteFunc(nb.Cells, func(c *Cell) bool { return c.Type == "code" && c.HasTag(setTag) })
-	params, err := Parameters(nb)
+	params, others, err := declarations(nb)
 	if err != nil {
 		return nil, nil, err
 	}
@@ -158,6 +169,9 @@ func setParameters(nb *Notebook, set map[string]string) (used, declared map[stri
 	var code []string
 	for _, name := range names {
 		p, ok := byName[name]
+		if source, declared := others[name]; !ok && declared {
+			return nil, nil, &ParameterError{Name: name, Value: set[name], Reason: "not settable", Declared: source, Known: known}
+		}
 		if !ok {
 			return nil, nil, &ParameterError{Name: name, Value: set[name], Reason: "unknown", Known: known}
 		}

@@ -49,7 +49,7 @@ func TestParametersAreSet(t *testing.T) {
 func TestParameterErrors(t *testing.T) {
 	for _, c := range []struct{ name, value, reason, text string }{
 		{"m", "1", "unknown", `the notebook has no parameter "m"; it declares n, ok, path, x`},
-		{"list", "1", "unknown", `the notebook has no parameter "list"; it declares n, ok, path, x`},
+		{"list", "1", "not settable", `parameter list is []int{1} in the notebook, which --set cannot change: it sets text, numbers, true and false; change the notebook, or set another; it declares n, ok, path, x`},
 		{"n", "1.5", "a whole number", `parameter n: "1.5" is not a whole number`},
 		{"x", "NaN", "a number", `parameter x: "NaN" is not a number`},
 		{"ok", "maybe", "true or false", `parameter ok: "maybe" is not true or false`},

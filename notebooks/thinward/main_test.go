@@ -10,6 +10,7 @@ import (
 	"strconv"
 	"sync"
 	"testing"
+	"time"
 
 	"github.com/rogpeppe/go-internal/testscript"
 
@@ -28,6 +29,8 @@ var kernelOnce = sync.OnceValues(func() (string, error) { return kernel.Ensure(c
 //	status N thinward ARGS...   run and want this exit status
 //	kernel                      make the kernel known to the commands below
 //	replace FILE REGEXP TEXT    change the first match in a file
+//	interrupt PATTERN           wait for a file, then send Ctrl-C to the command in the background
+//	ended N                     after wait: the interrupted command had this exit status
 //
 // and $REPO, the folder of go.mod. UPDATE_SCRIPTS=1 rewrites expected output.
 func TestScripts(t *testing.T) {
@@ -45,8 +48,10 @@ func TestScripts(t *testing.T) {
 			return nil
 		},
 		Cmds: map[string]func(*testscript.TestScript, bool, []string){
-			"status":  status,
-			"replace": replaceText,
+			"status":    status,
+			"replace":   replaceText,
+			"interrupt": interrupt,
+			"ended":     ended,
 			"kernel": func(ts *testscript.TestScript, _ bool, _ []string) {
 				path, err := kernelOnce()
 				ts.Check(err)
@@ -88,4 +93,37 @@ func replaceText(ts *testscript.TestScript, neg bool, args []string) {
 	}
 	out := append(append(append([]byte(nil), data[:at[0]]...), args[2]...), data[at[1]:]...)
 	ts.Check(os.WriteFile(path, out, 0o644))
+}
+
+// stopped holds the command that a script interrupted.
+var stopped sync.Map
+
+func interrupt(ts *testscript.TestScript, neg bool, args []string) {
+	background := ts.BackgroundCmds()
+	if neg || len(args) != 1 || len(background) == 0 {
+		ts.Fatalf("usage: interrupt PATTERN, with a command in the background")
+	}
+	cmd := background[len(background)-1]
+	for limit := time.Now().Add(time.Minute); ; time.Sleep(20 * time.Millisecond) {
+		found, err := filepath.Glob(ts.MkAbs(args[0]))
+		ts.Check(err)
+		if len(found) > 0 {
+			break
+		}
+		if time.Now().After(limit) {
+			ts.Fatalf("no %s", args[0])
+		}
+	}
+	stopped.Store(ts, cmd)
+	ts.Check(cmd.Process.Signal(os.Interrupt))
+}
+
+func ended(ts *testscript.TestScript, neg bool, args []string) {
+	cmd, ok := stopped.Load(ts)
+	if neg || len(args) != 1 || !ok {
+		ts.Fatalf("usage: ended N, after interrupt and wait")
+	}
+	if got := cmd.(*exec.Cmd).ProcessState.ExitCode(); strconv.Itoa(got) != args[0] {
+		ts.Fatalf("exit status %d, want %s", got, args[0])
+	}
 }

@@ -129,7 +129,7 @@ func statusOf(err error) int {
 			return exitInside
 		}
 		return exitData
-	case errors.As(err, &inside), errors.As(err, &death), errors.As(err, &timeout), session.FaultOf(err) == session.FaultInside:
+	case errors.As(err, &inside), errors.As(err, &death), errors.As(err, &timeout), errors.Is(err, runner.ErrNoAnswer), session.FaultOf(err) == session.FaultInside:
 		return exitInside
 	}
 	return exitData
