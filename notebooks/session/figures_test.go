@@ -9,6 +9,9 @@ import (
 	"strings"
 	"testing"
 
+	"github.com/google/go-cmp/cmp"
+	"github.com/google/go-cmp/cmp/cmpopts"
+
 	"thinward/analysis"
 	"thinward/analysis/crystal"
 )
@@ -37,6 +40,7 @@ func made() *analysis.Result {
 			c.Resolution = analysis.Resolution{D: []float64{3, 2, 1.5}, LogRatio: []float64{0.1, 0, -0.1}, Lo: []float64{0, -0.1, -0.2}, Hi: []float64{0.2, 0.1, 0}, Remainder: []float64{0.01, 0, -0.01}, DeltaB: -0.3}
 			c.Naive = map[string]analysis.Naive{"thin": {Score: 20, GhostScore: 8, Grid: []float64{0.1, 1, 4}, Mean: []float64{-0.1, 0, 0.2}, Ghost: []float64{-0.08, 0, 0.01}}}
 			c.Exchange = analysis.Exchange{M: 0.1, Lo: 0.07, Hi: 0.13}
+			c.Curb, c.ThicknessNM = analysis.Curb{Q: 0.02, Lo: 0.01, Hi: 0.03}, [2]float64{140, 300}
 			r.Contrasts = append(r.Contrasts, c)
 		}
 		r.Specification = append(r.Specification, analysis.Specification{Crystal: name, Choice: "leading", Level: "crystals", M: analysis.Interval{Value: 0.1, Lo: 0.07, Hi: 0.13}, Leading: true},
@@ -45,7 +49,8 @@ func made() *analysis.Result {
 	}
 	r.Crystals = &analysis.CrystalsResult{N: 2, InThese: analysis.Interval{Value: 0.1, Lo: 0.08, Hi: 0.12}, LikeThese: analysis.Interval{Value: 0.1, Lo: math.Inf(-1), Hi: math.Inf(1)}}
 	r.Thickness = &analysis.ThicknessResult{Lines: []analysis.ThicknessLine{{Crystal: "L1", T: []float64{140, 300, 220}, Mu: []float64{0, 0.1, 0.05}, MuSE: []float64{0, 0.02, 0.01}}}}
-	r.Expectation = &analysis.Expectation{Budget: []analysis.Budget{{ThicknessNM: 300, Unscattered: 0.3, Kinematic: 0.2, Multiple: 0.1, Inelastic: 0.4}, {ThicknessNM: 100, Unscattered: 0.7, Kinematic: 0.15, Multiple: 0.05, Inelastic: 0.1}}}
+	r.Expectation = &analysis.Expectation{Budget: []analysis.Budget{{ThicknessNM: 300, Unscattered: 0.3, Kinematic: 0.2, Multiple: 0.1, Inelastic: 0.4}, {ThicknessNM: 100, Unscattered: 0.7, Kinematic: 0.15, Multiple: 0.05, Inelastic: 0.1}},
+		TwoBeam: analysis.TwoBeamCurve{ExtinctionNM: 600, DA: 2.5, ThicknessNM: [2]float64{140, 300}, Strength: []float64{0.1, 1, 4, 9, 20}}}
 	return r
 }
 
@@ -63,7 +68,7 @@ func madePairs(n int) []analysis.PairRow {
 func views(r *analysis.Result, pairs []analysis.PairRow) map[string]*View {
 	return map[string]*View{
 		"strength": byStrength(r), "naive": naive(r), "resolution": byResolution(r), "pairs": pairsView(r, pairs), "scale": scaleCurves(r), "sizes": sizesFigure(r),
-		"thickness": thicknessFigure(r), "specification": specificationFigure(r), "controls": controlsFigure(r), "forbidden": forbiddenFigure(r), "budget": budgetFigure(r),
+		"thickness": thicknessFigure(r), "specification": specificationFigure(r), "controls": controlsFigure(r), "forbidden": forbiddenFigure(r), "budget": budgetFigure(r), "curb": curbFigure(r),
 	}
 }
 
@@ -144,6 +149,31 @@ func TestFiguresOfNothing(t *testing.T) {
 	}
 	if text := byStrength(r).HTML; !strings.Contains(text, "too few pairs") || !strings.Contains(text, "nothing to draw") {
 		t.Error("an empty curve does not say why")
+	}
+}
+
+// A curb of 0.02 leaves 0.98 of strength 1 and 0.92 of strength 4, and two beams what Blackman's
+// integral says.
+func TestCurbBesideTwoBeams(t *testing.T) {
+	r := made()
+	v := curbFigure(r)
+	if n := strings.Count(v.HTML, "<svg"); n != 2 {
+		t.Errorf("%d panels, not 2", n)
+	}
+	for _, want := range []string{"0.980", "0.920", "0.010 to 0.030", "no meaning of its own", "L1", "L2"} {
+		if !strings.Contains(v.HTML+v.Plain, want) {
+			t.Errorf("%q is not said", want)
+		}
+	}
+	// At strength 1 and a thickness of 600/pi nm A is 1, where Blackman's ratio is 0.712885146599
+	// (worked with mpmath); that of the thin position tends to 1.
+	c := &analysis.ContrastResult{ThicknessNM: [2]float64{1e-6, 600 / math.Pi}}
+	if d := cmp.Diff(0.712885146599, twoBeamRatio(c, r.Expectation, 1), cmpopts.EquateApprox(0, 1e-9)); d != "" {
+		t.Errorf("two beams leave %s", d)
+	}
+	r.Expectation.TwoBeam.ExtinctionNM = math.NaN()
+	if v := curbFigure(r); v.SVG != "" || !strings.Contains(v.Plain, "energy") {
+		t.Errorf("without an energy: %q", v.Plain)
 	}
 }
 
