@@ -10,6 +10,7 @@ const (
 	roleH
 	roleK
 	roleL
+	roleHKL // all three as a CIF 2.0 list
 	roleIntensity
 	roleIntensitySU // intensity with its s.u. in parentheses, no column of its own
 	roleSigma
@@ -104,13 +105,13 @@ type plan struct {
 }
 
 // planFor returns nil when the names are not those of a reflection list: h, k and l
-// of one category are needed, a usable intensity is not.
+// of one category are needed, or hkl, a usable intensity is not.
 func planFor(names []string) *plan {
 	for i := range categories {
 		c := &categories[i]
 		find := finder(c.name, names)
-		h, k, l := find("index_h"), find("index_k"), find("index_l")
-		if h < 0 || k < 0 || l < 0 {
+		h, k, l, hkl := find("index_h"), find("index_k"), find("index_l"), find("hkl")
+		if (h < 0 || k < 0 || l < 0) && hkl < 0 {
 			continue
 		}
 		p := &plan{category: c, roles: make([]role, len(names))}
@@ -119,9 +120,13 @@ func planFor(names []string) *plan {
 				p.roles[j], p.item[r] = r, names[j]
 			}
 		}
-		use(h, roleH)
-		use(k, roleK)
-		use(l, roleL)
+		if h >= 0 && k >= 0 && l >= 0 {
+			use(h, roleH)
+			use(k, roleK)
+			use(l, roleL)
+		} else {
+			use(hkl, roleHKL)
+		}
 		p.measured(c, find, use)
 		use(first(find, c.angle), rolePhi)
 		use(first(find, c.frame), roleFrame)

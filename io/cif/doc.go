@@ -10,8 +10,8 @@
 //
 // Where the meaning of a file is in doubt it is refused with an [Error] that names
 // file, line, block, item and remedy; where only its form is at fault it is read
-// and [File.Warnings] says so. CIF 2.0 is read as far as its values are simple; its
-// lists and tables are refused by name.
+// and [File.Warnings] says so. CIF 2.0 is read too; of its lists and tables
+// only the form is checked, and they are kept as they stand.
 //
 // Not for: dictionaries (nothing is validated against one), images, atoms beyond
 // carrying them as plain items, and choosing what a list means for an analysis:

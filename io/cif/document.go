@@ -24,10 +24,12 @@ const (
 	Word                     // an unquoted word, numbers among them
 	Quoted                   // in single or double quotes, of CIF 2.0 also triple
 	TextField                // between semicolons at the start of a line
+	Compound                 // a list or table of CIF 2.0
 )
 
 // Value is one value. Text is its content without quotes or semicolons, line ends
-// of text fields as a single LF, folded lines joined; it is "?" or "." for nulls.
+// of text fields as a single LF, folded lines joined; it is "?" or "." for nulls and
+// the whole, brackets included, for a list or table.
 type Value struct {
 	Kind   Kind
 	Text   string

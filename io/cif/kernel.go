@@ -170,6 +170,8 @@ func (p *parser) slowly(l *list, n, c int, tok token) error {
 	switch r {
 	case roleH, roleK, roleL:
 		return p.slowIndex(l, n, c, tok, null)
+	case roleHKL:
+		return p.slowVector(l, n, c, tok, null)
 	case roleIntensity, roleIntensitySU, roleSigma, roleMate, roleMateSigma, rolePhi, rolePartiality:
 		x, su := math.NaN(), math.NaN()
 		if !null {
@@ -245,6 +247,24 @@ func (p *parser) slowIndex(l *list, n, c int, tok token, null bool) error {
 	default:
 		l.raw.L[n] = int16(x)
 	}
+	return nil
+}
+
+func (p *parser) slowVector(l *list, n, c int, tok token, null bool) error {
+	hkl := [3]int{text.NullIndex, text.NullIndex, text.NullIndex}
+	if !null {
+		w := p.data[tok.start:tok.end]
+		var ok bool
+		hkl, ok = indexVector(w)
+		for _, x := range hkl {
+			ok = ok && x >= -math.MaxInt16 && x <= math.MaxInt16
+		}
+		if !ok || tok.span.kind != Compound {
+			p.item = l.names[c]
+			return p.fault(tok.at, "the index "+text.Shown(w)+" is not a list of three whole numbers", "write it as [1 2 3], within -32767 and 32767")
+		}
+	}
+	l.raw.H[n], l.raw.K[n], l.raw.L[n] = int16(hkl[0]), int16(hkl[1]), int16(hkl[2])
 	return nil
 }
 

@@ -68,6 +68,7 @@ type lexer struct {
 	version string
 	block   string // for errors
 	item    string
+	inside  int // open brackets of a CIF 2.0 list or table
 	warned  map[string]bool
 	warn    []intensity.Warning
 }
@@ -161,7 +162,8 @@ func (l *lexer) next() (token, error) {
 		}
 	case '[', '{':
 		if l.version == "2.0" {
-			return token{}, l.fault(at, "the value is a CIF 2.0 list or table, which is not supported", "write the values as separate items or a loop")
+			s, err := l.compound(at)
+			return token{kind: tokValue, span: s, at: at}, err
 		}
 		if c == '[' {
 			return token{}, l.fault(at, "an unquoted value begins with [", "put the value in quotes")
@@ -302,6 +304,15 @@ func (l *lexer) reserved(w []byte, at int) (kind tokenKind, skip int, err error)
 	return tokValue, 0, nil
 }
 
+// ends reports whether a quoted value may end in front of offset i: at a blank, at the
+// end of the text, and inside a list or table at a bracket or colon.
+func (l *lexer) ends(i int) bool {
+	if !l.more(i) || l.class[l.data[i]] == blank {
+		return true
+	}
+	return l.inside > 0 && strings.IndexByte("]}:", l.data[i]) >= 0 || l.data[i] == 0x1a && l.endMark(i)
+}
+
 func (l *lexer) quoted(at int) (span, error) {
 	q := l.data[at]
 	if l.version == "2.0" && l.more(at+2) && l.more(at+1) && l.data[at+1] == q && l.data[at+2] == q {
@@ -315,7 +326,7 @@ func (l *lexer) quoted(at int) (span, error) {
 		if c != q {
 			continue
 		}
-		if l.more(i+1) && l.class[l.data[i+1]] != blank && !(l.data[i+1] == 0x1a && l.endMark(i+1)) {
+		if !l.ends(i + 1) {
 			if l.version != "2.0" {
 				continue
 			}
@@ -333,7 +344,7 @@ func (l *lexer) tripleQuoted(at int) (span, error) {
 		if l.data[i] != q || l.data[i+1] != q || l.data[i+2] != q {
 			continue
 		}
-		if l.more(i+3) && l.class[l.data[i+3]] != blank {
+		if !l.ends(i + 3) {
 			return span{}, l.fault(at, "a triple-quoted string is not followed by a blank", "put a blank behind the closing quotes")
 		}
 		l.i = i + 3
@@ -352,7 +363,7 @@ func (l *lexer) textField(at int) (span, error) {
 			end--
 		}
 		l.i = i + 1
-		if l.more(l.i) && l.class[l.data[l.i]] != blank && !l.endMark(l.i) {
+		if !l.ends(l.i) {
 			return span{}, l.fault(i, "the ; that closes a text field is not followed by a blank", "put the next word on a line of its own")
 		}
 		return span{at + 1, end, TextField}, l.checkRun(at+1, end)

@@ -88,6 +88,18 @@ func TestUncertaintiesOfDictionaries(t *testing.T) {
 	}
 }
 
+// The index of a row of the current core may be one CIF 2.0 list.
+func TestIndexAsList(t *testing.T) {
+	r := mustRead(t, "#\\#CIF_2.0\n"+loopOf("_diffrn_refln.hkl _diffrn_refln.intensity_net _diffrn_refln.intensity_net_su", "[1 -2 3] 10.5 2\n[ 4\n5 6 ] -7 .5\n? 1 1\n"), Selection{})
+	if r.Columns.Len() != 2 || r.Columns.K[0] != -2 || r.Columns.L[1] != 6 || r.Columns.I[1] != -7 || len(r.SetAside) != 1 || r.SetAside[0].FirstLine != 10 {
+		t.Errorf("%+v %v", r.Columns, r.SetAside)
+	}
+	both := mustRead(t, "#\\#CIF_2.0\n"+loopOf("_diffrn_refln.hkl _diffrn_refln.index_h _diffrn_refln.index_k _diffrn_refln.index_l _diffrn_refln.intensity_net _diffrn_refln.intensity_net_su", "[9 9 9] 1 2 3 10.5 2\n"), Selection{})
+	if both.Columns.H[0] != 1 {
+		t.Errorf("%+v", both.Columns)
+	}
+}
+
 // Names that look like those of a list and are not.
 func TestNamesThatAreNoList(t *testing.T) {
 	for _, names := range []string{"_refln_index_h _refln_index_k", "_reflns_index_h _reflns_index_k _reflns_index_l", "_refln_index_h _diffrn_refln_index_k _refln_index_l",

@@ -222,6 +222,9 @@ func (w *Writer) form(item string, v Value) (string, error) {
 	case Inapplicable:
 		return ".", nil
 	}
+	if v.Kind == Compound {
+		return "", w.fail("%s: a CIF 2.0 list or table cannot be written", item)
+	}
 	s := v.Text
 	for i := 0; i < len(s); i++ {
 		if class[s[i]] == illegal || s[i] == '\r' {

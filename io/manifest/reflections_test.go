@@ -70,7 +70,7 @@ func TestBadFiles(t *testing.T) {
 		{"bracket.cif", "data_a\n_a [1\n", `bracket.cif:2: block a: _a: an unquoted value begins with [; put the value in quotes`},
 		{"reserved.cif", "data_a\n_a stop_\n", `reserved.cif:2: block a: _a: the reserved word stop_ has no use in CIF; put it in quotes if it is meant as a value`},
 		{"frame.cif", "data_a\nsave_f\n_a 1\n", `frame.cif:4: block a: _a: the save frame f is not closed; close it with save_`},
-		{"list2.cif", "#\\#CIF_2.0\ndata_a\n_a [1 2]\n", `list2.cif:3: block a: _a: the value is a CIF 2.0 list or table, which is not supported; write the values as separate items or a loop`},
+		{"list2.cif", "#\\#CIF_2.0\ndata_a\n_a [1 2\n", `list2.cif:3: block a: _a: a CIF 2.0 list or table is not closed before the end of the file; close it with its bracket`},
 		{"nolist.cif", "data_a\n_a 1\n", `nolist.cif: the file holds no reflection list; its blocks are a; name a file with a _diffrn_refln or _refln loop`},
 		{"index.cif", cifHead + "1 2 3.5 10 1\n", `index.cif:8: block a: _refln_index_l: the index "3.5" is not a whole number; indices must be integers; look for a shifted column or a value too many in the rows before`},
 		{"range.cif", cifHead + "1 2 40000 10 1\n", `range.cif:8: block a: _refln_index_l: the index 40000 is out of range; indices lie within -32767 and 32767; look for columns that touch`},

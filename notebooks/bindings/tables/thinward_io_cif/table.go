@@ -16,6 +16,7 @@ func init() {
 	imports.Packages["thinward/io/cif"] = imports.Package{
 		Name: "cif",
 		Binds: map[string]reflect.Value{
+			"Compound":      reflect.ValueOf(cif.Compound),
 			"Inapplicable":  reflect.ValueOf(cif.Inapplicable),
 			"Int":           reflect.ValueOf(cif.Int),
 			"NewWriter":     reflect.ValueOf(cif.NewWriter),
