@@ -43,22 +43,6 @@ func given(v float64, decimals int) string {
 	return number(v, decimals)
 }
 
-// Intake shows every position before scaling.
-func (s *Session) Intake() *View {
-	table, err := s.study.IntakeTable(Context())
-	if err != nil {
-		panic(&Error{Step: "intake", Err: err, Inside: FaultOf(err) == FaultInside})
-	}
-	g := newGrid("Intake", "position", "rows", "observations", "taken as", "unique", "multiplicity", "complete", "d (\u00c5)", "angles (\u00b0)", "widest gap", "I/\u03c3",
-		"below 0: seen, by Wilson's law", "R_meas", "CC1/2", "common with thinnest", "excluded").words(3)
-	for _, r := range table {
-		g.add(r.Crystal+"/"+r.Position, count(r.Rows), count(r.Observations), r.RowsAs, count(r.Unique), number(r.Multiplicity, 1), percent(r.Completeness, 0),
-			number(r.DMax, 1)+"\u2013"+number(r.DMin, 2), angles(r.AngleLo, r.AngleHi), number(r.AngleGap, 1), number(r.MeanISigma, 1),
-			fmt.Sprintf("%d, %s", r.Negative[0], number(r.NegativeExp[0], 0)), number(r.RMeas, 3), number(r.CCHalf, 3), percent(r.Overlap, 0), count(r.Excluded))
-	}
-	return g.view("Intake")
-}
-
 func angles(lo, hi float64) string {
 	if math.IsNaN(lo) {
 		return "none"

@@ -16,8 +16,25 @@ import (
 
 func (a *app) intake() *cobra.Command {
 	c := &cobra.Command{
-		Use:     "intake SERIES.toml",
-		Short:   "What came in, without a report: rows against observations, truncation, indexing, overlap",
+		Use:   "intake SERIES.toml",
+		Short: "What came in, without a report: rows against observations, truncation, indexing, overlap",
+		Long: `Reads a series and says what it holds, before any scaling: for each position rows
+and observations, completeness to its own and to the common limit, angles, negatives
+and sigmas against what noise would give, the agreement of its cell with that of the
+series; what positions have in common; lattice centring, angles, indexing; and what
+was set aside.
+
+With --json one object with the keys
+  positions   one entry a position: counts, limits, cell, sigmas
+  common      one entry for every two positions: common reflections, share of each,
+              strength of the common ones over that of all (1 when alike), median d
+  remarks     {crystal, position, kind, count, why, file, first_line}; kind is unusable,
+              copies, slices, excluded or merged
+  centring    for each kind of centring what it would forbid: measured, expected, ratio
+  turns       whether angles go with indices and cell, and alike within a crystal
+  indexing    how each position was brought to one indexing, with the margin z
+  warnings    {code, where, text}
+Not-a-number is null with a why beside it.`,
 		Example: "  thinward intake fixtures/tarn/series.toml",
 		Args:    cobra.ExactArgs(1),
 		RunE: func(c *cobra.Command, args []string) error {
@@ -25,79 +42,119 @@ func (a *app) intake() *cobra.Command {
 			if err != nil {
 				return err
 			}
-			table, err := study.IntakeTable(c.Context())
+			d, err := study.IntakeDetails(c.Context())
 			if err != nil {
 				return err
 			}
-			indexing, err := study.Indexing(c.Context())
-			if err != nil {
-				return err
-			}
-			warnings := study.Warnings()
 			if a.json {
-				return result.EncodeAny(a.out, struct {
-					Positions []analysis.IntakeResult   `json:"positions"`
-					Indexing  []analysis.IndexingResult `json:"indexing"`
-					Warnings  []analysis.WarningResult  `json:"warnings"`
-				}{table, indexing, warnings})
+				return result.EncodeAny(a.out, d)
 			}
-			return printIntake(a.out, table, indexing, append(setAside(&study.Series), warnings...))
+			return printIntake(a.out, d)
 		},
 	}
 	c.Flags().BoolVar(&a.json, "json", false, "print JSON")
 	return c
 }
 
-// setAside says which rows could not be used.
-func setAside(s *analysis.Series) []analysis.WarningResult {
-	var out []analysis.WarningResult
-	for _, c := range s.Crystals {
-		for _, p := range c.Positions {
-			for _, f := range p.Sources {
-				for _, x := range f.SetAside {
-					out = append(out, analysis.WarningResult{Where: c.Name + "/" + p.Name + ", " + f.Path, Text: fmt.Sprintf("%s set aside: %s (first on line %d)", plural(x.N, "row"), x.Reason, x.FirstLine)})
-				}
-			}
+func printIntake(w io.Writer, d *analysis.IntakeDetails) error {
+	for _, part := range []func(io.Writer, *analysis.IntakeDetails){printRows, printCover, printIntensities, printCommon} {
+		t := tabwriter.NewWriter(w, 0, 0, 2, ' ', tabwriter.AlignRight)
+		part(t, d)
+		if err := t.Flush(); err != nil {
+			return err
+		}
+		if _, err := io.WriteString(w, "\n"); err != nil {
+			return err
 		}
 	}
-	return out
+	_, err := io.WriteString(w, intakeText(d))
+	return err
 }
 
-func printIntake(w io.Writer, table []analysis.IntakeResult, indexing []analysis.IndexingResult, warnings []analysis.WarningResult) error {
-	t := tabwriter.NewWriter(w, 0, 0, 2, ' ', tabwriter.AlignRight)
-	fmt.Fprintln(t, "position\trows\tobservations\ttaken as\tunique\tmult.\tcomplete\td (A)\tangles (deg)\tgap\tI/sigma\t<0 seen\t<0 expected\tR_meas\tCC1/2\tcommon\t")
-	for _, r := range table {
+func printRows(w io.Writer, d *analysis.IntakeDetails) {
+	fmt.Fprintln(w, "position\trows\tobservations\ttaken as\tunique\tmult.\texcluded\tR_meas\tCC1/2\t")
+	for _, r := range d.Positions {
+		fmt.Fprintf(w, "%s/%s\t%d\t%d\t%s\t%d\t%.1f\t%d\t%s\t%s\t\n", r.Crystal, r.Position, r.Rows, r.Observations, r.RowsAs, r.Unique, r.Multiplicity, r.Excluded, dash(r.RMeas, 3), dash(r.CCHalf, 3))
+	}
+}
+
+func printCover(w io.Writer, d *analysis.IntakeDetails) {
+	fmt.Fprintf(w, "position\td (A)\tcomplete\tto %s A\tangles (deg)\tgap\tcell off (%%)\t(deg)\t\n", dash(d.Positions[0].CommonDMin, 2))
+	for _, r := range d.Positions {
 		angles := "none"
 		if !math.IsNaN(r.AngleLo) {
 			angles = fmt.Sprintf("%.0f..%.0f", r.AngleLo, r.AngleHi)
 		}
-		fmt.Fprintf(t, "%s/%s\t%d\t%d\t%s\t%d\t%.1f\t%.0f %%\t%.1f-%.2f\t%s\t%s\t%.1f\t%d\t%.0f\t%s\t%s\t%.0f %%\t\n", r.Crystal, r.Position, r.Rows, r.Observations, r.RowsAs, r.Unique, r.Multiplicity,
-			100*r.Completeness, r.DMax, r.DMin, angles, dash(r.AngleGap, 1), r.MeanISigma, r.Negative[0], r.NegativeExp[0], dash(r.RMeas, 3), dash(r.CCHalf, 3), 100*r.Overlap)
+		fmt.Fprintf(w, "%s/%s\t%.1f-%.2f\t%.0f %%\t%.0f %%\t%s\t%s\t%s\t%s\t\n", r.Crystal, r.Position, r.DMax, r.DMin, 100*r.Completeness, 100*r.CompletenessCommon,
+			angles, dash(r.AngleGap, 1), dash(r.Cell.LengthPercent, 2), dash(r.Cell.AngleDeg, 2))
 	}
-	if err := t.Flush(); err != nil {
-		return err
+}
+
+func printIntensities(w io.Writer, d *analysis.IntakeDetails) {
+	fmt.Fprintln(w, "position\tI/sigma\t<0 seen\texpected\t<-1 sigma\texpected\t<-2 sigma\texpected\t<-3 sigma\texpected\tchi2 near\tpairs\t")
+	for _, r := range d.Positions {
+		fmt.Fprintf(w, "%s/%s\t%.1f\t", r.Crystal, r.Position, r.MeanISigma)
+		for k := range r.Negative {
+			fmt.Fprintf(w, "%d\t%.0f\t", r.Negative[k], r.NegativeExp[k])
+		}
+		fmt.Fprintf(w, "%s\t%d\t\n", dash(r.Sigmas.Chi2, 2), r.Sigmas.Pairs)
 	}
+}
+
+// printCommon lists the pairs within crystals and those of which something is to be
+// said, and sums up the others.
+func printCommon(w io.Writer, d *analysis.IntakeDetails) {
+	fmt.Fprintln(w, "positions\tcommon\tof first\tof second\tstrength\t\td common\tall (A)\t")
+	across, least, most := 0, 1.0, 0.0
+	for _, c := range d.Common {
+		if c.Crystal != c.WithCrystal && c.Why == "" {
+			across++
+			least, most = math.Min(least, math.Min(c.Share, c.WithShare)), math.Max(most, math.Max(c.Share, c.WithShare))
+			continue
+		}
+		fmt.Fprintf(w, "%s/%s, %s/%s\t%d\t%.0f %%\t%.0f %%\t%s\t%s\t%s\t%s\t\n", c.Crystal, c.Position, c.WithCrystal, c.WithPosition, c.Common, 100*c.Share, 100*c.WithShare,
+			dash(c.Strength, 2), dash(c.With, 2), dash(c.DCommon, 2), dash(c.DAll, 2))
+	}
+	if across > 0 {
+		fmt.Fprintf(w, "%s across crystals\t\t%.0f-%.0f %%\t\t\t\t\t\t\n", plural(across, "pair"), 100*least, 100*most)
+	}
+}
+
+// intakeText says in words what the tables cannot.
+func intakeText(d *analysis.IntakeDetails) string {
 	var b strings.Builder
-	for _, x := range indexing {
+	for _, m := range d.Remarks {
+		where := m.Crystal + "/" + m.Position
+		if m.File != "" {
+			where += ", " + m.File
+		}
+		switch m.Kind {
+		case "unusable":
+			fmt.Fprintf(&b, "%s: %s set aside: %s (first on line %d)\n", where, plural(m.Count, "row"), m.Why, m.FirstLine)
+		case "excluded":
+			fmt.Fprintf(&b, "%s: %s excluded: %s\n", where, plural(m.Count, "observation"), m.Why)
+		case "merged":
+			fmt.Fprintf(&b, "%s: %s\n", where, m.Why)
+		default:
+			fmt.Fprintf(&b, "%s: %s taken as %s: %s\n", where, plural(m.Count, "row"), m.Kind, m.Why)
+		}
+	}
+	for _, x := range d.Indexing {
 		fmt.Fprintf(&b, "indexing of %s: %s\n", x.Where, x.Text)
 		if x.Proposal != "" {
 			fmt.Fprintf(&b, "  propose in the manifest: reindex = %q\n", x.Proposal)
 		}
 	}
-	for _, r := range table {
-		if r.Multiplicity < onceSeen {
-			fmt.Fprintf(&b, "%s/%s: almost every reflection stands once, as in a merged list: sigmas cannot be checked and no halves be made; give the observations before merging\n", r.Crystal, r.Position)
+	for _, c := range d.Common {
+		if c.Crystal != c.WithCrystal && c.Why != "" { // those within a crystal are warnings
+			fmt.Fprintf(&b, "%s/%s and %s/%s: %s\n", c.Crystal, c.Position, c.WithCrystal, c.WithPosition, c.Why)
 		}
 	}
-	for _, x := range warnings {
+	for _, x := range d.Warnings {
 		fmt.Fprintf(&b, "%s: %s\n", x.Where, x.Text)
 	}
-	_, err := io.WriteString(w, b.String())
-	return err
+	return b.String()
 }
-
-// onceSeen is the multiplicity below which a list is called merged; chosen, no source.
-const onceSeen = 1.1
 
 func dash(v float64, decimals int) string {
 	if math.IsNaN(v) {
