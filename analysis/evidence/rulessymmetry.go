@@ -42,6 +42,9 @@ const (
 	// 1 - x/(exp(x)-1), which is one half at x = 1.26, more than a mean free path and
 	// a quarter; beyond that forbidden reflections tell nothing of the group.
 	filledAlways = 0.5
+	// emptyBelow is the most that a class may be, where it is weakest, to be called empty:
+	// that share at half a mean free path.
+	emptyBelow = 0.23
 )
 
 // SymmetryOf asks whether the reflections that the group forbids are weaker than
@@ -53,9 +56,9 @@ const (
 // that the class stands for.
 //
 // The class is read in the position where it is weakest, as filling by scattering
-// more than once grows with thickness, three standard uncertainties upward. An allowed class of
-// that mean or less with a chance under 0.01 over the number of classes: caution, and
-// the element that forbids it is named. A forbidden class that is above zero by three
+// more than once grows with thickness, three standard uncertainties upward. An allowed class
+// below 0.23 of what allowed ones are, and so with a chance under 0.01 over the number of
+// classes: caution, and the element that forbids it is named. A forbidden class that is above zero by three
 // standard uncertainties in every position and no weaker than allowed ones can be at the same
 // chance: caution, and fails when the least it can stand for is above one half.
 func SymmetryOf(classes []SymmetryClass) Finding {
@@ -107,12 +110,12 @@ type judgement struct {
 }
 
 func (c *SymmetryClass) judge(chance float64) judgement {
-	weakest, least, n := 1.0, math.Inf(1), 0
+	weakest, least, lowest, n := 1.0, math.Inf(1), math.Inf(1), 0
 	out := judgement{verdict: Fine, ratio: math.Inf(1)}
 	filled := true
 	for _, p := range c.Positions {
 		high, low := math.Max(0, p.Ratio+noiseReach*p.SU), p.Ratio-noiseReach*p.SU
-		weakest = math.Min(weakest, p.below(high))
+		weakest, lowest = math.Min(weakest, p.below(high)), math.Min(lowest, high)
 		if filled = filled && low > 0; filled {
 			least = math.Min(least, p.leastMean(low, chance))
 		}
@@ -122,7 +125,7 @@ func (c *SymmetryClass) judge(chance float64) judgement {
 	}
 	empty := weakest < chance
 	switch {
-	case empty && !c.Forbidden:
+	case empty && !c.Forbidden && lowest < emptyBelow:
 		out.verdict = Caution
 		out.why = fmt.Sprintf("%s that the group allows and %s would forbid: all but empty, %s of what allowed ones are in the position where they are weakest (a chance of %.1g by Wilson's law), so that the group may lack that element", reflections(n), c.Name, num(out.ratio), weakest)
 	case empty || !c.Forbidden || !filled:

@@ -85,6 +85,7 @@ func TestSymmetryOf(t *testing.T) {
 		{"nothing measured", []SymmetryClass{{Name: "2_1 along a", Forbidden: true}}, NotKnown, "no reflection"},
 		{"as it should be", []SymmetryClass{{Name: "2_1 along a", Forbidden: true, Positions: at(6, 0.01, 0.01, 0.05, 0.12)}, {Name: "I centring", Positions: many(700, 0.01, 0.98)}}, Fine, "no class that the group allows is empty (1 looked at), and what its one"},
 		{"weak by chance", []SymmetryClass{{Name: "2_1 along a", Positions: at(5, 0.01, 0.2, 0.25)}}, Fine, ""},
+		{"half as strong, many", []SymmetryClass{{Name: "n glide perpendicular to c", Positions: at(52, 0.01, 0.46, 0.47)}}, Fine, ""},
 		{"empty though allowed", []SymmetryClass{{Name: "2_1 along c", Positions: at(6, 0.005, 0.01, 0.04, 0.1)}}, Caution, "6 reflections that the group allows and 2_1 along c would forbid"},
 		{"empty zone empties its axis", []SymmetryClass{{Name: "b glide perpendicular to a", Positions: at(60, 0.001, 0.01)}, {Name: "2_1 along b", Positions: at(7, 0.001, 0.005), Within: []int{0}}}, Caution, "60 reflections that the group allows and b glide perpendicular to a"},
 		{"allowed though forbidden, many", []SymmetryClass{{Name: "C centring", Forbidden: true, Positions: many(700, 0.01, 1.02, 0.97)}}, Fails, "as strong as allowed ones at every thickness"},

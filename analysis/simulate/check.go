@@ -48,6 +48,15 @@ func (p *Plan) checkCell() error {
 	if err != nil {
 		return fmt.Errorf("simulate: space_group: %w", err)
 	}
+	if p.Declared != "" {
+		declared, err := crystal.Lookup(p.Declared)
+		if err != nil {
+			return fmt.Errorf("simulate: declared: %w", err)
+		}
+		if a, b := declared.LaueSetting(), group.LaueSetting(); a != b {
+			return fmt.Errorf("simulate: declared: %s has the Laue class %s and %s has %s; unique reflections must be the same", p.Declared, a, p.SpaceGroup, b)
+		}
+	}
 	for _, h := range []crystal.HKL{{H: 1, K: 2, L: 3}, {H: 3, K: -1, L: 2}} {
 		for _, e := range group.Equivalents(h) {
 			if got, want := cell.InvD2(e), cell.InvD2(h); math.Abs(got-want) > 1e-6*want {
@@ -109,7 +118,7 @@ func (p *Position) check(at string) faultList {
 		{"background", p.Background, 0, 1e9}, {"background_area", p.BackgroundArea, 1e-6, 1e6}, {"readout", p.Readout, 0, 1e9},
 		{"sigma_factor", p.SigmaFactor, 1e-6, 1e6}, {"scatter", p.Scatter, 0, 3}, {"frame_jitter", p.FrameJitter, 0, 3},
 		{"outlier_share", p.OutlierShare, 0, 1}, {"outlier_factor", p.OutlierFactor, 0, 1e6},
-		{"deviation", p.Deviation, 0, 3}, {"geometry_share", p.GeometryShare, 0, 1}, {"exchange", p.Exchange, 0, 1},
+		{"deviation", p.Deviation, 0, 3}, {"geometry_share", p.GeometryShare, 0, 1}, {"polarity", p.Polarity, 0, 1}, {"exchange", p.Exchange, 0, 1},
 		{"curb", p.Curb, 0, 10}, {"dead_counts", p.DeadCounts, 0, 1}, {"offset", p.Offset, -1e6, 1e6}, {"ice", p.Ice, 0, 1e6},
 		{"bleed", p.Bleed, 0, 1}, {"tilt_zero_deg", p.TiltZeroDeg, -90, 90},
 	} {

@@ -29,6 +29,12 @@ func Invent(ctx context.Context, plan *Plan) (*Series, error) {
 	if err != nil {
 		return nil, fmt.Errorf("simulate: space_group: %w", err)
 	}
+	declared := group
+	if p.Declared != "" {
+		if declared, err = crystal.Lookup(p.Declared); err != nil {
+			return nil, fmt.Errorf("simulate: declared: %w", err)
+		}
+	}
 	cell := crystal.Cell(p.Cell)
 	seed := resample.NewSeed(p.Seed).At("invent")
 	list, truth, err := enumerate(ctx, cell, group, p.DMin)
@@ -38,7 +44,8 @@ func Invent(ctx context.Context, plan *Plan) (*Series, error) {
 	if err := truth.intensities(ctx, p, group, seed); err != nil {
 		return nil, err
 	}
-	s.Group, s.Truth, s.Wavelength = group, *truth, electron.Wavelength(p.EnergyKeV)
+	s.Group, s.Truth, s.Wavelength = declared, *truth, electron.Wavelength(p.EnergyKeV)
+	sides := polarity(p, group, list, truth, seed)
 	var jobs []*observer
 	for i := range p.Crystals {
 		c := &p.Crystals[i]
@@ -48,7 +55,7 @@ func Invent(ctx context.Context, plan *Plan) (*Series, error) {
 		common := chain(own.At("deviation"), len(truth.J), len(c.Positions), c.Neighbours)
 		for j := range c.Positions {
 			jobs = append(jobs, &observer{
-				plan: p, position: &c.Positions[j], list: list, truth: truth, crystal: i, number: j,
+				plan: p, position: &c.Positions[j], list: list, truth: truth, crystal: i, number: j, side: sides,
 				seed: own.At(c.Positions[j].Name), deviation: common[j],
 				geometry: Geometry{Wavelength: s.Wavelength, Reciprocal: reciprocalBasis(cell), Orientation: u},
 			})

@@ -23,6 +23,7 @@ type observer struct {
 	seed              resample.Seed
 	deviation         []float64 // standard normal, by unique
 	geometryDeviation []float64 // standard normal, by raw index; nil when not wanted
+	side              []float64 // 1 or -1 by raw index, 0 for centric ones; nil without polarity
 	geometry          Geometry
 
 	law    law
@@ -61,6 +62,9 @@ func (o *observer) run(ctx context.Context) (*Measured, error) {
 	cross, err := o.crossings(ctx)
 	if err != nil {
 		return nil, err
+	}
+	if p.Once {
+		cross = o.once(cross)
 	}
 	if p.Bleed > 0 {
 		o.bleed(cross)
@@ -142,12 +146,29 @@ func (o *observer) expect(c *crossing, h crystal.HKL) (bool, error) {
 			x += math.Sqrt(p.GeometryShare) * o.geometryDeviation[c.raw]
 		}
 		j = o.law.at(u, m) * math.Exp(p.Deviation*x-p.Deviation*p.Deviation/2)
+		if p.Polarity > 0 {
+			j = math.Max(0, j+p.Polarity*o.side[c.raw]*math.Sqrt(j*o.truth.Local[u]))
+		}
 	}
 	c.signal = p.Counts * j * math.Exp(p.lnK(c.phi)-2*o.totalB*o.truth.S2[u])
 	if p.CurbForm == CurbRate {
 		c.signal *= math.Exp(-p.Curb * c.signal / p.Counts)
 	}
 	return true, nil
+}
+
+// once keeps the first crossing of each unique reflection, as lists that were merged
+// elsewhere do.
+func (o *observer) once(cross []crossing) []crossing {
+	seen := make([]bool, len(o.truth.J))
+	var out []crossing
+	for _, c := range cross {
+		if u := o.list.unique[c.raw]; !seen[u] {
+			seen[u] = true
+			out = append(out, c)
+		}
+	}
+	return out
 }
 
 // bleed adds to each crossing a share of the signal of the six nearest lattice

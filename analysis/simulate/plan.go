@@ -11,8 +11,11 @@ type Plan struct {
 	Title      string  `toml:"title,omitempty"`
 	EnergyKeV  float64 `toml:"energy_keV,omitempty"`  // 300
 	SpaceGroup string  `toml:"space_group,omitempty"` // "P 21 21 21"
-	Seed       uint64  `toml:"seed,omitempty"`        // any number, 0 included
-	DMin       float64 `toml:"d_min,omitempty"`       // resolution limit in angstrom, 1.0
+	// Declared is the space group that the series is said to have, of the same Laue class;
+	// SpaceGroup when empty.
+	Declared string  `toml:"declared,omitempty"`
+	Seed     uint64  `toml:"seed,omitempty"`  // any number, 0 included
+	DMin     float64 `toml:"d_min,omitempty"` // resolution limit in angstrom, 1.0
 	// ThicknessScaleSU is the common relative uncertainty of all thicknesses; it
 	// is only handed on.
 	ThicknessScaleSU float64   `toml:"thickness_scale_su,omitempty"`
@@ -146,6 +149,10 @@ type Position struct {
 	OutlierFactor float64 `toml:"outlier_factor,omitempty"` // 3
 
 	Deviation float64 `toml:"deviation,omitempty"` // a: sd of ln of the reproducible deviation
+	// Polarity is the inequality of Friedel mates, as an amplitude that interferes makes it
+	// where there is no centre: an acentric J becomes J + Polarity sqrt(J <J>shell) on one side and
+	// less by as much on the other, not below 0; which is which is the same in all crystals.
+	Polarity float64 `toml:"polarity,omitempty"`
 	// GeometryShare is the share of the deviation's variance that each raw index
 	// has of its own; the rest is common to all equivalents. 0 to 1.
 	GeometryShare float64 `toml:"geometry_share,omitempty"`
@@ -163,6 +170,7 @@ type Position struct {
 
 	OmitForbidden bool   `toml:"omit_forbidden,omitempty"` // screw-axis and glide absences are not recorded
 	WithCentring  bool   `toml:"with_centring,omitempty"`  // centring absences are recorded too
+	Once          bool   `toml:"once,omitempty"`           // only the first observation of each unique reflection is recorded
 	Reindex       string `toml:"reindex,omitempty"`        // written indices as "k,h,-l" of the true ones
 	Copies        int    `toml:"copies,omitempty"`         // rows of each observation, on consecutive frames, 1
 	// CutBelow removes observations under CutBelow times their sigma; nil

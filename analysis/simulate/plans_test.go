@@ -131,7 +131,7 @@ func TestEveryFlawIsAChange(t *testing.T) {
 			continue
 		}
 		s := invent(t, p)
-		if reflect.DeepEqual(s.Specimens, sound.Specimens) {
+		if reflect.DeepEqual(s.Specimens, sound.Specimens) && s.Group.HM() == sound.Group.HM() {
 			t.Errorf("%v changes nothing", f)
 		}
 	}
