@@ -51,14 +51,14 @@ func (s *Study) Expectation(ctx context.Context) (*Expectation, error) {
 	}
 	list := s.thicknesses()
 	thickest := list[len(list)-1]
-	if e.Budget, err = budgets(list, free); err != nil {
+	if e.Budget, err = s.budgets(list, free); err != nil {
 		return nil, err
 	}
 	var grid []float64
 	for i := range expectationGrid {
 		grid = append(grid, 1.25*thickest*float64(i)/(expectationGrid-1))
 	}
-	if e.BudgetGrid, err = budgets(grid, free); err != nil {
+	if e.BudgetGrid, err = s.budgets(grid, free); err != nil {
 		return nil, err
 	}
 	if e.TwoBeam, err = s.twoBeam(atoms, list[0], thickest); err != nil {
@@ -118,14 +118,30 @@ func (s *Study) thicknesses() []float64 {
 	return slices.Compact(list)
 }
 
-func budgets(thickness []float64, free electron.MeanFreePaths) ([]Budget, error) {
+// budgets gives the shares at each thickness, with ranges where a path was estimated.
+func (s *Study) budgets(thickness []float64, free electron.MeanFreePaths) ([]Budget, error) {
+	elasticSU, inelasticSU := free.RelativeSU, free.RelativeSU
+	if s.Series.ElasticMFPNM > 0 {
+		elasticSU = 0
+	}
+	if s.Series.InelasticMFPNM > 0 {
+		inelasticSU = 0
+	}
 	var out []Budget
 	for _, t := range thickness {
-		b, err := electron.ShareOf(t, free)
+		x, err := electron.ShareOf(t, free)
 		if err != nil {
 			return nil, err
 		}
-		out = append(out, Budget(b))
+		b := Budget{ThicknessNM: t, Unscattered: x.Unscattered, Kinematic: x.Kinematic, Multiple: x.Multiple, Inelastic: x.Inelastic}
+		if free.RelativeSU > 0 {
+			lo, hi, err := electron.ShareRange(t, free, elasticSU, inelasticSU)
+			if err != nil {
+				return nil, err
+			}
+			b.KinematicRange, b.MultipleRange, b.InelasticRange = []float64{lo.Kinematic, hi.Kinematic}, []float64{lo.Multiple, hi.Multiple}, []float64{lo.Inelastic, hi.Inelastic}
+		}
+		out = append(out, b)
 	}
 	return out, nil
 }

@@ -57,6 +57,12 @@ func TestExpectation(t *testing.T) {
 		nm = append(nm, b.ThicknessNM)
 		floatcmp.Check(t, "sum", b.Unscattered+b.Kinematic+b.Multiple+b.Inelastic, 1, 1e-12, 0)
 		floatcmp.Check(t, "inelastic", b.Inelastic, 1-math.Exp(-b.ThicknessNM/e.InelasticMFPNM), 1e-12, 0)
+		for _, x := range [][3]float64{{b.KinematicRange[0], b.Kinematic, b.KinematicRange[1]}, {b.MultipleRange[0], b.Multiple, b.MultipleRange[1]}, {b.InelasticRange[0], b.Inelastic, b.InelasticRange[1]}} {
+			if !(x[0] < x[1] && x[1] < x[2]) {
+				t.Errorf("%g nm: %v", b.ThicknessNM, x)
+			}
+		}
+		floatcmp.Check(t, "least inelastic", b.InelasticRange[0], -math.Expm1(-b.ThicknessNM/(1.3*e.InelasticMFPNM)), 0, 1e-12)
 		floatcmp.Check(t, "kinematic over unscattered", b.Kinematic/b.Unscattered, b.ThicknessNM/e.ElasticMFPNM, 0, 1e-12)
 	}
 	floatcmp.CheckSlice(t, "thicknesses", nm, []float64{140, 150, 300}, 0, 0)
@@ -85,7 +91,7 @@ func TestExpectationMeanFreePaths(t *testing.T) {
 	e := expect(t, s)
 	floatcmp.Check(t, "elastic", e.ElasticMFPNM, 500, 0, 0)
 	floatcmp.Check(t, "inelastic", e.InelasticMFPNM, 395, 0, 0)
-	if e.Source != "given" || e.Uncertainty != 0 {
+	if e.Source != "given" || e.Uncertainty != 0 || e.Budget[0].KinematicRange != nil {
 		t.Errorf("source %q, uncertainty %g", e.Source, e.Uncertainty)
 	}
 	s.ElasticMFPNM = 0

@@ -264,13 +264,19 @@ type TwoBeamCurve struct {
 	Why          string     `json:"why,omitempty"`
 }
 
-// Budget is the share of electrons of each fate at one thickness.
+// Budget is the share of electrons of each fate at one thickness. The ranges, lowest
+// and highest, are what the uncertainty of both mean free paths allows; nil when it is not
+// known.
 type Budget struct {
 	ThicknessNM float64 `json:"thickness_nm"`
 	Unscattered float64 `json:"unscattered"`
 	Kinematic   float64 `json:"kinematic"`
 	Multiple    float64 `json:"multiply_elastic"`
 	Inelastic   float64 `json:"inelastic"`
+
+	KinematicRange []float64 `json:"kinematic_range,omitempty"`
+	MultipleRange  []float64 `json:"multiply_elastic_range,omitempty"`
+	InelasticRange []float64 `json:"inelastic_range,omitempty"`
 }
 
 // Matters is what the fitted exchange would do to a refinement.

@@ -59,3 +59,38 @@ func ShareOf(thicknessNM float64, free MeanFreePaths) (Shares, error) {
 	}
 	return s, nil
 }
+
+// ShareRange returns the least and the greatest that each share can be when the mean free
+// paths may be off by a relative uncertainty either way, each by its own: 0 where a path
+// is known. Neither result adds up to 1. Errors are those of ShareOf, and an
+// uncertainty that is not from 0 to below 1; RelativeSU of free is not looked at.
+func ShareRange(thicknessNM float64, free MeanFreePaths, elasticSU, inelasticSU float64) (lo, hi Shares, err error) {
+	for _, su := range []float64{elasticSU, inelasticSU} {
+		if !(su >= 0 && su < 1) {
+			return lo, hi, fmt.Errorf("electron: a relative uncertainty of %g is not from 0 to below 1", su)
+		}
+	}
+	elastic := []float64{free.ElasticNM * (1 - elasticSU), free.ElasticNM * (1 + elasticSU)}
+	// Once scattered elastically are most where the thickness is one path; all else rises or
+	// falls throughout.
+	if elastic[0] < thicknessNM && thicknessNM < elastic[1] {
+		elastic = append(elastic, thicknessNM)
+	}
+	for i, e := range elastic {
+		for j, f := range []float64{1 - inelasticSU, 1 + inelasticSU} {
+			s, err := ShareOf(thicknessNM, MeanFreePaths{ElasticNM: e, InelasticNM: f * free.InelasticNM})
+			if err != nil {
+				return lo, hi, err
+			}
+			if i == 0 && j == 0 {
+				lo, hi = s, s
+				continue
+			}
+			lo.Unscattered, hi.Unscattered = math.Min(lo.Unscattered, s.Unscattered), math.Max(hi.Unscattered, s.Unscattered)
+			lo.Kinematic, hi.Kinematic = math.Min(lo.Kinematic, s.Kinematic), math.Max(hi.Kinematic, s.Kinematic)
+			lo.Multiple, hi.Multiple = math.Min(lo.Multiple, s.Multiple), math.Max(hi.Multiple, s.Multiple)
+			lo.Inelastic, hi.Inelastic = math.Min(lo.Inelastic, s.Inelastic), math.Max(hi.Inelastic, s.Inelastic)
+		}
+	}
+	return lo, hi, nil
+}

@@ -71,6 +71,39 @@ func TestShares(t *testing.T) {
 	}
 }
 
+// The range against a fine grid of both paths.
+func TestShareRange(t *testing.T) {
+	for _, c := range []struct{ nm, elastic, inelastic, su, other float64 }{{200, 350, 270, 0.3, 0.3}, {400, 350, 270, 0.3, 0.2}, {900, 350, 270, 0.3, 0.3}, {200, 350, 270, 0, 0}, {200, 350, 270, 0, 0.3}, {0, 350, 270, 0.3, 0.3}} {
+		lo, hi, err := ShareRange(c.nm, MeanFreePaths{ElasticNM: c.elastic, InelasticNM: c.inelastic}, c.su, c.other)
+		if err != nil {
+			t.Fatal(err)
+		}
+		least, most := [4]float64{1, 1, 1, 1}, [4]float64{}
+		for i := range 201 {
+			for j := range 201 {
+				s, err := ShareOf(c.nm, MeanFreePaths{ElasticNM: c.elastic * (1 + c.su*(float64(i)/100-1)), InelasticNM: c.inelastic * (1 + c.other*(float64(j)/100-1))})
+				if err != nil {
+					t.Fatal(err)
+				}
+				for k, v := range []float64{s.Unscattered, s.Kinematic, s.Multiple, s.Inelastic} {
+					least[k], most[k] = math.Min(least[k], v), math.Max(most[k], v)
+				}
+			}
+		}
+		floatcmp.CheckSlice(t, "least", []float64{lo.Unscattered, lo.Kinematic, lo.Multiple, lo.Inelastic}, least[:], 1e-5, 1e-5)
+		floatcmp.CheckSlice(t, "most", []float64{hi.Unscattered, hi.Kinematic, hi.Multiple, hi.Inelastic}, most[:], 1e-5, 1e-5)
+		floatcmp.Check(t, "thickness", lo.ThicknessNM+hi.ThicknessNM, 2*c.nm, 0, 0)
+	}
+	for _, su := range []float64{-0.1, 1, math.NaN()} {
+		if _, _, err := ShareRange(100, MeanFreePaths{ElasticNM: 350, InelasticNM: 270}, su, 0.3); err == nil || !strings.Contains(err.Error(), "relative uncertainty") {
+			t.Errorf("%g: got %v", su, err)
+		}
+	}
+	if _, _, err := ShareRange(-1, MeanFreePaths{ElasticNM: 350, InelasticNM: 270}, 0.3, 0.3); err == nil {
+		t.Error("a negative thickness passed")
+	}
+}
+
 func TestCrossSections(t *testing.T) {
 	// The formula worked elsewhere; it is from memory, so this checks arithmetic.
 	keV := []float64{100, 120, 200, 300}

@@ -37,6 +37,15 @@ func Slate() *Plan {
 	return p
 }
 
+// Shale returns a plan like Slate of a centrosymmetric crystal, "Shale, many beams": P 1 21/c
+// 1, whose structure factors are real.
+func Shale() *Plan {
+	p := Slate()
+	p.Title, p.SpaceGroup, p.Seed = "Shale, many beams", "P 1 21/c 1", 5
+	p.Cell = Cell{A: 9, B: 10, C: 12, Alpha: 90, Beta: 98, Gamma: 90}
+	return p
+}
+
 // ManyBeam returns a copy of a plan whose Law is a many-beam calculation: every
 // crystal is turned through the widest range of its positions by electron.Rotate, and
 // each position takes the intensities of its thickness, on the scale of Truth.J, to

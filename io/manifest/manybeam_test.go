@@ -178,6 +178,73 @@ func TestManyBeamAxes(t *testing.T) {
 	}
 }
 
+// TestManyBeamCentric tries the pipeline on a crystal with a centre of symmetry, where
+// structure factors are real and the first deviation from kinematic intensities is
+// of second order. It takes minutes: THINWARD_FULL=1.
+func TestManyBeamCentric(t *testing.T) {
+	if os.Getenv("THINWARD_FULL") == "" {
+		t.Skip("needs THINWARD_FULL=1")
+	}
+	ctx := context.Background()
+	law, err := simulate.ManyBeam(ctx, simulate.Shale(), &electron.BeamSettings{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	twin := inventOf(t, law.Kinematic())
+	for name, effect := range map[string]bool{"many beams": true, "kinematic twin": false} {
+		series := twin
+		if effect {
+			series = inventOf(t, law)
+		}
+		dir := t.TempDir()
+		if err := WriteInvented(series, &series.Plan, dir); err != nil {
+			t.Fatal(err)
+		}
+		study, err := LoadWith(filepath.Join(dir, "series.toml"), &analysis.Settings{Replicates: 200, Flips: 200})
+		if err != nil {
+			t.Fatal(err)
+		}
+		in, err := study.Intake(ctx)
+		if err != nil {
+			t.Fatal(err)
+		}
+		var third, lead float64
+		for _, c := range study.Contrasts() {
+			if !c.Primary {
+				continue
+			}
+			x, err := study.Compare(ctx, c)
+			if err != nil {
+				t.Fatal(err)
+			}
+			truth, others, same := onTruth(t, x, in, twin), on(t, &x.Result, difference.AxisCrystals).M.Value, on(t, &x.Result, difference.AxisThird).M.Value
+			t.Logf("%s, %s: m %.4f on the truth, %.4f on other crystals, %.4f on the third position; p %.4f; (m,q,o) %.4f %.4f %.4f", name, study.Name(c), truth, others, same, x.Result.Strength.P, x.Result.Exchange.M, x.Result.Curb.Q, x.Result.Offset.O)
+			lead += (others - truth) / 3
+			third += (same - truth) / 3
+			if !(math.Abs(others-truth) < 0.02) {
+				t.Errorf("%s, %s: m = %.4f on the axis of other crystals, %.4f on the truth", name, study.Name(c), others, truth)
+			}
+			if (x.Result.Strength.P < 0.05) != effect || effect && !(truth > 0.05) {
+				t.Errorf("%s, %s: m %.4f on the truth, p = %g", name, study.Name(c), truth, x.Result.Strength.P)
+			}
+		}
+		if effect && !(third < lead-0.01) {
+			t.Errorf("mean distance from the truth %.4f on other crystals, %.4f on the third position", lead, third)
+		}
+		verdict := analysis.VerdictNo
+		if effect {
+			verdict = analysis.VerdictYes
+		}
+		r := answered(t, study)
+		for _, a := range r.Answers {
+			t.Logf("%s: %s %s: %s %q", name, a.Question, a.Verdict, a.Text, a.Detail)
+			if (a.Section == "sizes" || a.Section == "strength") && a.Verdict != verdict {
+				t.Errorf("%s: %s %s", name, a.Question, a.Verdict)
+			}
+		}
+	}
+}
+
 // card is what the report says to a question; detail holds a word for every line below it.
 type card struct {
 	question, verdict string

@@ -251,10 +251,18 @@ func budgetFigure(r *analysis.Result) *View {
 		for i, v := range []float64{b.Unscattered, b.Kinematic, b.Multiple, b.Inelastic} {
 			parts[i].Share = append(parts[i].Share, v)
 		}
-		g.add(number(b.ThicknessNM, 0), percent(b.Unscattered, 0), percent(b.Kinematic, 0), percent(b.Multiple, 0), percent(b.Inelastic, 0))
+		g.add(number(b.ThicknessNM, 0), percent(b.Unscattered, 0), shareOf(b.Kinematic, b.KinematicRange), shareOf(b.Multiple, b.MultipleRange), shareOf(b.Inelastic, b.InelasticRange))
 	}
 	f.Parts = parts[:]
 	fv.summary = g
 	fv.add("", f)
 	return fv.view()
+}
+
+// shareOf writes a share of the electrons with what its mean free paths leave open.
+func shareOf(v float64, span []float64) string {
+	if len(span) != 2 {
+		return percent(v, 0)
+	}
+	return percent(v, 0) + " (" + number(100*span[0], 0) + " to " + number(100*span[1], 0) + ")"
 }

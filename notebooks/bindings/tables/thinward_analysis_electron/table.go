@@ -33,6 +33,7 @@ func init() {
 			"Rotate":             reflect.ValueOf(electron.Rotate),
 			"ScatteringFactor":   reflect.ValueOf(electron.ScatteringFactor),
 			"ShareOf":            reflect.ValueOf(electron.ShareOf),
+			"ShareRange":         reflect.ValueOf(electron.ShareRange),
 			"StructureFactors":   reflect.ValueOf(electron.StructureFactors),
 			"TwoBeam":            reflect.ValueOf(electron.TwoBeam),
 			"TwoBeamKinematic":   reflect.ValueOf(electron.TwoBeamKinematic),

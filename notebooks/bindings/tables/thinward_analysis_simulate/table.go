@@ -45,6 +45,7 @@ func init() {
 			"ManyBeam":             reflect.ValueOf(simulate.ManyBeam),
 			"Null":                 reflect.ValueOf(simulate.Null),
 			"Replicates":           reflect.ValueOf(simulate.Replicates),
+			"Shale":                reflect.ValueOf(simulate.Shale),
 			"Slate":                reflect.ValueOf(simulate.Slate),
 			"Sound":                reflect.ValueOf(simulate.Sound),
 			"Tarn":                 reflect.ValueOf(simulate.Tarn),
