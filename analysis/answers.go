@@ -190,16 +190,21 @@ func answerResolution(list []*ContrastResult) Answer {
 		if side(r.DeltaB, r.DeltaBLo, r.DeltaBHi, 0, f) != 0 {
 			seen++
 		}
-		a.Detail = append(a.Detail, fmt.Sprintf("%s %s \u00c5\u00b2", label(c), span(r.DeltaB, r.DeltaBLo, r.DeltaBHi)))
+		said := span(r.DeltaB, r.DeltaBLo, r.DeltaBHi) + " \u00c5\u00b2"
+		if r.Reconciled != "" {
+			said = r.Reconciled
+		}
+		a.Detail = append(a.Detail, label(c)+" "+said)
 	}
+	const below = " Below, B of the thick position minus B of the thin in \u00c5\u00b2, twice: by sums of intensity in shells, which few strong reflections carry and in which curb and offset count, and by the fitted scale, which weighs every reflection by its error."
 	switch {
 	case known == 0:
 		a.Verdict, a.Text = VerdictUnknown, "The growth of the ratio with resolution could not be estimated."
 	case seen > 0:
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("The ratio of the positions falls or rises with resolution in %s. A B factor, radiation damage, redistribution by thickness, background and saturation of the detector look alike here. Below, B of the thick position minus B of the thin.", crystalsOf(seen, list))
+		a.Text = fmt.Sprintf("The ratio of the positions falls or rises with resolution in %s. A B factor, radiation damage, redistribution by thickness, background and saturation of the detector look alike here.", crystalsOf(seen, list)) + below
 	default:
-		a.Text = fmt.Sprintf("No trend with resolution is seen; a difference in B of %s \u00c5\u00b2 would have been seen in each crystal with 80 %% power.", short(size.MinimumVisible(worst, 0.95, 0.8))) + " Below, B of the thick position minus B of the thin."
+		a.Text = fmt.Sprintf("No trend with resolution is seen; a difference in B of %s \u00c5\u00b2 would have been seen in each crystal with 80 %% power.", short(size.MinimumVisible(worst, 0.95, 0.8))) + below
 	}
 	return a
 }

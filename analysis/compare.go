@@ -198,14 +198,23 @@ func (x *Compared) refit(ctx context.Context) error {
 	if x.Leading != leadCrystals {
 		return nil
 	}
-	expected := make([]float64, x.Pairs.Len())
-	for i, z := range x.Strengths.Z {
-		if math.IsNaN(z) {
-			z = 1
-		}
-		expected[i] = z * x.Pairs.MeanPooled[i]
+	return refit(ctx, x.Pairs, x.Strengths.Z, true)
+}
+
+// refit takes the variance of the differences at the strengths z, or, when those are not
+// the other crystals', at the mean of each pair.
+func refit(ctx context.Context, p *difference.Pairs, z []float64, others bool) error {
+	if !others {
+		return p.RefitVarD(ctx, nil)
 	}
-	return x.Pairs.RefitVarD(ctx, expected)
+	expected := make([]float64, p.Len())
+	for i, v := range z {
+		if math.IsNaN(v) {
+			v = 1
+		}
+		expected[i] = v * p.MeanPooled[i]
+	}
+	return p.RefitVarD(ctx, expected)
 }
 
 // third gives the strengths in the position of the same crystal whose thickness

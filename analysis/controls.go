@@ -8,8 +8,6 @@ import (
 	"thinward/analysis/difference"
 	"thinward/analysis/evidence"
 	"thinward/analysis/intensity"
-	"thinward/analysis/internal/parallel"
-	"thinward/analysis/size"
 )
 
 // Names of the controls.
@@ -29,12 +27,6 @@ const (
 	injectedQ = 0.02
 )
 
-// curbLoss is the share of an injected curb that may be lost: the model is of
-// first order in q, and of a curb exp(-q J) with intensities up to ten times the
-// unit it reads about three quarters (measured on the demonstration); what is lost
-// may show in m.
-const curbLoss = 0.35
-
 // Controls runs the pipeline on data where the answer is known, for the primary
 // contrast of each crystal: halves of one position, replicate positions,
 // swapped positions, noise-only replicas, an injected exchange and curb, and the
@@ -51,9 +43,11 @@ func (s *Study) Controls(ctx context.Context) ([]ControlResult, error) {
 	}
 	per := make([][]ControlResult, len(list))
 	readings := make([]*reading, len(list))
+	alarm := s.falseAlarm(list)
 	for i, x := range list {
 		readings[i] = s.newReading(x)
 		r := readings[i]
+		r.alarm = alarm
 		for _, control := range []func(context.Context, *reading) ([]ControlResult, error){
 			s.halvesControl, s.replicateControl, s.swappedControl, s.noiseControl,
 		} {
@@ -111,16 +105,35 @@ func (c *ControlResult) judge(passed bool) {
 
 func intervalOf(e evidence.Estimate) Interval { return interval(e.Value, e.Lo, e.Hi, "") }
 
-// falseAlarm is the two-sided chance at which a single null control that reads
-// an effect is called failed. Three crystals have six halves, each with m and the p
-// of the curve: at one in a hundred one report in nine would hold a failure by chance.
-const falseAlarm = 0.002
+// familyError is the chance that any of the controls of a sound series fails. All their
+// readings share it evenly (Bonferroni 1936), whatever they have in common.
+const familyError = 0.05
 
-// nullPassed says whether an estimate that should be 0 is within the range that
-// its error allows at the level of falseAlarm.
-func nullPassed(e evidence.Estimate) bool {
-	return math.Abs(e.Value) <= zOf(1-falseAlarm)*e.SE
+// falseAlarm is the chance left to a single reading. A crystal has m and the test of
+// the curve of two halves and of each replicate, the swapped m, mean, intervals and test
+// of the noise-only replicas, the injected exchange, the injected curb with its q and m,
+// and the power at the detection limit.
+func (s *Study) falseAlarm(list []*Compared) float64 {
+	n := 0
+	for _, x := range list {
+		n += 2*2 + 1 + 3 + 1 + 2 + 1
+		for _, p := range s.Series.Crystals[x.Contrast.Crystal].Positions {
+			if p.ReplicateOf != "" {
+				n += 2
+			}
+		}
+	}
+	return familyError / float64(max(n, 1))
 }
+
+// nullPassed says whether an estimate that should be 0, and the p of the curve, are within
+// what the chance of a false alarm allows.
+func (r *reading) nullPassed(e evidence.Estimate, p float64) bool {
+	return math.Abs(e.Value) <= r.deviate()*e.SE && !(p < r.alarm)
+}
+
+// deviate is the normal deviate beyond which, on either side, a reading fails.
+func (r *reading) deviate() float64 { return zOf(1 - r.alarm) }
 
 func (s *Study) halvesControl(ctx context.Context, r *reading) ([]ControlResult, error) {
 	const can = "errors of counting and merging; a wrong variance or a biased weight would show"
@@ -134,7 +147,7 @@ func (s *Study) halvesControl(ctx context.Context, r *reading) ([]ControlResult,
 			whole, other = other, whole
 		}
 		half := *r
-		half.flips = s.flipsForControls()
+		half.flips = r.flipsForControls()
 		if half.others == nil {
 			half.third = intensity.Merge(r.cat.Len(), other)
 		}
@@ -149,17 +162,19 @@ func (s *Study) halvesControl(ctx context.Context, r *reading) ([]ControlResult,
 		}
 		x := ControlResult{Control: controlHalves, Crystal: r.x.Result.Crystal, M: intervalOf(v.M), Q: intervalOf(v.Q), P: v.P, Rejections: math.NaN(), Draws: 1,
 			Through: "merging on", Can: can, Cannot: cannot, Why: "counting noise only; equivalents of position " + name + " in two halves by index"}
-		x.judge(nullPassed(v.M) && !(v.P < falseAlarm))
+		x.judge(r.nullPassed(v.M, v.P))
 		out = append(out, x)
 	}
 	return out, nil
 }
 
-func (s *Study) flipsForControls() int {
-	if s.settings.Long {
-		return s.settings.Flips
+// flipsForControls are enough that a p below the chance of a false alarm can come out.
+func (r *reading) flipsForControls() int {
+	n := r.study.settings.Flips
+	if !r.study.settings.Long {
+		n = min(n, 500)
 	}
-	return min(s.settings.Flips, 500)
+	return max(n, int(math.Ceil(2/r.alarm)))
 }
 
 func splitScaled(s *intensity.Scaled, key uint64) (a, b *intensity.Scaled) {
@@ -182,7 +197,7 @@ func (s *Study) replicateControl(ctx context.Context, r *reading) ([]ControlResu
 		}
 		positions := s.scaled[r.x.Contrast.Crystal].Positions
 		full := *r
-		full.flips = s.flipsForControls()
+		full.flips = r.flipsForControls()
 		v, err := full.of(ctx, positions[first], positions[j], difference.MatchAuto)
 		if ctx.Err() != nil {
 			return nil, ctx.Err()
@@ -194,30 +209,10 @@ func (s *Study) replicateControl(ctx context.Context, r *reading) ([]ControlResu
 		}
 		x := ControlResult{Control: controlReplicate, Crystal: c.Name, M: intervalOf(v.M), Q: intervalOf(v.Q), P: v.P, Rejections: math.NaN(), Draws: 1,
 			Through: "pairing on, both places on the crystal's one scale", Can: can, Cannot: cannot, Why: names}
-		x.judge(nullPassed(v.M) && !(v.P < falseAlarm))
+		x.judge(r.nullPassed(v.M, v.P))
 		out = append(out, x)
 	}
 	return out, nil
-}
-
-// swappedControl exchanges the two positions as wholes.
-func (s *Study) swappedControl(ctx context.Context, r *reading) ([]ControlResult, error) {
-	const can = "whether the estimate treats both sides alike: m of the swapped pair must be -m/(1-m)"
-	const cannot = "where a difference comes from: an artefact swaps sign as well"
-	m := r.lead.M
-	v, err := r.of(ctx, r.x.thick, r.x.thin, difference.MatchAuto)
-	if ctx.Err() != nil {
-		return nil, ctx.Err()
-	}
-	if err != nil {
-		return []ControlResult{unread(controlSwapped, r.x.Result.Crystal, can, cannot, err.Error())}, nil
-	}
-	x := ControlResult{Control: controlSwapped, Crystal: r.x.Result.Crystal, M: intervalOf(v.M), Q: intervalOf(v.Q), Expected: -m.Value / (1 - m.Value), P: math.NaN(), Rejections: math.NaN(),
-		Draws: 1, Through: "pairing on", Can: can, Cannot: cannot, Why: "whole positions were exchanged, thin for thick"}
-	// With a curb in the model the swapped fit squares the other side's
-	// intensities, so the two agree within their error and not exactly.
-	x.judge(math.Abs(v.M.Value-x.Expected) <= math.Max(v.M.SE, m.SE))
-	return []ControlResult{x}, nil
 }
 
 // seriesControls are those that need all crystals.
@@ -245,111 +240,4 @@ func (s *Study) seriesControls(list []*reading, per []ControlResult) []ControlRe
 	}
 	return append(out, unread(controlReplicate, "", "everything that two places of equal thickness differ by; the only full null", "",
 		"not measured: differences between places of equal thickness are not known"))
-}
-
-// injections adds a known exchange, and a known curb, to the thick position of
-// each crystal and pushes the observations through scaling and all that follows.
-func (s *Study) injections(ctx context.Context, readings []*reading) ([][]ControlResult, error) {
-	kinds := []struct {
-		name string
-		m, q float64
-	}{{controlExchange, injectedM, 0}, {controlCurb, 0, injectedQ}}
-	out := make([][]ControlResult, len(readings))
-	for i := range out {
-		out[i] = make([]ControlResult, len(kinds))
-	}
-	err := parallel.For(ctx, len(readings)*len(kinds), s.settings.Workers, func(ctx context.Context, k int) error {
-		r, kind := readings[k/len(kinds)], kinds[k%len(kinds)]
-		var err error
-		out[k/len(kinds)][k%len(kinds)], err = s.inject(ctx, r, kind.name, kind.m, kind.q)
-		return err
-	})
-	return out, err
-}
-
-func (s *Study) inject(ctx context.Context, r *reading, name string, m, q float64) (ControlResult, error) {
-	const can = "whether scaling, merging, pairing or the model swallow or invent a part of an effect of this size"
-	const cannot = "effects of another shape; artefacts that look like it"
-	x := r.x
-	if r.lead == nil || !r.lead.Estimable {
-		return unread(name, x.Result.Crystal, can, cannot, "m is not estimable"), nil
-	}
-	sc := s.scaled[x.Contrast.Crystal]
-	before := evidence.Summary{P: math.NaN(), M: evidence.Estimate(r.lead.M), Q: evidence.Estimate(r.lead.Q)}
-	rec, err := evidence.Recover(ctx, before, s.injection(r, m, q), sc.Input.I, s.throughScaling(r))
-	if ctx.Err() != nil {
-		return ControlResult{}, ctx.Err()
-	}
-	if err != nil {
-		return unread(name, x.Result.Crystal, can, cannot, err.Error()), nil
-	}
-	out := ControlResult{Control: name, Crystal: x.Result.Crystal, M: intervalOf(rec.M), Q: intervalOf(rec.Q), Expected: m, P: math.NaN(), Rejections: math.NaN(), Draws: 1,
-		Through: "scaling and all that follows", Can: can, Cannot: cannot}
-	switch {
-	case q == 0:
-		out.Why = fmt.Sprintf("m = %s was added to the thick position; %s came back beyond what was there", short(m), short(rec.M.Value))
-		out.judge(evidence.Found(rec.M, m))
-	case r.lead.Model < size.MQ:
-		return unread(name, x.Result.Crystal, can, cannot, "the model has no curb"), nil
-	default:
-		out.ExpectedQ = q
-		out.Why = fmt.Sprintf("q = %s was added to the thick position; %s came back beyond what was there, and m moved by %s", short(q), short(rec.Q.Value), short(rec.M.Value))
-		out.judge(math.Abs(rec.Q.Value-q) <= math.Max(curbLoss*q, 0.25*rec.Q.SE) && math.Abs(rec.M.Value) <= math.Max(curbLoss*q, 0.5*rec.M.SE))
-	}
-	return out, nil
-}
-
-// throughScaling is the pipeline from intensities of one crystal's observations.
-func (s *Study) throughScaling(r *reading) evidence.Pipeline {
-	c := r.x.Contrast
-	return func(ctx context.Context, intensities []float64) (evidence.Summary, error) {
-		positions, err := s.rescaled(ctx, c.Crystal, intensities, nil, 1)
-		if err != nil {
-			return evidence.Summary{}, err
-		}
-		return r.of(ctx, positions[c.Thin], positions[c.Thick], difference.MatchAuto)
-	}
-}
-
-// injection prepares an effect in the thick position, parallel to the rows of
-// the crystal's scaling input.
-func (s *Study) injection(r *reading, m, q float64) *evidence.Injection {
-	x := r.x
-	sc := s.scaled[x.Contrast.Crystal]
-	n := sc.Input.Len()
-	out := &evidence.Injection{M: m, Q: q, Thick: make([]bool, n), Local: make([]float64, n), Expected: make([]float64, n), Unit: make([]float64, n)}
-	local := s.localMeans(x)
-	slot := int32(sc.slot[x.Contrast.Thick])
-	for o, p := range sc.Input.Position {
-		u := sc.Input.Unique[o]
-		out.Thick[o] = p == slot
-		g := sc.Fit.Scale[o]
-		e := float64(s.intake.Catalogue.Epsilon[u])
-		out.Local[o] = g * local[u]
-		out.Expected[o] = g * sc.Fit.J[u]
-		out.Unit[o] = g * e * r.lead.Reference
-	}
-	return out
-}
-
-// localMeans gives, for every reflection of the catalogue, the mean intensity of
-// the thick position in the shell of the pairs that it falls into, times its
-// epsilon.
-func (s *Study) localMeans(x *Compared) []float64 {
-	cat := s.intake.Catalogue
-	p := x.Pairs
-	mean, top := make([]float64, p.Shells), make([]float64, p.Shells)
-	for i, k := range p.Shell {
-		mean[k] = p.MeanThick[i] / p.Epsilon[i]
-		top[k] = math.Max(top[k], p.S2[i])
-	}
-	out := make([]float64, cat.Len())
-	for u, s2 := range cat.S2 {
-		k := 0
-		for k < len(top)-1 && s2 > top[k] {
-			k++
-		}
-		out[u] = mean[k] * float64(cat.Epsilon[u])
-	}
-	return out
 }

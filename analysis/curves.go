@@ -50,7 +50,10 @@ func (s *Study) curves(ctx context.Context, x *Compared) error {
 	for _, w := range b.Warnings {
 		x.warn(w.Code, w.Text)
 	}
-	return nil
+	if x.Contrast.Primary {
+		x.Result.AngleBlocks, err = s.blockBands(ctx, x)
+	}
+	return err
 }
 
 func curveResult(b *curve.Banded) Curve {
@@ -82,18 +85,38 @@ func (s *Study) resolution(ctx context.Context, x *Compared) error {
 		if ctx.Err() != nil {
 			return ctx.Err()
 		}
-		x.Result.Resolution = Resolution{DeltaB: math.NaN(), DeltaBLo: math.Inf(-1), DeltaBHi: math.Inf(1), Share: math.NaN(), Why: err.Error()}
+		x.Result.Resolution = Resolution{DeltaB: math.NaN(), DeltaBLo: math.Inf(-1), DeltaBHi: math.Inf(1), Share: math.NaN(), FittedB: math.NaN(), FittedBSE: math.NaN(), Why: err.Error()}
 		return nil
 	}
 	r := Resolution{LogRatio: sh.LnRatio, Lo: sh.Lo, Hi: sh.Hi, DeltaB: sh.DeltaB, DeltaBLo: sh.DeltaBLo, DeltaBHi: sh.DeltaBHi, Share: sh.Share, Remainder: sh.Rest}
 	for _, s2 := range sh.S2 {
 		r.D = append(r.D, 1/(2*math.Sqrt(s2)))
 	}
+	r.FittedB, r.FittedBSE = x.b[1]-x.b[0], math.NaN()
+	if !x.Contrast.Across() {
+		sc := s.scaled[x.Contrast.Crystal]
+		r.FittedBSE = math.Hypot(sc.Fit.BSE[sc.slot[x.Contrast.Thin]], sc.Fit.BSE[sc.slot[x.Contrast.Thick]])
+	}
+	r.Reconciled = reconciled(&r, sh.DeltaBSE)
 	x.Result.Resolution = r
 	for _, w := range sh.Warnings {
 		x.warn(w.Code, w.Text)
 	}
 	return nil
+}
+
+// reconciled sets the B of sums by shell beside that of the scale. Both use the same
+// reflections, so the error of their difference is at most that of two that do not.
+func reconciled(r *Resolution, se float64) string {
+	d, most := r.DeltaB-r.FittedB, 2*math.Hypot(se, r.FittedBSE)
+	if math.IsNaN(d) || math.IsNaN(most) {
+		return ""
+	}
+	text := fmt.Sprintf("sums by shell say %s, the fitted scale %s +- %s", span(r.DeltaB, r.DeltaBLo, r.DeltaBHi), short(r.FittedB), short(r.FittedBSE))
+	if math.Abs(d) <= most {
+		return text + ": the same within their errors"
+	}
+	return text + ": more apart than their errors; a few strong reflections, a curb or an offset pull the sums"
 }
 
 // naive draws the axes that share noise with the difference, each beside the

@@ -30,6 +30,8 @@ type reading struct {
 	// flips is the number of sign flips for the p of the curve; 0 leaves it out.
 	flips int
 	seed  resample.Seed
+	// alarm is the chance left to one reading of a control to fail by chance.
+	alarm float64
 	// precision and leave-outs of a variant; nil keeps all reflections.
 	keep func(unique int32) bool
 }
@@ -136,6 +138,9 @@ func (r *reading) ofPairs(ctx context.Context, p *difference.Pairs) (evidence.Su
 		out.Q = evidence.Estimate{Value: fit.Q.Value, SE: fit.Q.SE, Lo: fit.Q.Lo, Hi: fit.Q.Hi}
 	}
 	if r.flips > 0 {
+		if err := refit(ctx, p, z, r.others != nil); err != nil {
+			return out, err
+		}
 		b, err := curve.ByStrength(ctx, z, p.Eps(), weights(p), &curve.Settings{S2: p.S2, Resample: resample.Settings{Replicates: r.flips, Workers: 1, Seed: r.seed.At("curve")}})
 		if err != nil {
 			return out, err

@@ -15,6 +15,7 @@ type ContrastResult struct {
 	Correlation   Correlation      `json:"correlation"`
 	MomentRatio   MomentRatio      `json:"moment_ratio"`
 	Strength      Curve            `json:"strength"`
+	AngleBlocks   *AngleBlocks     `json:"angle_blocks,omitempty"`
 	Resolution    Resolution       `json:"resolution"`
 	Classes       Classes          `json:"classes"`
 	Exchange      Exchange         `json:"exchange"`
@@ -65,18 +66,23 @@ type Curve struct {
 }
 
 // Resolution is ln(<I_thick>/<I_thin>) by shell of 1/d^2 with one overall scale,
-// and the difference of B that a straight line through it means.
+// and the difference of B that a straight line through it means. FittedB is the
+// difference of B that the scale took off, with its standard error; Reconciled says in words
+// what the two have to do with each other.
 type Resolution struct {
-	D         []float64 `json:"d_a"`
-	LogRatio  []float64 `json:"log_ratio"`
-	Lo        []float64 `json:"lo"`
-	Hi        []float64 `json:"hi"`
-	DeltaB    float64   `json:"delta_b"`
-	DeltaBLo  float64   `json:"delta_b_lo"`
-	DeltaBHi  float64   `json:"delta_b_hi"`
-	Share     float64   `json:"share_of_b"`
-	Remainder []float64 `json:"remainder"`
-	Why       string    `json:"why,omitempty"`
+	D          []float64 `json:"d_a"`
+	LogRatio   []float64 `json:"log_ratio"`
+	Lo         []float64 `json:"lo"`
+	Hi         []float64 `json:"hi"`
+	DeltaB     float64   `json:"delta_b"`
+	DeltaBLo   float64   `json:"delta_b_lo"`
+	DeltaBHi   float64   `json:"delta_b_hi"`
+	Share      float64   `json:"share_of_b"`
+	Remainder  []float64 `json:"remainder"`
+	FittedB    float64   `json:"fitted_b"`
+	FittedBSE  float64   `json:"fitted_b_se"`
+	Reconciled string    `json:"reconciled,omitempty"`
+	Why        string    `json:"why,omitempty"`
 }
 
 // Classes are the three classes of strength.

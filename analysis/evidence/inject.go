@@ -7,24 +7,29 @@ import (
 )
 
 // Injection adds a known effect to measured intensities. Row i is changed when
-// Thick[i]; Local is the mean intensity of its shell and Expected that of its
-// reflection, both on the scale of the intensity itself; Unit is the intensity,
-// on that scale, at which the curb is Q.
+// Thick[i]; Local is the mean intensity of its shell, Expected its intensity in a position
+// without the effect, both on the scale of the intensity itself; Unit is the intensity,
+// on that scale, at which the curb is Q. Given is the exchange that the rows hold already,
+// and Lost the mean of J0 (1 - exp(-Q Expected/Unit)) over the shell, J0 the intensities
+// before that exchange; nil is 0.
 type Injection struct {
-	M, Q            float64
+	M, Q, Given     float64
 	Thick           []bool
 	Local, Expected []float64
-	Unit            []float64
+	Unit, Lost      []float64
 }
 
-// Apply returns a copy of the intensities with the effect in it, curb first:
+// Apply returns a copy of the intensities with the effect in it. With I = (1-g) J0 + g <J0>
+// as measured, g the exchange that is Given, the curb acts on J0 and what is left of it
+// is exchanged as before, then the new exchange is put on top:
 //
-//	I' = I exp(-q J/unit),  I" = (1-m) I' + m <I'>,
+//	I' = (1-g) J0 exp(-q J/unit) + g <J0 exp(-q J/unit)>,  I" = (1-m) I' + m <I'>.
 //
-// noise and all else that the data have stay. J is the expected intensity, so
-// that the noise of I is not squared. It panics when lengths differ.
+// Noise and all else that the data have stay. J is expected, so that the noise of I is not
+// squared. A curb on top of the exchange would come back as q (1-m) and move m. It panics when
+// lengths differ.
 func (x *Injection) Apply(intensity []float64) []float64 {
-	if len(intensity) != len(x.Thick) || len(x.Local) != len(x.Thick) || len(x.Expected) != len(x.Thick) || len(x.Unit) != len(x.Thick) {
+	if len(intensity) != len(x.Thick) || len(x.Local) != len(x.Thick) || len(x.Expected) != len(x.Thick) || len(x.Unit) != len(x.Thick) || (x.Lost != nil && len(x.Lost) != len(x.Thick)) {
 		panic("evidence: Injection.Apply: columns differ in length")
 	}
 	out := make([]float64, len(intensity))
@@ -33,10 +38,16 @@ func (x *Injection) Apply(intensity []float64) []float64 {
 		if !thick {
 			continue
 		}
+		local := x.Local[i]
 		if x.Q != 0 && x.Unit[i] > 0 {
-			out[i] *= math.Exp(-x.Q * math.Max(x.Expected[i], 0) / x.Unit[i])
+			kept := math.Exp(-x.Q * math.Max(x.Expected[i], 0) / x.Unit[i])
+			own := out[i] - float64(x.Given*local)
+			if x.Lost != nil {
+				local -= x.Lost[i]
+			}
+			out[i] = float64(own*kept) + float64(x.Given*local)
 		}
-		out[i] = float64((1-x.M)*out[i]) + float64(x.M*x.Local[i])
+		out[i] = float64((1-x.M)*out[i]) + float64(x.M*local)
 	}
 	return out
 }
@@ -72,11 +83,4 @@ func Recover(ctx context.Context, before Summary, x *Injection, intensity []floa
 func shifted(e Estimate, to float64) Estimate {
 	d := to - e.Value
 	return Estimate{Value: to, SE: e.SE, Lo: e.Lo + d, Hi: e.Hi + d}
-}
-
-// Found reports whether an injected effect came back: within a tenth of its size
-// or a quarter of the standard error, whichever is more. Before and after share
-// their noise, so much less than a standard error is to be expected between them.
-func Found(e Estimate, injected float64) bool {
-	return math.Abs(e.Value-injected) <= math.Max(0.1*math.Abs(injected), 0.25*e.SE)
 }

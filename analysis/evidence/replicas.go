@@ -6,6 +6,8 @@ import (
 	"math"
 	"slices"
 
+	"gonum.org/v1/gonum/stat/distuv"
+
 	"thinward/analysis/internal/parallel"
 )
 
@@ -157,15 +159,19 @@ func (r *Replicated) Power() float64 {
 	return float64(n) / float64(r.N)
 }
 
-// Clean reports whether replicas without an effect are read without one: the
-// mean of M is within three standard errors of Expected or nearer to it than half of
-// one replica's spread (which costs an interval of 95 % three points of its coverage;
-// replicas share one set of reflections, so a part of any bias is that of the set),
-// and intervals miss no oftener than a level of 5 % makes likely in N replicas (three
-// binomial standard errors).
-func (r *Replicated) Clean() bool {
-	off := math.Abs(r.M.Mean - r.Expected)
-	n := float64(r.N)
-	most := 0.05 + 3*math.Sqrt(0.05*0.95/n)
-	return (off <= 3*r.M.MeanSE || off <= 0.5*r.M.SD) && r.Missed <= most
+// Clean reports whether replicas without an effect are read without one, each of
+// three readings at the chance alarm of an error: the mean of M lies within its standard
+// error of Expected by the normal law, intervals of 95 % miss no oftener and the test of the curve
+// rejects no oftener than the binomial law makes likely at 5 %.
+func (r *Replicated) Clean(alarm float64) bool {
+	z := distuv.UnitNormal.Quantile(1 - alarm/2)
+	return math.Abs(r.M.Mean-r.Expected) <= z*r.M.MeanSE && likely(r.Missed, r.N, alarm) &&
+		(math.IsNaN(r.CurveRejects) || likely(r.CurveRejects, r.N, alarm))
+}
+
+// likely says whether so large a share of n is more likely than alarm when each
+// comes with a chance of 5 %.
+func likely(share float64, n int, alarm float64) bool {
+	k := math.Round(share * float64(n))
+	return k == 0 || 1-distuv.Binomial{N: float64(n), P: 0.05}.CDF(k-1) >= alarm
 }

@@ -57,7 +57,7 @@ func TestReplicateOfASoundPipeline(t *testing.T) {
 	floatcmp.Check(t, "upper quantile", r.M.Hi, 1.96*0.05, 0.017, 0) // four standard errors of an order statistic
 	// 80 % power at level 5 %: (1.96 + 0.84) standard errors.
 	floatcmp.Check(t, "detectable", r.Detectable(0.8), 2.80*0.05, 0.01, 0)
-	if !r.Clean() || r.Failed != 0 || r.N != 1000 {
+	if !r.Clean(0.001) || r.Failed != 0 || r.N != 1000 {
 		t.Errorf("%+v", r)
 	}
 	limit := r.Detectable(0.8)
@@ -66,14 +66,20 @@ func TestReplicateOfASoundPipeline(t *testing.T) {
 }
 
 func TestReplicateSeesABiasAndTooNarrowAnInterval(t *testing.T) {
-	if r := replicate(t, 300, 0, normals(0), meanPipeline(0.03, 1)); r.Clean() {
-		t.Errorf("a bias of 0.6 standard deviations is called clean: %+v", r.M)
+	if r := replicate(t, 300, 0, normals(0), meanPipeline(0.0125, 1)); r.Clean(0.01) {
+		t.Errorf("a bias of a quarter of the spread, 4.3 standard errors of the mean is called clean: %+v", r.M)
 	}
-	if r := replicate(t, 300, 0, normals(0), meanPipeline(0, 0.6)); r.Clean() {
+	if r := replicate(t, 300, 0, normals(0), meanPipeline(0, 0.6)); r.Clean(0.01) {
 		t.Errorf("intervals of 0.6 their width are called clean: %g missed", r.Missed)
 	}
-	if r := replicate(t, 300, 0, normals(0), meanPipeline(0.005, 1)); !r.Clean() {
-		t.Errorf("a bias of a tenth of the spread is not: %+v", r.M)
+	if r := replicate(t, 300, 0, normals(0), meanPipeline(0.003, 1)); !r.Clean(0.01) {
+		t.Errorf("a bias of one standard error of the mean is not: %+v", r.M)
+	}
+	// P(X >= 12) and P(X >= 13) of 100 at 0.05 are 0.00427 and 0.00147 (binomial sums).
+	for k, want := range map[float64]bool{0: true, 11: true, 12: true, 13: false} {
+		if likely(k/100, 100, 0.002) != want {
+			t.Errorf("%g of 100 at 0.05: likely is %t at a level of 0.002", k, !want)
+		}
 	}
 }
 

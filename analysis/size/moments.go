@@ -42,20 +42,20 @@ type Value struct{ Value, SE, Lo, Hi float64 }
 // third in s^2, and its error does not include that of Reference: the offset in
 // intensity units is O.Value*Reference. Q is in units of 1 over the strength in
 // CurbStrength; in CurbCommon and CurbRate it is the loss at the mean intensity
-// or count rate of the lowest third.
+// (ReferenceThin) or count rate of the thin position over the lowest third.
 type Fit struct {
-	Model     Model
-	Curb      CurbForm
-	M, Q, O   Value
-	Reference float64
-	Cov       *mat.SymDense // of (M), (M, Q) or (M, Q, O)
-	J, JP     float64       // over-identification and its chi-square probability
-	JDF       int
-	F         float64 // first stage, as in Instrument
-	N, DF     float64
-	Level     float64
-	Estimable bool
-	Why       string
+	Model                    Model
+	Curb                     CurbForm
+	M, Q, O                  Value
+	Reference, ReferenceThin float64
+	Cov                      *mat.SymDense // of (M), (M, Q) or (M, Q, O)
+	J, JP                    float64       // over-identification and its chi-square probability
+	JDF                      int
+	F                        float64 // first stage, as in Instrument
+	N, DF                    float64
+	Level                    float64
+	Estimable                bool
+	Why                      string
 }
 
 // spanForOffset is how far shell means must range for the offset to lead.
@@ -154,7 +154,7 @@ func topKnots(k []float64) []float64 { return k[max(0, len(k)-2):] }
 // fit solves the system and words the outcome.
 func (s *system) fit(set *Settings) (*Fit, error) {
 	st := covariances(s.frames(), set.clip())
-	out := &Fit{Model: s.model, Curb: s.curb, Reference: s.ref2, Level: set.level(), N: s.used, J: math.NaN(), JP: math.NaN()}
+	out := &Fit{Model: s.model, Curb: s.curb, Reference: s.ref2, ReferenceThin: s.ref1, Level: set.level(), N: s.used, J: math.NaN(), JP: math.NaN()}
 	out.M, out.Q, out.O = noValue(), Value{}, Value{}
 	if s.model >= MQ {
 		out.Q = noValue()

@@ -31,6 +31,7 @@ func init() {
 		Types: map[string]reflect.Type{
 			"Accepted":        reflect.TypeOf((*analysis.Accepted)(nil)).Elem(),
 			"AcrossLine":      reflect.TypeOf((*analysis.AcrossLine)(nil)).Elem(),
+			"AngleBlocks":     reflect.TypeOf((*analysis.AngleBlocks)(nil)).Elem(),
 			"AngleInfluence":  reflect.TypeOf((*analysis.AngleInfluence)(nil)).Elem(),
 			"Answer":          reflect.TypeOf((*analysis.Answer)(nil)).Elem(),
 			"AxisResult":      reflect.TypeOf((*analysis.AxisResult)(nil)).Elem(),
