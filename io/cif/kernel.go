@@ -47,7 +47,8 @@ func (p *parser) readRows(l *list) (int, error) {
 	if p.version == "2.0" {
 		q.plain = &neverPlain
 	}
-	q.rows = text.Rows{Between: blanks, Pad: blanks, Word: q.plain}
+	q.rows = text.Rows{Between: blanks, Pad: blanks, Word: q.plain, Null: nullMarks}
+	defer func() { l.nulls += q.rows.Nulls }()
 	i, start, columns := p.i, p.i, len(l.plan.roles)
 	room := firstRoom
 	q.aim(room)
@@ -89,7 +90,10 @@ func (p *parser) readRows(l *list) (int, error) {
 	}
 }
 
-var blanks = text.Bytes(" \t\r\n")
+var (
+	blanks    = text.Bytes(" \t\r\n")
+	nullMarks = text.Bytes("?.")
+)
 
 // quick is the path of values in the usual form.
 type quick struct {
@@ -118,6 +122,8 @@ func (q *quick) aim(n int) {
 			rolePartiality: {Kind: text.ColumnValue, Value: r.Partiality},
 			roleFrame:      {Kind: text.ColumnCount, Count: r.Frame},
 			roleScaleGroup: {Kind: text.ColumnCount, Count: r.Frame, Code: q.scale.of},
+			roleDataSet:    {Kind: text.ColumnSame, Code: q.dataSet.of},
+			roleStatus:     {Kind: text.ColumnSame, Byte: q.status},
 		}[of]
 	}
 	q.rows.Columns = columns
@@ -148,11 +154,13 @@ func (q *quick) word(d []byte, i, n, c int) int {
 			return 0
 		}
 		q.dataSet.of[n] = q.dataSet.id(d[i:j])
+		q.rows.Columns[c].Remember(d[i:j], q.dataSet.of[n])
 	case roleStatus:
 		if j > i+1 {
 			return 0
 		}
 		q.setStatus(n, d[i:j])
+		q.rows.Columns[c].Remember(d[i:j], int32(q.status[n]))
 	default:
 		return 0
 	}

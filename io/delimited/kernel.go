@@ -74,7 +74,7 @@ func (r *reader) row(n int) (int, error) {
 
 // fast sets up the reading of rows in the usual form, which fixed widths are not.
 func (r *reader) fast() *text.Rows {
-	rows := &text.Rows{Lines: true, Word: wordStart}
+	rows := &text.Rows{Lines: true, Word: wordStart, Null: nullMarks}
 	switch r.delimiter {
 	case ' ':
 		rows.Between, rows.Pad = text.Bytes(" \t"), text.Bytes(" \t")
@@ -85,6 +85,8 @@ func (r *reader) fast() *text.Rows {
 	}
 	return rows
 }
+
+var nullMarks = text.Bytes("?.")
 
 // wordStart is what a field that is skipped may begin with when it is neither quoted
 // nor a comment.

@@ -1,12 +1,44 @@
 package text
 
 import (
+	"encoding/binary"
 	"math"
 	"strconv"
 )
 
 var powersOfTen = [...]float64{1, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12,
 	1e13, 1e14, 1e15, 1e16, 1e17, 1e18, 1e19, 1e20, 1e21, 1e22}
+
+var wholePowers = func() (p [20]uint64) {
+	p[0] = 1
+	for i := range p[1:] {
+		p[i+1] = 10 * p[i]
+	}
+	return p
+}()
+
+// digitRun returns the number that the digits from data[i] on make and how many there
+// are; the number is right up to 19 digits.
+func digitRun(data []byte, i int) (m uint64, n int) {
+	start := i
+	if i+window <= len(data) {
+		w := binary.LittleEndian.Uint64(data[i:i+8]) ^ zeros
+		length := runBits(w)
+		if length < 64 {
+			return digitsValue(w, length) * uint64(min(length, 1)), length / 8
+		}
+		m, i = digitsValue(w, 64), i+window
+	}
+	for i < len(data) {
+		d := data[i] - '0'
+		if d > 9 {
+			break
+		}
+		m = m*10 + uint64(d)
+		i++
+	}
+	return m, i - start
+}
 
 // FastFloat reads the decimal number that starts at data[i], i < len(data), and
 // returns it with the offset behind it. ok is false when there is none or when it
@@ -19,30 +51,16 @@ func FastFloat(data []byte, i int) (x float64, next int, ok bool) {
 		neg = c == '-'
 		i++
 	}
-	var m uint64
-	start := i
-	for i < len(data) {
-		d := data[i] - '0'
-		if d > 9 {
-			break
-		}
-		m = m*10 + uint64(d)
-		i++
-	}
-	digits, exp := i-start, 0
+	m, digits := digitRun(data, i)
+	i += digits
+	exp := 0
 	if i < len(data) && data[i] == '.' {
-		i++
-		start = i
-		for i < len(data) {
-			d := data[i] - '0'
-			if d > 9 {
-				break
-			}
-			m = m*10 + uint64(d)
-			i++
+		fraction, n := digitRun(data, i+1)
+		i, digits, exp = i+1+n, digits+n, -n
+		if digits > 19 {
+			return 0, i, false
 		}
-		exp = start - i
-		digits -= exp
+		m = m*wholePowers[n] + fraction
 	}
 	if digits == 0 || digits > 19 || m > 1<<53 {
 		return 0, i, false

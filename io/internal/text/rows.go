@@ -15,16 +15,34 @@ const (
 	ColumnIndex                   // an integer into Index
 	ColumnValue                   // a decimal number into Value
 	ColumnCount                   // an integer from 0 up into Count, and -1 into Code
+	ColumnSame                    // the word remembered: its number into Code or Byte
 )
 
 // Column is one column of Rows with the place its values go to: the slice that its
-// kind names, of length above the highest row read. Code may be nil.
+// kind names, of length above the highest row read. Code of a count may be nil.
 type Column struct {
 	Kind  ColumnKind
 	Index []int16
 	Value []float64
 	Count []int32
 	Code  []int32
+	Byte  []uint8
+	word  uint64 // remembered, with a mask of its bytes; mask 0 for none
+	mask  uint64
+	id    int32
+}
+
+// Remember makes ColumnSame take word, of at most seven bytes, as id; longer ones are
+// left to the caller.
+func (c *Column) Remember(word []byte, id int32) {
+	c.word, c.mask, c.id = 0, 0, id
+	if len(word) >= window {
+		return
+	}
+	for j, b := range word {
+		c.word |= uint64(b) << (8 * j)
+		c.mask |= 0xff << (8 * j)
+	}
 }
 
 // ByteSet is a set of bytes.
@@ -49,12 +67,14 @@ func Bytes(s string) *ByteSet {
 // another form is left as a whole, as is one whose indices are all 0; without, the end of a
 // line is as good as any blank, and Read may go on in the middle of a row. Word are
 // the bytes with which a skipped word may begin; it ends in front of a byte of
-// Between or, with Lines, of a line end.
+// Between or, with Lines, of a line end. Null are the bytes that alone stand for a
+// value that is not given: NaN, counted in Nulls.
 type Rows struct {
 	Columns       []Column
 	Between, Pad  *ByteSet
-	Word          *ByteSet
+	Word, Null    *ByteSet
 	Lines         bool
+	Nulls         int
 	final, inWord ByteSet
 	wide          bool // no byte that ends a word is above a blank
 }
@@ -107,7 +127,9 @@ func (k *Rows) Read(d []byte, i, n, end, c int) (offset, row, column int) {
 			case ColumnValue:
 				var x float64
 				if x, j = shortFloat(d, i, ends); j == 0 {
-					return k.stop(start, i, n, c)
+					if x, j = k.longFloat(d, i, ends); j == 0 {
+						return k.stop(start, i, n, c)
+					}
 				}
 				col.Value[n] = x
 			case ColumnIndex:
@@ -129,6 +151,17 @@ func (k *Rows) Read(d []byte, i, n, end, c int) (offset, row, column int) {
 				col.Count[n] = int32(digitsValue(w^zeros, length))
 				if col.Code != nil {
 					col.Code[n] = -1
+				}
+			case ColumnSame:
+				w := binary.LittleEndian.Uint64(d[i : i+8])
+				j = i + bits.Len64(col.mask)/8
+				if w&col.mask != col.word || col.mask == 0 || !ends[d[j]] {
+					return k.stop(start, i, n, c)
+				}
+				if col.Code != nil {
+					col.Code[n] = col.id
+				} else {
+					col.Byte[n] = uint8(col.id)
 				}
 			case ColumnSkip:
 				if j = k.skip(d, i); j == i || j >= len(d) || !ends[d[j]] {
@@ -220,9 +253,8 @@ func digitsValue(w uint64, length int) uint64 {
 	return w * (1 + 10000<<32) >> 32
 }
 
-// shortFloat is FastFloat for a number that ends in front of a byte of ends, in one
-// step when it has no more than eight characters without exponent; next is 0 for
-// any other.
+// shortFloat is FastFloat for a number of up to eight characters without exponent that
+// ends in front of a byte of ends, in one step; next is 0 for any other.
 func shortFloat(d []byte, i int, ends *ByteSet) (x float64, next int) {
 	w := binary.LittleEndian.Uint64(d[i : i+8])
 	minus := minusFirst(w)
@@ -240,13 +272,18 @@ func shortFloat(d []byte, i int, ends *ByteSet) (x float64, next int) {
 		w = w&front | w>>8&^front
 	}
 	if length == 0 || next >= len(d) || !ends[d[next]] {
-		return longFloat(d, i, ends)
+		return 0, 0
 	}
 	x = float64(digitsValue(w, length)) / powersOfTen[decimals&15]
 	return math.Float64frombits(math.Float64bits(x) | minus<<63), next
 }
 
-func longFloat(d []byte, i int, ends *ByteSet) (x float64, next int) {
+// longFloat is shortFloat for any number, and for nulls.
+func (k *Rows) longFloat(d []byte, i int, ends *ByteSet) (x float64, next int) {
+	if k.Null[d[i]] && ends[d[i+1]] {
+		k.Nulls++
+		return math.NaN(), i + 1
+	}
 	x, next, ok := FastFloat(d, i)
 	if !ok || next >= len(d) || !ends[d[next]] {
 		return 0, 0

@@ -11,7 +11,7 @@ import (
 
 // oneValue reads a single number with Rows, at the end of some text before it.
 func oneValue(s string) (x float64, ok bool) {
-	k := Rows{Columns: []Column{{Kind: ColumnValue, Value: make([]float64, 1)}}, Between: Bytes(" \n"), Pad: Bytes(" \n"), Word: &ByteSet{}}
+	k := Rows{Columns: []Column{{Kind: ColumnValue, Value: make([]float64, 1)}}, Between: Bytes(" \n"), Pad: Bytes(" \n"), Word: &ByteSet{}, Null: &ByteSet{}}
 	k.Prepare()
 	_, n, _ := k.Read([]byte("x\n"+s+" the rest of the text is here"), 2, 0, 1, 0)
 	return k.Columns[0].Value[0], n == 1
@@ -52,7 +52,7 @@ func TestRowsValuesAreExact(t *testing.T) {
 
 // All integers of up to seven characters that may be an index, and what lies beside.
 func TestRowsIndices(t *testing.T) {
-	k := Rows{Columns: []Column{{Kind: ColumnIndex, Index: make([]int16, 1)}}, Between: Bytes(" \n"), Pad: Bytes(" \n"), Word: &ByteSet{}}
+	k := Rows{Columns: []Column{{Kind: ColumnIndex, Index: make([]int16, 1)}}, Between: Bytes(" \n"), Pad: Bytes(" \n"), Word: &ByteSet{}, Null: &ByteSet{}}
 	k.Prepare()
 	read := func(s string) (int, bool) {
 		_, n, _ := k.Read([]byte(s+" the rest of the text is here"), 0, 0, 1, 0)
@@ -82,7 +82,7 @@ func TestRowsStop(t *testing.T) {
 	const tail = "\n# at least sixteen bytes of something else"
 	text := "7 abc 1.5\n8 def ? 9 'g' 2.5" + tail
 	k := Rows{Columns: []Column{{Kind: ColumnCount, Count: make([]int32, 9), Code: make([]int32, 9)}, {Kind: ColumnSkip}, {Kind: ColumnValue, Value: make([]float64, 9)}},
-		Between: Bytes(" \n"), Pad: Bytes(" \n"), Word: Bytes("abcdef")}
+		Between: Bytes(" \n"), Pad: Bytes(" \n"), Word: Bytes("abcdef"), Null: &ByteSet{}}
 	k.Prepare()
 	var stops []string
 	i, n, c := 0, 0, 0
@@ -120,6 +120,33 @@ func TestRowsStop(t *testing.T) {
 	}
 }
 
+// Nulls and a word that repeats.
+func TestRowsNullsAndWords(t *testing.T) {
+	k := Rows{Columns: []Column{{Kind: ColumnSame, Code: make([]int32, 9)}, {Kind: ColumnValue, Value: make([]float64, 9)}, {Kind: ColumnSame, Byte: make([]uint8, 9)}},
+		Between: Bytes(" \n"), Pad: Bytes(" \n"), Word: &ByteSet{}, Null: Bytes("?.")}
+	k.Prepare()
+	k.Columns[0].Remember([]byte("ab"), 7)
+	k.Columns[2].Remember([]byte("o"), 3)
+	const text = "ab 1.5 o\nab ? o\nab . o\nab .5 o\nabc 1 o\nab ?5 o\nab 1 oo\nab 1 x and sixteen bytes more"
+	if i, n, c := k.Read([]byte(text), 0, 0, 9, 0); n != 4 || c != 0 || text[i:i+3] != "abc" || k.Nulls != 2 {
+		t.Errorf("stopped at %q, row %d, column %d, %d nulls", text[i:], n, c, k.Nulls)
+	}
+	v := k.Columns[1].Value
+	if k.Columns[0].Code[3] != 7 || k.Columns[2].Byte[3] != 3 || v[0] != 1.5 || !math.IsNaN(v[1]) || !math.IsNaN(v[2]) || v[3] != .5 {
+		t.Errorf("%+v", k.Columns)
+	}
+	for _, stop := range []string{"ab ?5", "ab 1 oo", "ab 1 x"} {
+		at := strings.Index(text, stop)
+		if _, n, c := k.Read([]byte(text), at, 0, 1, 0); n != 0 || c == 0 {
+			t.Errorf("%s: row %d column %d", stop, n, c)
+		}
+	}
+	k.Columns[0].Remember([]byte("eightlong"), 7)
+	if _, n, c := k.Read([]byte("eightlong 1 o and sixteen bytes more"), 0, 0, 1, 0); n != 0 || c != 0 {
+		t.Error("a long word was taken")
+	}
+}
+
 // FuzzRows: whatever the bytes, what is taken is what strconv makes of the same word,
 // and what is in the usual form is taken.
 func FuzzRows(f *testing.F) {
@@ -129,7 +156,7 @@ func FuzzRows(f *testing.F) {
 	f.Fuzz(func(t *testing.T, data []byte) {
 		const room = 64
 		index, value := make([]int16, room), make([]float64, room)
-		k := Rows{Columns: []Column{{Kind: ColumnIndex, Index: index}, {Kind: ColumnValue, Value: value}}, Between: Bytes(" \t\r\n"), Pad: Bytes(" \t\r\n"), Word: &ByteSet{}}
+		k := Rows{Columns: []Column{{Kind: ColumnIndex, Index: index}, {Kind: ColumnValue, Value: value}}, Between: Bytes(" \t\r\n"), Pad: Bytes(" \t\r\n"), Word: &ByteSet{}, Null: &ByteSet{}}
 		k.Prepare()
 		text := append(append([]byte(nil), data...), "  and sixteen bytes more"...)
 		words := strings.FieldsFunc(string(text), func(r rune) bool { return strings.ContainsRune(" \t\r\n", r) })
