@@ -131,32 +131,7 @@ func PauleMandel(y, se []float64) (float64, error) {
 	if err := checkPairs(y, se); err != nil {
 		return 0, err
 	}
-	df := float64(len(y) - 1)
-	q := func(tau2 float64) float64 {
-		mu := weightedMean(y, se, tau2)
-		var s float64
-		for i := range y {
-			d := y[i] - mu
-			s += d * d / (se[i]*se[i] + tau2)
-		}
-		return s
-	}
-	if q(0) <= df {
-		return 0, nil
-	}
-	lo, hi := 0.0, 1.0
-	for q(hi) > df {
-		hi *= 2
-	}
-	for range 200 {
-		mid := (lo + hi) / 2
-		if q(mid) > df {
-			lo = mid
-		} else {
-			hi = mid
-		}
-	}
-	return (lo + hi) / 2, nil
+	return whereQ(y, se, float64(len(y)-1)), nil
 }
 
 // Signs counts how many estimates lie on the side of the majority, the
