@@ -3,6 +3,7 @@ package analysis
 import (
 	"context"
 	"math"
+	"slices"
 	"strings"
 	"testing"
 
@@ -181,5 +182,74 @@ func TestUnlikeTheRest(t *testing.T) {
 	}
 	if !warned {
 		t.Errorf("no warning: %+v", spoiled.Warnings)
+	}
+}
+
+// Lists that were cut or clipped before they came are named, those that were not are
+// not: the change that was made is the oracle.
+func TestCutListsAreNamed(t *testing.T) {
+	p := simulate.Sound(3)
+	p.DMin = 1.4
+	p.Crystals = p.Crystals[:2]
+	for i := range p.Crystals {
+		p.Crystals[i].Positions = p.Crystals[i].Positions[:2]
+		for j := range p.Crystals[i].Positions {
+			p.Crystals[i].Positions[j].Counts = 20 // weak enough that noise leaves negatives
+		}
+	}
+	for _, c := range []struct {
+		name, want string
+		change     func(*intensity.Columns) *intensity.Columns
+	}{
+		{"sound", "", func(c *intensity.Columns) *intensity.Columns { return c }},
+		{"negatives removed", "negatives look removed", func(c *intensity.Columns) *intensity.Columns {
+			keep := make([]bool, c.Len())
+			for r := range keep {
+				keep[r] = c.I[r] > 0
+			}
+			return c.Select(keep)
+		}},
+		{"negatives set to zero", "stops sharply at 0", func(c *intensity.Columns) *intensity.Columns {
+			for r := range c.I {
+				c.I[r] = math.Max(c.I[r], 0)
+			}
+			return c
+		}},
+		{"below three sigma removed", "stops sharply at 3", func(c *intensity.Columns) *intensity.Columns {
+			keep := make([]bool, c.Len())
+			for r := range keep {
+				keep[r] = c.I[r] > 3*c.Sigma[r]
+			}
+			return c.Select(keep)
+		}},
+		{"clipped", "share the largest intensity", func(c *intensity.Columns) *intensity.Columns {
+			sorted := slices.Clone(c.I)
+			slices.Sort(sorted)
+			for r := range c.I {
+				c.I[r] = math.Min(c.I[r], sorted[99*len(sorted)/100])
+			}
+			return c
+		}},
+	} {
+		series := seriesOf(t, p)
+		rows := &series.Crystals[1].Positions[1].Rows
+		*rows = c.change(*rows)
+		s, err := New(series, nil)
+		if err != nil {
+			t.Fatal(err)
+		}
+		table, err := s.IntakeTable(context.Background())
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, r := range table {
+			want := ""
+			if r.Crystal == "L2" && r.Position == series.Crystals[1].Positions[1].Name {
+				want = c.want
+			}
+			if (want == "") != (r.Truncated == "") || !strings.Contains(r.Truncated, want) {
+				t.Errorf("%s: %s/%s: %q", c.name, r.Crystal, r.Position, r.Truncated)
+			}
+		}
 	}
 }

@@ -244,3 +244,156 @@ func TestWrongSigmasOfFiles(t *testing.T) {
 		}
 	}
 }
+
+// cifOf writes a small list with a cell.
+func cifOf(cell, group string) string {
+	var b strings.Builder
+	b.WriteString("data_x\n")
+	for k, name := range []string{"length_a", "length_b", "length_c", "angle_alpha", "angle_beta", "angle_gamma"} {
+		fmt.Fprintf(&b, "_cell_%s %s\n", name, strings.Fields(cell)[k])
+	}
+	fmt.Fprintf(&b, "_space_group_name_H-M_alt '%s'\n", group)
+	b.WriteString("loop_\n_diffrn_refln_index_h\n_diffrn_refln_index_k\n_diffrn_refln_index_l\n_diffrn_refln_intensity_net\n_diffrn_refln_intensity_u\n")
+	for h := range 4 {
+		for k := range 4 {
+			for l := range 4 {
+				if h+k+l > 0 {
+					fmt.Fprintf(&b, "%d %d %d %d 1.0\n", h, k, l, 10+h+3*k+7*l)
+				}
+			}
+		}
+	}
+	return b.String()
+}
+
+// A list on axes of another order is refused with the change that mends it, and with
+// that change its indices, its cell and its space group go together with the rest: P n m a
+// is P b n m on the axes c, a, b (International Tables A, table 1.5.4.4).
+func TestAxesOfAnotherOrder(t *testing.T) {
+	text := strings.NewReplacer("thin.txt", "thin.cif", "thick.txt", "thick.cif", "[cell]\na = 10.0\nb = 12.0\nc = 15.0\n", "", "space_group = \"P 21 21 21\"\n", "",
+		"[columns]\norder = [\"h\", \"k\", \"l\", \"intensity\", \"sigma\", \"phi\", \"frame\"]\n", "").Replace(good)
+	files := map[string]string{"thin.cif": cifOf("10 12 15 90 90 90", "P n m a"), "thick.cif": cifOf("15.1 10 12 90 90 90", "P b n m")}
+	path := folder(t, text, files)
+	_, err := ReadSeries(path)
+	if err == nil || !strings.Contains(err.Error(), `thick.cif: its cell differs`) || !strings.Contains(err.Error(), `reindex = "k,l,h"`) || !strings.Contains(err.Error(), "series.toml:12") {
+		t.Fatalf("%v", err)
+	}
+	rewrite(t, path, `files = ["thick.cif"]`, "files = [\"thick.cif\"]\nreindex = \"k,l,h\"")
+	s, err := ReadSeries(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	thick := &s.Crystals[0].Positions[1]
+	if c := thick.Cell; c.A != 10 || c.B != 12 || c.C != 15.1 || thick.Sources[0].Cell != c {
+		t.Errorf("cell %v", c)
+	}
+	if r := thick.Rows; r.H[5] != 1 || r.K[5] != 2 || r.L[5] != 0 || r.I[5] != 10+3+14 { // was 0 1 2
+		t.Errorf("row %d %d %d %g", r.H[5], r.K[5], r.L[5], r.I[5])
+	}
+	if s.Group.HM() != "P n m a" || len(s.Warnings) > 0 {
+		t.Errorf("%s, %+v", s.Group.HM(), s.Warnings)
+	}
+	// Were the first file the one that is changed, its group would be the series'.
+	swapped := folder(t, strings.Replace(text, `files = ["thin.cif"]`, "files = [\"thin.cif\"]\nreindex = \"k,l,h\"", 1),
+		map[string]string{"thin.cif": files["thick.cif"], "thick.cif": files["thin.cif"]})
+	if s, err = ReadSeries(swapped); err != nil || s.Group.HM() != "P n m a" || s.Cell.C != 15.1 {
+		t.Errorf("%v, %+v", err, s)
+	}
+	// The agreement stands in the table: 0.1 of 15.05 A.
+	study, err := analysis.New(*s, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	d, err := study.IntakeDetails(context.Background())
+	if err != nil {
+		t.Fatal(err)
+	}
+	if c := d.Positions[1].Cell; !c.Given || c.Length != "c" || math.Abs(c.LengthPercent-100*0.1/15.05) > 1e-9 {
+		t.Errorf("%+v", c)
+	}
+}
+
+// Angles in another unit, sense or zero are brought to degrees by the manifest.
+func TestAnglesOfTheManifest(t *testing.T) {
+	s, err := ReadSeries(folder(t, strings.Replace(good, `files = ["thick.txt"]`, "files = [\"thick.txt\"]\nangle_factor = -2.0\nangle_shift_deg = 5.5", 1), nil))
+	if err != nil {
+		t.Fatal(err)
+	}
+	thin, thick := s.Crystals[0].Positions[0].Rows.Phi, s.Crystals[0].Positions[1].Rows.Phi
+	for r := range thin {
+		if thick[r] != 5.5-2*thin[r] {
+			t.Fatalf("row %d: %g became %g", r, thin[r], thick[r])
+		}
+	}
+	for _, c := range []struct{ key, want string }{
+		{"angle_factor = nan", "is no factor"}, {"angle_shift_deg = inf", "is no angle"},
+	} {
+		_, err := ReadSeries(folder(t, strings.Replace(good, `files = ["thick.txt"]`, "files = [\"thick.txt\"]\n"+c.key, 1), nil))
+		if err == nil || !strings.Contains(err.Error(), c.want) || !strings.Contains(err.Error(), "series.toml:20") {
+			t.Errorf("%s: %v", c.key, err)
+		}
+	}
+	bare := strings.NewReplacer(`"sigma", "phi", "frame"]`, `"sigma", "skip", "skip"]`, `files = ["thick.txt"]`, "files = [\"thick.txt\"]\nangle_factor = 2.0").Replace(good)
+	if _, err := ReadSeries(folder(t, bare, nil)); err == nil || !strings.Contains(err.Error(), "have no rotation angles") {
+		t.Errorf("no angles: %v", err)
+	}
+}
+
+// What exclude sets aside is counted by reason, and nothing else goes. The cell is
+// 10 12 15, so that d of h00 is 10/h: counts by hand over the list of 6 x 6 x 6 indices.
+func TestExcludeIsCounted(t *testing.T) {
+	text := strings.Replace(good, `files = ["thick.txt"]`, "files = [\"thick.txt\"]\nexclude = { frames = [4, 20], shells_A = [[4.9, 5.1]], ice = true }", 1)
+	s, d := details(t, folder(t, text, nil))
+	want := map[string]int{}
+	for h := range 6 {
+		for k := range 6 {
+			for l := range 6 {
+				if h+k+l == 0 {
+					continue
+				}
+				space := 1 / math.Sqrt(float64(h*h)/100+float64(k*k)/144+float64(l*l)/225)
+				ring := false
+				for _, at := range []float64{3.90, 3.67, 3.44, 2.67, 2.25, 2.07, 1.95, 1.92} {
+					ring = ring || math.Abs(space-at) < 0.02
+				}
+				switch frame := h*20 + k*2; {
+				case frame == 4 || frame == 20:
+					want["frame"]++
+				case space >= 4.9 && space <= 5.1:
+					want["shell"]++
+				case ring:
+					want["ice"]++
+				default:
+					want["kept"]++
+				}
+			}
+		}
+	}
+	if want["frame"] != 12 || want["shell"] == 0 || want["ice"] == 0 {
+		t.Fatalf("the example excludes nothing: %v", want)
+	}
+	got := map[string]int{}
+	for _, m := range d.Remarks {
+		if m.Kind != "excluded" {
+			continue
+		}
+		if m.Crystal+"/"+m.Position != "L1/thick" {
+			t.Errorf("%+v", m)
+		}
+		for _, reason := range []string{"frame", "shell", "ice"} {
+			if strings.Contains(m.Why, reason) {
+				got[reason] = m.Count
+			}
+		}
+	}
+	r := d.Positions[1]
+	got["kept"] = r.Observations
+	for reason, n := range want {
+		if got[reason] != n {
+			t.Errorf("%s: %d, want %d", reason, got[reason], n)
+		}
+	}
+	if r.Rows != 215 || r.Excluded != want["frame"]+want["shell"]+want["ice"] || d.Positions[0].Observations != 215 || s.Series.Crystals[0].Positions[1].Rows.Len() != 215 {
+		t.Errorf("%+v", r)
+	}
+}
