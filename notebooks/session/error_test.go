@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"strings"
 	"testing"
 )
 
@@ -70,4 +71,16 @@ func TestCheck(t *testing.T) {
 	if e := caught(fmt.Errorf("w: %w", step)); e != step {
 		t.Errorf("%+v", e)
 	}
+}
+
+// A notebook that was moved away from its series says how to name one.
+func TestOpenWithoutASeries(t *testing.T) {
+	defer func() {
+		e, ok := recover().(*Error)
+		if !ok || e.Step != "reading" || !strings.Contains(e.Error(), "none.toml") || !strings.Contains(e.Remedy, "--set series=PATH") {
+			t.Errorf("%v", e)
+		}
+	}()
+	Open("none.toml")
+	t.Error("a manifest that is not there was opened")
 }

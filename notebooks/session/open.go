@@ -58,6 +58,9 @@ func OpenWith(path string, o Options) *Session {
 	s := &Session{Path: path, sofar: map[string]*analysis.Result{}, out: os.Getenv(OutEnv), step: "reading"}
 	Report(Progress{Step: "reading", Text: filepath.Base(path)})
 	series, err := manifest.ReadSeries(path)
+	if err != nil && !exists(path) {
+		panic(&Error{Step: "reading", Err: err, Remedy: "It was looked for in the working folder and those above. Write the path of your manifest into the cell of parameters, or give --set series=PATH."})
+	}
 	if err != nil {
 		panic(&Error{Step: "reading", Err: err})
 	}
@@ -70,6 +73,11 @@ func OpenWith(path string, o Options) *Session {
 	}
 	s.Title = series.Title
 	return s
+}
+
+func exists(path string) bool {
+	_, err := os.Stat(path)
+	return err == nil
 }
 
 func locate(path string) string {

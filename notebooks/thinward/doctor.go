@@ -19,7 +19,10 @@ func (a *app) doctor() *cobra.Command {
 	return &cobra.Command{
 		Use:   "doctor",
 		Short: "Check Go, kernel, Jupyter, browser and write access, and run one cell",
-		Args:  cobra.NoArgs,
+		Long: `Checks what thinward needs on this machine and says what is missing. FAIL is
+needed, none is only wanted for Jupyter pages and for looking at reports.`,
+		Example: "  thinward doctor",
+		Args:    cobra.NoArgs,
 		RunE: func(c *cobra.Command, _ []string) error {
 			ok := true
 			say := func(good, needed bool, what, detail string) {

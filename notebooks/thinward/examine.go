@@ -171,7 +171,7 @@ func (a *app) runNotebook(ctx context.Context, m *meter, nb *runner.Notebook, bi
 			case e.Kind == runner.CellProgress && e.Progress != nil:
 				m.at(e.Progress.Step, e.Progress.Index, e.Progress.Steps, e.Progress.Done, e.Progress.Total)
 			case e.Kind == runner.CellStarted && m.step == "":
-				m.at("notebook", 0, 0, e.Cell, e.Cells)
+				m.at(startStep, 0, 0, e.Cell, e.Cells)
 			}
 		},
 	})

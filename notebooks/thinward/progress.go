@@ -43,6 +43,9 @@ func utf8Terminal() bool {
 	return false
 }
 
+// startStep is shown on a terminal until the notebook names its first step.
+const startStep = "starting"
+
 // at says that a step is as far as done of total; index and steps number it, 0
 // for none.
 func (m *meter) at(step string, index, steps, done, total int) {
@@ -85,7 +88,10 @@ func (m *meter) finish() {
 	if m.terminal {
 		fmt.Fprint(m.w, "\r\x1b[K")
 	}
-	fmt.Fprintf(m.w, "%s%-14s %6.1f s\n", m.index, m.step, time.Since(m.begin).Seconds())
+	// The start of the kernel is no step of the analysis.
+	if m.step != startStep {
+		fmt.Fprintf(m.w, "%s%-14s %6.1f s\n", m.index, m.step, time.Since(m.begin).Seconds())
+	}
 	m.step = ""
 }
 
