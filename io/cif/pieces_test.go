@@ -2,6 +2,9 @@ package cif
 
 import (
 	"fmt"
+	"maps"
+	"math/rand/v2"
+	"slices"
 	"strings"
 	"testing"
 
@@ -23,18 +26,8 @@ func TestPieces(t *testing.T) {
 		texts = append(texts, e.text)
 	}
 	for _, s := range texts {
-		whole, want := Parse("f.cif", []byte(s))
 		for step := 1; step < 12; step++ {
-			f, err := parse("f.cif", text.InPieces("f.cif", []byte(s), step))
-			if (err == nil) != (want == nil) || err != nil && err.Error() != want.Error() {
-				t.Fatalf("%q in pieces of %d: got %v, want %v", s, step, err, want)
-			}
-			if err != nil {
-				continue
-			}
-			if diff := cmp.Diff(shape(whole), shape(f)); diff != "" {
-				t.Fatalf("%q in pieces of %d: %s", s, step, diff)
-			}
+			samePieces(t, s, step)
 		}
 	}
 }
@@ -59,6 +52,58 @@ func shape(f *File) string {
 	}
 	fmt.Fprintln(&b, f.Warnings)
 	return b.String()
+}
+
+// Lists of all kinds of columns and forms of values, one in ten of them bad, read the
+// same on the fast path and, in pieces too short for it, through the lexer.
+func TestFastPathReadsAsTheLexer(t *testing.T) {
+	r := rand.New(rand.NewPCG(21, 22))
+	indices := []string{"1", "-12", "0", "+3", "2.0", "'4'", "?", "00012", "-7\t", "32767"}
+	numbers := []string{"1.5", "-1234.567", "12345678", "123456789.25", "1e3", "-1.5E-2", ".5", "7.", "?", ".", "'2.5'", "3(2)", "+4", "0.000123456789", "-0", "5 # five\n"}
+	words := []string{"a", "abc", "longerthanseven", "?", ".", "'b c'", "a1", "o", "x", "-", "<"}
+	frames := []string{"1", "12", "12%3", "13%4", "0", "?", "low", "99999999", "123456789"}
+	bad := []string{"x", "1.2.3", "[", "1,5", "_n", "loop_", "\"", "data_", "\x01", "1e999"}
+	kinds := map[string][]string{"index_h": indices, "index_k": indices, "index_l": indices, "intensity_net": numbers, "intensity_sigma": numbers, "intensity_meas": numbers,
+		"pdbx_scan_angle": numbers, "pdbx_image_id": frames[:2], "scale_group_code": frames, "diffrn_id": words, "id": words, "include_status": words[7:], "counts_peak": numbers,
+		"pdbx_I_plus": numbers, "pdbx_I_plus_sigma": numbers, "pdbx_I_minus": numbers, "pdbx_I_minus_sigma": numbers}
+	items := slices.Sorted(maps.Keys(kinds))
+	for range 400 {
+		names := []string{"index_h", "index_k", "index_l"}
+		for _, item := range items {
+			if !slices.Contains(names, item) && r.IntN(2) == 0 {
+				names = append(names, item)
+			}
+		}
+		r.Shuffle(len(names), func(i, j int) { names[i], names[j] = names[j], names[i] })
+		category := []string{"_diffrn_refln.", "_refln."}[r.IntN(2)]
+		text, spoiled := loopOf(category+strings.Join(names, " "+category), ""), r.IntN(10) == 0
+		for range r.IntN(30) {
+			for _, item := range names {
+				from := kinds[item]
+				if spoiled && r.IntN(100) == 0 {
+					from = bad
+				}
+				text += from[r.IntN(len(from))] + []string{" ", " ", " ", "\n", "  \r\n"}[r.IntN(5)]
+			}
+		}
+		samePieces(t, text, 5)
+	}
+}
+
+// samePieces compares what text gives as a whole and in pieces.
+func samePieces(t *testing.T, s string, step int) {
+	t.Helper()
+	whole, want := Parse("f.cif", []byte(s))
+	f, err := parse("f.cif", text.InPieces("f.cif", []byte(s), step))
+	if (err == nil) != (want == nil) || err != nil && err.Error() != want.Error() {
+		t.Fatalf("%q in pieces of %d: got %v, want %v", s, step, err, want)
+	}
+	if err != nil {
+		return
+	}
+	if diff := cmp.Diff(shape(whole), shape(f)); diff != "" {
+		t.Fatalf("%q in pieces of %d: %s", s, step, diff)
+	}
 }
 
 func TestGzipReadsAsPlain(t *testing.T) {
