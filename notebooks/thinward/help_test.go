@@ -31,6 +31,7 @@ func argsOf(line string) []string {
 func understood(t *testing.T, where, line string) {
 	t.Helper()
 	root := (&app{out: io.Discard, err: io.Discard}).root()
+	root.InitDefaultCompletionCmd()
 	args := argsOf(line)
 	if len(args) == 0 || args[0] != "thinward" {
 		t.Errorf("%s: %q is no call of thinward", where, line)
@@ -45,6 +46,9 @@ func understood(t *testing.T, where, line string) {
 	c.InitDefaultVersionFlag()
 	if err := c.ParseFlags(rest); err != nil {
 		t.Errorf("%s: %q: %v", where, line, err)
+		return
+	}
+	if help, err := c.Flags().GetBool("help"); err == nil && help {
 		return
 	}
 	if c.Args != nil && c != root {
