@@ -98,6 +98,11 @@ func TestSigmasByHand(t *testing.T) {
 	floatcmp.Check(t, "value", s.SameValue, 3, 0, 0)
 	floatcmp.Check(t, "highest", s.Highest, 8.0/3, 1e-15, 0)
 	floatcmp.Check(t, "middle", s.Middle, 5.0/4, 1e-15, 0)
+	// Of three observations within the window two are a pair, the third is left.
+	three := &Columns{H: []int16{1, 1, 1}, K: make([]int16, 3), L: make([]int16, 3), I: []float64{1, 2, 3}, Sigma: []float64{1, 1, 1}, Phi: []float64{0, 1, 2}}
+	if s := CheckSigmas([]int32{0, 0, 0}, three); s.Pairs != 1 {
+		t.Errorf("three observations: %+v", s)
+	}
 	c.Phi = nil
 	if s = CheckSigmas([]int32{0, 0, 1, 1, 2, 2, 3}, c); s.Pairs != 3 || !s.AnyAngle {
 		t.Errorf("without angles every pair counts: %+v", s)
