@@ -299,6 +299,9 @@ func answerThickness(r *Result) *Answer {
 		a.Detail = append(a.Detail, fmt.Sprintf("between %s, by the step in thickness of each: %s, with %s where the step is 0", plural(len(x.Crystals), "crystal"),
 			span(x.Slope.Value, x.Slope.Lo, x.Slope.Hi), span(x.Intercept.Value, x.Intercept.Lo, x.Intercept.Hi)))
 	}
+	if text := withinText(t.Tilt); text != "" {
+		a.Detail = append(a.Detail, text)
+	}
 	switch {
 	case positions < 3:
 		a.Verdict = VerdictUnsure
@@ -323,6 +326,20 @@ func plural(n int, thing string) string {
 		return "1 " + thing
 	}
 	return fmt.Sprintf("%d %ss", n, thing)
+}
+
+// withinText says what tilt within one position adds; empty when it is known nowhere.
+func withinText(list []TiltSlope) string {
+	var parts []string
+	for i := range list {
+		if x := &list[i]; !math.IsNaN(x.Slope.Value) {
+			parts = append(parts, fmt.Sprintf("%s %s, between positions %s", x.Crystal, span(x.Slope.Value, x.Slope.Lo, x.Slope.Hi), span(x.Between.Value, x.Between.Lo, x.Between.Hi)))
+		}
+	}
+	if len(parts) == 0 {
+		return ""
+	}
+	return "within the thick position, at high against low tilt and by m alone (no curb, no offset): " + strings.Join(parts, "; ")
 }
 
 // straight is the p-value of the points of all crystals against their lines through the

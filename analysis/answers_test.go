@@ -231,6 +231,14 @@ func TestAnswerThicknessAsksForALine(t *testing.T) {
 		t.Errorf("%q", a.Detail)
 	}
 	line.Why = "too few"
+	tilt := []TiltSlope{{Crystal: "L1", Slope: Interval{Value: 0.061, Lo: 0.05, Hi: 0.07}, Between: Interval{Value: 0.072, Lo: 0.06, Hi: 0.08}}, {Crystal: "L2", Slope: none(), Why: "no rotation angles"}}
+	tilted := answerThickness(&Result{Thickness: &ThicknessResult{Slope: flat.Slope, Lines: []ThicknessLine{flat}, Tilt: tilt}})
+	if last := tilted.Detail[len(tilted.Detail)-1]; len(tilted.Detail) != 2 || !strings.Contains(last, "L1 0.061 (0.050 to 0.070), between positions 0.072") || strings.Contains(last, "L2") {
+		t.Errorf("%q", tilted.Detail)
+	}
+	if text := withinText(tilt[1:]); text != "" {
+		t.Error(text)
+	}
 	if a := answerThickness(&Result{Thickness: &ThicknessResult{Slope: flat.Slope, Lines: []ThicknessLine{flat}, Across: line}}); len(a.Detail) != 1 {
 		t.Errorf("%q", a.Detail)
 	}

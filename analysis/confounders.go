@@ -11,7 +11,6 @@ import (
 	"thinward/analysis/intensity"
 	"thinward/analysis/internal/parallel"
 	"thinward/analysis/resample"
-	"thinward/analysis/size"
 )
 
 // confounders are the checks that need more than a look at numbers that are
@@ -119,63 +118,6 @@ func (s *Study) crossings(i, j int) *evidence.Crossings {
 		c.Signal[r] = c.Scale[r] * math.Max(sc.Fit.J[u], 0)
 	}
 	return c
-}
-
-// tiltShare is the share of the observations of a position that count as of low, and
-// as of high, tilt.
-const tiltShare = 0.4
-
-// tiltOf is the angle in degrees, 0 to 90, between the beam and the normal of a slab that
-// faces the beam at zero: seen from behind a slab is as thick as from before.
-func tiltOf(phi, zero float64) float64 {
-	d := math.Mod(math.Abs(phi-zero), 180)
-	return math.Min(d, 180-d)
-}
-
-// tilt compares equivalents at low and at high tilt within the thick position.
-func (s *Study) tilt(ctx context.Context, x *Compared) (evidence.Finding, error) {
-	dark := func(why string) (evidence.Finding, error) {
-		return evidence.Finding{Value: math.NaN(), Verdict: evidence.NotKnown, Why: why}, nil
-	}
-	p := &s.Series.Crystals[x.Contrast.ThickCrystal].Positions[x.Contrast.Thick]
-	switch {
-	case !p.HasTiltZero:
-		return dark("tilt_zero_deg, the angle at which the slab faces the beam, is not given")
-	case x.thick.Phi == nil:
-		return dark("no rotation angles")
-	}
-	zero := s.intake.Positions[x.Contrast.ThickCrystal][x.Contrast.Thick].Turn.Of(p.TiltZeroDeg)
-	tilt := make([]float64, len(x.thick.Phi))
-	for o, phi := range x.thick.Phi {
-		tilt[o] = tiltOf(phi, zero)
-	}
-	sorted := slices.Clone(tilt)
-	slices.Sort(sorted)
-	n := len(sorted)
-	low, high := sorted[int(tiltShare*float64(n))], sorted[int((1-tiltShare)*float64(n))]
-	var a, b []int
-	for o, v := range tilt {
-		switch {
-		case v <= low:
-			a = append(a, o)
-		case v >= high:
-			b = append(b, o)
-		}
-	}
-	r := s.newReading(x)
-	if r.others == nil {
-		r.third = intensity.Merge(r.cat.Len(), x.thin)
-	}
-	r.model = size.M
-	pairs, err := r.pair(ctx, scaledRows(x.thick, a), scaledRows(x.thick, b), difference.MatchNever)
-	if err != nil {
-		return dark("too few reflections have equivalents at low and at high tilt")
-	}
-	v, err := r.ofPairs(ctx, pairs)
-	if err != nil {
-		return dark(err.Error())
-	}
-	return evidence.TiltOf(v.M.Value, v.M.SE, pairs.Len()), nil
 }
 
 func (s *Study) rings(x *Compared) []evidence.Ring {

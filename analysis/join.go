@@ -46,6 +46,9 @@ func (s *Study) joinStep(ctx context.Context) error {
 		return err
 	}
 	j.thickness.Across = s.separate()
+	if j.thickness.Tilt, err = s.withinPositions(ctx); err != nil {
+		return err
+	}
 	s.pageTrend(j)
 	s.pooled = j
 	return nil

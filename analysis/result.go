@@ -167,7 +167,9 @@ type ThicknessResult struct {
 	Slope Interval        `json:"slope_per_100nm"`
 	// Across is the line through separate crystals.
 	Across *AcrossLine `json:"across_crystals,omitempty"`
-	Why    string      `json:"why,omitempty"`
+	// Tilt is the growth within one position of each crystal.
+	Tilt []TiltSlope `json:"within_a_position,omitempty"`
+	Why  string      `json:"why,omitempty"`
 }
 
 // ThicknessLine is one crystal's line through its positions. Rising is the non-decreasing

@@ -177,6 +177,17 @@ func TestCurbBesideTwoBeams(t *testing.T) {
 	}
 }
 
+// A crystal whose points fall gets a second, dashed line; one whose points rise does not.
+func TestThicknessShowsWhatNeverFalls(t *testing.T) {
+	r := made()
+	r.Thickness.Lines = []analysis.ThicknessLine{{Crystal: "L1", T: []float64{140, 220, 300}, Mu: []float64{0, 0.1, 0.05}, MuSE: []float64{0, 0.02, 0.02}, Rising: []float64{0, 0.075, 0.075}},
+		{Crystal: "L2", T: []float64{140, 220, 300}, Mu: []float64{0, 0.05, 0.1}, MuSE: []float64{0, 0.02, 0.02}, Rising: []float64{0, 0.05, 0.1}}}
+	v := thicknessFigure(r)
+	if !strings.Contains(v.HTML, "L1, nearest that never falls") || strings.Contains(v.HTML, "L2, nearest") || strings.Count(v.Plain, "0.075") != 2 {
+		t.Error(v.Plain)
+	}
+}
+
 func TestPrimaryComesFirst(t *testing.T) {
 	r := made()
 	r.Contrasts[0], r.Contrasts[1] = r.Contrasts[1], r.Contrasts[0]

@@ -105,8 +105,8 @@ func (s *Session) ThicknessFigure() *View { return thicknessFigure(s.upTo(stepCr
 
 func thicknessFigure(r *analysis.Result) *View {
 	fv := &figureView{title: "Growth with thickness", empty: "The series does not allow a line over thickness.",
-		caption: "Lines that rise from the thinnest position of each crystal, where \u03bc is zero by definition, say that the exchange grows with thickness; lines that lie on each other say that the crystals agree."}
-	g := newGrid("Growth with thickness", "crystal", "thickness (nm)", "\u03bc", "95 % interval")
+		caption: "Lines that rise from the thinnest position of each crystal, where \u03bc is zero by definition, say that the exchange grows with thickness; lines that lie on each other say that the crystals agree. Where the points of a crystal fall somewhere, a dashed line is the nearest one that never falls."}
+	g := newGrid("Growth with thickness", "crystal", "thickness (nm)", "\u03bc", "95 % interval", "nearest that never falls")
 	if r.Thickness == nil {
 		return fv.view()
 	}
@@ -121,14 +121,24 @@ func thicknessFigure(r *analysis.Result) *View {
 			order[k] = k
 		}
 		sort.SliceStable(order, func(a, b int) bool { return l.T[order[a]] < l.T[order[b]] })
-		c := figure.Curve{Name: l.Crystal, Style: figure.Joined}
+		c, rising := figure.Curve{Name: l.Crystal, Style: figure.Joined}, figure.Curve{Name: l.Crystal + ", nearest that never falls", Style: figure.Ghost}
+		falls := false
 		for _, k := range order {
+			level := math.NaN()
+			if k < len(l.Rising) {
+				level = l.Rising[k]
+				falls = falls || level != l.Mu[k]
+			}
+			rising.X, rising.Y = append(rising.X, l.T[k]), append(rising.Y, level)
 			c.X, c.Y = append(c.X, l.T[k]), append(c.Y, l.Mu[k])
 			c.Lo, c.Hi = append(c.Lo, l.Mu[k]-normal95*l.MuSE[k]), append(c.Hi, l.Mu[k]+normal95*l.MuSE[k])
-			g.add(l.Crystal, number(l.T[k], 0), number(l.Mu[k], 3), between(l.Mu[k]-normal95*l.MuSE[k], l.Mu[k]+normal95*l.MuSE[k], 3))
+			g.add(l.Crystal, number(l.T[k], 0), number(l.Mu[k], 3), between(l.Mu[k]-normal95*l.MuSE[k], l.Mu[k]+normal95*l.MuSE[k], 3), number(level, 3))
 		}
 		if n > 0 {
 			panel.Curves = append(panel.Curves, c)
+		}
+		if falls {
+			panel.Curves = append(panel.Curves, rising)
 		}
 	}
 	if len(panel.Curves) > 0 {

@@ -107,6 +107,7 @@ func init() {
 			"Study":           reflect.TypeOf((*analysis.Study)(nil)).Elem(),
 			"ThicknessLine":   reflect.TypeOf((*analysis.ThicknessLine)(nil)).Elem(),
 			"ThicknessResult": reflect.TypeOf((*analysis.ThicknessResult)(nil)).Elem(),
+			"TiltSlope":       reflect.TypeOf((*analysis.TiltSlope)(nil)).Elem(),
 			"TurnResult":      reflect.TypeOf((*analysis.TurnResult)(nil)).Elem(),
 			"TwoBeamCurve":    reflect.TypeOf((*analysis.TwoBeamCurve)(nil)).Elem(),
 			"WarningResult":   reflect.TypeOf((*analysis.WarningResult)(nil)).Elem(),
