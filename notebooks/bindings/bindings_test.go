@@ -17,6 +17,7 @@ import (
 
 	"thinward/notebooks/bindings"
 	"thinward/notebooks/bindings/table"
+	"thinward/notebooks/kernel"
 )
 
 var madeFrom = regexp.MustCompile(`(?m)^// Standard library of (go[0-9.]+)\.$`)
@@ -72,8 +73,12 @@ func TestTablesAreFresh(t *testing.T) {
 
 // TestInTheInterpreter runs the tests that link the interpreter. They need the
 // tag under which the tables are compiled; the first time, compiling the
-// interpreter takes about 40 s on two cores.
+// interpreter takes about 40 s on two cores. The kernel is made of the same
+// packages; waiting for it keeps two builds from compiling them at once.
 func TestInTheInterpreter(t *testing.T) {
+	if _, err := kernel.Ensure(context.Background(), nil); err != nil {
+		t.Fatal(err)
+	}
 	cmd := exec.Command("go", "test", "-tags", "kernel", "-v", ".")
 	out, err := cmd.CombinedOutput()
 	if err != nil {

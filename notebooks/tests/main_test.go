@@ -23,11 +23,13 @@ var kernelPath, root, coarse string
 func TestMain(m *testing.M) {
 	// Nothing here may need a network: what is not in the module cache is an error.
 	os.Setenv("GOPROXY", "off")
-	os.Setenv("GOFLAGS", "-mod=readonly")
 	var err error
 	if root, err = filepath.Abs(filepath.Join("..", "..")); err == nil {
 		kernelPath, err = kernel.Ensure(context.Background(), nil)
 	}
+	// Only now: the flags are part of the key of the kernel, which is the same as that
+	// of the other tests.
+	os.Setenv("GOFLAGS", "-mod=readonly")
 	if err != nil {
 		fmt.Fprintln(os.Stderr, err)
 		os.Exit(1)
