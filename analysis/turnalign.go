@@ -88,7 +88,7 @@ func alignedBy(o *intensity.Columns, a *difference.Alignment, by crystal.Reindex
 		for r, phi := range o.Phi {
 			out.Phi[r] = a.Turn.Of(phi)
 		}
-		how := "count from another zero"
+		how := "count from another zero, or the lattice lies turned about the axis,"
 		if a.Turn.Reversed {
 			how = "run the other way"
 		}

@@ -158,7 +158,7 @@ func (p *Pairs) matchTurned(why string) string {
 
 // describe says what a turn of the position called name does.
 func (a *Alignment) describe(name string) string {
-	how := "count from another zero"
+	how := "count from another zero, or the lattice lies turned about the axis"
 	if a.Turn.Reversed {
 		how = "run the other way"
 	}
