@@ -13,6 +13,13 @@ import (
 // another way to index it.
 const latticeToleranceDeg = 1.0
 
+// leastMargin and leastCommon are what is asked of a choice between ways to index, as by
+// default in crystal.ChooseIndexing.
+const (
+	leastMargin = 4
+	leastCommon = 50
+)
+
 // IndexingResult says how one position was brought to the indexing of the
 // reference, the thinnest position of the first crystal. Z is the margin of the
 // best way over the second best; Proposal is the change of indices that was
@@ -67,8 +74,11 @@ func (s *Study) settle(ctx context.Context, positions [][]Accepted) ([]IndexingR
 				r.Options = append(r.Options, o.String())
 			}
 			best := options[c.Best]
+			// The intensities may have the higher symmetry themselves, so that two ways are the
+			// same; another one, that in which the list came, can be wrong all the same.
+			worse := c.Ambiguous && c.Margin(0) >= leastMargin && c.N[c.Best] >= leastCommon
 			switch {
-			case c.Ambiguous:
+			case c.Ambiguous && !worse:
 				r.Text = fmt.Sprintf("the lattice allows %d ways to index and the intensities do not decide (%s); indices are left as they are, and averages over positions may mix two indexings", len(options), c.Why)
 				warnings = append(warnings, intensity.Warning{Code: "indexing-ambiguous", Where: r.Where, Text: r.Text})
 			case best.Identity():
@@ -79,6 +89,9 @@ func (s *Study) settle(ctx context.Context, positions [][]Accepted) ([]IndexingR
 				}
 				r.Proposal = best.String()
 				r.Text = fmt.Sprintf("was indexed another way than the reference and has been re-indexed by %s (margin z = %.1f)", best, c.Z)
+				if worse {
+					r.Text = fmt.Sprintf("was indexed another way than the reference (z = %.1f) and has been re-indexed by %s; of the other ways one fits as well (%s), as where the true symmetry is higher than the group, and then both are the same", c.Margin(0), best, c.Why)
+				}
 				warnings = append(warnings, intensity.Warning{Code: "reindexed", Where: r.Where, Text: r.Text})
 			}
 			out = append(out, r)

@@ -213,10 +213,7 @@ func (c *IndexingChoice) judge(s *ChoiceSettings) {
 	best, n := c.Correlation[c.Best], c.N[c.Best]
 	c.Z = math.Inf(1)
 	if second >= 0 {
-		c.Z = 0
-		if m := c.N[second]; n > 3 && m > 3 && !math.IsNaN(best) && !math.IsNaN(c.Correlation[second]) {
-			c.Z = (fisher(best) - fisher(c.Correlation[second])) / math.Sqrt(1/float64(n-3)+1/float64(m-3))
-		}
+		c.Z = c.Margin(second)
 	}
 	switch {
 	case n < s.MinPairs:
@@ -227,6 +224,16 @@ func (c *IndexingChoice) judge(s *ChoiceSettings) {
 		c.Why = fmt.Sprintf("the best two indexings agree about equally with the reference (%.3f and %.3f, z = %.1f)", best, c.Correlation[second], c.Z)
 	}
 	c.Ambiguous = c.Why != ""
+}
+
+// Margin is the z by which the best option lies above option j, 0 where either has
+// too little in common to say.
+func (c *IndexingChoice) Margin(j int) float64 {
+	best, other, n, m := c.Correlation[c.Best], c.Correlation[j], c.N[c.Best], c.N[j]
+	if n <= 3 || m <= 3 || math.IsNaN(best) || math.IsNaN(other) {
+		return 0
+	}
+	return (fisher(best) - fisher(other)) / math.Sqrt(1/float64(n-3)+1/float64(m-3))
 }
 
 func higher(a, b float64) bool { return a > b || math.IsNaN(b) && !math.IsNaN(a) }

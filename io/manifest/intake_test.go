@@ -162,8 +162,34 @@ func TestAmbiguousIndexingOfFiles(t *testing.T) {
 	}
 }
 
-// A lattice that is named with the wrong centring, either way, as issue of the whole
-// reading: half of the reflections of a C or I lattice are absent exactly (Hahn 2005,
+// Intensities of P 3 2 1 that are called P 3 leave two of four ways alike, and the other two
+// wrong: a list that came in a wrong one is brought to a right one, and the rest is said
+// to be ambiguous.
+func TestHalfAmbiguousIndexingIsMended(t *testing.T) {
+	path := small(t, func(p *simulate.Plan) {
+		p.SpaceGroup, p.Cell = "P 3 2 1", hexagonal
+		p.Crystals[1].Positions[1].Reindex = "-h,-k,l"
+	}, "space_group = 'P 3 2 1'", "space_group = 'P 3'")
+	s, d := details(t, path)
+	for _, x := range d.Indexing {
+		if mixed := x.Where == "L2/mid"; !x.Ambiguous || mixed != (x.Proposal == "-h,-k,l" || x.Proposal == "-k,-h,-l") || mixed != (said(d, "reindexed", x.Where) != "") {
+			t.Errorf("%+v", x)
+		}
+	}
+	contrast, err := s.Find("L2", "", "")
+	if err != nil {
+		t.Fatal(err)
+	}
+	x, err := s.Compare(context.Background(), contrast)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if !(x.Result.Correlation.R > 0.95) {
+		t.Errorf("after mending the positions correlate by %.3f", x.Result.Correlation.R)
+	}
+}
+
+// A lattice that is named with the wrong centring, either way: half of the reflections of a C or I lattice are absent exactly (Hahn 2005,
 // International Tables A, table 2.2.13.1).
 func TestWrongCentring(t *testing.T) {
 	cell := simulate.Cell{A: 11, B: 14.6, C: 18.2, Alpha: 90, Beta: 90, Gamma: 90}
