@@ -20,10 +20,10 @@ const differenceLabel = "thin \u2212 thick, in local means (root scale)"
 func byStrength(r *analysis.Result) *View {
 	fv := &figureView{
 		title: "Differences against strength", pick: "Contrast",
-		caption: "Look where the band leaves the line of no difference: below it at the weak end and above it at the strong end, the thick position has gained in weak reflections and lost in strong ones. " +
+		caption: "Bands by angle blocks draw 2.5 degrees of the rotation as one: a width ratio well above 1 says that neighbouring frames share an error, and the wider band is then the honest one. Look where the band leaves the line of no difference: below it at the weak end and above it at the strong end, the thick position has gained in weak reflections and lost in strong ones. " +
 			"The dark band holds at each strength alone, the pale one with dotted edges over the whole curve, both for the averaged curve on this axis.",
 	}
-	g := newGrid("Differences against strength, thin minus thick in local means", "contrast", "axis", "pairs", "p of the curve", "weakest: strength", "difference", "interval", "strongest: strength", "difference", "interval").words(1)
+	g := newGrid("Differences against strength, thin minus thick in local means", "contrast", "axis", "pairs", "p of the curve", "p by angle blocks", "width by angle blocks", "weakest: strength", "difference", "interval", "strongest: strength", "difference", "interval").words(1)
 	for _, set := range pairings(r) {
 		p := &figure.Panels{
 			Title: "Thin minus thick against strength, " + set.name, Desc: strengthDesc(set),
@@ -34,6 +34,7 @@ func byStrength(r *analysis.Result) *View {
 			x := &c.Strength
 			p.Panel = append(p.Panel, figure.Panel{Name: c.Crystal, Note: pNote(x.P), Curves: []figure.Curve{{X: x.Grid, Y: x.Mean, Lo: x.Lo, Hi: x.Hi, LoSim: x.LoSim, HiSim: x.HiSim}}})
 			row := []string{contrastName(c), c.StrengthAxis, count(c.Pairs), pvalue(x.P)}
+			row = append(row, blocksOf(c)...)
 			for _, i := range []int{0, len(x.Grid) - 1} {
 				if len(x.Grid) == 0 {
 					row = append(row, "\u2013", "\u2013", "\u2013")
@@ -47,6 +48,16 @@ func byStrength(r *analysis.Result) *View {
 	}
 	fv.summary = g
 	return fv.view()
+}
+
+// blocksOf gives p and the width of the band over that by reflections when blocks of the
+// rotation are drawn as one.
+func blocksOf(c *analysis.ContrastResult) []string {
+	b := c.AngleBlocks
+	if b == nil || math.IsNaN(b.Width) {
+		return []string{"\u2013", "\u2013"}
+	}
+	return []string{pvalue(b.P), number(b.Width, 2) + " \u00b1 " + number(b.WidthSE, 2)}
 }
 
 func strengthDesc(set pairing) string {
@@ -121,9 +132,9 @@ func byResolution(r *analysis.Result) *View {
 	fv := &figureView{
 		title: "Differences against resolution", pick: "Contrast",
 		caption: "A slope means that the ratio of thick to thin changes with resolution; the dashed line is the part that a difference of B takes up, and what stands off it B cannot explain. " +
-			"A B factor, radiation damage, redistribution by thickness, background and saturation of the detector look alike here. The B of the scale weighs strong reflections more and may differ.",
+			"A B factor, radiation damage, redistribution by thickness, background and saturation of the detector look alike here. The line is drawn through sums of intensity, which few strong reflections carry and in which curb and offset count; the B of the scale, which weighs every reflection by its error, stands beside it.",
 	}
-	g := newGrid("Ratio of the positions by resolution", "contrast", "shells", "difference of B (\u00c5\u00b2)", "interval", "share that B explains")
+	g := newGrid("Ratio of the positions by resolution", "contrast", "shells", "difference of B (\u00c5\u00b2)", "interval", "share that B explains", "B of the scale (\u00c5\u00b2)")
 	for _, set := range pairings(r) {
 		p := &figure.Panels{
 			Title: "Logarithm of thick over thin against resolution, " + set.name, Desc: "Mean logarithm of the ratio by shell with intervals, and the line that a difference of B means, one panel a crystal. ",
@@ -147,7 +158,7 @@ func byResolution(r *analysis.Result) *View {
 			}
 			p.Panel = append(p.Panel, figure.Panel{Name: c.Crystal, Note: "\u0394B " + number(x.DeltaB, 2) + " \u00c5\u00b2", Curves: curves})
 			p.Desc += fmt.Sprintf("%s: difference of B %s (%s) square angstrom. ", c.Crystal, number(x.DeltaB, 2), between(x.DeltaBLo, x.DeltaBHi, 2))
-			g.add(contrastName(c), count(len(x.D)), number(x.DeltaB, 3), between(x.DeltaBLo, x.DeltaBHi, 3), percent(x.Share, 0))
+			g.add(contrastName(c), count(len(x.D)), number(x.DeltaB, 3), between(x.DeltaBLo, x.DeltaBHi, 3), percent(x.Share, 0), number(x.FittedB, 3)+" \u00b1 "+number(x.FittedBSE, 3))
 		}
 		p.X.Marks = spacings(all)
 		fv.add(set.name, p)
