@@ -7,6 +7,8 @@ import (
 	"strings"
 	"testing"
 
+	"gonum.org/v1/gonum/stat/distuv"
+
 	"thinward/analysis/internal/floatcmp"
 	"thinward/analysis/resample"
 )
@@ -66,15 +68,17 @@ func TestReplicateOfASoundPipeline(t *testing.T) {
 }
 
 func TestReplicateSeesABiasAndTooNarrowAnInterval(t *testing.T) {
-	if r := replicate(t, 300, 0, normals(0), meanPipeline(0.0125, 1)); r.Clean(0.01) {
-		t.Errorf("a bias of a quarter of the spread, 4.3 standard errors of the mean is called clean: %+v", r.M)
+	if r := replicate(t, 300, 0, normals(0), meanPipeline(0.03, 1)); r.Clean(0.01) {
+		t.Errorf("a bias of 0.6 standard deviations is called clean: %+v", r.M)
 	}
 	if r := replicate(t, 300, 0, normals(0), meanPipeline(0, 0.6)); r.Clean(0.01) {
 		t.Errorf("intervals of 0.6 their width are called clean: %g missed", r.Missed)
 	}
-	if r := replicate(t, 300, 0, normals(0), meanPipeline(0.003, 1)); !r.Clean(0.01) {
-		t.Errorf("a bias of one standard error of the mean is not: %+v", r.M)
+	if r := replicate(t, 300, 0, normals(0), meanPipeline(0.02, 1)); !r.Clean(0.01) {
+		t.Errorf("a bias of 0.4 standard deviations, which leaves 93 %% of the intervals right, is not: %+v", r.M)
 	}
+	normal := distuv.UnitNormal
+	floatcmp.Check(t, "coverage at the largest harmless bias", normal.CDF(1.96-harmless)-normal.CDF(-1.96-harmless), leastCover, 2e-4, 0)
 	// P(X >= 12) and P(X >= 13) of 100 at 0.05 are 0.00427 and 0.00147 (binomial sums).
 	for k, want := range map[float64]bool{0: true, 11: true, 12: true, 13: false} {
 		if likely(k/100, 100, 0.002) != want {
