@@ -31,7 +31,7 @@ var stepOrder = []struct {
 	keys []string
 }{
 	{"inputs", []string{"schema", "series", "seed", "inputs"}},
-	{"intake", []string{"intake", "indexing"}},
+	{"intake", []string{"intake", "indexing", "common_reflections", "intake_remarks", "centring", "turns"}},
 	{"scaling", []string{"scaling"}},
 	{"differences", []string{"contrasts"}},
 	{pairsStep, []string{"pairs"}},

@@ -72,7 +72,7 @@ func TestEveryKeyHasAStep(t *testing.T) {
 			continue // not compared
 		}
 		if step := stepOf(key + "[a].b"); !steps[step] {
-			t.Errorf("%s belongs to no step", key)
+			t.Errorf("%s belongs to no step: give it one in stepOrder", key)
 		}
 	}
 }
