@@ -15,11 +15,18 @@ import (
 type PlanSettings struct {
 	M     float64 // the exchange to be seen; 0 = 0.03
 	Power float64 // 0 = 0.8
+	// Spread is the standard deviation of m between crystals that is taken to hold; 0 = what
+	// the crystals give, from five on, and below that none and the most that they allow, side
+	// by side. A negative one is an error.
+	Spread float64
 }
 
 // Planning says what it would take to see an exchange, judged by the noise of
 // this series. Typical is a crystal like the mean of those measured. An infinite
-// number stands for what cannot be reached in this way.
+// number stands for what cannot be reached in this way. Needs, Table, Curve and Seen
+// hold for a spread Tau of m between crystals. Where that is neither given nor estimable
+// it is 0, and Wide says the same for the most that the crystals allow, or for a spread as
+// large as the error of one crystal where they allow none, or any.
 type Planning struct {
 	M        float64       `json:"m"`
 	Level    float64       `json:"level"`
@@ -28,11 +35,25 @@ type Planning struct {
 	Typical  PlanCrystal   `json:"typical"`
 	Tau      float64       `json:"spread_between_crystals"`
 	TauWhy   string        `json:"spread_why,omitempty"`
-	Seen     float64       `json:"seen_with_these_crystals"`
-	Needs    []PlanNeed    `json:"crystals_needed"`
-	Table    []PlanCell    `json:"table"`
-	Curve    []PlanPoint   `json:"curve"`
-	Cautions []string      `json:"cautions"`
+	// TauLo and TauHi are the interval of the spread by the Q-profile, 0 to +Inf of one
+	// crystal.
+	TauLo    float64     `json:"spread_lo"`
+	TauHi    float64     `json:"spread_hi"`
+	Seen     float64     `json:"seen_with_these_crystals"`
+	Needs    []PlanNeed  `json:"crystals_needed"`
+	Table    []PlanCell  `json:"table"`
+	Curve    []PlanPoint `json:"curve"`
+	Wide     *PlanWide   `json:"with_more_spread,omitempty"`
+	Cautions []string    `json:"cautions"`
+}
+
+// PlanWide is the plan for another spread between crystals.
+type PlanWide struct {
+	Tau   float64     `json:"spread_between_crystals"`
+	Seen  float64     `json:"seen_with_these_crystals"`
+	Needs []PlanNeed  `json:"crystals_needed"`
+	Table []PlanCell  `json:"table"`
+	Curve []PlanPoint `json:"curve"`
 }
 
 // PlanCrystal is what one crystal can say of m in its primary contrast: the
@@ -108,9 +129,13 @@ func (s *Study) Plan(ctx context.Context, set *PlanSettings) (*Planning, error) 
 	if !(o.Power > 0.5 && o.Power < 1) {
 		return nil, fmt.Errorf("plan: the power is %g: it must lie between 0.5 and 1", o.Power)
 	}
+	if !(o.Spread >= 0 && o.Spread < 1) {
+		return nil, fmt.Errorf("plan: the spread between crystals is %g: it must lie between 0 and 1", o.Spread)
+	}
 	s.mu.Lock()
 	defer s.mu.Unlock()
 	p := &Planning{M: o.M, Level: s.settings.Level, Power: o.Power}
+	var m, se []float64
 	for _, c := range s.list {
 		if !c.Primary || c.Across() {
 			continue
@@ -124,13 +149,26 @@ func (s *Study) Plan(ctx context.Context, set *PlanSettings) (*Planning, error) 
 			return nil, err
 		}
 		p.Measured = append(p.Measured, k)
+		if e := &x.Result.Exchange; e.SE > 0 && !math.IsNaN(e.M) {
+			m, se = append(m, e.M), append(se, e.SE)
+		}
+	}
+	p.TauHi = math.Inf(1)
+	if len(m) > 0 {
+		var err error
+		if p.TauLo, p.TauHi, err = pool.TauInterval(m, se, p.Level); err != nil {
+			return nil, fmt.Errorf("plan: %w", err)
+		}
 	}
 	joined := s.poolCrystals()
 	p.Tau, p.TauWhy = math.Sqrt(joined.Tau2), joined.Why
-	if math.IsNaN(p.Tau) {
+	switch {
+	case o.Spread > 0:
+		p.Tau, p.TauWhy = o.Spread, ""
+	case math.IsNaN(p.Tau):
 		p.Tau = 0
 	}
-	if err := p.fill(); err != nil {
+	if err := p.fill(o.Spread > 0); err != nil {
 		return nil, err
 	}
 	return p, nil
@@ -177,11 +215,26 @@ func noiseShare(x *Compared) float64 {
 }
 
 // fill works out all that follows from what the crystals can say.
-func (p *Planning) fill() error {
+func (p *Planning) fill(given bool) error {
 	d, err := p.typical()
 	if err != nil {
 		return err
 	}
+	at := p.spread(d)
+	p.Seen, p.Needs, p.Table, p.Curve = at.Seen, at.Needs, at.Table, at.Curve
+	if p.TauWhy != "" {
+		if d.Tau = p.TauHi; d.Tau == 0 || math.IsInf(d.Tau, 1) {
+			d.Tau = d.SE
+		}
+		p.Wide = p.spread(d)
+	}
+	p.caution(given)
+	return nil
+}
+
+// spread is the plan for crystals like d.
+func (p *Planning) spread(d pool.Design) *PlanWide {
+	out := &PlanWide{Tau: d.Tau}
 	seen := func(k, pairs, mult float64) float64 {
 		return pool.Visible(d.SEFor(k, pairs*d.Pairs, mult*d.Multiplicity), 1-p.Level, p.Power)
 	}
@@ -192,23 +245,23 @@ func (p *Planning) fill() error {
 	}
 	for _, m := range list {
 		need := PlanNeed{M: m}
+		var err error
 		if need.Crystals, err = d.Crystals(m, 1-p.Level, p.Power); err != nil {
 			need.Why = err.Error()
 		}
-		p.Needs = append(p.Needs, need)
+		out.Needs = append(out.Needs, need)
 		for _, k := range plannedCrystals {
 			c := PlanCell{M: m, Crystals: k}
 			c.Pairs, c.Multiplicity = needed(d, m, float64(k), 1-p.Level, p.Power)
 			c.Multiplicity = math.Max(1, c.Multiplicity)
-			p.Table = append(p.Table, c)
+			out.Table = append(out.Table, c)
 		}
 	}
 	for k := 1; k <= 20; k++ {
-		p.Curve = append(p.Curve, PlanPoint{Crystals: k, Seen: seen(float64(k), 1, 1), TwiceMultiplicity: seen(float64(k), 1, 2), TwicePairs: seen(float64(k), 2, 1)})
+		out.Curve = append(out.Curve, PlanPoint{Crystals: k, Seen: seen(float64(k), 1, 1), TwiceMultiplicity: seen(float64(k), 1, 2), TwicePairs: seen(float64(k), 2, 1)})
 	}
-	p.Seen = seen(float64(len(p.Measured)), 1, 1)
-	p.caution()
-	return nil
+	out.Seen = seen(float64(len(p.Measured)), 1, 1)
+	return out
 }
 
 // typical is the crystal in the mean: SE by its square, the share of noise
@@ -266,9 +319,22 @@ func needed(d pool.Design, m, k, level, power float64) (pairs, multiplicity floa
 	return pairs, multiplicity
 }
 
-func (p *Planning) caution() {
-	if p.TauWhy != "" {
-		p.Cautions = append(p.Cautions, p.TauWhy+": the spread between crystals is taken as 0, so that the true need is larger.")
+func (p *Planning) caution(given bool) {
+	k, level := len(p.Measured), 100*p.Level
+	switch {
+	case given && p.TauHi < p.Tau:
+		p.Cautions = append(p.Cautions, fmt.Sprintf("The spread between crystals is taken as %.3f, as given; these crystals allow no more than %.3f (Q-profile, %.0f %%).", p.Tau, p.TauHi, level))
+	case given && p.TauLo > p.Tau:
+		p.Cautions = append(p.Cautions, fmt.Sprintf("The spread between crystals is taken as %.3f, as given; these crystals ask for at least %.3f (Q-profile, %.0f %%), so that the true need is larger.", p.Tau, p.TauLo, level))
+	case given:
+		p.Cautions = append(p.Cautions, fmt.Sprintf("The spread between crystals is taken as %.3f, as given.", p.Tau))
+	case p.Wide == nil:
+	case p.TauHi == 0:
+		p.Cautions = append(p.Cautions, fmt.Sprintf("%s: the first table takes none, the second one as large as the error of one crystal, %.3f. These %d crystals agree better than their errors lead one to expect, so that they set no limit.", p.TauWhy, p.Wide.Tau, k))
+	case math.IsInf(p.TauHi, 1):
+		p.Cautions = append(p.Cautions, fmt.Sprintf("%s: the first table takes none, the second one as large as the error of one crystal, %.3f. One crystal allows any spread; give one to plan with.", p.TauWhy, p.Wide.Tau))
+	default:
+		p.Cautions = append(p.Cautions, fmt.Sprintf("%s: the first table takes none, the second the most that these %d crystals allow, %.3f (Q-profile, %.0f %%). The need lies between the two; so few crystals leave it wide open.", p.TauWhy, k, p.TauHi, level))
 	}
 	if p.Typical.NoiseShare < 0.5 {
 		p.Cautions = append(p.Cautions, fmt.Sprintf("Counting noise makes %.0f %% of the uncertainty; the rest is deviations of single reflections, which more counting does not remove. More reflections or more crystals do.", 100*p.Typical.NoiseShare))

@@ -84,11 +84,42 @@ func TestPlan(t *testing.T) {
 	if !strings.Contains(p.TauWhy, "not estimable from 3 crystals") || p.Tau != 0 {
 		t.Errorf("spread %g, %q", p.Tau, p.TauWhy)
 	}
+	checkWide(t, p)
+	given, err := s.Plan(context.Background(), &PlanSettings{M: 0.04, Spread: 0.05})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if given.Wide != nil || given.Tau != 0.05 || !strings.Contains(given.Cautions[0], "taken as 0.050, as given") {
+		t.Errorf("a spread that is given: %g, %q", given.Tau, given.Cautions)
+	}
+	floatcmp.Check(t, "seen by one at that spread", given.Curve[0].Seen, pool.Visible(math.Hypot(p.Typical.SE, 0.05), 0.05, 0.8), 0, 1e-12)
+}
+
+// Three crystals that do not tell their spread are planned for none and for the most that
+// their estimates allow.
+func checkWide(t *testing.T, p *Planning) {
+	t.Helper()
+	tau, says := p.TauHi, "the most that these 3 crystals allow"
+	if tau == 0 {
+		tau, says = p.Typical.SE, "one as large as the error of one crystal"
+	}
+	if p.Wide == nil || p.Wide.Tau != tau {
+		t.Fatalf("the plan for a spread of %g is missing", tau)
+	}
+	floatcmp.Check(t, "seen with three at more spread", p.Wide.Seen, pool.Visible(math.Sqrt((p.Typical.SE*p.Typical.SE+tau*tau)/3), 0.05, 0.8), 0, 1e-12)
+	for i := range p.Needs {
+		if p.Wide.Needs[i].Crystals < p.Needs[i].Crystals {
+			t.Errorf("more spread needs fewer crystals: %+v, %+v", p.Wide.Needs[i], p.Needs[i])
+		}
+	}
+	if !strings.Contains(p.Cautions[0], says) {
+		t.Errorf("cautions %q", p.Cautions)
+	}
 }
 
 func TestPlanRefuses(t *testing.T) {
 	s := studyOf(t, smallPlan(1), &Settings{Replicates: 20, Flips: 20})
-	for _, set := range []PlanSettings{{M: -0.1}, {M: 1}, {M: math.NaN()}, {Power: 0.4}, {Power: 1}} {
+	for _, set := range []PlanSettings{{M: -0.1}, {M: 1}, {M: math.NaN()}, {Power: 0.4}, {Power: 1}, {Spread: -0.1}, {Spread: 1}} {
 		if _, err := s.Plan(context.Background(), &set); err == nil || !strings.Contains(err.Error(), "must lie between") {
 			t.Errorf("%+v: %v", set, err)
 		}
@@ -132,6 +163,9 @@ func TestPlanKnowsSpread(t *testing.T) {
 	}
 	if p.TauWhy != "" || !(p.Tau > 0.02) || p.M != 0.03 || p.Power != 0.8 {
 		t.Fatalf("spread %g %q, m %g, power %g", p.Tau, p.TauWhy, p.M, p.Power)
+	}
+	if p.Wide != nil || !(p.TauLo < p.Tau && p.Tau < p.TauHi) {
+		t.Errorf("spread %g in %g to %g, %+v", p.Tau, p.TauLo, p.TauHi, p.Wide)
 	}
 	d := pool.Design{SE: p.Typical.SE, Pairs: p.Typical.Pairs, Multiplicity: p.Typical.Multiplicity, NoiseShare: p.Typical.NoiseShare}
 	floatcmp.Check(t, "seen by one", p.Curve[0].Seen, pool.Visible(math.Hypot(d.SE, p.Tau), 0.05, 0.8), 0, 1e-12)

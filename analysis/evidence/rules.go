@@ -55,13 +55,16 @@ func Negatives(near [3]int, observed []int, expected []float64) Finding {
 	return f
 }
 
-// beyond reports whether a value is beyond three standard errors of 0, by its 95 %
-// interval: a ledger asks the same of several crystals, and one in twenty would be
-// cautioned for nothing.
-func beyond(v, lo, hi float64) bool { return math.Abs(v) > 3/1.96*(hi-lo)/2 }
+// clearZ is the number of standard errors beyond which a check of many is believed. A ledger
+// asks the same of up to two dozen positions or contrasts: with normal errors one is beyond
+// by chance in 1 % of series.
+const clearZ = 3.5
+
+// beyond reports whether a value is beyond 3.5 standard errors of 0, by its 95 % interval.
+func beyond(v, lo, hi float64) bool { return math.Abs(v) > clearZ/1.96*(hi-lo)/2 }
 
 // OffsetOf judges an additive constant o, in units of the mean intensity of the
-// lowest third in s^2, with its 95 % interval. Caution beyond three standard errors;
+// lowest third in s^2, with its 95 % interval. Caution beyond 3.5 standard errors;
 // fails beyond 0.05 too, where shell means of weak shells are mostly offset.
 func OffsetOf(o, lo, hi float64) Finding {
 	f := Finding{Value: o, Unit: "of the mean of the strong third", Verdict: Fine, Why: "no additive offset between the positions is clear of its error; the fitted m allows for one"}
@@ -113,7 +116,7 @@ type CurbForm struct {
 const CountRate = "count rate"
 
 // HighCounts asks whether a loss of the strongest could be the detector's. Fine when
-// the form that fits best finds no q beyond three standard errors, or the data refuse the
+// the form that fits best finds no q beyond 3.5 standard errors, or the data refuse the
 // count rate, by a J more than 3.84 behind the best (size.CompareCurbs: it errs less than
 // 5 %). Caution when q is found and the count rate is not refused; whether it is then told
 // from the other forms by the same difference is said.
@@ -151,10 +154,6 @@ func HighCounts(forms []CurbForm) Finding {
 	return out
 }
 
-// clearZ is the normal deviate beyond which a check of many is believed: with
-// two dozen positions it errs in under 2 % of series.
-const clearZ = 3.5
-
 // BleedOf judges the share of lattice neighbours' signal that leaks in. Caution
 // beyond 3.5 standard errors and 0.2 %, fails when that share is 5 % or more.
 func BleedOf(s *Slope, err error) Finding {
@@ -183,7 +182,7 @@ func DoubleOf(s *Slope, err error) Finding {
 }
 
 // TiltOf judges the exchange between equivalents at low and at high tilt within
-// one position. Caution beyond three standard errors: thickness along the beam
+// one position. Caution beyond 3.5 standard errors: thickness along the beam
 // differs within the position, and its m is an average; it also is a second,
 // independent sign of growth with thickness.
 func TiltOf(m, se float64, pairs int) Finding {
@@ -192,10 +191,10 @@ func TiltOf(m, se float64, pairs int) Finding {
 	}
 	f := Finding{Value: m, Unit: "m, low against high tilt", Verdict: Fine, Why: fmt.Sprintf("equivalents at high tilt (a longer way through the slab) are like those at low tilt: m = %s +- %s of %d reflections", num(m), num(se), pairs)}
 	switch {
-	case m > 3*se:
+	case m > clearZ*se:
 		f.Verdict = Caution
 		f.Why = fmt.Sprintf("intensity moves from strong to weak with tilt within one position, m = %s +- %s, as a way of 1/cos through the slab makes it: a second sign of thickness, and one position is a mixture of thicknesses", num(m), num(se))
-	case m < -3*se:
+	case m < -clearZ*se:
 		f.Verdict = Caution
 		f.Why = fmt.Sprintf("intensity moves from weak to strong with tilt, m = %s +- %s, the wrong way for thickness: absorption, background, or another angle at which the slab faces the beam", num(m), num(se))
 	}

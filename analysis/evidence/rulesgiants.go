@@ -13,15 +13,11 @@ type Move struct {
 	Change, SE float64
 }
 
-// giantErrors is the number of standard errors of a change that is believed: three
-// changes of each of several crystals are looked at, and they rest on few reflections.
-const giantErrors = 3
-
 // GiantsOf judges whether m, which is lead with all reflections, hangs on the strongest.
 // Estimates with and without them share their data, so that the change is judged by an
 // error of its own (Hausman 1978, Econometrica 46:1251, whose variance of it, the
 // difference of both, needs an efficient estimate, which this is not). Caution when a
-// change is beyond three of its standard errors and 0.01.
+// change is beyond 3.5 of its standard errors and 0.01.
 func GiantsOf(lead float64, moves []Move) Finding {
 	if math.IsNaN(lead) {
 		return unknown("m without the strongest reflections is not estimable")
@@ -37,7 +33,7 @@ func GiantsOf(lead float64, moves []Move) Finding {
 	}
 	f := Finding{Value: worst.Change, Unit: "change of m", Verdict: Fine,
 		Why: fmt.Sprintf("m, read by the instrument, is %s with all reflections and changes by %s +- %s without the %d above %g local means", num(lead), num(worst.Change), num(worst.SE), worst.LeftOut, worst.Above)}
-	if math.Abs(worst.Change) > giantErrors*worst.SE && math.Abs(worst.Change) > 0.01 {
+	if math.Abs(worst.Change) > clearZ*worst.SE && math.Abs(worst.Change) > 0.01 {
 		f.Verdict = Caution
 		f.Why += ": it hangs on the strongest, as a curb, a loss at high counts or an outlier makes it; look at the curve and at the models with a curb"
 	}

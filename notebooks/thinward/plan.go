@@ -16,7 +16,7 @@ import (
 )
 
 func (a *app) plan() *cobra.Command {
-	var m, power float64
+	var m, power, spread float64
 	c := &cobra.Command{
 		Use:   "plan SERIES.toml",
 		Short: "How many crystals, pairs and observations an exchange of a given size needs, by this series' own noise",
@@ -30,11 +30,15 @@ func (a *app) plan() *cobra.Command {
 			if !(power > 0.5 && power < 1) {
 				return usageError{fmt.Errorf("--power %g: give a share between 0.5 and 1, such as 0.8", power)}
 			}
-			return a.printPlanning(c.Context(), args[0], &analysis.PlanSettings{M: m, Power: power})
+			if c.Flags().Changed("spread") && !(spread > 0 && spread < 1) {
+				return usageError{fmt.Errorf("--spread %g: give a standard deviation of m between 0 and 1, such as 0.02", spread)}
+			}
+			return a.printPlanning(c.Context(), args[0], &analysis.PlanSettings{M: m, Power: power, Spread: spread})
 		},
 	}
 	c.Flags().Float64Var(&m, "m", 0.03, "the exchange to be seen")
 	c.Flags().Float64Var(&power, "power", 0.8, "share of experiments that are to see it")
+	c.Flags().Float64Var(&spread, "spread", 0, "spread (standard deviation) of m between crystals to plan with; without it what the crystals give, from five on, and below that none and the most that they allow side by side")
 	c.Flags().BoolVar(&a.json, "json", false, "print JSON, the curve included")
 	return c
 }
@@ -64,18 +68,49 @@ func writePlanning(w io.Writer, p *analysis.Planning) error {
 	if err := t.Flush(); err != nil {
 		return err
 	}
-	fmt.Fprintf(&b, "\nWhat each crystal must bring, by the number of crystals: pairs at multiplicity %.1f, or multiplicity at %.0f pairs (-: more than there are, or no number)\n", p.Typical.Multiplicity, p.Typical.Pairs)
+	plans := []*analysis.PlanWide{{Tau: p.Tau, Seen: p.Seen, Needs: p.Needs, Table: p.Table, Curve: p.Curve}}
+	if p.Wide != nil {
+		plans = append(plans, p.Wide)
+	}
+	for _, w := range plans {
+		if err := writeReach(&b, p, w); err != nil {
+			return err
+		}
+	}
+	b.WriteByte('\n')
+	for _, c := range p.Cautions {
+		b.WriteString(c + "\n")
+	}
+	needs, crystals := needText(p.M, p.Needs), plural(len(p.Measured), "crystal")
+	if p.Wide == nil {
+		fmt.Fprintf(&b, "With %s as measured here an exchange of %.3f would be seen; for m = %g %s.\n", crystals, p.Seen, p.M, needs)
+	} else {
+		fmt.Fprintf(&b, "With %s as measured here an exchange of %.3f would be seen (%.3f with more spread); for m = %g %s (with more spread %s).\n",
+			crystals, p.Seen, p.Wide.Seen, p.M, needs, needText(p.M, p.Wide.Needs))
+	}
+	_, err := io.WriteString(w, b.String())
+	return err
+}
+
+// writeReach writes the tables for one spread between crystals.
+func writeReach(b *strings.Builder, p *analysis.Planning, w *analysis.PlanWide) error {
+	t := tabwriter.NewWriter(b, 0, 0, 2, ' ', tabwriter.AlignRight)
+	spread := "no spread between crystals"
+	if w.Tau > 0 {
+		spread = fmt.Sprintf("a spread of %.3f between crystals", w.Tau)
+	}
+	fmt.Fprintf(b, "\nWith %s\nWhat each crystal must bring, by the number of crystals: pairs at multiplicity %.1f, or multiplicity at %.0f pairs (-: more than there are, or no number)\n", spread, p.Typical.Multiplicity, p.Typical.Pairs)
 	head := "m"
-	for _, c := range p.Table {
-		if c.M == p.Table[0].M {
+	for _, c := range w.Table {
+		if c.M == w.Table[0].M {
 			head += fmt.Sprintf("\t%d", c.Crystals)
 		}
 	}
 	fmt.Fprintln(t, head+"\tcrystals needed as measured\t")
-	for i := range p.Needs {
-		n := &p.Needs[i]
+	for i := range w.Needs {
+		n := &w.Needs[i]
 		line := fmt.Sprintf("%g", n.M)
-		for _, c := range p.Table {
+		for _, c := range w.Table {
 			if c.M == n.M {
 				line += "\t" + reach(c.Pairs, float64(p.Typical.Possible), 0) + " or " + reach(c.Multiplicity, math.MaxFloat64, 1)
 			}
@@ -89,28 +124,19 @@ func writePlanning(w io.Writer, p *analysis.Planning) error {
 	if err := t.Flush(); err != nil {
 		return err
 	}
-	fmt.Fprintf(&b, "\nSmallest m seen with a power of %g, by the number of crystals\n", p.Power)
+	fmt.Fprintf(b, "\nSmallest m seen with a power of %g, by the number of crystals\n", p.Power)
 	fmt.Fprintln(t, "crystals\tas measured\ttwice the multiplicity\ttwice the pairs\t")
-	for _, c := range p.Curve {
+	for _, c := range w.Curve {
 		if k := c.Crystals; k <= 6 || k%5 == 0 {
 			fmt.Fprintf(t, "%d\t%.4f\t%.4f\t%.4f\t\n", k, c.Seen, c.TwiceMultiplicity, c.TwicePairs)
 		}
 	}
-	if err := t.Flush(); err != nil {
-		return err
-	}
-	b.WriteByte('\n')
-	for _, c := range p.Cautions {
-		b.WriteString(c + "\n")
-	}
-	fmt.Fprintf(&b, "With %s as measured here an exchange of %.3f would be seen; for m = %g %s.\n", plural(len(p.Measured), "crystal"), p.Seen, p.M, needText(p))
-	_, err := io.WriteString(w, b.String())
-	return err
+	return t.Flush()
 }
 
-func needText(p *analysis.Planning) string {
-	for i := range p.Needs {
-		if n := &p.Needs[i]; n.M == p.M && n.Why == "" {
+func needText(m float64, needs []analysis.PlanNeed) string {
+	for i := range needs {
+		if n := &needs[i]; n.M == m && n.Why == "" {
 			if n.Crystals == 1 {
 				return "one such crystal is enough"
 			}
