@@ -143,7 +143,7 @@ func (f *File) one(lists []*list, parts []string, c *choice) (*list, error) {
 		}
 	}
 	if len(lists) > 1 {
-		return nil, &Error{File: f.Name, Problem: "the file holds several reflection lists: " + names(lists), Remedy: "pick one by its block, such as " + strconv.Quote(lists[0].pick()) + ", or by block and category, such as " + strconv.Quote(lists[0].pick()+"/"+lists[0].name())}
+		return nil, &Error{File: f.Name, Problem: "the file holds several reflection lists: " + names(lists), Remedy: "pick one by its block, such as " + strconv.Quote(lists[0].pick()) + ", or by block and category, such as " + strconv.Quote(lists[0].pick()+"/"+lists[0].name())+", as block in the manifest"}
 	}
 	return lists[0], nil
 }
@@ -232,7 +232,7 @@ func (c *choice) alone(sel Selection) error {
 		words := set.codes.word
 		shown := words[:min(len(words), 8)]
 		return l.fault(l.line(0), item, fmt.Sprintf("the list holds %d data sets told apart by %s: %s", len(words), set.kind, strings.Join(shown, " ")),
-			"pick one, such as "+strconv.Quote(set.prefix+words[0])+", or ask for all of them together")
+			"pick one, such as "+strconv.Quote(set.prefix+words[0])+", as block in the manifest")
 	}
 	return nil
 }
