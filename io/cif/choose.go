@@ -143,7 +143,7 @@ func (f *File) one(lists []*list, parts []string, c *choice) (*list, error) {
 		}
 	}
 	if len(lists) > 1 {
-		return nil, &Error{File: f.Name, Problem: "the file holds several reflection lists: " + names(lists), Remedy: "pick one by its block, such as " + strconv.Quote(lists[0].pick()) + ", or by block and category, such as " + strconv.Quote(lists[0].pick()+"/"+lists[0].name())+", as block in the manifest"}
+		return nil, &Error{File: f.Name, Problem: "the file holds several reflection lists: " + names(lists), Remedy: "pick one by its block, such as " + strconv.Quote(lists[0].pick()) + ", or by block and category, such as " + strconv.Quote(lists[0].pick()+"/"+lists[0].name()) + ", as block in the manifest"}
 	}
 	return lists[0], nil
 }

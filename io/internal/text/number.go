@@ -138,6 +138,12 @@ func FastInt(data []byte, i int) (n, next int, ok bool) {
 // when none is given. Words such as NaN or Inf, hexadecimal and underscored
 // numbers are no numbers; nor is what overflows float64.
 func ParseNumber(token []byte) (x, su float64, ok bool) {
+	if len(token) == 0 {
+		return 0, 0, false
+	}
+	if x, next, ok := FastFloat(token, 0); ok && next == len(token) {
+		return x, math.NaN(), true
+	}
 	i, digits, decimals := 0, 0, 0
 	if i < len(token) && (token[i] == '-' || token[i] == '+') {
 		i++
