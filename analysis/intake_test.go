@@ -253,3 +253,53 @@ func TestCutListsAreNamed(t *testing.T) {
 		}
 	}
 }
+
+// A call that was cancelled leaves nothing behind: the next one says every warning and remark
+// once.
+func TestIntakeIsToldOnce(t *testing.T) {
+	s, err := New(handMade(), nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	gone, cancel := context.WithCancel(context.Background())
+	if _, err := s.Intake(gone); err != nil {
+		t.Fatal(err)
+	}
+	cancel()
+	if _, err := s.IntakeTable(gone); err == nil {
+		t.Fatal("a cancelled call was answered")
+	}
+	first, err := s.IntakeDetails(context.Background())
+	if err != nil {
+		t.Fatal(err)
+	}
+	fresh, err := New(handMade(), nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	want, err := fresh.IntakeDetails(context.Background())
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(first.Warnings) != len(want.Warnings) || len(first.Remarks) != len(want.Remarks) || len(want.Warnings) == 0 {
+		t.Errorf("%d warnings and %d remarks after a cancelled call, want %d and %d", len(first.Warnings), len(first.Remarks), len(want.Warnings), len(want.Remarks))
+	}
+}
+
+// A position of forbidden reflections alone has nothing to compare, and is named.
+func TestForbiddenAloneIsRefused(t *testing.T) {
+	series := handMade()
+	g, err := crystal.Lookup("I 2 2 2")
+	if err != nil {
+		t.Fatal(err)
+	}
+	series.Group = g
+	series.Crystals[1].Positions[0].Rows = &intensity.Columns{H: []int16{1, 0}, K: []int16{0, 1}, L: []int16{0, 0}, I: []float64{1, 2}, Sigma: []float64{1, 1}}
+	s, err := New(series, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if _, err := s.IntakeTable(context.Background()); err == nil || !strings.Contains(err.Error(), "L2/thin: the space group forbids every reflection") {
+		t.Errorf("%v", err)
+	}
+}

@@ -43,32 +43,13 @@ func (s *Study) intakeResults(ctx context.Context) ([]IntakeResult, error) {
 	if s.table != nil {
 		return s.table, nil
 	}
-	list := s.standings()
-	limit := math.Inf(1)
-	for _, x := range list {
-		limit = math.Min(limit, s.reach(x))
-	}
-	_, reachable, err := intensity.Possible(s.Series.Cell, s.Series.Group, limit*(1+1e-9), s.Series.FriedelApart)
+	said := len(s.warnings)
+	out, remarks, list, err := s.describePositions(ctx)
 	if err != nil {
+		s.warnings = s.warnings[:said] // the next call says it again
 		return nil, err
 	}
-	var out []IntakeResult
-	for _, x := range list {
-		if err := ctx.Err(); err != nil {
-			return nil, err
-		}
-		r, err := s.intakeResult(ctx, x, s.Series.Crystals[x.crystal].byThickness()[0])
-		if err != nil {
-			return nil, err
-		}
-		r.InOthers = s.inOthers(x, list)
-		r.CommonDMin = 1 / (2 * math.Sqrt(limit))
-		r.CompletenessCommon = float64(s.within(x, limit)) / float64(len(reachable))
-		out = append(out, *r)
-		s.remarks = append(s.remarks, s.remarksOn(x.crystal, x.position, r)...)
-	}
-	s.sharing = s.commonResults(list)
-	s.centring = s.centringResults(list)
+	s.sharing, s.centring, s.remarks = s.commonResults(list), s.centringResults(list), remarks
 	for _, c := range s.centring {
 		if c.Verdict == evidence.Caution.String() || c.Verdict == evidence.Fails.String() {
 			s.warn("centring", "lattice "+c.Centring, "%s", c.Why)
@@ -81,6 +62,38 @@ func (s *Study) intakeResults(ctx context.Context) ([]IntakeResult, error) {
 	}
 	s.table = out
 	return out, nil
+}
+
+// describePositions describes every position by itself and against the limit that all
+// reach.
+func (s *Study) describePositions(ctx context.Context) (out []IntakeResult, remarks []IntakeRemark, list []*standing, err error) {
+	list = s.standings()
+	limit := math.Inf(1)
+	for _, x := range list {
+		if x.n == 0 {
+			return nil, nil, nil, fmt.Errorf("%s: the space group forbids every reflection of it: check the group and the indices", s.place(x.crystal, x.position))
+		}
+		limit = math.Min(limit, s.reach(x))
+	}
+	_, reachable, err := intensity.Possible(s.Series.Cell, s.Series.Group, limit*(1+1e-9), s.Series.FriedelApart)
+	if err != nil {
+		return nil, nil, nil, err
+	}
+	for _, x := range list {
+		if err := ctx.Err(); err != nil {
+			return nil, nil, nil, err
+		}
+		r, err := s.intakeResult(ctx, x, s.Series.Crystals[x.crystal].byThickness()[0])
+		if err != nil {
+			return nil, nil, nil, err
+		}
+		r.InOthers = s.inOthers(x, list)
+		r.CommonDMin = 1 / (2 * math.Sqrt(limit))
+		r.CompletenessCommon = float64(s.within(x, limit)) / float64(len(reachable))
+		out = append(out, *r)
+		remarks = append(remarks, s.remarksOn(x.crystal, x.position, r)...)
+	}
+	return out, remarks, list, nil
 }
 
 func (s *Study) intakeResult(ctx context.Context, x *standing, thin int) (*IntakeResult, error) {

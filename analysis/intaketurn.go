@@ -140,13 +140,13 @@ func (s *Study) ownTurn(o *intensity.Columns, r *TurnResult) *frame {
 		r.Why = fmt.Sprintf("%.3g degrees are too few to find the rotation", hi-lo)
 		return nil
 	}
-	x := s.scatteringVectors(o)
-	axis, err := evidence.RotationAxis(x, o.Phi)
+	x, phi := s.sampled(o)
+	axis, err := evidence.RotationAxis(x, phi)
 	if err == nil {
 		r.MisfitDeg = axis.ResidualDeg
 	}
 	if err != nil || axis.ResidualDeg > worstMisfitDeg {
-		if factor, misfit := otherUnit(x, o.Phi); factor != 0 {
+		if factor, misfit := otherUnit(x, phi); factor != 0 {
 			r.Verdict = evidence.Fails.String()
 			r.Why = fmt.Sprintf("the angles fit the cell and the indices only when multiplied by %.4g (misfit %.1f degrees): write angle_factor = %.6g for this position", factor, misfit, factor)
 			return nil
@@ -164,6 +164,27 @@ func (s *Study) ownTurn(o *intensity.Columns, r *TurnResult) *frame {
 	}
 	f := frameOf(axis)
 	return &f
+}
+
+// mostTurned is the number of observations beyond which every so many-th is looked at:
+// six numbers follow from far fewer.
+const mostTurned = 50000
+
+// sampled gives scattering vectors and angles, evenly thinned out.
+func (s *Study) sampled(o *intensity.Columns) (x [][3]float64, phi []float64) {
+	x, phi = s.scatteringVectors(o), o.Phi
+	stride := 1 + len(x)/mostTurned
+	if stride == 1 {
+		return x, phi
+	}
+	n := 0
+	thin := make([]float64, 0, len(phi)/stride+1)
+	for r := 0; r < len(phi); r += stride {
+		x[n] = x[r]
+		thin = append(thin, phi[r])
+		n++
+	}
+	return x[:n], thin
 }
 
 // otherUnit looks for a factor that makes angles fit: radians, and steps of a frame

@@ -113,6 +113,11 @@ func plainSymbol(s string) string {
 			break
 		}
 	}
+	for word, choice := range map[string]string{"hexagonal axes": "h", "rhombohedral axes": "r"} {
+		if head, tail, ok := strings.Cut(s, word); ok && strings.Trim(tail, " )") == "" {
+			s = strings.TrimRight(head, " (") + ":" + choice
+		}
+	}
 	s = strings.ReplaceAll(s, "\\bar", "-")
 	var out []rune
 	for _, r := range s {
@@ -136,13 +141,17 @@ func plainSymbol(s string) string {
 	return strings.ReplaceAll(strings.ReplaceAll(s, " /", "/"), "/ ", "/")
 }
 
-// splitChoice takes off a choice after a colon, and the H or R that ends a
-// rhombohedral symbol or begins it.
+// splitChoice takes off a choice after a colon, the H or R that ends a
+// rhombohedral symbol or begins it, and the S or Z with which older lists of symbols
+// write origin choices 1 and 2 (common practice, no source).
 func splitChoice(s string) (text, choice string) {
 	text, choice, colon := strings.Cut(s, ":")
 	text, choice = strings.TrimSpace(text), strings.TrimSpace(choice)
 	if n := len(text); !colon && n > 2 && text[0] == 'r' && (text[n-1] == 'h' || text[n-1] == 'r') {
 		text, choice = strings.TrimSpace(text[:n-1]), text[n-1:]
+	}
+	if n := len(text); !colon && n > 2 && (text[n-1] == 's' || text[n-1] == 'z') {
+		text, choice = strings.TrimSpace(text[:n-1]), map[byte]string{'s': "1", 'z': "2"}[text[n-1]]
 	}
 	if strings.HasPrefix(text, "h") && (choice == "" || choice == "h") {
 		text, choice = "r"+text[1:], "h"
