@@ -20,7 +20,7 @@ const tiltShare = 0.4
 // by an angle is 1/cos of it as thick along the beam, so that equivalents at high and
 // at low tilt are a contrast of their own, which shares neither specimen place nor dose with
 // the one between positions. ExtraNM is how much longer the way is on the mean at high
-// tilt, M the exchange from low to high tilt by one number, the model (m), and Slope
+// tilt, M the exchange from low to high tilt by one number, the model (m), SE its error, and Slope
 // mu = -ln(1-M) per 100 nm of way; on invented slabs it comes out 5 to 10 % low. Between is
 // the slope of the primary contrast by the same model, per 100 nm of thickness.
 type TiltSlope struct {
@@ -29,10 +29,10 @@ type TiltSlope struct {
 	Pairs    int      `json:"pairs"`
 	ExtraNM  float64  `json:"extra_nm"`
 	M        Interval `json:"m"`
+	SE       float64  `json:"se"`
 	Slope    Interval `json:"slope_per_100nm"`
 	Between  Interval `json:"slope_between_positions"`
 	Why      string   `json:"why,omitempty"`
-	se       float64
 }
 
 // tiltOf is the angle in degrees, 0 to 90, between the beam and the normal of a slab that
@@ -51,14 +51,14 @@ func (s *Study) tilt(ctx context.Context, x *Compared) (evidence.Finding, error)
 	if t.Why != "" {
 		return evidence.Finding{Value: math.NaN(), Verdict: evidence.NotKnown, Why: t.Why}, nil
 	}
-	return evidence.TiltOf(t.M.Value, t.se, t.Pairs), nil
+	return evidence.TiltOf(t.M.Value, t.SE, t.Pairs), nil
 }
 
 // tiltSlope reads the growth within the thick position of a contrast. What the data do not
 // allow stands in Why; an error is that of a cancelled context.
 func (s *Study) tiltSlope(ctx context.Context, x *Compared) (*TiltSlope, error) {
 	p := &s.Series.Crystals[x.Contrast.ThickCrystal].Positions[x.Contrast.Thick]
-	t := &TiltSlope{Crystal: s.Series.Crystals[x.Contrast.ThickCrystal].Name, Position: p.Name, ExtraNM: math.NaN(), M: none(), Slope: none(), Between: none(), se: math.NaN()}
+	t := &TiltSlope{Crystal: s.Series.Crystals[x.Contrast.ThickCrystal].Name, Position: p.Name, ExtraNM: math.NaN(), M: none(), Slope: none(), Between: none(), SE: math.NaN()}
 	switch {
 	case !p.HasTiltZero:
 		t.Why = "tilt_zero_deg, the angle at which the slab faces the beam, is not given"
@@ -90,7 +90,7 @@ func (s *Study) tiltSlope(ctx context.Context, x *Compared) (*TiltSlope, error) 
 		t.Why = err.Error()
 		return t, nil
 	}
-	t.Pairs, t.M, t.se = pairs.Len(), intervalOf(v.M), v.M.SE
+	t.Pairs, t.M, t.SE = pairs.Len(), intervalOf(v.M), v.M.SE
 	t.ExtraNM = p.ThicknessNM * extraWay(x.thick, pairs, a, b, zero)
 	t.Slope = s.perWay(v.M.Value, v.M.SE, t.ExtraNM)
 	for _, m := range x.Result.Models {
