@@ -2,6 +2,7 @@ package cif
 
 import (
 	"math"
+	"slices"
 
 	"thinward/analysis/intensity"
 	"thinward/io/internal/text"
@@ -191,15 +192,7 @@ func (l *list) describe() List {
 	}
 	d.Line = l.line(0)
 	for j, x := range [3][]int16{l.raw.H, l.raw.K, l.raw.L} {
-		lo, hi := math.MaxInt16, math.MinInt16
-		for _, v := range x {
-			if v != text.NullIndex {
-				lo, hi = min(lo, int(v)), max(hi, int(v))
-			}
-		}
-		if lo <= hi {
-			d.MinHKL[j], d.MaxHKL[j] = lo, hi
-		}
+		d.MinHKL[j], d.MaxHKL[j] = indexBounds(x)
 	}
 	if d.Intensity != "" {
 		d.MinIntensity, d.MaxIntensity = bounds(l.raw.I)
@@ -219,18 +212,33 @@ func (l *list) merged() bool {
 	return lo == hi
 }
 
-func bounds(x []float64) (lo, hi float64) {
-	lo, hi = math.Inf(1), math.Inf(-1)
+func indexBounds(x []int16) (low, high int) {
+	var lo, hi int16 = math.MaxInt16, math.MinInt16
 	for _, v := range x {
-		if v < lo {
+		if v < lo && v != text.NullIndex {
 			lo = v
 		}
-		if v > hi {
+		hi = max(hi, v)
+	}
+	if hi == text.NullIndex {
+		return 0, 0
+	}
+	return int(lo), int(hi)
+}
+
+// bounds passes over NaN, which compares with nothing.
+func bounds(x []float64) (lo, hi float64) {
+	first := slices.IndexFunc(x, func(v float64) bool { return v == v })
+	if first < 0 {
+		return 0, 0
+	}
+	lo, hi = x[first], x[first]
+	for _, v := range x[first:] {
+		if v < lo {
+			lo = v
+		} else if v > hi {
 			hi = v
 		}
-	}
-	if lo > hi {
-		return 0, 0
 	}
 	return lo, hi
 }
