@@ -139,46 +139,11 @@ const (
 // order for multiple scattering, so that it may be what frames leave of their
 // scale. Errors as of Bleed.
 func DoubleScattering(c *Crossings) (*Slope, error) {
-	if err := c.check(); err != nil {
+	d, err := c.double()
+	if err != nil {
 		return nil, err
 	}
-	order, span := c.onFrames()
-	step := 1 + (len(c.I)-1)/mostCrossings
-	var rows []int32
-	for o := 0; o < len(c.I); o += step {
-		rows = append(rows, int32(o))
-	}
-	slices.SortFunc(rows, func(a, b int32) int { return cmp.Or(cmp.Compare(c.Frame[a], c.Frame[b]), cmp.Compare(a, b)) })
-	unique := make([]int32, len(rows))
-	y, x, v, total := make([]float64, len(rows)), make([]float64, len(rows)), make([]float64, len(rows)), make([]float64, len(rows))
-	var list []int32
-	strength := map[index]float64{}
-	sum := 0.0
-	for i, o := range rows {
-		if i == 0 || c.Frame[o] != c.Frame[rows[i-1]] {
-			list, sum = list[:0], 0
-			clear(strength)
-			c.near(order, span, c.Frame[o], func(n int32) {
-				list = append(list, n)
-				sum += c.Signal[n] / c.Scale[n]
-			})
-			slices.SortFunc(list, func(a, b int32) int {
-				return cmp.Or(cmp.Compare(c.Signal[b]/c.Scale[b], c.Signal[a]/c.Scale[a]), cmp.Compare(a, b))
-			})
-			list = list[:min(len(list), mostOnFrame)]
-			for _, n := range list {
-				strength[index{c.H[n], c.K[n], c.L[n]}] = c.Signal[n] / c.Scale[n]
-			}
-		}
-		for _, n := range list {
-			rest := index{c.H[o] - c.H[n], c.K[o] - c.K[n], c.L[o] - c.L[n]}
-			if j, ok := strength[rest]; ok {
-				x[i] += j * c.Signal[n] / c.Scale[n]
-			}
-		}
-		unique[i], y[i], v[i], total[i] = c.Unique[o], c.I[o], c.Var[o], sum
-	}
-	return WithinEquivalents(unique, y, x, v, total)
+	return WithinEquivalents(d.unique, d.y, d.x, d.v, d.total)
 }
 
 // Jitter is the relative scatter Tau of whole frames, by moments

@@ -25,28 +25,11 @@ type Slope struct {
 // x the same way. Unique numbers are not negative. Errors: unequal lengths, no group
 // with two members in which x varies.
 func WithinEquivalents(unique []int32, y, x, v, covariate []float64) (*Slope, error) {
-	n := len(unique)
-	if len(y) != n || len(x) != n || len(v) != n || (covariate != nil && len(covariate) != n) {
-		return nil, fmt.Errorf("evidence: WithinEquivalents: columns differ in length")
+	g, err := newWithin(unique, y, x, v, covariate)
+	if err != nil {
+		return nil, err
 	}
-	g := groupsOf(unique)
-	yc, xc := g.centred(unique, y), g.centred(unique, x)
-	w := g.weights(unique, v)
-	if covariate != nil {
-		tc := g.centred(unique, covariate)
-		num, den := 0.0, 0.0
-		for o, u := range unique {
-			if g.count[u] > 1 {
-				num += w[u] * xc[o] * tc[o]
-				den += w[u] * tc[o] * tc[o]
-			}
-		}
-		if den > 0 {
-			for o := range xc {
-				xc[o] -= num / den * tc[o]
-			}
-		}
-	}
+	w, xc, yc := g.weight, g.x, g.y
 	ssx, ssy := make([]float64, len(g.count)), make([]float64, len(g.count))
 	out := &Slope{}
 	sum, square := 0.0, 0.0
@@ -71,6 +54,38 @@ func WithinEquivalents(unique []int32, y, x, v, covariate []float64) (*Slope, er
 	}
 	out.Value, out.SE, out.Z = sum/square, math.Sqrt(variance)/square, sum/math.Sqrt(variance)
 	return out, nil
+}
+
+// deviations are columns less their means within groups, x less what goes with the
+// covariate too, and the weight of each group.
+type deviations struct {
+	groups
+	y, x, weight []float64
+}
+
+func newWithin(unique []int32, y, x, v, covariate []float64) (*deviations, error) {
+	n := len(unique)
+	if len(y) != n || len(x) != n || len(v) != n || (covariate != nil && len(covariate) != n) {
+		return nil, fmt.Errorf("evidence: WithinEquivalents: columns differ in length")
+	}
+	g := groupsOf(unique)
+	d := &deviations{groups: g, y: g.centred(unique, y), x: g.centred(unique, x), weight: g.weights(unique, v)}
+	if covariate != nil {
+		tc := g.centred(unique, covariate)
+		num, den := 0.0, 0.0
+		for o, u := range unique {
+			if g.count[u] > 1 {
+				num += d.weight[u] * d.x[o] * tc[o]
+				den += d.weight[u] * tc[o] * tc[o]
+			}
+		}
+		if den > 0 {
+			for o := range d.x {
+				d.x[o] -= num / den * tc[o]
+			}
+		}
+	}
+	return d, nil
 }
 
 // groups counts the observations of each unique number.

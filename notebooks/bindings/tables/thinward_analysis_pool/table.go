@@ -20,6 +20,7 @@ func init() {
 			"LeaveOneOut":   reflect.ValueOf(pool.LeaveOneOut),
 			"PauleMandel":   reflect.ValueOf(pool.PauleMandel),
 			"Signs":         reflect.ValueOf(pool.Signs),
+			"TauInterval":   reflect.ValueOf(pool.TauInterval),
 			"ThroughOrigin": reflect.ValueOf(pool.ThroughOrigin),
 			"Visible":       reflect.ValueOf(pool.Visible),
 			"York":          reflect.ValueOf(pool.York),
