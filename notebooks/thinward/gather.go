@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"slices"
 	"strings"
 	"text/tabwriter"
 
@@ -29,8 +30,9 @@ type gathered struct {
 }
 
 type gatheredReport struct {
-	Folder string `json:"folder"`
-	Series string `json:"series"`
+	Folder string   `json:"folder"`
+	Series string   `json:"series"`
+	Fails  []string `json:"ledger_fails,omitempty"` // checks that the ledger of the report says fail
 }
 
 type gatheredCrystal struct {
@@ -44,6 +46,7 @@ type gatheredCrystal struct {
 	SE          float64    `json:"se"`
 	Lo          float64    `json:"lo"`
 	Hi          float64    `json:"hi"`
+	F           float64    `json:"f"`
 	Weight      float64    `json:"weight"`
 	Why         string     `json:"why,omitempty"`
 }
@@ -62,6 +65,8 @@ type gatheredMean struct {
 	Q         float64           `json:"q"`
 	QP        float64           `json:"q_p"`
 	Tau2      float64           `json:"tau2"`
+	TauLo     float64           `json:"tau_lo"` // the spread that the crystals allow, by the Q-profile
+	TauHi     float64           `json:"tau_hi"`
 	I2        float64           `json:"i2"`
 	Why       string            `json:"why,omitempty"`
 }
@@ -115,7 +120,13 @@ func gatherReports(paths []string) (*gathered, error) {
 }
 
 func (g *gathered) add(path string, r *analysis.Result) {
-	g.Reports = append(g.Reports, gatheredReport{Folder: path, Series: r.Series})
+	report := gatheredReport{Folder: path, Series: r.Series}
+	for _, e := range r.Ledger {
+		if e.Verdict == analysis.VerdictFails && !slices.Contains(report.Fails, e.Check) {
+			report.Fails = append(report.Fails, e.Check)
+		}
+	}
+	g.Reports = append(g.Reports, report)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
 		if !c.Primary || c.ThickCrystal != "" {
@@ -123,7 +134,7 @@ func (g *gathered) add(path string, r *analysis.Result) {
 		}
 		k := gatheredCrystal{
 			Report: path, Crystal: c.Crystal, Contrast: c.Thin + " - " + c.Thick, ThicknessNM: c.ThicknessNM, Axis: c.StrengthAxis, Model: c.Exchange.Model,
-			M: c.Exchange.M, SE: c.Exchange.SE, Lo: c.Exchange.Lo, Hi: c.Exchange.Hi, Why: c.Exchange.Why,
+			M: c.Exchange.M, SE: c.Exchange.SE, Lo: c.Exchange.Lo, Hi: c.Exchange.Hi, F: c.Exchange.F, Why: c.Exchange.Why,
 		}
 		if math.IsNaN(k.M) || !(k.SE > 0) || math.IsInf(k.SE, 0) {
 			if k.Why == "" {
@@ -191,6 +202,9 @@ func meanOf(y, se []float64) (*gatheredMean, error) {
 		InThese:   analysis.Interval{Value: e.Fixed, Lo: e.FixedLo, Hi: e.FixedHi},
 		LikeThese: analysis.Interval{Value: e.Random, Lo: e.RandomLo, Hi: e.RandomHi},
 	}
+	if r.TauLo, r.TauHi, err = pool.TauInterval(y, se, 0); err != nil {
+		return nil, err
+	}
 	if e.Estimable {
 		r.Tau2, r.I2 = e.Tau2, e.I2
 	} else {
@@ -202,13 +216,30 @@ func meanOf(y, se []float64) (*gatheredMean, error) {
 	return r, nil
 }
 
+// weakF is the first-stage F below which the standard error of m is too short (the report
+// then prints an Anderson-Rubin interval).
+const weakF = 50
+
 func (g *gathered) caution() {
+	for _, r := range g.Reports {
+		if len(r.Fails) > 0 {
+			g.Cautions = append(g.Cautions, fmt.Sprintf("%s: its ledger says that %s fails: read there before you count on its m.", r.Folder, strings.Join(r.Fails, ", ")))
+		}
+	}
 	axes, models := map[string]bool{}, map[string]bool{}
+	owner := map[string]string{}
 	lo, hi := math.Inf(1), 0.0
 	for _, k := range g.Crystals {
 		if math.IsNaN(k.SE) {
 			g.Cautions = append(g.Cautions, fmt.Sprintf("%s, %s: left out: %s.", k.Report, k.Crystal, k.Why))
 			continue
+		}
+		if other, ok := owner[k.Crystal]; ok && other != k.Report {
+			g.Cautions = append(g.Cautions, fmt.Sprintf("%s and %s both hold a crystal %s, from different files: one and the same crystal must not count twice.", other, k.Report, k.Crystal))
+		}
+		owner[k.Crystal] = k.Report
+		if k.F > 0 && k.F < weakF {
+			g.Cautions = append(g.Cautions, fmt.Sprintf("%s, %s: its strength axis is weak (F = %.0f), so that its error is too short and its weight too large.", k.Report, k.Crystal, k.F))
 		}
 		axes[k.Axis], models[k.Model] = true, true
 		lo, hi = math.Min(lo, k.ThicknessNM[1]-k.ThicknessNM[0]), math.Max(hi, k.ThicknessNM[1]-k.ThicknessNM[0])
@@ -249,6 +280,9 @@ func (g *gathered) print(w io.Writer) error {
 	fmt.Fprintf(&b, "\nHeterogeneity Q = %.1f on %d degrees of freedom, p = %s", g.M.Q, g.M.N-1, dash(g.M.QP, 3))
 	if g.M.Why == "" {
 		fmt.Fprintf(&b, "; tau = %.4f, I^2 = %.0f %%", math.Sqrt(g.M.Tau2), 100*g.M.I2)
+	}
+	if g.M.N > 1 {
+		fmt.Fprintf(&b, ". The spread between crystals lies from %.4f to %.4f (Q-profile)", g.M.TauLo, g.M.TauHi)
 	}
 	fmt.Fprintf(&b, ".\n%d of %d crystals have the same sign (p = %.3g; the smallest that so many can reach is %.3g).\n", g.SameSign, g.M.N, g.SignP, g.SmallestP)
 	if g.Slope != nil {
