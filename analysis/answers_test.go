@@ -239,6 +239,13 @@ func TestAnswerThicknessAsksForALine(t *testing.T) {
 	if text := withinText(tilt[1:]); text != "" {
 		t.Error(text)
 	}
+	// Standard errors of 0.0051 each: 0.0216 is three of the difference.
+	for between, less := range map[float64]bool{0.080: false, 0.085: true} {
+		tilt[0].Between = Interval{Value: between, Lo: between - 0.01, Hi: between + 0.01}
+		if text := withinText(tilt[:1]); strings.Contains(text, "in 1 of 1 the longer way does less") != less {
+			t.Errorf("%g: %s", between, text)
+		}
+	}
 	if a := answerThickness(&Result{Thickness: &ThicknessResult{Slope: flat.Slope, Lines: []ThicknessLine{flat}, Across: line}}); len(a.Detail) != 1 {
 		t.Errorf("%q", a.Detail)
 	}
