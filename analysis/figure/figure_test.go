@@ -89,7 +89,7 @@ func all() map[string]drawer {
 	for i := range bars.Parts {
 		bars.Parts[i].Share = bars.Parts[i].Share[:2]
 	}
-	return map[string]drawer{"strength": strengthPanels(), "forest": forest(), "points": cloud(60), "hexagons": cloud(2500), "shares": shares(), "bars": bars, "joined": joined(), "log": logged}
+	return map[string]drawer{"strength": strengthPanels(), "forest": forest(), "points": cloud(60), "hexagons": cloud(2500), "cumulative": cumulative(), "forestcolumns": forestColumns(), "shares": shares(), "bars": bars, "joined": joined(), "log": logged}
 }
 
 func drawn(t *testing.T, d drawer) *Figure {
