@@ -15,29 +15,72 @@ func (s *Session) Answer() *View {
 	b.WriteString(`<div class="cards">`)
 	for _, a := range r.Answers {
 		fmt.Fprintf(&b, `<article class="card verdict-%s"><h3>%s</h3><p class="verdict">%s%s</p><p>%s</p>%s<p class="more"><a href="#%s">Where this comes from</a></p></article>`,
-			strings.ReplaceAll(a.Verdict, " ", "-"), html.EscapeString(a.Question), mark(a.Verdict), html.EscapeString(a.Verdict), html.EscapeString(a.Text), bullets(a.Detail), a.Section)
-		fmt.Fprintf(&p, "%s [%s]\n  %s\n", a.Question, a.Verdict, a.Text)
+			strings.ReplaceAll(a.Verdict, " ", "-"), html.EscapeString(a.Question), mark(a.Verdict), html.EscapeString(a.Verdict), html.EscapeString(prose(a.Text)), bullets(a.Detail), a.Section)
+		fmt.Fprintf(&p, "%s [%s]\n  %s\n", a.Question, a.Verdict, prose(a.Text))
 		for _, d := range a.Detail {
-			fmt.Fprintf(&p, "  - %s\n", d)
+			fmt.Fprintf(&p, "  - %s\n", prose(d))
 		}
 	}
 	b.WriteString("</div>")
 	return &View{Title: "The answer", HTML: b.String(), Plain: p.String()}
 }
 
-// Cautions shows the ledger: every confounder with a figure, a verdict and why.
-func (s *Session) Cautions() *View {
-	r := s.Result()
-	g := newGrid("The ledger of confounders", "check", "where", "value", "unit", "verdict", "why").words(1, 3, 4, 5)
-	g.verdict = 4
+// Cautions shows the ledger: every confounder with a figure, a verdict and why; what
+// asks for care first, what is fine folded below it.
+func (s *Session) Cautions() *View { return cautions(s.Result()) }
+
+func cautions(r *analysis.Result) *View {
+	table := func(caption string) *grid {
+		g := newGrid(caption, "check", "where", "value", "unit", "verdict", "why").words(1, 3, 4, 5)
+		g.verdict = 4
+		return g
+	}
+	all, care, fine := table("The ledger of confounders"), table("The ledger of confounders: what asks for care"), table("The ledger of confounders: what is fine")
+	names := places(r)
 	for _, verdict := range []string{analysis.VerdictFails, analysis.VerdictCaution, analysis.VerdictUnknown, analysis.VerdictFine} {
 		for _, e := range r.Ledger {
-			if e.Verdict == verdict {
-				g.add(e.Check, e.Where, auto(e.Value), e.Unit, e.Verdict, e.Why)
+			if e.Verdict != verdict {
+				continue
+			}
+			place, why := farthest(e.Why, names)
+			where := e.Where
+			if place != "" {
+				where += ", farthest in " + place
+			}
+			row := []string{e.Check, where, auto(e.Value), e.Unit, e.Verdict, why}
+			all.add(row...)
+			if verdict == analysis.VerdictFine {
+				fine.add(row...)
+			} else {
+				care.add(row...)
 			}
 		}
 	}
-	return g.view("Cautions")
+	v := all.view("Cautions")
+	switch {
+	case len(care.rows) == 0:
+	case len(fine.rows) == 0:
+		v.HTML = care.html()
+	default:
+		checks := "checks that are"
+		if len(fine.rows) == 1 {
+			checks = "check that is"
+		}
+		v.HTML = care.html() + fmt.Sprintf("<details><summary>%d %s fine</summary>%s</details>", len(fine.rows), checks, fine.html())
+	}
+	return v
+}
+
+// places lists the names that an entry of the ledger can be about.
+func places(r *analysis.Result) []string {
+	out := crystalsOf(r)
+	for i := range r.Intake {
+		out = append(out, r.Intake[i].Crystal+"/"+r.Intake[i].Position)
+	}
+	for i := range r.Contrasts {
+		out = append(out, strings.ReplaceAll(contrastName(&r.Contrasts[i]), "\u2212", "-"))
+	}
+	return out
 }
 
 // Warnings shows what the steps had to say about the data.
@@ -65,7 +108,7 @@ func bullets(list []string) string {
 	var b strings.Builder
 	b.WriteString(`<ul class="detail">`)
 	for _, s := range list {
-		b.WriteString("<li>" + html.EscapeString(s) + "</li>")
+		b.WriteString("<li>" + html.EscapeString(bound(prose(s))) + "</li>")
 	}
 	return b.String() + "</ul>"
 }

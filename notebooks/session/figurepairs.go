@@ -26,7 +26,7 @@ func (s *Session) Pairs() *View {
 func pairsView(r *analysis.Result, rows []analysis.PairRow) *View {
 	fv := &figureView{title: "Every pair", pick: "Crystal", empty: "No pair has a strength on the leading axis.",
 		caption: "One point a pair of reflections (hexagons of counts when there are many), with the moving mean over them: the pattern is small beside the scatter of single reflections, so no single reflection proves or refutes it. Draw a frame on the plot to list the reflections under it."}
-	g := newGrid("The most changed reflections by z", "contrast", "h k l", "d (\u00c5)", "strength", "thin \u2212 thick, local means", "z").words(1)
+	g := newGrid("The most changed reflections by z", "contrast", "h k l", "d (\u00c5)", "strength", "difference, local means", "z").words(1)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
 		if !c.Primary {
@@ -42,8 +42,9 @@ func pairsView(r *analysis.Result, rows []analysis.PairRow) *View {
 		if len(list) == 0 {
 			continue
 		}
-		f := &figure.Cloud{Title: "Every pair, thin minus thick against strength, " + contrastName(c), Desc: fmt.Sprintf("%d pairs with the moving mean of the difference.", len(list)),
-			X: figure.Axis{Label: "strength (" + c.StrengthAxis + ")", Scale: figure.Root}, Y: figure.Axis{Label: "thin \u2212 thick, in local means", Zero: true},
+		one := pairing{list: []*analysis.ContrastResult{c}}
+		f := &figure.Cloud{Width: singleWide, Height: 1.1 * singleHigh, Title: "Every pair, difference against strength, " + contrastName(c), Desc: fmt.Sprintf("%d pairs with the moving mean of the difference.", len(list)),
+			X: figure.Axis{Label: "strength (" + c.StrengthAxis + ")", Scale: figure.Root}, Y: figure.Axis{Label: one.difference() + ", in local means", Zero: true},
 			Over: []figure.Curve{{Name: "moving mean", X: c.Strength.Grid, Y: c.Strength.Mean}}}
 		for _, p := range list {
 			f.PX, f.PY = append(f.PX, p.Strength), append(f.PY, p.Eps)
@@ -90,7 +91,8 @@ func byChange(list []*analysis.PairRow) []int {
 }
 
 func changedTable(c *analysis.ContrastResult, list []*analysis.PairRow, order []int) *grid {
-	g := newGrid("The most changed reflections of "+contrastName(c), "h k l", "d (\u00c5)", "strength", "J thin", "J thick", "thin \u2212 thick, local means", "z")
+	thin, thick := (&pairing{list: []*analysis.ContrastResult{c}}).sides()
+	g := newGrid("The most changed reflections of "+contrastName(c), "h k l", "d (\u00c5)", "strength", "J "+thin, "J "+thick, thin+" \u2212 "+thick+", local means", "z")
 	for _, k := range order[:min(len(order), changed)] {
 		p := list[k]
 		g.add(fmt.Sprint(p.HKL.H, " ", p.HKL.K, " ", p.HKL.L), number(p.D, 2), number(p.Strength, 2), auto(p.JThin)+" \u00b1 "+auto(p.SUThin), auto(p.JThick)+" \u00b1 "+auto(p.SUThick), number(p.Eps, 3), number(p.Z, 1))

@@ -15,20 +15,21 @@ func (s *Session) ByStrength() *View { return byStrength(s.upTo(stepDifferences)
 
 // differenceLabel stands on axes with a signed root, which show the small
 // differences of weak reflections beside the large ones of strong reflections.
-const differenceLabel = "thin \u2212 thick, in local means (root scale)"
+func differenceLabel(contrast string) string { return contrast + ", in local means (root scale)" }
 
 func byStrength(r *analysis.Result) *View {
 	fv := &figureView{
 		title: "Differences against strength", pick: "Contrast",
-		caption: "Bands by angle blocks draw 2.5 degrees of the rotation as one: a width ratio well above 1 says that neighbouring frames share an error, and the wider band is then the honest one. Look where the band leaves the line of no difference: below it at the weak end and above it at the strong end, the thick position has gained in weak reflections and lost in strong ones. " +
-			"The dark band holds at each strength alone, the pale one with dotted edges over the whole curve, both for the averaged curve on this axis.",
+		caption: "Look where the band leaves the line of no difference: below it at the weak end and above it at the strong end, the thicker position has gained in weak reflections and lost in strong ones. " +
+			"The dark band holds at each strength alone, the pale one with dotted edges over the whole curve, both for the averaged curve on this axis. " +
+			"Bands by angle blocks draw 2.5 degrees of the rotation as one: a width ratio well above 1 says that neighbouring frames share an error, and the wider band is then the honest one.",
 	}
 	g := newGrid("Differences against strength, thin minus thick in local means", "contrast", "axis", "pairs", "p of the curve", "p by angle blocks", "width by angle blocks", "weakest: strength", "difference", "interval", "strongest: strength", "difference", "interval").words(1)
 	for _, set := range pairings(r) {
 		p := &figure.Panels{
-			Title: "Thin minus thick against strength, " + set.name, Desc: strengthDesc(set),
+			Title: "Difference against strength, " + set.name, Desc: strengthDesc(set),
 			X: figure.Axis{Label: "strength (" + set.list[0].StrengthAxis + ")", Scale: figure.Root},
-			Y: figure.Axis{Label: differenceLabel, Zero: true, Scale: figure.Root},
+			Y: figure.Axis{Label: differenceLabel(set.difference()), Zero: true, Scale: figure.Root},
 		}
 		for _, c := range set.list {
 			x := &c.Strength
@@ -101,19 +102,18 @@ func naive(r *analysis.Result) *View {
 		if !c.Primary {
 			continue
 		}
+		one := pairing{list: []*analysis.ContrastResult{c}}
+		thin, thick := one.sides()
 		p := &figure.Panels{
-			Title: "Thin minus thick against measured intensity, " + contrastName(c), Desc: "Moving mean of the difference, and the ghost that noise alone draws, against three measured intensities. ",
-			X: figure.Axis{Label: "intensity over local mean", Scale: figure.Root}, Y: figure.Axis{Label: differenceLabel, Zero: true, Scale: figure.Root},
+			Title: "Difference against measured intensity, " + contrastName(c), Desc: "Moving mean of the difference, and the ghost that noise alone draws, against three measured intensities. ",
+			X: figure.Axis{Label: "intensity over local mean", Scale: figure.Root}, Y: figure.Axis{Label: differenceLabel(one.difference()), Zero: true, Scale: figure.Root},
 		}
 		for _, axis := range []string{"thin", "thick", "mean"} {
 			n, ok := c.Naive[axis]
 			if !ok {
 				continue
 			}
-			name := "against the " + axis + " position"
-			if axis == "mean" {
-				name = "against the mean of both"
-			}
+			name := map[string]string{"thin": "against position " + thin, "thick": "against position " + thick, "mean": "against the mean of both"}[axis]
 			p.Panel = append(p.Panel, figure.Panel{Name: name, Curves: []figure.Curve{
 				{Name: "measured", X: n.Grid, Y: n.Mean}, {Name: "ghost of noise", X: n.Grid, Y: n.Ghost, Style: figure.Ghost}}})
 			p.Desc += fmt.Sprintf("%s: score %s, of which noise alone %s. ", name, number(n.Score, 1), number(n.GhostScore, 1))
@@ -131,14 +131,15 @@ func (s *Session) ByResolution() *View { return byResolution(s.upTo(stepDifferen
 func byResolution(r *analysis.Result) *View {
 	fv := &figureView{
 		title: "Differences against resolution", pick: "Contrast",
-		caption: "A slope means that the ratio of thick to thin changes with resolution; the dashed line is the part that a difference of B takes up, and what stands off it B cannot explain. " +
+		caption: "A slope means that the ratio of the thicker to the thinner position changes with resolution; the dashed line is the part that a difference of B takes up, and what stands off it B cannot explain. " +
 			"A B factor, radiation damage, redistribution by thickness, background and saturation of the detector look alike here. The line is drawn through sums of intensity, which few strong reflections carry and in which curb and offset count; the B of the scale, which weighs every reflection by its error, stands beside it.",
 	}
 	g := newGrid("Ratio of the positions by resolution", "contrast", "shells", "difference of B (\u00c5\u00b2)", "interval", "share that B explains", "B of the scale (\u00c5\u00b2)")
 	for _, set := range pairings(r) {
+		thin, thick := set.sides()
 		p := &figure.Panels{
-			Title: "Logarithm of thick over thin against resolution, " + set.name, Desc: "Mean logarithm of the ratio by shell with intervals, and the line that a difference of B means, one panel a crystal. ",
-			X: figure.Axis{Label: "d (\u00c5), even in 1/d\u00b2", Column: "1/d\u00b2 (\u00c5\u207b\u00b2)"}, Y: figure.Axis{Label: "ln \u27e8I thick\u27e9 / \u27e8I thin\u27e9", Zero: true},
+			Title: "Logarithm of the ratio of both positions against resolution, " + set.name, Desc: "Mean logarithm of the ratio by shell with intervals, and the line that a difference of B means, one panel a crystal. ",
+			X: figure.Axis{Label: "d (\u00c5), even in 1/d\u00b2", Column: "1/d\u00b2 (\u00c5\u207b\u00b2)"}, Y: figure.Axis{Label: "ln \u27e8I " + thick + "\u27e9 / \u27e8I " + thin + "\u27e9", Zero: true},
 		}
 		var all []float64
 		for _, c := range set.list {

@@ -26,6 +26,9 @@ func made() *analysis.Result {
 			nm := 140 + 80*float64(j)
 			r.Intake = append(r.Intake, analysis.IntakeResult{Crystal: name, Position: p, ThicknessNM: nm})
 			r.Scaling = append(r.Scaling, analysis.ScalingResult{Crystal: name, Position: p, CurveDeg: []float64{-50, 0, 50}, CurveLnK: []float64{0.1, 0, -0.1 * float64(j)}})
+			for _, kind := range []string{"acentric", "centric"} {
+				r.Distributions = append(r.Distributions, analysis.Distribution{Crystal: name, Position: p, Kind: kind, N: 400, Z: []float64{0.1, 0.5, 1}, Below: []float64{0.1 - 0.03*float64(j), 0.39, 0.63}, BelowTheory: []float64{0.1, 0.39, 0.63}})
+			}
 			r.Forbidden = append(r.Forbidden, analysis.Forbidden{Crystal: name, Position: p, Element: "all", N: 12, Ratio: 0.02 + 0.04*float64(j), SU: 0.01})
 		}
 		for _, pair := range [][2]string{{"thin", "thick"}, {"thin", "mid"}} {
@@ -68,7 +71,7 @@ func madePairs(n int) []analysis.PairRow {
 func views(r *analysis.Result, pairs []analysis.PairRow) map[string]*View {
 	return map[string]*View{
 		"strength": byStrength(r), "naive": naive(r), "resolution": byResolution(r), "pairs": pairsView(r, pairs), "scale": scaleCurves(r), "sizes": sizesFigure(r),
-		"thickness": thicknessFigure(r), "specification": specificationFigure(r), "controls": controlsFigure(r), "forbidden": forbiddenFigure(r), "budget": budgetFigure(r), "curb": curbFigure(r),
+		"thickness": thicknessFigure(r), "specification": specificationFigure(r), "controls": controlsFigure(r), "forbidden": forbiddenFigure(r), "budget": budgetFigure(r), "curb": curbFigure(r), "distributions": distributionsFigure(r),
 	}
 }
 

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"sort"
+	"strings"
 
 	"thinward/analysis"
 	"thinward/analysis/figure"
@@ -152,15 +153,19 @@ func thicknessFigure(r *analysis.Result) *View {
 // normal95 is the 97.5 % point of the standard normal distribution.
 const normal95 = 1.959963984540054
 
-// SpecificationFigure shows m under every other choice.
+// SpecificationFigure shows m under every other choice, one column a crystal.
 func (s *Session) SpecificationFigure() *View { return specificationFigure(s.upTo(stepSpecification)) }
 
+// columnsShown bounds the crystals that stand beside one another.
+const columnsShown = 4
+
 func specificationFigure(r *analysis.Result) *View {
-	fv := &figureView{title: "m under other choices", pick: "Crystal", empty: "No other choices were tried.",
-		caption: "Every row is the same data under one choice changed; the square is the leading analysis. A row that leaves its interval shows a choice that matters; rows of axes that share noise or deviations with the difference are known to err and stand here to be compared."}
+	fv := &figureView{title: "m under other choices", pick: "Crystals", empty: "No other choices were tried.",
+		caption: "Every row is the same data under one choice changed; the square is the leading analysis, and the pale band behind it its interval. A row that leaves the band shows a choice that matters; rows of axes that share noise or deviations with the difference are known to err and stand here to be compared."}
 	g := newGrid("m under other choices", "crystal", "choice", "level", "m", "interval").words(1, 2)
+	var columns []figure.ForestColumn
 	for _, name := range crystalsOf(r) {
-		f := &figure.Forest{Title: "m under other choices, crystal " + name, Desc: "Estimate and interval of m with one choice of the analysis changed at a time.", X: figure.Axis{Label: "exchange m", Zero: true}}
+		c := figure.ForestColumn{Name: name}
 		for _, x := range r.Specification {
 			if x.Crystal != name {
 				continue
@@ -169,12 +174,22 @@ func specificationFigure(r *analysis.Result) *View {
 			if x.Leading {
 				level = "the leading analysis"
 			}
-			f.Rows = append(f.Rows, figure.Row{Group: x.Choice, Name: level, Value: x.M.Value, Lo: x.M.Lo, Hi: x.M.Hi, Lead: x.Leading, Note: x.M.Why})
+			c.Rows = append(c.Rows, figure.Row{Group: x.Choice, Name: level, Value: x.M.Value, Lo: x.M.Lo, Hi: x.M.Hi, Lead: x.Leading, Note: x.M.Why})
 			g.add(name, x.Choice, x.Level, number(x.M.Value, 3), between(x.M.Lo, x.M.Hi, 3))
 		}
-		if len(f.Rows) > 0 {
-			fv.add(name, f)
+		if len(c.Rows) > 0 {
+			columns = append(columns, c)
 		}
+	}
+	for len(columns) > 0 {
+		some := columns[:min(len(columns), columnsShown)]
+		columns = columns[len(some):]
+		var names []string
+		for _, c := range some {
+			names = append(names, c.Name)
+		}
+		list := strings.Join(names, ", ")
+		fv.add(list, &figure.ForestColumns{Title: "m under other choices, " + list, Desc: "Estimate and interval of m with one choice of the analysis changed at a time, one column a crystal.", X: figure.Axis{Label: "exchange m", Zero: true}, Columns: some})
 	}
 	fv.summary = g
 	return fv.view()
@@ -188,15 +203,37 @@ func controlsFigure(r *analysis.Result) *View {
 		caption: "The dashed tick is the m that the control must find; an interval that misses it says that this pipeline errs on these data, and the table says what each control can and cannot see."}
 	g := newGrid("Controls", "control", "crystal", "expected m", "found m").words(1)
 	f := &figure.Forest{Title: "Controls: m found and expected", Desc: "Estimate and interval of m in each control, with the expected value.", X: figure.Axis{Label: "exchange m", Zero: true}}
-	for _, c := range r.Controls {
-		f.Rows = append(f.Rows, figure.Row{Group: c.Control, Name: c.Crystal, Value: c.M.Value, Lo: c.M.Lo, Hi: c.M.Hi, Target: c.Expected, HasTarget: !math.IsNaN(c.Expected), Note: c.Why})
-		g.add(c.Control, c.Crystal, number(c.Expected, 3), withInterval(c.M, 3))
+	for _, c := range byControl(r.Controls) {
+		f.Rows = append(f.Rows, figure.Row{Group: c.Control, Name: allCrystals(c.Crystal), Value: c.M.Value, Lo: c.M.Lo, Hi: c.M.Hi, Target: c.Expected, HasTarget: !math.IsNaN(c.Expected), Note: c.Why})
+		g.add(c.Control, allCrystals(c.Crystal), number(c.Expected, 3), withInterval(c.M, 3))
 	}
 	fv.summary = g
 	if len(f.Rows) > 0 {
 		fv.add("", f)
 	}
 	return fv.view()
+}
+
+// byControl brings the controls of one kind together, each kind where its first one
+// stands.
+func byControl(list []analysis.ControlResult) []analysis.ControlResult {
+	first := map[string]int{}
+	for i := range list {
+		if _, ok := first[list[i].Control]; !ok {
+			first[list[i].Control] = i
+		}
+	}
+	out := append([]analysis.ControlResult(nil), list...)
+	sort.SliceStable(out, func(i, j int) bool { return first[out[i].Control] < first[out[j].Control] })
+	return out
+}
+
+// allCrystals names the crystal of a number, which of a number of all has no name.
+func allCrystals(name string) string {
+	if name == "" {
+		return "all crystals"
+	}
+	return name
 }
 
 // ForbiddenFigure shows the forbidden reflections against thickness.

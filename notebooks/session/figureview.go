@@ -25,26 +25,58 @@ type figureView struct {
 	names                []string
 	whole                []*figure.Figure
 	parts                [][]*figure.Figure
-	extra                []string // HTML that belongs to the parts, parallel to parts
+	wide                 map[int]bool // figures that take the whole width
+	extra                []string     // HTML that belongs to the parts, parallel to parts
 	summary              *grid
 	empty                string // what to say without a figure
 }
 
+// Figures of one plot are drawn no wider than this, so that on paper, where they
+// are scaled down, their letters stay legible.
+const (
+	singleWide = 600.0
+	singleHigh = 330.0
+	forestWide = 640.0
+)
+
 func (v *figureView) add(name string, d drawable) {
-	if p, ok := d.(*figure.Panels); ok && len(p.Panel) == 0 {
-		return
+	switch one := d.(type) {
+	case *figure.Panels:
+		if len(one.Panel) == 0 {
+			return
+		}
+		if len(one.Panel) == 1 && one.Width == 0 {
+			one.Width, one.Height = singleWide, singleHigh
+		}
+	case *figure.Shares:
+		one.Width, one.Height = singleWide, singleHigh
+	case *figure.Forest:
+		one.Width = forestWide
 	}
 	f, err := d.Draw()
 	if err != nil {
 		panic(&Error{Step: "figure", Err: err, Inside: true})
 	}
 	parts := []*figure.Figure{f}
-	if p, ok := d.(*figure.Panels); ok && len(p.Panel) > 1 {
-		q := *p
-		q.Columns = min(3, len(p.Panel))
-		if parts, err = q.Each(); err != nil {
-			panic(&Error{Step: "figure", Err: err, Inside: true})
+	switch d := d.(type) {
+	case *figure.Panels:
+		if len(d.Panel) > 1 {
+			q := *d
+			q.Columns = min(3, len(d.Panel))
+			parts, err = q.Each()
 		}
+	case *figure.Cumulative:
+		parts, err = d.Each()
+	case *figure.ForestColumns:
+		if len(d.Columns) > 1 {
+			if v.wide == nil {
+				v.wide = map[int]bool{}
+			}
+			v.wide[len(v.names)] = true
+		}
+	}
+	if err != nil {
+		panic(&Error{Step: "figure", Err: err, Inside: true})
 	}
 	v.put(name, f, parts, "")
 }
@@ -83,7 +115,11 @@ func (v *figureView) view() *View {
 		if n > 1 {
 			fmt.Fprintf(&b, `<p class="choice-name">%s</p>`, html.EscapeString(v.names[i]))
 		}
-		fmt.Fprintf(&b, `<div class="multiples of-%d">`, min(3, len(v.parts[i])))
+		wide := ""
+		if v.wide[i] {
+			wide = " wide"
+		}
+		fmt.Fprintf(&b, `<div class="multiples of-%d%s">`, min(3, len(v.parts[i])), wide)
 		for _, f := range v.parts[i] {
 			reach := ""
 			if len(v.parts[i]) == 1 {
@@ -137,6 +173,22 @@ type pairing struct {
 	list []*analysis.ContrastResult
 }
 
+// sides are the names of both positions where all crystals give them the same ones,
+// else "thinner" and "thicker".
+func (p *pairing) sides() (thin, thick string) {
+	for i, c := range p.list {
+		a, b := c.Thin, c.Thick
+		if c.ThickCrystal != "" {
+			a, b = c.Crystal+"/"+c.Thin, c.ThickCrystal+"/"+c.Thick
+		}
+		if i > 0 && (a != thin || b != thick) {
+			return "thinner", "thicker"
+		}
+		thin, thick = a, b
+	}
+	return thin, thick
+}
+
 // pairings groups the contrasts by the names of their positions; the primary
 // ones of all crystals come first whatever they are called.
 func pairings(r *analysis.Result) []pairing {
@@ -148,25 +200,30 @@ func pairings(r *analysis.Result) []pairing {
 			if c.Primary != primary {
 				continue
 			}
-			name := c.Thin + " \u2212 " + c.Thick
-			if c.ThickCrystal != "" {
-				name = contrastName(c)
-			}
-			key := fmt.Sprint(primary, name)
-			if primary {
-				key = "primary"
+			key := "primary"
+			if !primary {
+				key = "other " + (&pairing{list: []*analysis.ContrastResult{c}}).difference()
 			}
 			k, ok := at[key]
 			if !ok {
 				k = len(out)
 				at[key] = k
-				if primary {
-					name += " (primary)"
-				}
-				out = append(out, pairing{name: name})
+				out = append(out, pairing{})
 			}
 			out[k].list = append(out[k].list, c)
 		}
 	}
+	for i := range out {
+		out[i].name = out[i].difference()
+		if out[i].list[0].Primary {
+			out[i].name += " (primary)"
+		}
+	}
 	return out
+}
+
+// difference names the contrast, "thin \u2212 mid".
+func (p *pairing) difference() string {
+	thin, thick := p.sides()
+	return thin + " \u2212 " + thick
 }

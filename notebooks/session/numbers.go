@@ -29,13 +29,14 @@ func number(v float64, decimals int) string {
 	return s
 }
 
-// auto writes v with three digits that matter.
+// auto writes v with three digits that matter, a whole number from 1 on without
+// decimals.
 func auto(v float64) string {
 	a := math.Abs(v)
 	switch {
 	case a == 0 || math.IsNaN(v) || math.IsInf(v, 0):
 		return number(v, 0)
-	case a >= 100:
+	case a >= 100 || a == math.Trunc(a):
 		return number(v, 0)
 	case a >= 10:
 		return number(v, 1)

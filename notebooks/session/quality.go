@@ -10,7 +10,7 @@ import (
 // Indexing shows how every position was brought to one indexing.
 func (s *Session) Indexing() *View {
 	r := s.upTo(stepIntake)
-	g := newGrid("Ways to index that the lattice allows", "position", "way", "correlation with the reference", "margin z", "what was done").words(1, 4)
+	g := newGrid("Ways to index that the lattice allows", "position", "way", "correlation with the reference", "margin z", "what was done").words(1, 4).verbatim(1)
 	for _, x := range r.Indexing {
 		for k, way := range x.Options {
 			agree := "\u2013"
@@ -81,33 +81,31 @@ func (s *Session) Distributions() *View {
 	return g.view("Distributions")
 }
 
-// DistributionsFigure shows the share of acentric reflections below each
-// strength, beside Wilson's law.
+// DistributionsFigure shows the share of reflections below each strength, N(z),
+// centric and acentric apart, beside Wilson's laws.
 func (s *Session) DistributionsFigure() *View { return distributionsFigure(s.upTo(stepQuality)) }
 
 func distributionsFigure(r *analysis.Result) *View {
-	fv := &figureView{title: "Distribution of strengths", pick: "Kind", empty: "No distribution could be drawn.",
-		caption: "Multiple scattering fills the gap of weak reflections, so that a curve lies below the dashed law at small strength, and more so in the thicker position. The dashed law is Wilson's, broadened with the noise of the first position drawn; an additive background and the removal of negatives lower a curve like scattering."}
-	for _, kind := range []string{"acentric", "centric"} {
-		p := &figure.Panels{Title: "Share of reflections below a strength, " + kind, Desc: "One panel a crystal, one curve a position, with the law of Wilson.",
-			X: figure.Axis{Label: "strength z"}, Y: figure.Axis{Label: "share below z", Zero: true}}
-		for _, name := range crystalsOf(r) {
-			panel := figure.Panel{Name: name}
+	fv := &figureView{title: "Distribution of strengths", pick: "Crystal", empty: "No distribution could be drawn.",
+		caption: "Multiple scattering fills the gap of weak reflections, so that a curve lies below its dashed law at small strength, and more so in the thicker position; the lower plots show how far. The laws are Wilson's, broadened with the noise of each position, and the grey band is where 95 % of shares fall by chance. An additive background and the removal of negatives lower a curve like scattering."}
+	for _, name := range crystalsOf(r) {
+		c := &figure.Cumulative{Title: "Share of reflections below a strength, crystal " + name, Desc: "Cumulative distribution of strengths of each position beside Wilson's law with its noise, acentric and centric apart, and the difference of both below.",
+			X: figure.Axis{Label: "strength z", Lo: 0, Hi: 1}, Law: "Wilson's law with the noise of each"}
+		for _, kind := range []string{"acentric", "centric"} {
+			k := figure.DistributionKind{Name: kind}
 			for i := range r.Distributions {
 				d := &r.Distributions[i]
-				if d.Crystal != name || d.Kind != kind || len(d.Below) == 0 {
-					continue
-				}
-				panel.Curves = append(panel.Curves, figure.Curve{Name: d.Position, X: d.Z, Y: d.Below})
-				if len(panel.Curves) == 1 {
-					panel.Curves = append(panel.Curves, figure.Curve{Name: "Wilson's law with the noise of " + d.Position, X: d.Z, Y: d.BelowTheory, Style: figure.Ghost})
+				if d.Crystal == name && d.Kind == kind && len(d.Below) > 0 {
+					k.Curves = append(k.Curves, figure.Distribution{Name: d.Position, Z: d.Z, Below: d.Below, Law: d.BelowTheory, N: d.N})
 				}
 			}
-			if len(panel.Curves) > 0 {
-				p.Panel = append(p.Panel, panel)
+			if len(k.Curves) > 0 {
+				c.Kinds = append(c.Kinds, k)
 			}
 		}
-		fv.add(kind, p)
+		if len(c.Kinds) > 0 {
+			fv.add(name, c)
+		}
 	}
 	g := newGrid("Share of reflections below a strength: measured, and by Wilson's law with the noise of the position", "position", "kind", "reflections", "at z = 0.1", "at z = 0.5").words(1)
 	for i := range r.Distributions {

@@ -11,7 +11,7 @@ import (
 
 // Series shows what the manifest describes. It needs no step.
 func (s *Session) Series() *View {
-	g := newGrid("Crystals and positions of "+s.Title, "crystal", "position", "thickness (nm)", "s.u. (nm)", "order", "dose (e/\u00c5\u00b2)", "rows", "files").words(1, 7)
+	g := newGrid("Crystals and positions of "+s.Title, "crystal", "position", "thickness (nm)", "s.u. (nm)", "order", "dose (e/\u00c5\u00b2)", "rows", "files").words(1, 7).verbatim(7)
 	for i := range s.study.Series.Crystals {
 		c := &s.study.Series.Crystals[i]
 		for j := range c.Positions {
@@ -196,18 +196,27 @@ func (s *Session) Specification() *View {
 		}
 		g.add(x.Crystal, x.Choice, level, withInterval(x.M, 3), withInterval(x.Q, 3))
 	}
-	return g.view("Specification")
+	v := g.view("Specification")
+	v.HTML = `<details class="numbers"><summary>m and q under every choice as a table</summary>` + v.HTML + "</details>"
+	return v
 }
 
-// Controls shows each control with what it can and cannot see.
-func (s *Session) Controls() *View {
-	r := s.upTo(stepControls)
-	g := newGrid("Controls: the same pipeline on data where the answer is known", "control", "crystal", "expected m", "found m", "p", "verdict", "what was done", "can see", "cannot see").words(1, 5, 6, 7, 8)
+// Controls shows what each control found, and what it can and cannot see.
+func (s *Session) Controls() *View { return controls(s.upTo(stepControls)) }
+
+func controls(r *analysis.Result) *View {
+	g := newGrid("Controls: the same pipeline on data where the answer is known", "control", "crystal", "expected m", "found m", "p", "verdict", "what was done").words(1, 5, 6)
 	g.verdict = 5
-	for _, c := range r.Controls {
-		g.add(c.Control, c.Crystal, number(c.Expected, 3), withInterval(c.M, 3), pvalue(c.P), c.Verdict, c.Why, c.Can, c.Cannot)
+	reach := newGrid("What each control can and cannot see", "control", "can see", "cannot see").words(1, 2)
+	said := map[string]bool{}
+	for _, c := range byControl(r.Controls) {
+		g.add(c.Control, allCrystals(c.Crystal), number(c.Expected, 3), withInterval(c.M, 3), pvalue(c.P), c.Verdict, c.Why)
+		if key := c.Control + c.Can + c.Cannot; !said[key] {
+			said[key] = true
+			reach.add(c.Control, c.Can, c.Cannot)
+		}
 	}
-	return g.view("Controls")
+	return Together(g.view("Controls"), reach.view("Controls"))
 }
 
 // Crystals shows what the crystals say together.
@@ -254,7 +263,7 @@ func (s *Session) Thickness() *View {
 // Provenance shows inputs, seed, versions and times.
 func (s *Session) Provenance() *View {
 	r := s.Result()
-	g := newGrid("Inputs", "file", "position", "rows", "observations", "set aside", "SHA-256").words(1, 4, 5)
+	g := newGrid("Inputs", "file", "position", "rows", "observations", "set aside", "SHA-256").words(1, 4, 5).verbatim(0, 5)
 	for _, in := range r.Inputs {
 		var aside []string
 		for reason, n := range in.SetAside {
