@@ -4,6 +4,7 @@ import (
 	"context"
 	"os"
 	"os/exec"
+	"regexp"
 	"strings"
 	"sync"
 	"testing"
@@ -13,6 +14,7 @@ import (
 	"github.com/chromedp/cdproto/emulation"
 	"github.com/chromedp/cdproto/log"
 	"github.com/chromedp/cdproto/network"
+	cdppage "github.com/chromedp/cdproto/page"
 	"github.com/chromedp/cdproto/runtime"
 	"github.com/chromedp/chromedp"
 	"github.com/chromedp/chromedp/kb"
@@ -186,11 +188,14 @@ func TestReportInABrowser(t *testing.T) {
 			t.Errorf("hash %q after a jump", where)
 		}
 	})
-	t.Run("details open for print", func(t *testing.T) {
-		closed := ask[int](t, ctx, `dispatchEvent(new Event("beforeprint")), document.querySelectorAll("details:not([open])").length`)
-		after := ask[int](t, ctx, `dispatchEvent(new Event("afterprint")), document.querySelectorAll("details:not([open])").length`)
-		if closed != 0 || after == 0 {
-			t.Errorf("%d closed on paper, %d after", closed, after)
+	t.Run("what is fine opens for print, numbers and code stay folded", func(t *testing.T) {
+		const folded = `[document.querySelectorAll("details:not([open]):not(.numbers):not(.cell)").length, document.querySelectorAll(".numbers[open], .cell[open]").length, document.querySelectorAll(".numbers:not([open])").length].join()`
+		before := ask[string](t, ctx, folded)
+		paper := ask[string](t, ctx, `dispatchEvent(new Event("beforeprint")), `+folded)
+		after := ask[string](t, ctx, `dispatchEvent(new Event("afterprint")), `+folded)
+		_, figures, _ := strings.Cut(before, ",0,")
+		if before == paper || before != after || paper != "0,0,"+figures || len(figures) < 2 {
+			t.Errorf("folded parts, unfolded numbers, folded numbers: %s; on paper %s; after %s", before, paper, after)
 		}
 	})
 	t.Run("narrow", func(t *testing.T) {
@@ -198,9 +203,46 @@ func TestReportInABrowser(t *testing.T) {
 		if over := ask[float64](t, ctx, `document.documentElement.scrollWidth - document.documentElement.clientWidth`); over > 0 {
 			t.Errorf("the page is %g pixels too wide at 360", over)
 		}
+		// Sentences are read without moving sideways; wider tables move in a region of
+		// their own, which the keys reach.
+		if words := ask[string](t, ctx, `[...document.querySelectorAll("td.long")].filter(d => d.offsetParent && d.closest("table").matches(".stack") && (d.getBoundingClientRect().right > 360 || d.getBoundingClientRect().left < 0)).map(d => d.textContent).join("; ")`); words != "" {
+			t.Errorf("words off the screen: %s", words)
+		}
+		if why := ask[float64](t, ctx, `document.querySelector("#cautions td.long").getBoundingClientRect().width`); why < 200 {
+			t.Errorf("the why of a caution is %g pixels wide", why)
+		}
+		if lost := ask[string](t, ctx, `[...document.querySelectorAll("table")].filter(t => !t.parentNode.matches(".scroll[tabindex='0'][role=region][aria-label]")).map(t => t.caption && t.caption.textContent).join("; ")`); lost != "" {
+			t.Errorf("tables without a region of their own: %s", lost)
+		}
+		if wide := ask[int](t, ctx, `[...document.querySelectorAll(".scroll")].filter(s => s.offsetParent && s.scrollWidth > s.clientWidth && getComputedStyle(s).overflowX !== "auto").length`); wide != 0 {
+			t.Errorf("%d wide tables do not scroll", wide)
+		}
 	})
 	if complaints := seen(); len(complaints) > 0 {
 		t.Errorf("the page did: %q", complaints)
+	}
+}
+
+var pdfPage = regexp.MustCompile(`/Type\s*/Page\b`)
+
+// TestReportOnPaperInABrowser bounds the length of a printed report: it grew to 45
+// pages when the numbers of every figure were printed.
+func TestReportOnPaperInABrowser(t *testing.T) {
+	ctx := browser(t)
+	do(t, ctx, chromedp.Navigate(written(t, demoPage(t).page)))
+	media(t, ctx, "print", "dark")
+	if shown := ask[string](t, ctx, `[getComputedStyle(document.body).backgroundColor, document.querySelector(".paper").offsetHeight > 0, document.querySelector(".cell").offsetHeight, document.querySelector(".numbers").offsetHeight, [...document.querySelectorAll(".choice")].every(c => c.offsetHeight > 0)].join()`); shown != "rgb(255, 255, 255),true,0,0,true" {
+		t.Errorf("paper, its note, code, numbers, all choices: %s", shown)
+	}
+	media(t, ctx, "", "light")
+	r, err := chromedp.Call(ctx, cdppage.PrintToPDF, cdppage.PrintToPDFParams{PrintBackground: new(true)})
+	if err != nil {
+		t.Fatal(err)
+	}
+	n := len(pdfPage.FindAll(r.Data, -1))
+	t.Logf("%d pages", n)
+	if n < 6 || n > 18 {
+		t.Errorf("%d pages on paper", n)
 	}
 }
 

@@ -162,6 +162,11 @@ func (d *document) top(b *strings.Builder, r *analysis.Result, o *Options) {
 		}
 		b.WriteString("</p>")
 	}
+	numbers := ""
+	if r != nil {
+		numbers = " and, with all others, in result.json"
+	}
+	b.WriteString(`<p class="paper">On paper the numbers under each figure and the code of the cells are left out; they are in the page` + numbers + `. What is unfolded there before printing is printed.</p>`)
 	b.WriteString(`</div><div class="tools"><button type="button" id="theme">Light or dark</button><button type="button" id="print">Print</button><button type="button" id="link">Copy link</button></div></div><div class="wedge"></div></header>`)
 }
 

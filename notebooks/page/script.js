@@ -65,9 +65,9 @@
     copy(location.href.split("#")[0] + (now ? now.getAttribute("href") : ""), "Link copied");
   });
 
-  // Details are open on paper.
+  // On paper details are open, save numbers of figures and code, which stay as they are.
   var opened = [];
-  window.addEventListener("beforeprint", function () { opened = all("details:not([open])"); opened.forEach(function (d) { d.open = true; }); });
+  window.addEventListener("beforeprint", function () { opened = all("details:not([open]):not(.numbers):not(.cell)"); opened.forEach(function (d) { d.open = true; }); });
   window.addEventListener("afterprint", function () { opened.forEach(function (d) { d.open = false; }); });
 
   if (window.IntersectionObserver) {
