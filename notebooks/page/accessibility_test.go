@@ -54,10 +54,10 @@ func (f *finding) String() string {
 	return s
 }
 
-// examine runs the rules of one tag of the engine, all without a tag, on the page as
+// examine runs the named rules of the engine, all when none is named, on the page as
 // it stands. The engine comes in by the debugger, which the policy of the page does
 // not bind.
-func examine(t *testing.T, ctx context.Context, source, tag string) (broken []finding, rules int) {
+func examine(t *testing.T, ctx context.Context, source string, rules ...string) (broken []finding, passed int) {
 	t.Helper()
 	ask[bool](t, ctx, source+"\n;true")
 	type outcome struct {
@@ -65,8 +65,8 @@ func examine(t *testing.T, ctx context.Context, source, tag string) (broken []fi
 		Passes     []struct{ ID string }
 	}
 	only := ""
-	if tag != "" {
-		only = `, runOnly: {type: "tag", values: ["` + tag + `"]}`
+	if len(rules) > 0 {
+		only = `, runOnly: ["` + strings.Join(rules, `", "`) + `"]`
 	}
 	r, err := chromedp.Run(ctx, chromedp.Evaluate[outcome](`axe.run(document, {resultTypes: ["violations"]`+only+`}).then(r => ({Violations: r.violations.map(v => ({ID: v.id, Impact: v.impact, Help: v.help, Nodes: v.nodes.map(n => ({Target: n.target, FailureSummary: n.failureSummary}))})), Passes: r.passes.map(p => ({ID: p.id}))}))`, chromedp.EvalAwaitPromise))
 	if err != nil {
@@ -86,7 +86,7 @@ func TestTheEngineSeesInABrowser(t *testing.T) {
 	source := engine(t)
 	ctx := browser(t)
 	do(t, ctx, chromedp.Navigate(written(t, []byte(`<!DOCTYPE html><html><title>t</title><main><h1>t</h1><img src="data:,"><p style="color:#999;background:#fff">pale</p><div style="overflow:auto;height:40px"><p>a<p>b<p>c<p>d</div></main>`))))
-	broken, _ := examine(t, ctx, source, "")
+	broken, _ := examine(t, ctx, source)
 	found := ""
 	for _, f := range broken {
 		found += f.ID + " "
@@ -100,7 +100,7 @@ func TestTheEngineSeesInABrowser(t *testing.T) {
 
 // TestReportAccessibilityInABrowser runs the engine on the report in every form that
 // a reader meets, in the dark the rules of colour: all else is as in the light. Folded
-// parts are opened, since a rule sees only what is shown.
+// parts are opened once, since a rule sees only what is shown.
 func TestReportAccessibilityInABrowser(t *testing.T) {
 	source := engine(t)
 	page := written(t, demoPage(t).page)
@@ -109,7 +109,7 @@ func TestReportAccessibilityInABrowser(t *testing.T) {
 		width               int64
 		open                bool
 	}{
-		{"light wide", "screen", "light", 1280, true}, {"dark wide", "screen", "dark", 1280, true},
+		{"light wide", "screen", "light", 1280, true}, {"dark wide", "screen", "dark", 1280, false},
 		{"light narrow", "screen", "light", 360, false}, {"dark narrow", "screen", "dark", 360, false},
 		{"print", "print", "light", 794, false},
 	} {
@@ -120,11 +120,12 @@ func TestReportAccessibilityInABrowser(t *testing.T) {
 			if form.open {
 				ask[bool](t, ctx, `document.querySelectorAll("details").forEach(d => { d.open = true; }), true`)
 			}
-			tag, least := "", 20
+			var rules []string
+			least := 20
 			if form.scheme == "dark" {
-				tag, least = "cat.color", 1
+				rules, least = []string{"color-contrast", "link-in-text-block"}, 1
 			}
-			broken, passed := examine(t, ctx, source, tag)
+			broken, passed := examine(t, ctx, source, rules...)
 			if passed < least {
 				t.Errorf("only %d rules passed: was the page there?", passed)
 			}
