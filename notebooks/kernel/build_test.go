@@ -10,6 +10,8 @@ import (
 	"sync"
 	"testing"
 	"time"
+
+	"thinward/notebooks/bindings"
 )
 
 // noPrebuilt makes sure that Ensure looks for sources.
@@ -271,5 +273,31 @@ func TestPrune(t *testing.T) {
 func TestLastLines(t *testing.T) {
 	if got := lastLines("a\nb\nc\n", 2); got != "b\nc" {
 		t.Errorf("%q", got)
+	}
+}
+
+// TestDocumentation looks whether the comments of what cells import are found, ours,
+// third parties' and the standard library's.
+func TestDocumentation(t *testing.T) {
+	noPrebuilt(t)
+	b, err := newBuilder(context.Background(), &Settings{CacheDir: t.TempDir()})
+	if err != nil {
+		t.Fatal(err)
+	}
+	in, err := b.inputs(context.Background())
+	if err != nil {
+		t.Fatal(err)
+	}
+	text, err := in.documentation()
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, path := range append(bindings.Bound(), "fmt", "strings", "time") {
+		if !strings.Contains(string(text), "\t\""+path+"\":") {
+			t.Errorf("no comments of %s", path)
+		}
+	}
+	if len(text) > 3<<20 {
+		t.Errorf("the comments take %d bytes", len(text))
 	}
 }

@@ -137,11 +137,10 @@ func (in *inputs) edit(sum hash.Hash) error {
 func (in *inputs) documentation() ([]byte, error) {
 	packages := map[string]*docs.Package{}
 	for _, p := range in.docs {
-		extracted, err := docs.Extract(p.ImportPath, p.Dir, p.GoFiles)
-		if err != nil {
-			return nil, err
+		// A package whose comments cannot be read is no reason to have no kernel.
+		if extracted, err := docs.Extract(p.ImportPath, p.Dir, p.GoFiles); err == nil {
+			packages[p.ImportPath] = extracted
 		}
-		packages[p.ImportPath] = extracted
 	}
 	return docs.Source(packages)
 }
