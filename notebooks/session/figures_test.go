@@ -240,3 +240,17 @@ func TestSpacings(t *testing.T) {
 		t.Error("marks without a range")
 	}
 }
+
+// The growth stands once for each crystal and element, beside the thickest position; made up
+// in steps of 0.04 per 80 nm.
+func TestForbiddenTableGivesTheGrowth(t *testing.T) {
+	v := forbiddenTable(made())
+	if n := strings.Count(v.Plain, "0.0500"); n != 2 {
+		t.Errorf("the growth of 0.05 per 100 nm stands %d times in\n%s", n, v.Plain)
+	}
+	for _, line := range strings.Split(v.Plain, "\n") {
+		if strings.Contains(line, "0.0500") != strings.Contains(line, "/thick") {
+			t.Errorf("the growth is beside the wrong position: %s", line)
+		}
+	}
+}

@@ -143,12 +143,30 @@ func (s *Session) Brackets() *View {
 	return g.view("Bracket")
 }
 
-// Forbidden shows the forbidden reflections by position and symmetry element.
-func (s *Session) Forbidden() *View {
-	r := s.upTo(stepForbidden)
-	g := newGrid("Forbidden reflections over the local mean of the allowed ones", "position", "element", "reflections", "ratio", "s.u.", "z", "mean J/\u03c3", "remark").words(1, 7)
+// Forbidden shows the forbidden reflections by position and symmetry element, with
+// the growth per 100 nm of thickness in the row of the thickest position.
+func (s *Session) Forbidden() *View { return forbiddenTable(s.upTo(stepForbidden)) }
+
+func forbiddenTable(r *analysis.Result) *View {
+	thick, thickest := map[string]float64{}, map[string]string{}
+	for i := range r.Intake {
+		x := &r.Intake[i]
+		thick[x.Crystal+"/"+x.Position] = x.ThicknessNM
+		if best, ok := thickest[x.Crystal]; !ok || x.ThicknessNM > thick[x.Crystal+"/"+best] {
+			thickest[x.Crystal] = x.Position
+		}
+	}
+	growth := map[string]analysis.ForbiddenTrend{}
+	for _, t := range analysis.ForbiddenTrends(r.Forbidden, thick) {
+		growth[t.Crystal+"/"+thickest[t.Crystal]+"/"+t.Element] = t
+	}
+	g := newGrid("Forbidden reflections over the local mean of the allowed ones", "position", "element", "reflections", "ratio", "s.u.", "z", "mean J/\u03c3", "growth per 100 nm", "s.u. of it", "remark").words(1, 9)
 	for _, f := range r.Forbidden {
-		g.add(f.Crystal+"/"+f.Position, f.Element, count(f.N), number(f.Ratio, 4), number(f.SU, 4), number(f.Z, 1), number(f.MeanIS, 1), f.Why)
+		slope, su := "", ""
+		if t, ok := growth[f.Crystal+"/"+f.Position+"/"+f.Element]; ok && !math.IsNaN(t.Slope) {
+			slope, su = number(t.Slope, 4), number(t.SU, 4)
+		}
+		g.add(f.Crystal+"/"+f.Position, f.Element, count(f.N), number(f.Ratio, 4), number(f.SU, 4), number(f.Z, 1), number(f.MeanIS, 1), slope, su, f.Why)
 	}
 	return g.view("Forbidden reflections")
 }
