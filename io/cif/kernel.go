@@ -54,7 +54,7 @@ func (p *parser) readRows(l *list) (int, error) {
 	q.aim(room)
 	for n, c := 0, 0; ; {
 		if n == room {
-			room = max(n+n/16, int(float64(p.src.SizeHint()-start)/float64(i-start)*float64(n)*1.01)+64)
+			room = text.Room(n, i-start, p.src.SizeHint()-start)
 			q.aim(room)
 		}
 		if n%rowsPerMark == 0 && c == 0 {

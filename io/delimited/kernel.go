@@ -18,7 +18,7 @@ func (r *reader) body() error {
 	start := r.i
 	for n := 0; ; {
 		if n == room {
-			room = max(n+n/16, int(float64(r.src.SizeHint()-start)/float64(r.i-start)*float64(n)*1.01)+64)
+			room = text.Room(n, r.i-start, r.src.SizeHint()-start)
 			r.aim(rows, room)
 		}
 		if n%rowsPerMark == 0 {

@@ -22,3 +22,10 @@ func Cut[T any](x []T, n int) []T {
 	}
 	return x[:n:n]
 }
+
+// Room estimates the number of rows of a text of total bytes of which the first read
+// hold n rows, n and read above 0: 5 % more than in proportion, as the first rows are
+// not like all, and always more than n.
+func Room(n, read, total int) int {
+	return max(n+n/16, int(float64(total)/float64(read)*float64(n)*1.05)) + 64
+}

@@ -184,6 +184,14 @@ func TestSift(t *testing.T) {
 	}
 }
 
+func TestRoom(t *testing.T) {
+	for _, tt := range []struct{ n, read, total, want int }{{2048, 20480, 204800, 21568}, {2048, 20480, 20480, 2240}, {5000, 50000, 0, 5376}, {1, 1, 1, 65}} {
+		if got := Room(tt.n, tt.read, tt.total); got != tt.want {
+			t.Errorf("%d rows in %d of %d bytes: %d, want %d", tt.n, tt.read, tt.total, got, tt.want)
+		}
+	}
+}
+
 func TestErrorText(t *testing.T) {
 	e := &Error{File: "f", Line: 3, Block: "b", Item: "_i", Problem: "is bad", Remedy: "mend it"}
 	if got := e.Error(); got != "f:3: block b: _i: is bad; mend it" {
