@@ -17,6 +17,8 @@ func seeds(f *testing.F) {
 		"data_a\n_x_hkl_file\n;\n   1   0   0   10.00    1.00   1\n   0   0   0    0.00    0.00\n;\n",
 		"data_a\n_iucr_refine_fcf_details\n;\n" + listHead + "1 0 0 10 1\n;\n" + cellLines,
 		"data_a loop_ _refln_index_h _refln_index_k _refln_index_l _refln_intensity_meas _refln_intensity_sigma _refln_scale_group_code _refln_include_status 1 2 3 4 5 6%7 - 'a' 1 2 3 4 5 x",
+		"#\\#CIF_2.0\ndata_a _l [1 {'a':\"b\"}\n;t\n; ] loop_ _diffrn_refln.hkl _diffrn_refln.intensity_net _diffrn_refln.intensity_net_su [1 -2 3] 10 1 ? 2 2 ",
+		"data_a _refln.index_h 1 _refln.index_k 2 _refln.index_l 3 _refln.pdbx_I_plus 4 _refln.pdbx_I_plus_sigma 1 _refln.pdbx_I_minus ? _refln.pdbx_I_minus_sigma '1'",
 		"\x1f\x8b\x08\x00\x00\x00\x00\x00\x00\x00",
 	} {
 		f.Add([]byte(s))
