@@ -57,7 +57,7 @@ Values that --set changes:
 			return a.report(c.Context(), args[0], out, values, timeout)
 		},
 	}
-	c.Flags().StringVarP(&out, "out", "o", "out", "folder for the results; it is made if need be")
+	c.Flags().StringVarP(&out, "out", "o", "out", "folder for the results; it is made if need be, and a report in it is replaced")
 	c.Flags().StringArrayVar(&set, "set", nil, "value of a parameter of the notebook, as name=value; may be repeated")
 	c.Flags().DurationVar(&timeout, "timeout", 30*time.Minute, "longest time of one cell; 0 means no limit")
 	return c
@@ -144,9 +144,19 @@ func committed(name string) (*runner.Notebook, error) {
 	return nb, nil
 }
 
+// manyPackages is the number of packages from which on a build is announced.
+const manyPackages = 20
+
 // ensure builds the kernel when it is missing.
 func (a *app) ensure(ctx context.Context, m *meter) (string, error) {
-	path, err := kernel.Ensure(ctx, &kernel.Settings{Progress: func(p kernel.Progress) { m.at("kernel", 0, 0, p.Done, p.Total) }})
+	said := false
+	path, err := kernel.Ensure(ctx, &kernel.Settings{Progress: func(p kernel.Progress) {
+		m.at("kernel", 0, 0, p.Done, p.Total)
+		if !said && p.Total > manyPackages {
+			said = true
+			m.note(fmt.Sprintf("The kernel is compiled, once for this version: %d packages, about a minute on two cores.", p.Total))
+		}
+	}})
 	if err != nil {
 		m.stop()
 		var build *kernel.BuildError

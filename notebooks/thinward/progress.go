@@ -80,6 +80,17 @@ func (m *meter) bar(done, total int) string {
 	return strings.Repeat(block, full) + strings.Repeat(empty, width-full)
 }
 
+// note prints a line of its own above the current step.
+func (m *meter) note(text string) {
+	if m.quiet {
+		return
+	}
+	if m.terminal {
+		text = "\r\x1b[K" + text
+	}
+	fmt.Fprintln(m.w, text)
+}
+
 // finish ends the line of the current step.
 func (m *meter) finish() {
 	if m.quiet || m.step == "" {

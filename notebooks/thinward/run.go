@@ -56,6 +56,12 @@ func run(args []string, stdout, stderr io.Writer) int {
 	}
 	status := statusOf(err)
 	fmt.Fprintf(stderr, "thinward: %v\n", err)
+	var cell *runner.CellError
+	if errors.As(err, &cell) && cell.Code != "" {
+		for i, line := range strings.Split(cell.Code, "\n") {
+			fmt.Fprintf(stderr, "%4d | %s\n", i+1, line)
+		}
+	}
 	if status == exitUsage {
 		fmt.Fprintf(stderr, "See %s --help.\n", a.verbOf(root, args))
 	}
