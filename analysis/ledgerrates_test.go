@@ -11,7 +11,8 @@ import (
 
 // How often each check of the ledger is dark on series without a flaw: seeds from 101
 // on, none of which any bound was set by. Left out are the checks that three crystals
-// without a replicate must be dark for.
+// without a replicate must be dark for, and crystals that lie alike by chance, which they do.
+// A check that errs in 1 % of series is dark in more than 2 of 40 with a chance of 0.008.
 func TestRatesOfFalseAlarms(t *testing.T) {
 	if !full() {
 		t.Skip("THINWARD_FULL=1 runs it")
@@ -26,7 +27,7 @@ func TestRatesOfFalseAlarms(t *testing.T) {
 		entries := judgedStudy(t, s)
 		mine := map[string]bool{}
 		for _, e := range entries {
-			if e.Verdict != VerdictCaution && e.Verdict != VerdictFails || e.Check == "number of crystals" {
+			if e.Verdict != VerdictCaution && e.Verdict != VerdictFails || e.Check == checkCrystals || e.Check == checkLying {
 				continue
 			}
 			mine[e.Check] = true
@@ -39,7 +40,7 @@ func TestRatesOfFalseAlarms(t *testing.T) {
 	}
 	for _, check := range slices.Sorted(maps.Keys(dark)) {
 		t.Logf("%s: dark in %d of %d sound series", check, dark[check], n)
-		if 20*dark[check] > n+20 {
+		if 20*dark[check] > max(n, 20) {
 			t.Errorf("%s is dark in %d of %d sound series", check, dark[check], n)
 		}
 	}
