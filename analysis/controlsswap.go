@@ -49,12 +49,13 @@ func (s *Study) swappedControl(ctx context.Context, r *reading) ([]ControlResult
 // are both there. The curb comes first; swapped, it would be taken off the intensities
 // x = (y - m)/(1-m) from before the exchange, q x^2, but the model takes it off y: the
 // term -2 m q y/(1-m)^2 is left, an exchange of that size in shells of the mean of the lowest
-// third.
+// third. The inverse of y exp(-q y) is y exp(q y) to first order only, which leaves a term of
+// order q^2.
 func swappedOrder(m, q float64) float64 {
 	if math.IsNaN(q) {
 		return 0
 	}
-	return 2 * math.Abs(m*q) / ((1 - m) * (1 - m))
+	return (2*math.Abs(m*q) + q*q) / ((1 - m) * (1 - m))
 }
 
 // swapError is the standard error of m of the swapped pair less -m/(1-m). The two fits
