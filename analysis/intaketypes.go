@@ -37,7 +37,7 @@ type SigmaResult struct {
 	Ceiling      float64 `json:"i_over_sigma_99th_percentile"`
 	Chi2         float64 `json:"chi2_of_near_equivalents"`
 	Chi2SE       float64 `json:"chi2_se"`
-	Pairs        int     `json:"pairs"`
+	Pairs        int     `json:"near_pairs"`
 	AnyAngle     bool    `json:"at_any_angle"`
 	Why          string  `json:"why,omitempty"`
 }
