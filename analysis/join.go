@@ -97,12 +97,12 @@ func (s *Study) poolCrystals() *CrystalsResult {
 		return r
 	}
 	r.InThese = interval(e.Fixed, e.FixedLo, e.FixedHi, "")
-	r.LikeThese = interval(e.Random, e.RandomLo, e.RandomHi, "")
+	r.LikeThese = interval(e.Random, e.LikeLo, e.LikeHi, "")
 	r.Q, r.QP = e.Q, e.QP
 	if e.Estimable {
 		r.Tau2, r.I2 = e.Tau2, e.I2
 	} else {
-		r.Why = fmt.Sprintf("tau^2 and I^2 are not estimable from %d crystals (five are needed)", e.K)
+		r.Why = fmt.Sprintf("τ² and I² are not estimable from %d crystals (five are needed)", e.K)
 	}
 	if len(m) == 1 {
 		r.LikeThese.Why = "one crystal says nothing of others"

@@ -111,8 +111,14 @@ var sizeMutations = []mutation{
 		killedBy: []string{"TestJoinBCG", "TestJoinBCGIntervals"},
 	},
 	{
+		name: "crystals that agree by chance say more of others than of themselves", file: "analysis/pool/effects.go", pkg: "analysis/pool",
+		old:      `like := math.Max(e.RandomSE, e.NormalSE)`,
+		new:      `like := e.RandomSE`,
+		killedBy: []string{"TestJoinOfThreeThatAgree"},
+	},
+	{
 		name: "in crystals like these is the fixed effect", file: "analysis/join.go", pkg: "analysis",
-		old:      `r.LikeThese = interval(e.Random, e.RandomLo, e.RandomHi, "")`,
+		old:      `r.LikeThese = interval(e.Random, e.LikeLo, e.LikeHi, "")`,
 		new:      `r.LikeThese = interval(e.Fixed, e.FixedLo, e.FixedHi, "")`,
 		killedBy: []string{"TestJoinedCrystals"},
 	},

@@ -16,6 +16,11 @@ type Effects struct {
 	// Random answers "in others like these": the mean with between-variance Tau2
 	// and the interval of Hartung and Knapp with k-1 degrees of freedom.
 	Random, RandomSE, RandomLo, RandomHi float64
+	// LikeLo and LikeHi are the interval of Random with the larger of RandomSE and
+	// NormalSE: where few estimates agree better than their own errors allow, that of
+	// Hartung and Knapp is narrower than the fixed one, which no report should claim of
+	// others (Knapp & Hartung 2003, who bound their factor by 1; Roever, Knapp & Friede 2015).
+	LikeLo, LikeHi float64
 	// NormalSE is the plain standard error of Random, without Hartung and Knapp.
 	NormalSE float64
 	// Q is Cochran's heterogeneity with K-1 degrees of freedom and tail QP.
@@ -72,6 +77,7 @@ func Join(y, se []float64, level float64) (*Effects, error) {
 		e.QP, e.I2, e.Tau2, e.Birge = 1, math.NaN(), math.NaN(), math.NaN()
 		e.Random, e.RandomSE, e.NormalSE = e.Fixed, math.Inf(1), math.Inf(1)
 		e.RandomLo, e.RandomHi = math.Inf(-1), math.Inf(1)
+		e.LikeLo, e.LikeHi = e.RandomLo, e.RandomHi
 		return e, nil
 	}
 	for i := range y {
@@ -96,6 +102,8 @@ func Join(y, se []float64, level float64) (*Effects, error) {
 	e.RandomSE = math.Sqrt(spread / (df * ws))
 	t := distuv.StudentsT{Mu: 0, Sigma: 1, Nu: df}.Quantile((1 + level) / 2)
 	e.RandomLo, e.RandomHi = e.Random-t*e.RandomSE, e.Random+t*e.RandomSE
+	like := math.Max(e.RandomSE, e.NormalSE)
+	e.LikeLo, e.LikeHi = e.Random-t*like, e.Random+t*like
 	return e, nil
 }
 

@@ -54,3 +54,26 @@ func TestJoinOfThreeIsStudents(t *testing.T) {
 	floatcmp.Check(t, "to", e.RandomHi, 0.3+half, 1e-9, 0)
 	floatcmp.Check(t, "p of Q", e.QP, distuv.ChiSquared{K: 2}.Survival(0.14/0.0025), 0, 1e-12)
 }
+
+// Three that agree closer than their errors allow: Student's interval of three would be
+// 4.303 0.001/sqrt(3) wide to a side; the errors that they claim give 4.303 0.05/sqrt(3).
+// Where they disagree both are the same. The quantile is that of printed tables, 4.30265.
+func TestJoinOfThreeThatAgree(t *testing.T) {
+	for _, c := range []struct {
+		name       string
+		y          []float64
+		plain, use float64
+	}{
+		{"agree", []float64{0.299, 0.3, 0.301}, 0.001, 0.05},
+		{"disagree", []float64{0.2, 0.3, 0.4}, 0.1, 0.1},
+	} {
+		e, err := Join(c.y, []float64{0.05, 0.05, 0.05}, 0)
+		if err != nil {
+			t.Fatal(err)
+		}
+		const q = 4.30265272991
+		floatcmp.Check(t, c.name+": Hartung and Knapp", e.RandomHi-0.3, q*c.plain/math.Sqrt(3), 1e-9, 0)
+		floatcmp.Check(t, c.name+": from", e.LikeLo, 0.3-q*c.use/math.Sqrt(3), 1e-9, 0)
+		floatcmp.Check(t, c.name+": to", e.LikeHi, 0.3+q*c.use/math.Sqrt(3), 1e-9, 0)
+	}
+}

@@ -15,7 +15,7 @@ func ExampleJoin() {
 		return
 	}
 	fmt.Printf("these crystals %.3f (%.3f to %.3f)\n", e.Fixed, e.FixedLo, e.FixedHi)
-	fmt.Printf("crystals like these %.3f (%.3f to %.3f)\n", e.Random, e.RandomLo, e.RandomHi)
+	fmt.Printf("crystals like these %.3f (%.3f to %.3f)\n", e.Random, e.LikeLo, e.LikeHi)
 	same, p, smallest := pool.Signs([]float64{0.07, 0.10, 0.08})
 	fmt.Printf("%d of one sign: p = %.2f, and no three crystals can give less than %.2f\n", same, p, smallest)
 	// Output:

@@ -243,7 +243,7 @@ func (s *Session) Crystals() *View {
 	g := newGrid("The crystals together", "what", "value", "remark").words(2)
 	if c := r.Crystals; c != nil {
 		g.add("m in these crystals (fixed effect)", withInterval(c.InThese, 3), fmt.Sprintf("%d crystals", c.N))
-		g.add("m in crystals like these (Hartung and Knapp)", withInterval(c.LikeThese, 3), c.LikeThese.Why)
+		g.add("m in crystals like these (Hartung and Knapp)", withInterval(c.LikeThese, 3), likeThese(c))
 		g.add("heterogeneity Q", number(c.Q, 2), "p = "+pvalue(c.QP))
 		g.add("tau\u00b2, I\u00b2", auto(c.Tau2)+", "+percent(c.I2, 0), c.Why)
 		g.add("crystals of one sign", fmt.Sprintf("%d of %d", c.SameSign, c.N), fmt.Sprintf("p = %s, at the smallest %s", pvalue(c.SignP), pvalue(c.SmallestP)))
@@ -323,4 +323,12 @@ func rising(v []float64) []int {
 	}
 	sort.SliceStable(order, func(a, b int) bool { return v[order[a]] < v[order[b]] })
 	return order
+}
+
+// likeThese says how far the interval for other crystals is to be trusted.
+func likeThese(c *analysis.CrystalsResult) string {
+	if c.LikeThese.Why != "" || c.N < 2 {
+		return c.LikeThese.Why
+	}
+	return fmt.Sprintf("Student's t with %d degrees of freedom; no narrower than the crystals' own errors allow", c.N-1)
 }

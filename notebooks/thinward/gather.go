@@ -200,7 +200,7 @@ func meanOf(y, se []float64) (*gatheredMean, error) {
 	r := &gatheredMean{
 		N: e.K, Q: e.Q, QP: e.QP, Tau2: math.NaN(), I2: math.NaN(),
 		InThese:   analysis.Interval{Value: e.Fixed, Lo: e.FixedLo, Hi: e.FixedHi},
-		LikeThese: analysis.Interval{Value: e.Random, Lo: e.RandomLo, Hi: e.RandomHi},
+		LikeThese: analysis.Interval{Value: e.Random, Lo: e.LikeLo, Hi: e.LikeHi},
 	}
 	if r.TauLo, r.TauHi, err = pool.TauInterval(y, se, 0); err != nil {
 		return nil, err
