@@ -55,7 +55,9 @@ func (s *Session) Quality() *View {
 
 // Shells shows the precision of every position by resolution shell.
 func (s *Session) Shells() *View {
-	return qualityTable(s.upTo(stepQuality), "Precision on the common scale, by shell", func(q *analysis.Quality) bool { return q.Shell > 0 })
+	v := qualityTable(s.upTo(stepQuality), "Precision on the common scale, by shell", func(q *analysis.Quality) bool { return q.Shell > 0 })
+	v.HTML = `<details class="numbers"><summary>Precision by position and shell as a table</summary>` + v.HTML + "</details>"
+	return v
 }
 
 func qualityTable(r *analysis.Result, caption string, wanted func(*analysis.Quality) bool) *View {
