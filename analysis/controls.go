@@ -217,7 +217,7 @@ func (s *Study) replicateControl(ctx context.Context, r *reading) ([]ControlResu
 
 // seriesControls are those that need all crystals.
 func (s *Study) seriesControls(list []*reading, per []ControlResult) []ControlResult {
-	const can = "whether the crystals agree in sign beyond chance, with nothing assumed of errors: whole positions of each crystal are swapped in all 2^k ways"
+	const can = "whether the crystals agree in sign beyond chance, with nothing assumed of errors: whole positions of each crystal are swapped in every combination (2 to the power of the number of crystals)"
 	const cannot = "anything that all crystals have in common; with few crystals the smallest p is large"
 	var out []ControlResult
 	var m, back, se []float64

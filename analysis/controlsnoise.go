@@ -75,7 +75,7 @@ func (s *Study) noiseControl(ctx context.Context, r *reading) ([]ControlResult, 
 func (s *Study) nullResult(name string, null *evidence.Replicated, alarm float64, through, can, cannot string) ControlResult {
 	x := ControlResult{Control: controlNoise, Crystal: name, M: interval(null.M.Mean, null.M.Lo, null.M.Hi, ""), Q: interval(null.Q.Mean, null.Q.Lo, null.Q.Hi, ""),
 		P: math.NaN(), Rejections: null.CurveRejects, Misses: null.Missed, Draws: null.N, Through: through, Can: can, Cannot: cannot}
-	x.Why = fmt.Sprintf("mean m of %d replicas %s +- %s; their interval misses 0 in %s", null.N, short(null.M.Mean), short(null.M.MeanSE), percent(null.Missed))
+	x.Why = fmt.Sprintf("mean m of %d replicas %s ± %s; their interval misses 0 in %s", null.N, short(null.M.Mean), short(null.M.MeanSE), percent(null.Missed))
 	if !math.IsNaN(null.CurveRejects) {
 		x.Why += fmt.Sprintf(", the test of the curve rejects in %s (5 %% nominal)", percent(null.CurveRejects))
 	}

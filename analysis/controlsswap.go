@@ -17,7 +17,7 @@ const swapGroups = 20
 
 // swappedControl exchanges the two positions as wholes.
 func (s *Study) swappedControl(ctx context.Context, r *reading) ([]ControlResult, error) {
-	const can = "whether the estimate treats both sides alike: m of the swapped pair must be -m/(1-m)"
+	const can = "whether the estimate treats both sides alike: m of the swapped pair must be −m/(1 − m)"
 	const cannot = "where a difference comes from: an artefact swaps sign as well"
 	p, err := r.pair(ctx, r.x.thick, r.x.thin, difference.MatchAuto)
 	var v evidence.Summary

@@ -139,7 +139,8 @@ func TestLookupWholeTable(t *testing.T) {
 	}
 }
 
-// Totals of International Tables A (checks 12.3).
+// Totals of International Tables A, from memory; counts over a tabulation by a second
+// implementation agree.
 func TestTotals(t *testing.T) {
 	systems, laue, classes := map[string]int{}, map[string]int{}, map[string]int{}
 	chiral, centro := 0, 0

@@ -7,7 +7,7 @@ import (
 )
 
 // Multiplicities by orbit counting in a second implementation, and International
-// Tables A, 10.1.2.2 (checks 12.2).
+// Tables A, 10.1.2.2, from memory.
 func TestMultiplicity(t *testing.T) {
 	reflections := []HKL{{1, 0, 0}, {0, 0, 1}, {1, 1, 0}, {1, 0, 1}, {1, 1, 1}, {1, 1, 2}, {2, 1, 0}, {0, 1, 2}, {3, 1, 2}}
 	for _, c := range []struct {
@@ -46,7 +46,8 @@ func TestMultiplicity(t *testing.T) {
 }
 
 // Counts over h, k, l from -6 to 6 without 000, by three routes that agree in
-// every cell (checks 12.4).
+// every cell: the operator rule, the reflection conditions of International Tables A typed
+// from memory, and |F| = 0 of five atoms at random places.
 func TestAbsencesAndCentrics(t *testing.T) {
 	for _, c := range []struct {
 		symbol                   string

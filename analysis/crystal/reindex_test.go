@@ -33,8 +33,9 @@ func parseIndices(t *testing.T, text string) matrix {
 	return m
 }
 
-// Expected cosets: checks 12.5, in agreement with the standard tables of
-// merohedry; any member of a coset would do, so membership is compared.
+// Expected cosets: those of the point group in the rotation group of the lattice, by a
+// second enumeration; they agree with the standard tables of merohedry as remembered.
+// Any member of a coset would do, so membership is compared.
 func TestAlternativeIndexings(t *testing.T) {
 	hexagonal := Cell{40, 40, 57, 90, 90, 120}
 	tetragonal := Cell{40, 40, 57, 90, 90, 90}

@@ -9,8 +9,8 @@ import (
 
 // settingFact is one row of testdata/settings_facts.tsv: operator count,
 // centring, point group and Laue class of a tabulated setting, from a second
-// implementation (checks 12.3), whose point group does not tell orientations
-// apart.
+// implementation, whose point group does not tell orientations apart; the operator
+// counts are also the order of the point group times that of the centring.
 type settingFact struct {
 	number                      int
 	choice, hall                string

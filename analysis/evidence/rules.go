@@ -9,7 +9,7 @@ import (
 // more than a thousandth more rows: they were collapsed or summed, and the reader
 // should know as what.
 func Rows(rows, observations int, as string) Finding {
-	f := Finding{Value: float64(rows) / float64(observations), Unit: "rows an observation", Verdict: Fine, Why: "every row is an observation of its own"}
+	f := Finding{Value: float64(rows) / float64(observations), Unit: "rows for each observation", Verdict: Fine, Why: "every row is an observation of its own"}
 	if f.Value > 1.001 {
 		f.Verdict = Caution
 		f.Why = fmt.Sprintf("%d rows are %d observations: rows were taken as %s, and counted once", rows, observations, as)

@@ -116,7 +116,8 @@ func TestBandsAgainstPlainLoop(t *testing.T) {
 }
 
 // The bootstrap error of a mean of m values is sqrt((m-1)/m) s/sqrt(m) and, with
-// Poisson weights, that over sqrt(1) to order 1/m (checks: moving averages).
+// Poisson weights, that over sqrt(1) to order 1/m: closed
+// form (Efron & Tibshirani 1993, An Introduction to the Bootstrap, chapter 5).
 func TestBandsErrorOfMean(t *testing.T) {
 	y := normals(1000, 4)
 	b := must[*BandSet](t)(Bands(bg, y, nil, []Window{{0, 1000}, {100, 400}}, &Settings{Replicates: 6000}))
@@ -145,7 +146,8 @@ func TestBandsExactMatchesScalars(t *testing.T) {
 }
 
 // Independent windows: the multiplier is Sidak's, between one window's 1.96 and
-// Bonferroni's (checks: simultaneous multipliers for K = 1, 5, 20, 50).
+// Bonferroni's: normal quantiles at (1 + 0.95^(1/K))/2 and 1 - 0.025/K by R qnorm, for
+// K = 1, 5, 20, 50.
 func TestBandsMultiplier(t *testing.T) {
 	for _, c := range []struct {
 		k                 int

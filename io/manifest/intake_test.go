@@ -9,6 +9,9 @@ import (
 	"strings"
 	"testing"
 
+	"github.com/google/go-cmp/cmp"
+	"github.com/google/go-cmp/cmp/cmpopts"
+
 	"thinward/analysis"
 	"thinward/analysis/simulate"
 )
@@ -338,7 +341,7 @@ func TestAxesOfAnotherOrder(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if c := d.Positions[1].Cell; !c.Given || c.Length != "c" || math.Abs(c.LengthPercent-100*0.1/15.05) > 1e-9 {
+	if c := d.Positions[1].Cell; !c.Given || c.Length != "c" || !cmp.Equal(c.LengthPercent, 100*0.1/15.05, cmpopts.EquateApprox(0, 1e-9)) {
 		t.Errorf("%+v", c)
 	}
 }

@@ -41,7 +41,7 @@ func TestGridHTML(t *testing.T) {
 func ledger() *analysis.Result {
 	r := made()
 	r.Ledger = []analysis.LedgerEntry{
-		{Check: "rows", Where: "all 4 positions", Value: 1, Unit: "rows an observation", Verdict: "fine", Why: "every row is one"},
+		{Check: "rows", Where: "all 4 positions", Value: 1, Unit: "rows for each observation", Verdict: "fine", Why: "every row is one"},
 		{Check: "deviations", Where: "all 2 contrasts", Value: -0.5, Verdict: "caution", Why: "farthest in " + strings.ReplaceAll(contrastName(&r.Contrasts[0]), "\u2212", "-") + ": r = -0.5"},
 		{Check: "replicate", Verdict: "not known", Why: "none was measured"},
 	}
@@ -52,7 +52,7 @@ func TestCautionsFoldWhatIsFine(t *testing.T) {
 	r := ledger()
 	v := cautions(r)
 	open, folded, ok := strings.Cut(v.HTML, "<details><summary>1 check that is fine</summary>")
-	if !ok || !strings.Contains(open, "deviations") || !strings.Contains(open, "replicate") || strings.Contains(open, "rows an") || !strings.Contains(folded, ">rows<") {
+	if !ok || !strings.Contains(open, "deviations") || !strings.Contains(open, "replicate") || strings.Contains(open, "rows for") || !strings.Contains(folded, ">rows<") {
 		t.Errorf("cautions %s", v.HTML)
 	}
 	if want := "all 2 contrasts, farthest in " + bound(contrastName(&r.Contrasts[0])) + "</td>"; !strings.Contains(open, want) || !strings.Contains(open, ">r = \u22120.5</td>") {

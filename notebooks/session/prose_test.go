@@ -11,7 +11,7 @@ func TestProse(t *testing.T) {
 		{"-0.0087 +- 0.00348", "\u22120.0087 \u00b1 0.00348"},
 		{"under 1 other choices of", "under 1 other choice of"},
 		{"11 choices, 0.1 pairs, 1 of 3 crystals, 21 crystals", "11 choices, 0.1 pairs, 1 of 3 crystals, 21 crystals"},
-		{"1 rows an observation", "1 row an observation"},
+		{"1 rows for each observation", "1 row for each observation"},
 		{"0.03 x J, 2 x 3, index x 4", "0.03 \u00d7 J, 2 \u00d7 3, index x 4"},
 		{"tau^2 and I^2", "\u03c4\u00b2 and I\u00b2"},
 		{"I/sigma >= 3", "I/\u03c3 \u2265 3"},
