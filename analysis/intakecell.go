@@ -1,6 +1,7 @@
 package analysis
 
 import (
+	"errors"
 	"fmt"
 	"math"
 
@@ -23,6 +24,9 @@ func (s *Series) cellTolerances() (percent, deg float64) {
 func (s *Series) checkCells() error {
 	if s.CellTolerance < 0 || math.IsNaN(s.CellTolerance) {
 		return fmt.Errorf("cell_tolerance is %g: it must be 0 or more", s.CellTolerance)
+	}
+	if text := s.GroupOff(); text != "" {
+		return errors.New(text + ": correct the cell or the space group, or raise cell_tolerance")
 	}
 	for i := range s.Crystals {
 		for j := range s.Crystals[i].Positions {
@@ -61,6 +65,18 @@ func (s *Series) CellOff(c crystal.Cell) string {
 		return fmt.Sprintf("its cell differs from that of the series by %.1f %% in %s, more than %.3g %%", 100*d.Length, d.LengthName, percent)
 	case !(d.Angle <= deg):
 		return fmt.Sprintf("its cell differs from that of the series by %.2f degrees in %s, more than %.3g", d.Angle, d.AngleName, deg)
+	}
+	return ""
+}
+
+// GroupOff says what the space group asks of the cell and is not so to within the cell
+// tolerance, with the rotation that does not leave the cell as it is; empty when they
+// agree. A rotation turns an angle that is off by some degrees to the other side, so that
+// twice the tolerance lies between the two.
+func (s *Series) GroupOff() string {
+	percent, deg := s.cellTolerances()
+	if err := s.Group.FitsCell(s.Cell, percent/100, 2*deg); err != nil {
+		return err.Error()
 	}
 	return ""
 }

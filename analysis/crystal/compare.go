@@ -3,6 +3,7 @@ package crystal
 import (
 	"fmt"
 	"math"
+	"strings"
 )
 
 // CellDifference is how far two cells are apart.
@@ -56,10 +57,56 @@ func (g *Group) FitsCell(c Cell, length, angleDeg float64) error {
 		if g.setting.Choice == "R" && math.Abs(c.Gamma-120) <= angleDeg {
 			hint = "; the cell looks like hexagonal axes, choice :H"
 		}
-		return fmt.Errorf("cell %s does not fit %s: the rotation of %s makes it %s (%s differs by %.2f %%, %s by %.2f degrees)%s",
-			c, g, o, turned, d.LengthName, 100*d.Length, d.AngleName, d.Angle, hint)
+		return fmt.Errorf("cell %s does not fit %s%s: the rotation of %s makes it %s (%s differs by %.2f %%, %s by %.2f degrees)%s",
+			c, g, g.wants(c, length, angleDeg), o, turned, d.LengthName, 100*d.Length, d.AngleName, d.Angle, hint)
 	}
 	return nil
+}
+
+// wants names what the rotations of the group ask of the cell and is not so, like
+// ", which asks for a = b and beta = 90"; empty where it is no such equality.
+func (g *Group) wants(c Cell, length, angleDeg float64) string {
+	fit := cellOfMetric(g.meanMetric(c))
+	asks, want := [3]float64{fit.Alpha, fit.Beta, fit.Gamma}, []string{}
+	same := func(x, y float64) bool { return math.Abs(x-y) < 1e-6*x }
+	axes, has := [3]float64{fit.A, fit.B, fit.C}, [3]float64{c.A, c.B, c.C}
+	for i := range 3 {
+		j := (i + 1) % 3
+		if same(axes[i], axes[j]) && math.Abs(has[i]-has[j]) > length*(has[i]+has[j])/2 {
+			want = append(want, fmt.Sprintf("%c = %c", "abc"[min(i, j)], "abc"[max(i, j)]))
+		}
+	}
+	names, angles := [3]string{"alpha", "beta", "gamma"}, [3]float64{c.Alpha, c.Beta, c.Gamma}
+	for i := range 3 {
+		j := (i + 1) % 3
+		switch fixed := math.Round(asks[i]); {
+		case same(asks[i], fixed) && (fixed == 90 || fixed == 120):
+			if 2*math.Abs(angles[i]-fixed) > angleDeg {
+				want = append(want, fmt.Sprintf("%s = %.0f", names[i], fixed))
+			}
+		case same(asks[i], asks[j]) && math.Abs(angles[i]-angles[j]) > angleDeg:
+			want = append(want, names[min(i, j)]+" = "+names[max(i, j)])
+		}
+	}
+	if len(want) == 0 {
+		return ""
+	}
+	return ", which asks for " + strings.Join(want, " and ")
+}
+
+// meanMetric is the metric of the cell averaged over the rotations of the group.
+func (g *Group) meanMetric(c Cell) [3][3]float64 {
+	var mean [3][3]float64
+	metric := c.Metric()
+	for _, o := range g.coset {
+		m := congruent(metric, widen(o.R))
+		for i := range 3 {
+			for j := range 3 {
+				mean[i][j] += m[i][j] / float64(len(g.coset))
+			}
+		}
+	}
+	return mean
 }
 
 // String writes the six numbers to a thousandth.

@@ -285,6 +285,9 @@ func (l *loader) cell() error {
 	} else {
 		return l.fail(top, "cell", "neither the manifest nor a file gives the unit cell", "add a [cell] table with a, b, c, alpha, beta, gamma", nil)
 	}
+	if text := l.out.GroupOff(); text != "" {
+		return l.fail(top, "space_group", text, "correct the space group or the cell, or raise cell_tolerance", nil)
+	}
 	for _, c := range l.cells {
 		if text := l.out.CellOff(c.cell); text != "" {
 			return l.fail(c.at, "files", c.file+": "+text, remedyForCell(l.out.Cell, c.cell), nil)
