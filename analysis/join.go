@@ -238,6 +238,10 @@ func (l *ThicknessLine) ascend() {
 // of a crystal, so that what they share shows in the covariance.
 func (s *Study) muCovariance(ctx context.Context, list []*Compared) (*mat.SymDense, error) {
 	set := s.sizeSettings()
+	legs := make([][]*size.Input, len(list))
+	for k, x := range list {
+		legs[k] = s.legs(x)
+	}
 	boot, err := resample.Scalars(ctx, s.intake.Catalogue.Len(), func(w []float64) ([]float64, error) {
 		out := make([]float64, len(list))
 		for k, x := range list {
@@ -245,7 +249,7 @@ func (s *Study) muCovariance(ctx context.Context, list []*Compared) (*mat.SymDen
 			for i, u := range x.Pairs.Unique {
 				own[i] = w[u]
 			}
-			fit, err := size.MomentsCross(s.legs(x), own, x.Model, set)
+			fit, err := size.MomentsCross(legs[k], own, x.Model, set)
 			if err != nil {
 				return nil, err
 			}

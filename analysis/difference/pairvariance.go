@@ -69,21 +69,27 @@ func (p *Pairs) inverseVarianceMean(ratio float64) []float64 {
 type spread struct {
 	d, base, square, lever []float64
 	df, scale, slope       float64
+	v                      []float64 // room for the variances at one beta
 }
 
 func (f *spread) variance(i int, beta float64) float64 {
-	return math.Max(f.base[i]+beta*f.square[i], 0.1*f.base[i])
+	return max(f.base[i]+beta*f.square[i], 0.1*f.base[i])
 }
 
 // cost is minus the log likelihood at beta, with the slope refitted by
 // iterated weights from where it stands.
 func (f *spread) cost(beta float64) float64 {
+	if f.v == nil {
+		f.v = make([]float64, len(f.d))
+	}
+	for i := range f.v {
+		f.v[i] = f.scale * f.variance(i, beta)
+	}
 	for range 3 {
 		num, den := 0.0, 0.0
 		for i, d := range f.d {
-			v := f.scale * f.variance(i, beta)
 			r := d - f.slope*f.lever[i]
-			w := 1 / (f.df*v + r*r)
+			w := 1 / (f.df*f.v[i] + r*r)
 			num += w * d * f.lever[i]
 			den += w * f.lever[i] * f.lever[i]
 		}
@@ -93,7 +99,7 @@ func (f *spread) cost(beta float64) float64 {
 	}
 	sum := 0.0
 	for i, d := range f.d {
-		v := f.scale * f.variance(i, beta)
+		v := f.v[i]
 		r := d - f.slope*f.lever[i]
 		sum += 0.5*math.Log(v) + 0.5*(f.df+1)*math.Log1p(r*r/(f.df*v))
 	}
@@ -162,21 +168,25 @@ func (f *spread) betaSE(beta float64) float64 {
 // freedom with scale^2 = c v is, for normal deviates of variance v, best at v:
 // E[(df+1) z^2 / (df c + z^2)] = 1, by bisection on Simpson's rule.
 func normalScale(df float64) float64 {
+	const n, end = 800, 10.0
+	var above, square, normal [n + 1]float64
+	for k := range above {
+		z := end * float64(k) / n
+		w := 2.0
+		switch {
+		case k == 0 || k == n:
+			w = 1
+		case k%2 == 1:
+			w = 4
+		}
+		above[k], square[k], normal[k] = w*(df+1)*z*z, z*z, math.Exp(-0.5*z*z)
+	}
 	lo, hi := 1e-3, 1.0
 	for range 60 {
 		c := 0.5 * (lo + hi)
-		const n, end = 800, 10.0
 		sum := 0.0
-		for k := 0; k <= n; k++ {
-			z := end * float64(k) / n
-			w := 2.0
-			switch {
-			case k == 0 || k == n:
-				w = 1
-			case k%2 == 1:
-				w = 4
-			}
-			sum += w * (df + 1) * z * z / (df*c + z*z) * math.Exp(-0.5*z*z)
+		for k := range above {
+			sum += above[k] / (df*c + square[k]) * normal[k]
 		}
 		if 2*sum*end/(3*n)/math.Sqrt(2*math.Pi) > 1 {
 			lo = c

@@ -138,9 +138,53 @@ func counts(legs []*frame) (used, present float64, shells int) {
 func rowWeight(legs []*frame, i int) float64 {
 	var w float64
 	for _, f := range legs {
-		w = math.Max(w, f.w[i])
+		w = max(w, f.w[i])
 	}
 	return w
+}
+
+// present returns legs without the rows that all of them lack, as a bootstrap draws a
+// third of the rows not at all.
+func present(legs []*frame) []*frame {
+	var rows []int
+	for i := range legs[0].w {
+		if rowWeight(legs, i) > 0 {
+			rows = append(rows, i)
+		}
+	}
+	if len(rows) == len(legs[0].w) {
+		return legs
+	}
+	out := make([]*frame, len(legs))
+	for l, f := range legs {
+		in := *f.in
+		in.Shell = make([]int32, len(rows))
+		for k, i := range rows {
+			in.Shell[k] = f.in.Shell[i]
+		}
+		for _, v := range []*[]float64{&in.Z, &in.Thin, &in.Thick, &in.VarThin, &in.VarThick, &in.S2, &in.ThinA, &in.ThinB, &in.Exposure, &in.Precision} {
+			*v = pick(*v, rows)
+		}
+		g := *f
+		g.in = &in
+		for _, v := range []*[]float64{&g.w, &g.u, &g.z, &g.y1, &g.y2} {
+			*v = pick(*v, rows)
+		}
+		out[l] = &g
+	}
+	return out
+}
+
+// pick gives some rows of v; nil stays nil.
+func pick(v []float64, rows []int) []float64 {
+	if v == nil {
+		return nil
+	}
+	out := make([]float64, len(rows))
+	for k, i := range rows {
+		out[k] = v[i]
+	}
+	return out
 }
 
 // PrecisionWeights returns w = 1/(v + 2 (b max(z,0))^2), v the mean of both

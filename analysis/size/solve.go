@@ -15,16 +15,24 @@ type solution struct {
 	omega *mat.SymDense // sum of psi psi' at the first step
 	rows  [][]float64   // weights by leg and row; nil for ones
 	width []float64     // degrees of freedom of each variance in cov
+
+	m         *weighted
+	wa, bread *mat.Dense    // weight^-1 a and (a' weight^-1 a)^-1
+	lever     *mat.Dense    // theta = lever g
+	ch        *mat.Cholesky // of the weight of the moments
+	exact     bool          // nothing is left over
 }
 
 // weighted holds the weighted, centred functions and the linear moment sums
 // g - a theta.
 type weighted struct {
-	f [][][]float64 // by leg, function, row
-	u [][]float64   // by leg, row
-	a *mat.Dense
-	g *mat.VecDense
-	b *mat.SymDense // sum of (u f)(u f)'
+	f  [][][]float64 // by leg, function, row
+	u  [][]float64   // by leg, row
+	uf [][][]float64 // u f
+	wu [][]float64   // by leg, row: u times the counts
+	a  *mat.Dense
+	g  *mat.VecDense
+	b  *mat.SymDense // sum of (u f)(u f)'
 }
 
 // settled is the change of the curb, in its standard errors, at which its second order is
@@ -34,9 +42,10 @@ const settled = 0.01
 // solve is nil when the parameters cannot be told apart. The curb is taken to
 // second order at the q that was found until that stays.
 func (s *system) solve(set *Settings) *solution {
+	once := s.model < MQ || set.firstOrder()
 	sol := s.solveFrom(nil, set.flat())
-	if s.model < MQ || set.firstOrder() {
-		return sol
+	if once {
+		return s.finish(sol)
 	}
 	for range 8 {
 		if sol == nil {
@@ -45,11 +54,12 @@ func (s *system) solve(set *Settings) *solution {
 		before := sol
 		s.bend(before.theta[1] / (1 - before.theta[0]))
 		sol = s.solveFrom(before.theta, set.flat())
+		s.errors(sol)
 		if sol != nil && math.Abs(sol.theta[1]-before.theta[1]) <= settled*math.Sqrt(sol.cov.At(1, 1))+1e-6*math.Abs(sol.theta[1]) {
 			break
 		}
 	}
-	return sol
+	return s.finish(sol)
 }
 
 // solveFrom takes the law of the residual from theta or, when that is nil, from a
@@ -85,45 +95,61 @@ func (s *system) solveFrom(theta []float64, flat bool) *solution {
 	return sol
 }
 
-// secondStep weights the moments by the inverse of omega. Where omega is
+// secondStep weights the moments by the inverse of omega and finds theta. Where omega is
 // nothing beside the functions the model fits without residue, theta stands and
 // J is 0.
 func (s *system) secondStep(m *weighted, theta []float64, omega *mat.SymDense) *solution {
 	k, p := m.a.Dims()
-	sol := &solution{theta: theta, df: k - p, omega: omega}
+	sol := &solution{theta: theta, df: k - p, omega: omega, m: m, ch: &mat.Cholesky{}, exact: true}
 	weight := omega
-	exact := true
 	for i := range k {
-		exact = exact && omega.At(i, i) <= 1e-20*m.b.At(i, i)
+		sol.exact = sol.exact && omega.At(i, i) <= 1e-20*m.b.At(i, i)
 	}
-	if exact {
+	if sol.exact {
 		weight = m.b
 	} else if sol.theta = linear(m.a, omega, m.g); sol.theta == nil {
 		return nil
 	}
-	var ch mat.Cholesky
-	ch.Factorize(weight)
-	var wa, awa mat.Dense
-	if err := ch.SolveTo(&wa, m.a); err != nil {
+	sol.ch.Factorize(weight)
+	var wa, awa, bread mat.Dense
+	if err := sol.ch.SolveTo(&wa, m.a); err != nil {
 		return nil
 	}
 	awa.Mul(m.a.T(), &wa)
-	var bread, meat, half mat.Dense
 	if err := bread.Inverse(&awa); err != nil {
 		return nil
 	}
-	var lever mat.Dense
-	lever.Mul(&bread, wa.T())
-	last := s.covarianceOfMoments(m, sol.theta, s.leverage(m, &lever))
-	half.Mul(wa.T(), last)
-	meat.Mul(&half, &wa)
+	sol.bread, sol.wa = &bread, &wa
+	return sol
+}
+
+// errors adds the covariance of theta, once; nil stays.
+func (s *system) errors(sol *solution) {
+	if sol == nil || sol.cov != nil {
+		return
+	}
+	p := len(sol.theta)
+	sol.lever = &mat.Dense{}
+	sol.lever.Mul(sol.bread, sol.wa.T())
+	last := s.covarianceOfMoments(sol.m, sol.theta, s.leverage(sol.m, sol.lever))
+	var meat, half mat.Dense
+	half.Mul(sol.wa.T(), last)
+	meat.Mul(&half, sol.wa)
 	half.Reset()
-	half.Mul(&bread, &meat)
+	half.Mul(sol.bread, &meat)
 	sol.cov = mat.NewDense(p, p, nil)
-	sol.cov.Mul(&half, &bread)
-	sol.width = s.width(m, &lever, sol.theta)
-	if !exact {
-		sol.j = distance(m, sol.theta, &ch)
+	sol.cov.Mul(&half, sol.bread)
+}
+
+// finish adds all that does not steer the search for theta; nil stays.
+func (s *system) finish(sol *solution) *solution {
+	if sol == nil {
+		return nil
+	}
+	s.errors(sol)
+	sol.width = s.width(sol.m, sol.lever, sol.theta)
+	if !sol.exact {
+		sol.j = distance(sol.m, sol.theta, sol.ch)
 	}
 	return sol
 }
@@ -199,21 +225,28 @@ func (s *system) sums(rows [][]float64) *weighted {
 				u[i] *= rows[l][i]
 			}
 		}
-		f := make([][]float64, len(c.f))
-		for k := range f {
-			f[k] = c.centred(c.f[k])
+		wu := make([]float64, len(u))
+		for i, w := range c.w {
+			wu[i] = w * u[i]
 		}
-		m.u = append(m.u, u)
-		m.f = append(m.f, f)
+		uf := make([][]float64, len(c.f))
+		for k, f := range c.middle {
+			uf[k] = make([]float64, len(f))
+			for i, v := range f {
+				uf[k][i] = u[i] * v
+			}
+		}
+		m.u, m.wu = append(m.u, u), append(m.wu, wu)
+		m.f, m.uf = append(m.f, c.middle), append(m.uf, uf)
 	}
-	full := s.gram(m, func(l, k, i int) float64 { return m.u[l][i] * m.f[l][k][i] })
+	full := s.gram(m.uf)
 	keep := independent(full)
 	for l := range m.f {
-		var f [][]float64
+		var f, uf [][]float64
 		for _, k := range keep {
-			f = append(f, m.f[l][k])
+			f, uf = append(f, m.f[l][k]), append(uf, m.uf[l][k])
 		}
-		m.f[l] = f
+		m.f[l], m.uf[l] = f, uf
 	}
 	k, p := len(keep), s.parameters()
 	m.b = mat.NewSymDense(max(k, 1), nil)
@@ -226,8 +259,8 @@ func (s *system) sums(rows [][]float64) *weighted {
 	for l, c := range s.legs {
 		for kk, f := range m.f[l] {
 			a := make([]float64, p+1)
-			for i, w := range c.w {
-				wf := w * m.u[l][i] * f[i]
+			for i, wu := range m.wu[l] {
+				wf := wu * f[i]
 				if wf == 0 {
 					continue
 				}
@@ -247,26 +280,25 @@ func (s *system) sums(rows [][]float64) *weighted {
 
 // gram sums products over legs within a reflection, so that legs of one
 // reflection count as one.
-func (s *system) gram(m *weighted, v func(l, k, i int) float64) *mat.SymDense {
-	n := len(m.f[0])
+func (s *system) gram(v [][][]float64) *mat.SymDense {
+	n := len(v[0])
 	out := mat.NewSymDense(n, nil)
 	data := make([]float64, n*n)
 	row := make([]float64, n)
-	frames := s.frames()
-	for i := range s.legs[0].w {
-		w := rowWeight(frames, i)
+	for i, w := range s.weight {
 		if w == 0 {
 			continue
 		}
-		for k := range row {
-			row[k] = 0
-			for l := range s.legs {
-				row[k] += v(l, k, i)
+		clear(row)
+		for _, leg := range v {
+			for k := range row {
+				row[k] += leg[k][i]
 			}
 		}
-		for k := range row {
+		for k, a := range row {
+			wa, sums := w*a, data[k*n:(k+1)*n]
 			for j := k; j < n; j++ {
-				data[k*n+j] += w * row[k] * row[j]
+				sums[j] += wa * row[j]
 			}
 		}
 	}
@@ -304,23 +336,27 @@ func independent(g *mat.SymDense) []int {
 // leverage is the share of each reflection in its own fitted value, x' k (u f)
 // with theta = k g, plus that in its shell mean.
 func (s *system) leverage(m *weighted, k *mat.Dense) []float64 {
-	h := make([]float64, len(s.legs[0].w))
+	h := make([]float64, len(s.weight))
 	share := make([]float64, len(h))
 	for l, c := range s.legs {
+		u := m.u[l]
 		for i, sh := range c.in.Shell {
 			if c.w[i] == 0 {
 				continue
 			}
-			share[i] = math.Max(share[i], 1/c.sum[sh])
+			share[i] = max(share[i], 1/c.sum[sh])
+			sum := h[i]
 			for p, x := range c.x {
+				row := k.RawRowView(p)
 				for kk, f := range m.f[l] {
-					h[i] += x[i] * k.At(p, kk) * m.u[l][i] * f[i]
+					sum += x[i] * row[kk] * u[i] * f[i]
 				}
 			}
+			h[i] = sum
 		}
 	}
 	for i := range h {
-		h[i] = math.Min(h[i]+share[i], mostLeverage)
+		h[i] = min(h[i]+share[i], mostLeverage)
 	}
 	return h
 }
@@ -328,32 +364,25 @@ func (s *system) leverage(m *weighted, k *mat.Dense) []float64 {
 // covarianceOfMoments is the sum over reflections of psi psi' about its mean,
 // psi over 1 - h where h is given.
 func (s *system) covarianceOfMoments(m *weighted, theta, h []float64) *mat.SymDense {
-	n := len(s.legs[0].w)
 	psi := make([][]float64, len(m.f[0]))
-	mean := make([]float64, len(psi))
-	frames := s.frames()
 	for k := range psi {
-		psi[k] = make([]float64, n)
+		psi[k] = make([]float64, len(s.weight))
 	}
 	for l, c := range s.legs {
-		c.influence(psi, m.f[l], m.u[l], theta)
+		c.influence(psi, m.uf[l], m.wu[l], theta, m.f[l])
 	}
-	for k := range psi {
-		for i := range psi[k] {
-			mean[k] += rowWeight(frames, i) * psi[k][i]
+	for _, p := range psi {
+		mean := 0.0
+		for i, w := range s.weight {
+			mean += w * p[i]
 		}
-		mean[k] /= s.present
-		for i := range psi[k] {
-			psi[k][i] -= mean[k]
+		mean /= s.present
+		for i := range p {
+			p[i] -= mean
 			if h != nil {
-				psi[k][i] /= 1 - h[i]
+				p[i] /= 1 - h[i]
 			}
 		}
 	}
-	return s.gram(m, func(l, k, i int) float64 {
-		if l > 0 {
-			return 0
-		}
-		return psi[k][i]
-	})
+	return s.gram([][][]float64{psi})
 }

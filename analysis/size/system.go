@@ -17,6 +17,7 @@ type system struct {
 	used       float64
 	present    float64
 	shells     int
+	weight     []float64 // of each row, the same in every leg that has it
 }
 
 // conditions are the columns of one leg: x[p][i] multiplies parameter p.
@@ -29,7 +30,8 @@ type conditions struct {
 	second  []float64 // h^2 T
 	power   float64   // t goes as mean1^-power
 	f       [][]float64
-	inverse []float64 // by shell: reference over mean2
+	inverse []float64   // by shell: reference over mean2
+	middle  [][]float64 // f less its mean by shell
 }
 
 func (s *system) parameters() int { return int(s.model) + 1 }
@@ -46,6 +48,11 @@ func newSystem(legs []*frame, model Model, curb CurbForm) (*system, error) {
 	s := &system{model: model, curb: curb}
 	s.used, s.present, s.shells = counts(legs)
 	s.references(legs)
+	legs = present(legs)
+	s.weight = make([]float64, len(legs[0].w))
+	for i := range s.weight {
+		s.weight[i] = rowWeight(legs, i)
+	}
 	for _, f := range legs {
 		c := &conditions{frame: f}
 		m := make([]float64, len(f.w))
@@ -202,12 +209,12 @@ func (s *system) addFunctions(knots []float64, factor func(c *conditions, i int)
 		for _, k := range knots {
 			f := make([]float64, len(c.w))
 			for i, z := range c.z {
-				f[i] = math.Min(z, k)
+				f[i] = min(z, k)
 				if factor != nil {
 					f[i] *= factor(c, i)
 				}
 			}
-			c.f = append(c.f, f)
+			c.f, c.middle = append(c.f, f), append(c.middle, c.centred(f))
 		}
 	}
 }
@@ -223,61 +230,78 @@ func exposure(c *conditions, i int) float64 { return c.in.Exposure[i] }
 // residual is y1 - y2 less the model.
 func (c *conditions) residual(theta []float64) []float64 {
 	r := make([]float64, len(c.w))
-	for i := range r {
-		if c.w[i] == 0 {
-			continue
+	for i, w := range c.w {
+		if w != 0 {
+			r[i] = c.y1[i] - c.y2[i]
 		}
-		r[i] = c.y1[i] - c.y2[i]
-		for p, th := range theta {
-			r[i] -= th * c.x[p][i]
+	}
+	for p, th := range theta {
+		for i, x := range c.x[p] {
+			if c.w[i] != 0 {
+				r[i] -= th * x
+			}
 		}
 	}
 	return r
 }
 
 // influence adds to psi[k][i] what reflection i contributes to moment k at
-// theta: its own product, and the moment's change through the shell means of
-// y1, y2 and t, whose relative errors i makes up.
-func (c *conditions) influence(psi [][]float64, f [][]float64, u, theta []float64) {
+// theta, uf being the weighted functions: its own product, and the moment's change
+// through the shell means of y1, y2 and t, whose relative errors i makes up.
+func (c *conditions) influence(psi [][]float64, uf [][]float64, wu, theta []float64, f [][]float64) {
 	r := c.residual(theta)
-	var q, o float64
-	if len(theta) > 1 {
+	d1, d2 := c.slopes(theta)
+	curb := len(theta) > 1
+	var q float64
+	if curb {
 		q = theta[1]
 	}
-	if len(theta) > 2 {
-		o = theta[2]
-	}
 	shells := c.in.Shells
+	g1, g2, gt := make([]float64, shells), make([]float64, shells), make([]float64, shells)
 	for k := range f {
-		g1, g2, gt := make([]float64, shells), make([]float64, shells), make([]float64, shells)
+		clear(g1)
+		clear(g2)
+		clear(gt)
 		for j, s := range c.in.Shell {
-			wf := c.w[j] * u[j] * f[k][j]
+			wf := wu[j] * f[k][j]
 			if wf == 0 {
 				continue
 			}
-			y1, y2 := c.y1[j], c.y2[j]
-			d1 := -y1 + theta[0]*y1
-			d2 := y2
-			if len(theta) > 1 {
-				d1 -= q * (-c.power*c.t[j] + (c.power+1)*c.tMean[s]*y1)
-				gt[s] += wf * q * y1
+			if curb {
+				gt[s] += wf * q * c.y1[j]
 			}
-			if len(theta) > 2 {
-				d1 += o * c.inverse[s] * y1
-				d2 += o * c.x[2][j]
-			}
-			g1[s] += wf * d1
-			g2[s] += wf * d2
+			g1[s] += wf * d1[j]
+			g2[s] += wf * d2[j]
 		}
+		own, out := uf[k], psi[k]
 		for i, s := range c.in.Shell {
 			if c.w[i] == 0 {
 				continue
 			}
-			p := u[i]*f[k][i]*r[i] + (g1[s]*(c.y1[i]-1)+g2[s]*(c.y2[i]-1))/c.sum[s]
-			if len(theta) > 1 {
+			p := own[i]*r[i] + (g1[s]*(c.y1[i]-1)+g2[s]*(c.y2[i]-1))/c.sum[s]
+			if curb {
 				p += gt[s] * (c.t[i] - c.tMean[s]) / c.sum[s]
 			}
-			psi[k][i] += p
+			out[i] += p
 		}
 	}
+}
+
+// slopes is what the residual of each row gains from relative errors of its two shell
+// means.
+func (c *conditions) slopes(theta []float64) (d1, d2 []float64) {
+	d1, d2 = make([]float64, len(c.w)), make([]float64, len(c.w))
+	for j, s := range c.in.Shell {
+		y1 := c.y1[j]
+		d1[j] = -y1 + theta[0]*y1
+		d2[j] = c.y2[j]
+		if len(theta) > 1 {
+			d1[j] -= theta[1] * (-c.power*c.t[j] + (c.power+1)*c.tMean[s]*y1)
+		}
+		if len(theta) > 2 {
+			d1[j] += theta[2] * c.inverse[s] * y1
+			d2[j] += theta[2] * c.x[2][j]
+		}
+	}
+	return d1, d2
 }

@@ -29,13 +29,14 @@ func (s *system) variances(theta []float64) [][]float64 {
 }
 
 func (c *conditions) variances(r []float64) []float64 {
-	square, z2 := make([]float64, len(r)), make([]float64, len(r))
+	var law squares
 	a, n := make([]float64, c.in.Shells), make([]float64, c.in.Shells)
 	for i, s := range c.in.Shell {
 		if c.w[i]*c.u[i] > 0 {
-			z := math.Max(0, math.Min(c.z[i], clipVariance))
-			square[i], z2[i] = c.u[i]*r[i]*r[i], z*z
-			a[s] += c.w[i] * square[i] / (1 + z2[i])
+			z := max(0, min(c.z[i], clipVariance))
+			square, z2 := c.u[i]*r[i]*r[i], z*z
+			law = append(law, squared{s, c.w[i], square, z2, c.w[i] * z2})
+			a[s] += c.w[i] * square / (1 + z2)
 			n[s] += c.w[i]
 		}
 	}
@@ -45,54 +46,65 @@ func (c *conditions) variances(r []float64) []float64 {
 		least[s] = a[s] / 20
 	}
 	b := 0.0
+	num, den := make([]float64, len(a)), make([]float64, len(a))
 	for range 8 {
-		b = c.growth(square, z2, a, b)
-		a = c.base(square, z2, a, b, least)
+		b = law.growth(a, b)
+		law.base(a, b, least, num, den)
 	}
 	out := make([]float64, len(r))
+	k := 0
 	for i, s := range c.in.Shell {
 		out[i] = math.NaN()
 		if c.w[i]*c.u[i] > 0 {
-			out[i] = a[s] + b*z2[i]
+			out[i] = a[s] + b*law[k].z2
+			k++
 		}
 	}
 	return out
 }
 
+// squared is the squared residual of a row that takes part.
+type squared struct {
+	shell               int32
+	w, square, z2, wOfZ float64 // wOfZ is w z2
+}
+
+type squares []squared
+
 // growth is b for given a.
-func (c *conditions) growth(square, z2, a []float64, b float64) float64 {
+func (q squares) growth(a []float64, b float64) float64 {
 	var num, den float64
-	for i, s := range c.in.Shell {
-		if v := a[s] + b*z2[i]; c.w[i]*c.u[i] > 0 && v > 0 {
-			w := c.w[i] * z2[i] / (v * v)
-			num += w * math.Min(square[i]-a[s], 9*v)
-			den += w * z2[i]
+	for i := range q {
+		x := &q[i]
+		if v := a[x.shell] + b*x.z2; v > 0 {
+			w := x.wOfZ / (v * v)
+			num += w * min(x.square-a[x.shell], 9*v)
+			den += w * x.z2
 		}
 	}
 	if !(den > 0) {
 		return 0
 	}
-	return math.Max(0, num/den)
+	return max(0, num/den)
 }
 
-// base is a for given b.
-func (c *conditions) base(square, z2, a []float64, b float64, least []float64) []float64 {
-	num, den := make([]float64, len(a)), make([]float64, len(a))
-	for i, s := range c.in.Shell {
-		if v := a[s] + b*z2[i]; c.w[i]*c.u[i] > 0 && v > 0 {
-			w := c.w[i] / (v * v)
-			num[s] += w * (square[i] - b*z2[i])
-			den[s] += w
+// base turns a into that for given b; num and den are room for sums by shell.
+func (q squares) base(a []float64, b float64, least, num, den []float64) {
+	clear(num)
+	clear(den)
+	for i := range q {
+		x := &q[i]
+		if v := a[x.shell] + b*x.z2; v > 0 {
+			w := x.w / (v * v)
+			num[x.shell] += w * (x.square - b*x.z2)
+			den[x.shell] += w
 		}
 	}
-	out := make([]float64, len(a))
-	for s := range out {
-		out[s] = a[s]
+	for s := range a {
 		if den[s] > 0 {
-			out[s] = math.Max(num[s]/den[s], least[s])
+			a[s] = max(num[s]/den[s], least[s])
 		}
 	}
-	return out
 }
 
 // rowWeights is the inverse of the variance of each residual by its law; ones where
@@ -124,27 +136,30 @@ func (s *system) rowWeights(theta []float64) [][]float64 {
 // Survey Methodology 28:169): few where few reflections carry an estimate.
 func (s *system) width(m *weighted, lever *mat.Dense, theta []float64) []float64 {
 	p, _ := lever.Dims()
-	n := len(s.legs[0].w)
+	n := len(s.weight)
 	law := s.variances(theta)
-	frames := s.frames()
 	out := make([]float64, p)
+	own := make([]float64, n)
 	for j := range out {
-		var sum, squares float64
-		for i := range n {
-			var own float64
-			for l, c := range s.legs {
-				if math.IsNaN(law[l][i]) {
+		clear(own)
+		row := lever.RawRowView(j)
+		for l, c := range s.legs {
+			u := m.u[l]
+			for i, v := range law[l] {
+				if math.IsNaN(v) {
 					continue
 				}
 				g := 0.0
-				for k := range m.f[l] {
-					g += lever.At(j, k) * m.u[l][i] * m.f[l][k][i]
+				for k, f := range m.f[l] {
+					g += row[k] * u[i] * f[i]
 				}
-				own += g * g * law[l][i] / c.u[i]
+				own[i] += g * g * v / c.u[i]
 			}
-			w := rowWeight(frames, i)
-			sum += w * own
-			squares += w * own * own
+		}
+		var sum, squares float64
+		for i, w := range s.weight {
+			sum += w * own[i]
+			squares += w * own[i] * own[i]
 		}
 		out[j] = math.Inf(1)
 		if squares > 0 {
