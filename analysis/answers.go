@@ -41,7 +41,7 @@ func answers(r *Result) []Answer {
 	if a := answerThickness(r); a != nil {
 		list = append(list, *a)
 	}
-	return append(list, answerElse(r))
+	return undecidedByLaue(r, append(list, answerElse(r)))
 }
 
 // label names a contrast by its crystal, or by both positions across two.

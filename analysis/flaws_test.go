@@ -135,6 +135,7 @@ var trips = []struct {
 	{simulate.FlawGroupHigh, false, map[string][]string{checkGroup: {VerdictFails, VerdictCaution}}},
 	{simulate.FlawCentringLow, false, map[string][]string{checkGroup: {VerdictCaution}}},
 	{simulate.FlawCentringHigh, false, map[string][]string{checkGroup: {VerdictFails}}},
+	{simulate.FlawLaueHigh, true, map[string][]string{checkLaue: {VerdictFails}, checkScatter: {VerdictUnknown}, checkSigmas: {VerdictUnknown}}},
 	{simulate.FlawReplicates, false, map[string][]string{checkReplicates: {VerdictFails, VerdictCaution}}},
 }
 

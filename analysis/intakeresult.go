@@ -31,7 +31,7 @@ func (s *Study) IntakeDetails(ctx context.Context) (*IntakeDetails, error) {
 	s.mu.Lock()
 	defer s.mu.Unlock()
 	out := &IntakeDetails{
-		Positions: s.table, Common: s.sharing, Remarks: s.remarks, Centring: s.centring, Turns: s.turns, Indexing: s.indexing,
+		Positions: s.table, Common: s.sharing, Remarks: s.remarks, Laue: s.laueClass, Centring: s.centring, Turns: s.turns, Indexing: s.indexing,
 	}
 	for _, w := range s.warnings {
 		out.Warnings = append(out.Warnings, WarningResult{Code: w.Code, Where: w.Where, Text: w.Text})
@@ -50,6 +50,10 @@ func (s *Study) intakeResults(ctx context.Context) ([]IntakeResult, error) {
 		return nil, err
 	}
 	s.sharing, s.centring, s.remarks = s.commonResults(list), s.centringResults(list), remarks
+	s.laueClass = s.laue()
+	if v := s.laueFinding.Verdict; v == evidence.Caution || v == evidence.Fails {
+		s.warn("laue-class", "", "%s", s.laueClass.Why)
+	}
 	for _, c := range s.centring {
 		if c.Verdict == evidence.Caution.String() || c.Verdict == evidence.Fails.String() {
 			s.warn("centring", "lattice "+c.Centring, "%s", c.Why)

@@ -5,6 +5,7 @@ type IntakeDetails struct {
 	Positions []IntakeResult   `json:"positions"`
 	Common    []CommonResult   `json:"common"`
 	Remarks   []IntakeRemark   `json:"remarks"`
+	Laue      *LaueResult      `json:"laue"`
 	Centring  []CentringResult `json:"centring"`
 	Turns     []TurnResult     `json:"turns"`
 	Indexing  []IndexingResult `json:"indexing"`

@@ -105,6 +105,7 @@ func (s *Study) ledgerIntake(b *ledgerBook) {
 	b.fold(checkRows, "positions", 1, rows)
 	b.fold(checkNegatives, "positions", 1, negatives)
 	b.fold(checkCut, "positions", 0, cut)
+	b.add(checkLaue, "", s.laueFinding)
 }
 
 // nearZero counts observations with I/sigma from -0.5 to 0, to 0.5 and to 1.
@@ -139,6 +140,9 @@ func (s *Study) ledgerScale(b *ledgerBook) {
 		if r.Why != "" {
 			f = evidence.Finding{Value: math.NaN(), Verdict: evidence.NotKnown, Why: r.Why}
 		}
+		if s.laueFails() {
+			f = notEquivalent()
+		}
 		sigmas = append(sigmas, placed{where, f})
 		f = evidence.Finding{Value: r.LnK, Unit: "mean ln K", Verdict: evidence.Fine, Why: "the data fix the scale as a curve in the rotation angle"}
 		if r.Constant {
@@ -159,6 +163,9 @@ func (s *Study) ledgerScale(b *ledgerBook) {
 		f := evidence.Finding{Value: math.NaN(), Verdict: evidence.NotKnown, Why: "equivalents are too few in one of the positions"}
 		if thin.Estimable && thick.Estimable {
 			f = evidence.Scatter(thin.B, thin.BLo, thin.BHi, thick.B, thick.BLo, thick.BHi)
+		}
+		if s.laueFails() {
+			f = notEquivalent()
 		}
 		scatter = append(scatter, placed{c.Name, f})
 	}

@@ -40,6 +40,7 @@ const (
 	checkCrystals   = "number of crystals"
 	checkForbidden  = "forbidden reflections"
 	checkGroup      = "space group"
+	checkLaue       = "Laue class"
 	checkReplicates = "replicate position"
 )
 
@@ -47,7 +48,7 @@ const (
 // An entry under another name is a panic.
 func LedgerChecks() []string {
 	return []string{
-		checkRows, checkNegatives, checkCut, checkIndexing, checkSigmas, checkScaleCurve, checkScaleRatio, checkScatter,
+		checkRows, checkNegatives, checkCut, checkLaue, checkIndexing, checkSigmas, checkScaleCurve, checkScaleRatio, checkScatter,
 		checkAxis, checkDeviations, checkOffset, checkHighCounts, checkModel, checkThird, checkWeighted, checkGhost, checkGiants,
 		checkBleed, checkDouble, checkFrames, checkTilt, checkIce, checkCommon, checkLying, checkTipping, checkGroup,
 		checkScale, checkAnchors, checkExclusions, checkFriedel,

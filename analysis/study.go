@@ -6,6 +6,7 @@ import (
 	"sync"
 
 	"thinward/analysis/curve"
+	"thinward/analysis/evidence"
 	"thinward/analysis/intensity"
 	"thinward/analysis/resample"
 	"thinward/analysis/scaling"
@@ -71,6 +72,8 @@ type Study struct {
 	sharing       []CommonResult
 	remarks       []IntakeRemark
 	centring      []CentringResult
+	laueClass     *LaueResult
+	laueFinding   evidence.Finding
 	turns         []TurnResult
 	indexing      []IndexingResult
 	scaled        []*ScaledCrystal

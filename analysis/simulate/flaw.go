@@ -35,6 +35,7 @@ const (
 	FlawGroupHigh                // P 21 21 21 declared, P 21 21 2 true
 	FlawCentringLow              // P 2 2 21 declared, C 2 2 21 true
 	FlawCentringHigh             // C 2 2 21 declared, P 2 2 21 true
+	FlawLaueHigh                 // P 21 21 21 declared, P 1 21 1 true
 	FlawReplicates               // replicate positions of the thin ones with an exchange of 15 %
 	flaws
 )
@@ -42,7 +43,7 @@ const (
 var flawNames = [flaws]string{
 	"offset", "copies", "deviations", "negatives", "dead counts", "bleed", "tilt", "scale", "scatter", "dose",
 	"sigma", "indexing", "coverage", "ice", "one crystal", "jitter", "forbidden", "exchange", "curb",
-	"mates", "once", "background", "saturation", "alike", "group low", "group high", "centring low", "centring high", "replicates",
+	"mates", "once", "background", "saturation", "alike", "group low", "group high", "centring low", "centring high", "Laue class high", "replicates",
 }
 
 // String returns the flaw in a word or two.
@@ -87,6 +88,8 @@ func Flawed(f Flaw, seed uint64) *Plan {
 		p.SpaceGroup, p.Declared, p.Common.WithCentring = "C 2 2 21", "P 2 2 21", true
 	case FlawCentringHigh:
 		p.SpaceGroup, p.Declared = "P 2 2 21", "C 2 2 21"
+	case FlawLaueHigh:
+		p.SpaceGroup, p.Declared = "P 1 21 1", "P 21 21 21"
 	case FlawReplicates:
 		p.Crystals = Replicates(seed).Crystals
 		for i := range p.Crystals {

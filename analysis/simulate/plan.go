@@ -11,8 +11,9 @@ type Plan struct {
 	Title      string  `toml:"title,omitempty"`
 	EnergyKeV  float64 `toml:"energy_keV,omitempty"`  // 300
 	SpaceGroup string  `toml:"space_group,omitempty"` // "P 21 21 21"
-	// Declared is the space group that the series is said to have, of the same Laue class;
-	// SpaceGroup when empty.
+	// Declared is the space group that the series is said to have, which the cell must fit;
+	// SpaceGroup when empty. Its Laue class may be another one: unique reflections of the
+	// series are then not those of the truth.
 	Declared string  `toml:"declared,omitempty"`
 	Seed     uint64  `toml:"seed,omitempty"`  // any number, 0 included
 	DMin     float64 `toml:"d_min,omitempty"` // resolution limit in angstrom, 1.0
