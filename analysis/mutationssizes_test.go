@@ -28,8 +28,8 @@ var sizeMutations = []mutation{
 	},
 	{
 		name: "shell means left out of the error of the moments", file: "analysis/size/system.go", pkg: "analysis/size",
-		old:      `p := u[i]*f[k][i]*r[i] + (g1[s]*(c.y1[i]-1)+g2[s]*(c.y2[i]-1))/c.sum[s]`,
-		new:      `p := u[i] * f[k][i] * r[i]`,
+		old:      `p := own[i]*r[i] + (g1[s]*(c.y1[i]-1)+g2[s]*(c.y2[i]-1))/c.sum[s]`,
+		new:      `p := own[i] * r[i]`,
 		killedBy: []string{"TestJackknife"},
 	},
 	{
