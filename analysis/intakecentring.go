@@ -136,7 +136,11 @@ func (s *Study) shareForbidden(c *centring) (forbidden, kept float64) {
 	return forbidden, kept
 }
 
-// judgeCentring gives the verdict; explained says that a kind that forbids more has
+// nearlyCentred says what makes reflections that a centring forbids weak, but not absent.
+const nearlyCentred = "background left in the intensities or spots that run into each other where the lattice is centred, or a translation that almost is a symmetry where it is not"
+
+// judgeCentring gives the verdict: absent are reflections only that are within three standard
+// uncertainties of 0. explained says that a kind that forbids more has
 // been found already.
 func judgeCentring(r *CentringResult, explained bool) {
 	verdict, why := evidence.Fine, "what it would forbid is there: the lattice is not so centred"
@@ -149,8 +153,11 @@ func judgeCentring(r *CentringResult, explained bool) {
 	case r.Stated && r.Ratio-3*r.SU > filledCentring:
 		verdict = evidence.Fails
 		why = fmt.Sprintf("the group has this centring, but what it forbids is there (%.2f +- %.2f of the local mean of the others), and multiple scattering cannot fill it: write the group of the lattice without it, or these reflections are left out of everything", r.Ratio, r.SU)
+	case r.Stated && r.Ratio-3*r.SU > 0:
+		verdict = evidence.Caution
+		why = fmt.Sprintf("the group has this centring, but what it forbids is not quite absent (%.3f +- %.3f of the local mean of the others): %s", r.Ratio, r.SU, nearlyCentred)
 	case r.Stated:
-		why = "what it forbids is absent, as it must be"
+		why = fmt.Sprintf("what it forbids is absent, as it must be (%.3f +- %.3f of the local mean of the others)", r.Ratio, r.SU)
 	case float64(r.N) < 0.1*r.Expected && r.Expected >= fewestCentring:
 		verdict = evidence.Caution
 		why = fmt.Sprintf("hardly any of the reflections that it forbids are in the lists (%d, where %.0f would be like the others): the lattice looks centred, or somebody left them out; completeness counts them as missing", r.N, r.Expected)
@@ -159,9 +166,12 @@ func judgeCentring(r *CentringResult, explained bool) {
 	case r.Ratio+3*r.SU < emptyCentring:
 		verdict = evidence.Caution
 		why = fmt.Sprintf("the group allows them, but reflections that this centring forbids are absent (%.3f +- %.3f of the local mean of the others): write the group of the centred lattice, or half of what is compared is noise", r.Ratio, r.SU)
+	case r.Ratio < filledCentring:
+		verdict = evidence.Caution
+		why = fmt.Sprintf("the group allows them, but reflections that this centring forbids are hardly there (%.3f +- %.3f of the local mean of the others): %s", r.Ratio, r.SU, nearlyCentred)
 	}
 	if verdict == evidence.Caution && explained {
-		verdict, why = evidence.Fine, "absent as far as the centring above forbids them too"
+		verdict, why = evidence.Fine, "no weaker than the centring above makes them"
 	}
 	r.Verdict, r.Why = verdict.String(), why
 }

@@ -17,13 +17,19 @@ func TestJudgeCentring(t *testing.T) {
 	}{
 		{CentringResult{Stated: true, N: 19, Ratio: 1, SU: 0.1}, false, "not known", "19 reflections"},
 		{CentringResult{Stated: true, N: 20, Ratio: 0.41, SU: 0.1}, false, "fails", "0.41 +- 0.10"},
-		{CentringResult{Stated: true, N: 20, Ratio: 0.39, SU: 0.1}, false, "fine", "absent, as it must be"},
+		{CentringResult{Stated: true, N: 20, Ratio: 0.39, SU: 0.1}, false, "caution", "not quite absent (0.390 +- 0.100"},
+		{CentringResult{Stated: true, N: 20, Ratio: 0.29, SU: 0.1}, false, "fine", "absent, as it must be"},
+		// 69 standard uncertainties are not absent, however little they are.
+		{CentringResult{Stated: true, N: 900, Ratio: 0.0607, SU: 0.0009}, false, "caution", "not quite absent (0.061 +- 0.001"},
+		{CentringResult{N: 900, Expected: 1000, Ratio: 0.0607, SU: 0.0009}, false, "caution", "hardly there (0.061 +- 0.001"},
+		{CentringResult{N: 900, Expected: 1000, Ratio: 0.0607, SU: 0.0009}, true, "fine", "the centring above"},
 		{CentringResult{N: 9, Expected: 100}, false, "caution", "hardly any"},
 		{CentringResult{N: 11, Expected: 100, Ratio: 1, SU: 0.1}, false, "not known", "too few"},
 		{CentringResult{N: 0, Expected: 19}, false, "not known", "too few"},
 		{CentringResult{N: 90, Expected: 100, Ratio: 0.008, SU: 0.007}, false, "caution", "write the group of the centred lattice"},
 		{CentringResult{N: 90, Expected: 100, Ratio: 0.008, SU: 0.007}, true, "fine", "the centring above"},
-		{CentringResult{N: 90, Expected: 100, Ratio: 0.012, SU: 0.007}, false, "fine", "though nearly"},
+		{CentringResult{N: 90, Expected: 100, Ratio: 0.012, SU: 0.007}, false, "caution", "hardly there"},
+		{CentringResult{N: 90, Expected: 100, Ratio: 0.101, SU: 0.007}, false, "fine", "though nearly"},
 		{CentringResult{N: 90, Expected: 100, Ratio: 0.49, SU: 0.01}, false, "fine", "though nearly"},
 		{CentringResult{N: 90, Expected: 100, Ratio: 0.51, SU: 0.01}, false, "fine", "is there: the lattice is not so centred"},
 	} {
