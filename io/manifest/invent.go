@@ -108,8 +108,16 @@ func writeFile(path string, data []byte) error {
 
 func fileOf(crystal, position string) string { return crystal + "-" + position + ".cif.gz" }
 
+// declared is the space group that the series is said to have.
+func declared(s *simulate.Series) string {
+	if s.Plan.Declared != "" {
+		return s.Plan.Declared
+	}
+	return s.Plan.SpaceGroup
+}
+
 func inventedManifest(s *simulate.Series) *File {
-	f := &File{Title: s.Plan.Title, EnergyKeV: s.Plan.EnergyKeV, SpaceGroup: s.Plan.SpaceGroup, Seed: s.Plan.Seed, ThicknessScaleSU: s.Plan.ThicknessScaleSU}
+	f := &File{Title: s.Plan.Title, EnergyKeV: s.Plan.EnergyKeV, SpaceGroup: declared(s), Seed: s.Plan.Seed, ThicknessScaleSU: s.Plan.ThicknessScaleSU}
 	for i := range s.Specimens {
 		c := Crystal{Name: s.Specimens[i].Name}
 		for j := range s.Specimens[i].Positions {
@@ -145,7 +153,7 @@ func writePosition(dir string, s *simulate.Series, i, j int) error {
 	}{
 		{"_cell_length_a", cif.Num(s.Plan.Cell.A)}, {"_cell_length_b", cif.Num(s.Plan.Cell.B)}, {"_cell_length_c", cif.Num(s.Plan.Cell.C)},
 		{"_cell_angle_alpha", cif.Num(s.Plan.Cell.Alpha)}, {"_cell_angle_beta", cif.Num(s.Plan.Cell.Beta)}, {"_cell_angle_gamma", cif.Num(s.Plan.Cell.Gamma)},
-		{"_space_group_name_H-M_alt", cif.Str(s.Plan.SpaceGroup)},
+		{"_space_group_name_H-M_alt", cif.Str(declared(s))},
 		{"_diffrn_radiation_probe", cif.Str("electron")},
 		{"_diffrn_radiation_wavelength", cif.Num(round(s.Wavelength, 7))},
 	} {

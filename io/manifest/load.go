@@ -99,11 +99,15 @@ func (l *loader) series() (*analysis.Series, error) {
 	for _, b := range f.Between {
 		l.out.Between = append(l.out.Between, between(b))
 	}
+	// Cells first: axes of another order also make another group, and the remedy is theirs.
+	if err := l.cell(); err != nil {
+		return nil, err
+	}
 	if err := l.symmetry(); err != nil {
 		return nil, err
 	}
-	if err := l.cell(); err != nil {
-		return nil, err
+	if text := l.out.GroupOff(); text != "" {
+		return nil, l.fail(place{crystal: -1, position: -1}, "space_group", text, "correct the space group or the cell, or raise cell_tolerance", nil)
 	}
 	return &l.out, nil
 }
@@ -227,52 +231,6 @@ func join(a, b *intensity.Columns) (*intensity.Columns, error) {
 	return a, nil
 }
 
-func (l *loader) symmetry() error {
-	f := l.file
-	top := place{crystal: -1, position: -1}
-	var err error
-	switch {
-	case len(f.Operators) > 0:
-		if l.out.Group, err = crystal.ParseOperators(f.Operators); err != nil {
-			return l.fail(top, "operators", err.Error(), "list every operator of the group, centring included", err)
-		}
-	case f.SpaceGroup != "":
-		if l.out.Group, err = crystal.Lookup(f.SpaceGroup); err != nil {
-			return l.fail(top, "space_group", err.Error(), `write a Hermann-Mauguin symbol such as "P 21 21 21", a Hall symbol or a number`, err)
-		}
-	}
-	for _, g := range l.groups {
-		if l.out.Group == nil {
-			l.out.Group = g.group
-			continue
-		}
-		if g.group.LaueClass() != l.out.Group.LaueClass() {
-			if f.SpaceGroup == "" && len(f.Operators) == 0 {
-				text := fmt.Sprintf("%s gives Laue class %s, the files before it %s", g.file, g.group.LaueClass(), l.out.Group.LaueClass())
-				return l.fail(top, "space_group", text, "fix the group for all files with space_group", nil)
-			}
-			text := fmt.Sprintf("the file gives Laue class %s, the manifest %s", g.group.LaueClass(), l.out.Group.LaueClass())
-			l.out.Warnings = append(l.out.Warnings, intensity.Warning{Code: "group-differs", Text: text, Where: g.file})
-		} else if g.group.Number() > 0 && l.out.Group.Number() > 0 && g.group.Number() != l.out.Group.Number() {
-			text := fmt.Sprintf("the file gives space group %s, the series uses %s: they forbid different reflections", nameOf(g.group), nameOf(l.out.Group))
-			l.out.Warnings = append(l.out.Warnings, intensity.Warning{Code: "group-differs", Text: text, Where: g.file})
-		}
-	}
-	if l.out.Group == nil {
-		return l.fail(top, "space_group", "neither the manifest nor a file gives the symmetry", `add space_group = "P 21 21 21" or operators = [...]`, nil)
-	}
-	return nil
-}
-
-func nameOf(g *crystal.Group) string {
-	for _, s := range []string{g.HM(), g.Hall()} {
-		if s != "" {
-			return s
-		}
-	}
-	return fmt.Sprintf("of %d operators", len(g.Operators()))
-}
-
 func (l *loader) cell() error {
 	top := place{crystal: -1, position: -1}
 	if c := l.file.Cell; c != nil {
@@ -284,9 +242,6 @@ func (l *loader) cell() error {
 		l.out.Cell = l.cells[0].cell
 	} else {
 		return l.fail(top, "cell", "neither the manifest nor a file gives the unit cell", "add a [cell] table with a, b, c, alpha, beta, gamma", nil)
-	}
-	if text := l.out.GroupOff(); text != "" {
-		return l.fail(top, "space_group", text, "correct the space group or the cell, or raise cell_tolerance", nil)
 	}
 	for _, c := range l.cells {
 		if text := l.out.CellOff(c.cell); text != "" {
