@@ -188,10 +188,10 @@ func bracketAnswer(a Answer, list []*ContrastResult) Answer {
 	lo, hi := math.Inf(1), math.Inf(-1)
 	for _, c := range list {
 		b := c.Bracket
-		parts = append(parts, fmt.Sprintf("%s: m between %s (half of the thick position, errs downward) and %s (half of the thin, errs upward); moment ratio %s",
+		parts = append(parts, fmt.Sprintf("%s: by the model with a curb, which can take deviations for one, m = %s from half of the thick position and %s from half of the thin; moment ratio %s",
 			label(c), span(b.Thick.Value, b.Thick.Lo, b.Thick.Hi), span(b.Thin.Value, b.Thin.Lo, b.Thin.Hi), span(c.MomentRatio.M, c.MomentRatio.Lo, c.MomentRatio.Hi)))
 		if !math.IsNaN(b.ThickSlope.Value) && !math.IsNaN(b.ThinSlope.Value) {
-			parts = append(parts, fmt.Sprintf("%s: by one slope, which reads curb and offset as exchange, between %s and %s", label(c),
+			parts = append(parts, fmt.Sprintf("%s: by one slope, which reads curb and offset as exchange, m = %s from half of the thick position, whose own deviations take it down, and %s from half of the thin, whose own take it up", label(c),
 				span(b.ThickSlope.Value, b.ThickSlope.Lo, b.ThickSlope.Hi), span(b.ThinSlope.Value, b.ThinSlope.Lo, b.ThinSlope.Hi)))
 		}
 		if math.IsNaN(b.Lo) || math.IsNaN(b.Hi) || math.IsNaN(b.Thick.Value) || math.IsNaN(b.Thin.Value) {
@@ -208,7 +208,7 @@ func bracketAnswer(a Answer, list []*ContrastResult) Answer {
 	}
 	a.Detail = parts
 	const why = " Only a bracket can be given, since no other crystal of the series says how strong each reflection is."
-	width := fmt.Sprintf("m lies between %s and %s", short(lo), short(hi))
+	width := fmt.Sprintf("m lies between %s and %s, the ends of all that halves of either position say", short(lo), short(hi))
 	const unrelated = "This holds only if the deviations of the two positions are unrelated."
 	switch {
 	case known == 0:

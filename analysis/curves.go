@@ -190,12 +190,12 @@ func (s *Study) axes(ctx context.Context, x *Compared) error {
 		add(x.Strengths, "shares no noise with the difference, and no geometry unless crystals lay alike")
 	}
 	for _, axis := range []difference.Axis{difference.AxisHalfThin, difference.AxisHalfThick} {
-		remark := "errs upward"
+		remark := "one slope errs upward"
 		if axis == difference.AxisHalfThick {
-			remark = "errs downward"
+			remark = "one slope errs downward"
 		}
 		if legs := s.bracketLegs(x, axis); legs != nil {
-			list = append(list, candidate{axis.String(), remark + " when the position has deviations of its own", legs, nil})
+			list = append(list, candidate{axis.String(), remark + " when the position has deviations that the other does not share", legs, nil})
 		}
 	}
 	add(s.third(x), "shares this crystal's deviations; errs downward on a wedge")

@@ -167,16 +167,21 @@ type CurbForm struct {
 	Refused bool `json:"refused"`
 }
 
-// Bracket holds the two estimates of m from halves of one position: Hi with half
-// of the thin one (errs upward), Lo with half of the thick one (errs downward).
+// Bracket holds m from halves of the positions themselves, by the leading model and by
+// one slope. Lo to Hi is the hull of all four intervals. It holds m where the deviations of
+// the two positions are unrelated, and is without an end (infinite) where one of the
+// four cannot be had.
 type Bracket struct {
-	Lo    float64  `json:"lo"`
-	Hi    float64  `json:"hi"`
+	Lo float64 `json:"lo"`
+	Hi float64 `json:"hi"`
+	// Thin and Thick are by the leading model. With q in it neither lies on a known side
+	// of m: the deviations of a position look like a curb.
 	Thin  Interval `json:"half_of_thin"`
 	Thick Interval `json:"half_of_thick"`
 	Why   string   `json:"why,omitempty"`
-	// ThinSlope and ThickSlope are the same by the instrument, one slope that reads
-	// curb and offset as exchange.
+	// ThinSlope and ThickSlope are by the instrument, one slope. What a position
+	// deviates by and the other does not takes the first up and the second down; curb
+	// and offset, which it reads as exchange, take both up.
 	ThinSlope  Interval `json:"half_of_thin_one_slope"`
 	ThickSlope Interval `json:"half_of_thick_one_slope"`
 }

@@ -12,7 +12,8 @@ import (
 // ScaleVariant is one primary contrast with its crystal under another scale:
 // another model with the anchor of the study, or another anchor with its model.
 // Exchange, curb and offset are those of the leading model on the leading axis (on
-// a bracket of the halves of the thin position, which err upward). Values that
+// a bracket of the halves of the thin position, whose own deviations bias all
+// variants alike). Values that
 // are not estimable are NaN with a Why.
 type ScaleVariant struct {
 	Crystal, Model, Anchor string

@@ -11,8 +11,8 @@ import (
 )
 
 // One crystal without deviations, its thick position with a curb or an offset and
-// no exchange: both ends of the bracket come from the leading model and hold 0. With
-// the instrument alone the end that should err downward lies above 0.
+// no exchange: the bracket holds 0, since the leading model, with a curb and an offset, is
+// in it. By one slope alone even the end that deviations would take down lies above 0.
 func TestBracketOfOneCrystal(t *testing.T) {
 	for _, c := range []cell{{sigma: 1, curb: 0.02}, {sigma: 1, offset: 0.02}} {
 		p := c.plan(1)

@@ -22,7 +22,8 @@ type SplitResult struct {
 // pairs, so that m means the same in both parts. It is for a confounder of one's
 // own: what touches only one part should make the parts differ. keep is called
 // once a pair, in order, with a row it may look at; it must not be nil. A part
-// that is too small has no m and says why. On a bracket both parts err upward.
+// that is too small has no m and says why. On a bracket the strengths of both parts are
+// from halves of the thin position, whose own deviations bias both alike.
 func (s *Study) Split(ctx context.Context, keep func(*PairRow) bool) ([]SplitResult, error) {
 	s.mu.Lock()
 	list, err := s.primariesStep(ctx)

@@ -78,8 +78,8 @@ func halfExchange(t *testing.T, p *Pairs, axis Axis) float64 {
 	return 0.5 * (exchangeBy(p, h.Folds[0].Z, h.Folds[0].Thin, h.Folds[0].Thick) + exchangeBy(p, h.Folds[1].Z, h.Folds[1].Thin, h.Folds[1].Thick))
 }
 
-// Deviations that the two positions do not share: the halves of thin err
-// upward, those of thick downward.
+// Deviations that the two positions do not share: the slope from halves of thin errs
+// upward, that from halves of thick downward.
 func TestHalvesBracket(t *testing.T) {
 	w := newTruth(t, 0.045)
 	for _, matched := range []bool{false, true} {

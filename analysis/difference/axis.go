@@ -11,9 +11,10 @@ const (
 	// alike.
 	AxisCrystals Axis = iota
 	// AxisHalfThin is half of the thin position, by raw index, with the
-	// difference taken from the other half; an exchange read off it errs upward.
+	// difference taken from the other half; the slope read off it errs upward where the
+	// position's deviations are its own.
 	AxisHalfThin
-	// AxisHalfThick is the same with the thick position; it errs downward.
+	// AxisHalfThick is the same with the thick position; its slope errs downward.
 	AxisHalfThick
 	// AxisThird is another position of the same crystal; it shares the crystal's
 	// own deviations.

@@ -26,9 +26,10 @@ type Halved struct {
 
 // Half splits one position of the pairs by raw index (intensity.Halves with
 // key) and returns the strength from each half with the pair taken from the
-// other. With AxisHalfThin an exchange errs upward, with AxisHalfThick
-// downward, when the position's own deviations are shared by its halves; the
-// two make the bracket of a crystal that stands alone. In matched pairs both
+// other. A slope read off AxisHalfThin errs upward, off AxisHalfThick downward, by what
+// the position deviates and the other does not, which its halves share; the two make the
+// bracket of a crystal that stands alone. A model with a curb takes these deviations
+// for a curb, and its exchange errs on no known side. In matched pairs both
 // members come from the other half, seen at the same angles. Strengths are over
 // the half's own means of the pairs' shells. Reflections with one raw index
 // are NaN. Errors: another axis, no reflection with two raw indices.

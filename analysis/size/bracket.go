@@ -5,16 +5,20 @@ import (
 	"math"
 )
 
-// BracketEnds holds m by halves of one crystal's own positions. Lo and Hi reach
-// from the lower end of FromThick to the upper end of FromThin, whichever is
-// farther.
+// BracketEnds holds m by halves of one crystal's own positions, read by one slope (the
+// instrument). Lo and Hi reach from the lower end of FromThick to the upper end of
+// FromThin, whichever is farther.
 //
-// It is a bracket of the truth only when the deviations of the two positions
-// from any law of strength are unrelated; within one wedge they are alike and
-// both ends err downward.
+// With C(p, q) the covariance of the deviations of two positions from any law of strength
+// and V the variance of the strengths, the slope from halves of position p lies off m
+// by -[C(p, thick) - (1-m) C(p, thin)]/(V + C(p, thin)). Unrelated deviations therefore
+// take FromThin up and FromThick down, and the two bracket the truth. Where deviations
+// grow with thickness and neighbours share them, as within one wedge, FromThin can
+// lie below it too. A curb and an offset, which one slope reads as exchange, raise both. The
+// directions are those of one slope: a model with a curb reads the deviations as curb.
 type BracketEnds struct {
-	FromThin  *Instrument // axis: halves of the thin position; errs upward
-	FromThick *Instrument // axis: halves of the thick position; errs downward
+	FromThin  *Instrument // axis: halves of the thin position; errs upward by its own deviations
+	FromThick *Instrument // axis: halves of the thick position; errs downward by its own
 	Lo, Hi    float64
 }
 

@@ -132,13 +132,13 @@ func (s *Session) Classes() *View {
 	return g.view("Classes")
 }
 
-// Brackets shows m from halves of either position.
+// Brackets shows m from halves of either position, by the leading model and by one slope.
 func (s *Session) Brackets() *View {
 	r := s.upTo(stepDifferences)
-	g := newGrid("Bracket of m from halves of the same positions", "contrast", "half of the thick position (errs downward)", "half of the thin position (errs upward)", "whole bracket", "by one slope: half of the thick", "half of the thin", "moment ratio", "remark").words(7)
+	g := newGrid("Bracket of m from halves of the same positions", "contrast", "with curb: half of the thick position", "with curb: half of the thin", "one slope: half of the thick (its own deviations lower it)", "one slope: half of the thin (its own raise it)", "bracket: hull of the four", "moment ratio", "remark").words(7)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
-		g.add(contrastName(c), withInterval(c.Bracket.Thick, 3), withInterval(c.Bracket.Thin, 3), between(c.Bracket.Lo, c.Bracket.Hi, 3), withInterval(c.Bracket.ThickSlope, 3), withInterval(c.Bracket.ThinSlope, 3), number(c.MomentRatio.M, 3), c.Bracket.Why)
+		g.add(contrastName(c), withInterval(c.Bracket.Thick, 3), withInterval(c.Bracket.Thin, 3), withInterval(c.Bracket.ThickSlope, 3), withInterval(c.Bracket.ThinSlope, 3), between(c.Bracket.Lo, c.Bracket.Hi, 3), number(c.MomentRatio.M, 3), c.Bracket.Why)
 	}
 	return g.view("Bracket")
 }
