@@ -5,7 +5,6 @@ import (
 	"errors"
 	"fmt"
 	"math"
-	"slices"
 
 	"thinward/analysis/curve"
 )
@@ -27,10 +26,11 @@ type AngleBlocks struct {
 	LoSim  []float64 `json:"lo_sim"`
 	HiSim  []float64 `json:"hi_sim"`
 	P      float64   `json:"p"`
-	// Width is the median over the curve of the width of the pointwise band over that by
-	// reflections: 1 where neighbours on the rotation share nothing.
+	// Width is the median over the curve of the standard error of its mean by blocks over
+	// that by reflections: 1 where neighbours on the rotation share nothing.
 	Width float64 `json:"width_ratio"`
-	// WidthSE is the standard error of Width that so few blocks leave.
+	// WidthSE is the standard error of Width where they share nothing: how it scatters when
+	// reflections are dealt to blocks of the same sizes by chance.
 	WidthSE float64 `json:"width_ratio_se"`
 	Why     string  `json:"why,omitempty"`
 }
@@ -78,27 +78,8 @@ func (s *Study) blockBands(ctx context.Context, x *Compared) (*AngleBlocks, erro
 		return out, nil
 	}
 	out.Grid, out.Mean, out.Lo, out.Hi, out.LoSim, out.HiSim, out.P = b.Grid, b.Mean, b.Lo, b.Hi, b.LoSim, b.HiSim, b.P
-	out.Width, out.WidthSE = widthRatio(b, x.Band, n)
+	out.Width, out.WidthSE = newWidths(x.Strengths.Z, x.Pairs.Eps(), weights(x.Pairs), blocks, n, b.Windows).ratio(s.seed(s.Name(x.Contrast), "deal blocks").Stream(0))
 	return out, nil
-}
-
-// widthRatio is the median ratio of the standard errors behind two bands of one grid, and
-// its error: that of the square root of a variance over n blocks, 1/sqrt(2(n-1)), of
-// which the median over overlapping windows saves nothing.
-func widthRatio(blocks, single *curve.Banded, n int) (ratio, se float64) {
-	var r []float64
-	for g := range blocks.Mean {
-		if w := single.Hi[g] - single.Lo[g]; w > 0 && !math.IsInf(w, 1) && !math.IsInf(blocks.Hi[g]-blocks.Lo[g], 1) {
-			r = append(r, (blocks.Hi[g]-blocks.Lo[g])/w)
-		}
-	}
-	if len(r) == 0 {
-		return math.NaN(), math.NaN()
-	}
-	slices.Sort(r)
-	k := len(r)
-	ratio = (r[(k-1)/2] + r[k/2]) / 2
-	return ratio, ratio / math.Sqrt(2*float64(n-1))
 }
 
 var errNoAngles = errors.New("the observations have no angles")

@@ -11,8 +11,8 @@ import (
 	"thinward/analysis/simulate"
 )
 
-// Frames that jitter by 20 % in the thick positions make reflections of one block
-// alike: bands by blocks are wider. Without jitter they are as wide as by reflections.
+// Blocks that flicker in the thick positions make reflections of one block alike: bands by
+// blocks are wider. Without it they are as wide as by reflections.
 func TestAngleBlocksSeeWhatFramesShare(t *testing.T) {
 	width := func(p *simulate.Plan) (mean float64) {
 		s := studyOf(t, p, &Settings{Replicates: 400, Flips: 200})
@@ -34,16 +34,10 @@ func TestAngleBlocksSeeWhatFramesShare(t *testing.T) {
 		return mean
 	}
 	calm := width(simulate.Sound(3))
-	p := simulate.Sound(3)
-	for i := range p.Crystals {
-		at := &p.Crystals[i].Positions[2]
-		// One factor for 2.5 degrees.
-		at.FrameDeg, at.FrameJitter = 2.5, 0.2
-	}
-	jitter := width(p)
-	t.Logf("width by blocks over that by reflections: %.2f, with jitter %.2f", calm, jitter)
-	if !(calm > 0.8 && calm < 1.2) || !(jitter > calm+0.15) {
-		t.Errorf("ratio %.2f without, %.2f with jitter", calm, jitter)
+	flicker := width(simulate.Flawed(simulate.FlawFlicker, 3))
+	t.Logf("width by blocks over that by reflections: %.3f, with flicker %.3f", calm, flicker)
+	if !(calm > 0.9 && calm < 1.1) || !(flicker > calm+0.15) {
+		t.Errorf("ratio %.3f without, %.3f with flicker", calm, flicker)
 	}
 }
 

@@ -124,6 +124,7 @@ var trips = []struct {
 	{simulate.FlawIce, false, map[string][]string{checkIce: {VerdictCaution, VerdictFails}}},
 	{simulate.FlawOneCrystal, false, map[string][]string{checkCrystals: {VerdictCaution}, checkAxis: {VerdictCaution}, checkGhost: {VerdictCaution}}},
 	{simulate.FlawJitter, false, map[string][]string{checkFrames: {VerdictCaution}}},
+	{simulate.FlawFlicker, false, map[string][]string{checkBlocks: {VerdictCaution}}},
 	{simulate.FlawForbidden, false, map[string][]string{checkForbidden: {VerdictUnknown}}},
 	{simulate.FlawCurb, false, map[string][]string{checkHighCounts: {VerdictCaution}}},
 	{simulate.FlawMates, false, map[string][]string{checkFriedel: {VerdictCaution}}},

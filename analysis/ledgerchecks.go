@@ -22,6 +22,7 @@ const (
 	checkThird      = "axis third against leading"
 	checkWeighted   = "axis inverse-variance against leading"
 	checkGhost      = "ghost of noise"
+	checkBlocks     = "angle blocks"
 	checkGiants     = "giants"
 	checkScale      = "scale variants"
 	checkAnchors    = "anchors"
@@ -49,7 +50,7 @@ const (
 func LedgerChecks() []string {
 	return []string{
 		checkRows, checkNegatives, checkCut, checkLaue, checkIndexing, checkSigmas, checkScaleCurve, checkScaleRatio, checkScatter,
-		checkAxis, checkDeviations, checkOffset, checkHighCounts, checkModel, checkThird, checkWeighted, checkGhost, checkGiants,
+		checkAxis, checkDeviations, checkOffset, checkHighCounts, checkModel, checkThird, checkWeighted, checkGhost, checkBlocks, checkGiants,
 		checkBleed, checkDouble, checkFrames, checkTilt, checkIce, checkCommon, checkLying, checkTipping, checkGroup,
 		checkScale, checkAnchors, checkExclusions, checkFriedel,
 		checkDoseOrder, checkDoseGrowth, checkCrystals, checkForbidden, checkReplicates,

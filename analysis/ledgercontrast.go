@@ -23,7 +23,7 @@ func (s *Study) ledgerContrasts(b *ledgerBook) {
 		ideal float64
 	}{
 		{checkAxis, 1}, {checkDeviations, 1}, {checkOffset, 0}, {checkHighCounts, 0}, {checkModel, 1},
-		{checkThird, 0}, {checkWeighted, 0}, {checkGhost, 1},
+		{checkThird, 0}, {checkWeighted, 0}, {checkGhost, 1}, {checkBlocks, 1},
 	} {
 		b.fold(check.name, "contrasts", check.ideal, kinds[check.name])
 	}
@@ -33,7 +33,7 @@ func (s *Study) judgeContrast(x *Compared, put func(check, where string, f evide
 	r, where := &x.Result, s.Name(x.Contrast)
 	independent := x.Leading == leadCrystals
 	put(checkAxis, where, evidence.AxisOf(r.AxisAgreement, x.Leading, independent))
-	put(checkDeviations, where, evidence.Deviations(r.Correlation.R, r.Correlation.Lo, r.Correlation.Hi, r.PairNoise, r.Bracket.Thin.Value, r.Bracket.Thick.Value, independent))
+	put(checkDeviations, where, evidence.Deviations(r.Correlation.R, r.Correlation.Lo, r.Correlation.Hi, r.PairNoise, r.Bracket.ThinSlope.Value, r.Bracket.ThickSlope.Value, independent))
 	if x.Leading != leadBracket {
 		put(checkOffset, where, evidence.OffsetOf(r.Offset.O, r.Offset.Lo, r.Offset.Hi))
 		put(checkModel, where, evidence.Describes(r.OverIdent.P, r.OverIdent.DF))
@@ -61,6 +61,9 @@ func (s *Study) judgeContrast(x *Compared, put func(check, where string, f evide
 		worst = math.Max(worst, r.Naive[name].GhostScore)
 	}
 	put(checkGhost, where, evidence.GhostOf(worst, independent))
+	if b := r.AngleBlocks; b != nil {
+		put(checkBlocks, where, evidence.BlocksOf(b.Width, b.WidthSE, b.Deg, b.Why))
+	}
 }
 
 // ledgerChoices judges how far m moves under other choices, from the

@@ -80,8 +80,9 @@ func OffsetOf(o, lo, hi float64) Finding {
 }
 
 // Deviations judges the reproducible differences of single reflections: r with its
-// interval, the deviation b_D of pairs beyond their noise, and the bracket of m from
-// halves of either position. Caution when r lies below 0.98 with its whole
+// interval, the deviation b_D of pairs beyond their noise, and m by one slope from
+// halves of either position, which what a position does not share takes up (thin) and
+// down (thick). Caution when r lies below 0.98 with its whole
 // interval: then axes that share a position with the difference are biased,
 // however well it is counted. independent says that the leading axis is of other
 // crystals.
@@ -90,8 +91,8 @@ func Deviations(r, lo, hi, extra, thinHalf, thickHalf float64, independent bool)
 		return unknown("the true correlation between the positions is not estimable")
 	}
 	f := Finding{Value: r, Unit: "true correlation r", Verdict: Fine}
-	f.Why = fmt.Sprintf("r = %s (%s to %s); pairs differ by %s of their intensity beyond their noise; m from halves of the thin position %s, of the thick %s",
-		num(r), num(lo), num(hi), num(math.Max(extra, 0)), num(thinHalf), num(thickHalf))
+	f.Why = fmt.Sprintf("r = %s (%s to %s); pairs differ by %s of their intensity beyond their noise; m by one slope from halves of the thin position %.2g, of the thick %.2g",
+		num(r), num(lo), num(hi), num(math.Max(extra, 0)), thinHalf, thickHalf)
 	if hi < 0.98 {
 		f.Verdict = Caution
 		f.Why += "; the positions deviate from each other reproducibly"
@@ -168,6 +169,27 @@ func BleedOf(s *Slope, err error) Finding {
 		if s.Value >= 0.05 {
 			f.Verdict = Fails
 		}
+	}
+	return f
+}
+
+// BlocksOf judges whether neighbours on the rotation share errors: width is the error of the
+// curve against strength when blocks of deg degrees are drawn as one, over that by
+// single reflections, and se what chance makes of a width of 1. why says that there
+// is none. Caution beyond 3.5 standard errors and 1.1: intervals and p by reflections
+// then claim too much, those of m as well as those of the curve.
+func BlocksOf(width, se, deg float64, why string) Finding {
+	if math.IsNaN(width) || math.IsNaN(se) {
+		if why == "" {
+			why = "no error by blocks is known"
+		}
+		return unknown("%s", why)
+	}
+	f := Finding{Value: width, Unit: "times the error by reflections", Verdict: Fine,
+		Why: fmt.Sprintf("drawn by blocks of %g degrees the curve has %.2f times the error that it has by reflections, where 1 +- %.2f is chance: neighbours on the rotation share no error that shows", deg, width, se)}
+	if width-1 > clearZ*se && width > 1.1 {
+		f.Verdict = Caution
+		f.Why = fmt.Sprintf("drawn by blocks of %g degrees the curve has %.2f times the error that it has by reflections, where 1 +- %.2f is chance: neighbours on the rotation share errors (scale, bending, drift), so that bands, intervals and p by reflections claim too much; take bands and p by blocks", deg, width, se)
 	}
 	return f
 }

@@ -23,6 +23,7 @@ const (
 	FlawIce                      // ice rings in the thick positions
 	FlawOneCrystal               // one crystal only
 	FlawJitter                   // 20 % jitter between frames of the thick positions
+	FlawFlicker                  // 60 % jitter between blocks of 2.5 degrees of the thick positions
 	FlawForbidden                // forbidden reflections not recorded
 	FlawExchange                 // a true exchange of 2, 6 and 12 %
 	FlawCurb                     // a true curb of 0, 0.01 and 0.03
@@ -42,7 +43,7 @@ const (
 
 var flawNames = [flaws]string{
 	"offset", "copies", "deviations", "negatives", "dead counts", "bleed", "tilt", "scale", "scatter", "dose",
-	"sigma", "indexing", "coverage", "ice", "one crystal", "jitter", "forbidden", "exchange", "curb",
+	"sigma", "indexing", "coverage", "ice", "one crystal", "jitter", "flicker", "forbidden", "exchange", "curb",
 	"mates", "once", "background", "saturation", "alike", "group low", "group high", "centring low", "centring high", "Laue class high", "replicates",
 }
 
@@ -155,5 +156,7 @@ func spoil(f Flaw, j int, q *Position) {
 		q.Ice = 0.5
 	case f == FlawJitter && thick:
 		q.FrameJitter = 0.2
+	case f == FlawFlicker && thick:
+		q.FrameDeg, q.FrameJitter = 2.5, 0.6
 	}
 }
