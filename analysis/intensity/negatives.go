@@ -13,8 +13,16 @@ type Negatives struct {
 	N        int
 	Observed [4]int
 	Expected [4]float64
-	// Missing says that fewer than 0.3 of at least 20 expected lie below zero.
-	Missing  bool
+	// Near counts the observations in [-1,0), [0,1) and [1,2) sigma, Least is the smallest
+	// Near[0] that Near[1] and Near[2] allow. Whatever the true intensities, I/sigma is a
+	// mixture of normal laws of variance one, whose log density curves downward by no
+	// more than one: (ln f)'' = Var(J/sigma | I/sigma) - 1. So Near[0] >= Near[1]^2/Near[2]/e.
+	Near  [3]int
+	Least float64
+	// Few says that fewer than 0.3 of at least 20 expected lie below zero, as when weak
+	// reflections are filled; Missing, that fewer lie there than Least allows as well, by
+	// three standard errors: no intensities make that, but removal does.
+	Few, Missing bool
 	Warnings []Warning
 }
 
@@ -49,6 +57,9 @@ func CountNegatives(unique []int32, i, sigma []float64, cat *Catalogue, sh *Shel
 		if cat.Centric[u] {
 			table = law[1]
 		}
+		if z := i[o] / sigma[o]; z >= -1 && z < 2 {
+			n.Near[int(math.Floor(z))+1]++
+		}
 		expected := table.at(sigma[o] / (mean[s] * float64(cat.Epsilon[u])))
 		for k := range n.Observed {
 			if i[o] < -float64(k)*sigma[o] {
@@ -57,11 +68,24 @@ func CountNegatives(unique []int32, i, sigma []float64, cat *Catalogue, sh *Shel
 			n.Expected[k] += expected[k]
 		}
 	}
-	if n.Missing = n.Expected[0] >= 20 && float64(n.Observed[0]) < 0.3*n.Expected[0]; n.Missing {
+	n.Few = n.Expected[0] >= 20 && float64(n.Observed[0]) < 0.3*n.Expected[0]
+	removed := n.broken()
+	if n.Missing = n.Few && removed; n.Missing {
 		n.Warnings = append(n.Warnings, Warning{Code: "negatives-missing", Text: fmt.Sprintf(
 			"%d of %d observations lie below zero where the sigmas lead one to expect about %.0f: negatives look removed or set to zero, which makes weak reflections too strong", n.Observed[0], n.N, n.Expected[0])})
 	}
 	return n
+}
+
+// broken sets Least and says whether Near[0] lies three standard errors below it.
+func (n *Negatives) broken() bool {
+	below, above, next := float64(n.Near[0]), float64(n.Near[1]), float64(n.Near[2])
+	if above == 0 || next == 0 {
+		return false
+	}
+	n.Least = above * above / next / math.E
+	variance := math.Max(below, n.Least) + n.Least*n.Least*(4/above+1/next)
+	return n.Least-below > 3*math.Sqrt(variance)
 }
 
 // tailTable holds the share observed below -k sigma against ln(sigma/mean).

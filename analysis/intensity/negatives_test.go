@@ -43,6 +43,49 @@ func TestRemovedNegativesAreNoticed(t *testing.T) {
 	}
 }
 
+// Weak reflections that are filled leave few below zero, but fall off as noise does: nothing
+// is removed. Near[0] is at least Near[1]^2/Near[2]/e for any intensities: a flat
+// density gives .3156, .6844, .9252 (integrals of the normal distribution), one intensity of
+// two sigma .1359, .3413, .3413 over one another.
+func TestFilledWeakReflectionsAreNotRemovedOnes(t *testing.T) {
+	cat, s := invented(t, 11, 0.1, 4, 0.5)
+	sh := cat.Shells(15)
+	filled := slices.Clone(s.I)
+	mean, count := make([]float64, sh.N), make([]float64, sh.N)
+	for o, u := range s.Unique {
+		if k := sh.Of[u]; k >= 0 {
+			mean[k] += s.I[o]
+			count[k]++
+		}
+	}
+	for o, u := range s.Unique {
+		if k := sh.Of[u]; k >= 0 {
+			filled[o] += 0.3 * mean[k] / count[k] * float64(cat.Epsilon[u])
+		}
+	}
+	n := CountNegatives(s.Unique, filled, sigmas(s), cat, sh)
+	if !n.Few || n.Missing || len(n.Warnings) != 0 {
+		t.Errorf("%+v", n)
+	}
+	for _, c := range []struct {
+		name string
+		near [3]int
+		want float64
+		gone bool
+	}{
+		{"flat", [3]int{3156, 6844, 9252}, 6844 * 6844 / 9252.0 / math.E, false},
+		{"flat, removed", [3]int{0, 6844, 9252}, 6844 * 6844 / 9252.0 / math.E, true},
+		{"one intensity of two sigma", [3]int{214, 1359, 3413}, 1359 * 1359 / 3413.0 / math.E, false},
+		{"nothing near zero", [3]int{0, 2, 12}, 4 / 12.0 / math.E, false},
+	} {
+		v := &Negatives{Near: c.near}
+		if got := v.broken(); got != c.gone {
+			t.Errorf("%s: removed %v", c.name, got)
+		}
+		floatcmp.Check(t, c.name, v.Least, c.want, 1e-12, 1e-12)
+	}
+}
+
 func TestTailTable(t *testing.T) {
 	for _, centric := range []bool{false, true} {
 		table := newTailTable(centric)
