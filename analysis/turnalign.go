@@ -136,7 +136,11 @@ const alignSample = 20000
 func (n rawNumbers) of(c *intensity.Columns, by crystal.Reindexing, stride int) difference.Angled {
 	var out difference.Angled
 	for r := range c.I {
-		h := by.Apply(crystal.HKL{H: int(c.H[r]), K: int(c.K[r]), L: int(c.L[r])})
+		h := crystal.HKL{H: int(c.H[r]), K: int(c.K[r]), L: int(c.L[r])}
+		if !by.Maps(h) {
+			continue
+		}
+		h = by.Apply(h)
 		key := uint32(h.H)*73856093 ^ uint32(h.K)*19349663 ^ uint32(h.L)*83492791
 		if int(key*2654435769>>8)%stride != 0 {
 			continue
