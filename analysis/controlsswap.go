@@ -32,7 +32,7 @@ func (s *Study) swappedControl(ctx context.Context, r *reading) ([]ControlResult
 	}
 	m := r.lead.M
 	x := ControlResult{Control: controlSwapped, Crystal: r.x.Result.Crystal, M: intervalOf(v.M), Q: intervalOf(v.Q), Expected: -m.Value / (1 - m.Value), P: math.NaN(), Rejections: math.NaN(),
-		Draws: 1, Through: "pairing on", Can: can, Cannot: cannot, Why: "whole positions were exchanged, thin for thick"}
+		Draws: 1, Through: "pairing on", Can: can, Cannot: cannot}
 	se, err := r.swapError(ctx, p)
 	if ctx.Err() != nil {
 		return nil, ctx.Err()
@@ -40,19 +40,32 @@ func (s *Study) swappedControl(ctx context.Context, r *reading) ([]ControlResult
 	if err != nil {
 		return []ControlResult{unread(controlSwapped, r.x.Result.Crystal, can, cannot, err.Error())}, nil
 	}
+	if r.lead.F >= firmF {
+		se = math.Min(se, m.SE/((1-m.Value)*(1-m.Value))+v.M.SE)
+	}
 	off := math.Abs(v.M.Value - x.Expected)
-	x.judge(off <= distuv.StudentsT{Sigma: 1, Nu: swapGroups - 1}.Quantile(1-r.alarm/2)*se+swappedOrder(m.Value, r.lead.Q.Value))
+	allowed := distuv.StudentsT{Sigma: 1, Nu: swapGroups - 1}.Quantile(1-r.alarm/2)*se + swappedOrder(m.Value, r.lead.Q.Value)
+	x.judge(off <= allowed)
+	x.Why = fmt.Sprintf("whole positions were exchanged, thin for thick; m is %s off what is expected, and %s is allowed", short(off), short(allowed))
+	if q := r.lead.Q.Value; math.Abs(q) >= turnsOver {
+		x.Why += fmt.Sprintf("; a curb of q = %s turns the strongest reflections over, so that no curb describes the swapped pair: neither m is one to trust", short(q))
+	}
 	return []ControlResult{x}, nil
 }
+
+// turnsOver is the curb q at which y exp(-q y) has its maximum at a strength y of 6, the
+// highest that the axis tells apart (it is clipped there): with a larger q the strongest
+// reflections of a pair do not rise with strength, and the law has no inverse.
+const turnsOver = 1. / 6
 
 // swappedOrder is by how much m of the swapped pair differs from -m/(1-m) when curb and exchange
 // are both there. The curb comes first; swapped, it would be taken off the intensities
 // x = (y - m)/(1-m) from before the exchange, q x^2, but the model takes it off y: the
 // term -2 m q y/(1-m)^2 is left, an exchange of that size in shells of the mean of the lowest
 // third. The inverse of y exp(-q y) is y exp(q y) to first order only, which leaves a term of
-// order q^2.
+// order q^2. Nothing is allowed for a curb without an inverse, where these orders mean nothing.
 func swappedOrder(m, q float64) float64 {
-	if math.IsNaN(q) {
+	if math.IsNaN(q) || math.Abs(q) >= turnsOver {
 		return 0
 	}
 	return (2*math.Abs(m*q) + q*q) / ((1 - m) * (1 - m))
@@ -60,7 +73,9 @@ func swappedOrder(m, q float64) float64 {
 
 // swapError is the standard error of m of the swapped pair less -m/(1-m). The two fits
 // share their reflections, so it is found by leaving out a twentieth of them in turn from both
-// (the grouped jackknife: Quenouille 1956, Biometrika 43:353).
+// (the grouped jackknife: Quenouille 1956, Biometrika 43:353). Where it exceeds the errors that
+// both fits claim, added up, it speaks against these claims and for no agreement: those
+// are the ones taken then, unless the axis is weak and its errors known to be too short.
 func (r *reading) swapError(ctx context.Context, swapped *difference.Pairs) (float64, error) {
 	forth, _, err := r.strengths(r.x.Pairs)
 	if err != nil {
