@@ -69,6 +69,8 @@ func init() {
 			"IntakeRemark":    reflect.TypeOf((*analysis.IntakeRemark)(nil)).Elem(),
 			"IntakeResult":    reflect.TypeOf((*analysis.IntakeResult)(nil)).Elem(),
 			"Interval":        reflect.TypeOf((*analysis.Interval)(nil)).Elem(),
+			"LaueOperator":    reflect.TypeOf((*analysis.LaueOperator)(nil)).Elem(),
+			"LaueResult":      reflect.TypeOf((*analysis.LaueResult)(nil)).Elem(),
 			"LedgerEntry":     reflect.TypeOf((*analysis.LedgerEntry)(nil)).Elem(),
 			"Left":            reflect.TypeOf((*analysis.Left)(nil)).Elem(),
 			"Matters":         reflect.TypeOf((*analysis.Matters)(nil)).Elem(),
