@@ -145,9 +145,29 @@ func unlike(c *CommonResult) string {
 		}
 	}
 	if min(c.Share, c.WithShare) < leastShare {
-		return fmt.Sprintf("%.0f and %.0f %% of the reflections are common: they may not stand for the rest", 100*c.Share, 100*c.WithShare)
+		return fmt.Sprintf("less than %.0f %% of the reflections of one are common to both: they may not stand for the rest", 100*leastShare)
 	}
 	return ""
+}
+
+// warnOfCommon says once what is the same of several pairs of positions of one crystal.
+func (s *Study) warnOfCommon() {
+	var texts []string
+	where := map[string]string{}
+	for _, c := range s.sharing {
+		if c.Why == "" || c.Crystal != c.WithCrystal {
+			continue
+		}
+		if where[c.Why] == "" {
+			texts = append(texts, c.Why)
+		} else {
+			where[c.Why] += ", "
+		}
+		where[c.Why] += c.Crystal + "/" + c.Position + " and " + c.WithCrystal + "/" + c.WithPosition
+	}
+	for _, text := range texts {
+		s.warn("common", where[text], "%s", text)
+	}
 }
 
 // inOthers is the share of the reflections of x that another crystal has too; NaN with

@@ -59,11 +59,7 @@ func (s *Study) intakeResults(ctx context.Context) ([]IntakeResult, error) {
 			s.warn("centring", "lattice "+c.Centring, "%s", c.Why)
 		}
 	}
-	for _, c := range s.sharing {
-		if c.Why != "" && c.Crystal == c.WithCrystal {
-			s.warn("common", c.Crystal+"/"+c.Position+" and "+c.WithCrystal+"/"+c.WithPosition, "%s", c.Why)
-		}
-	}
+	s.warnOfCommon()
 	s.table = out
 	return out, nil
 }

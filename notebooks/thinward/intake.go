@@ -139,19 +139,34 @@ func intakeText(d *analysis.IntakeDetails) string {
 			fmt.Fprintf(&b, "%s: %s taken as %s: %s\n", where, plural(m.Count, "row"), m.Kind, m.Why)
 		}
 	}
+	var said sayings
+	if l := d.Laue; l != nil && l.Verdict != analysis.VerdictCaution && l.Verdict != analysis.VerdictFails { // the others are warnings
+		said.add("Laue class ", l.Class, l.Why)
+	}
+	proposed := map[string]string{}
 	for _, x := range d.Indexing {
-		fmt.Fprintf(&b, "indexing of %s: %s\n", x.Where, x.Text)
+		said.add("indexing of ", x.Where, x.Text)
 		if x.Proposal != "" {
-			fmt.Fprintf(&b, "  propose in the manifest: reindex = %q\n", x.Proposal)
+			proposed[x.Text] = x.Proposal
+		}
+	}
+	for k := range said {
+		if p := proposed[said[k].text]; p != "" {
+			said[k].text += fmt.Sprintf("\n  propose in the manifest: reindex = %q", p)
 		}
 	}
 	for _, c := range d.Common {
 		if c.Crystal != c.WithCrystal && c.Why != "" { // those within a crystal are warnings
-			fmt.Fprintf(&b, "%s/%s and %s/%s: %s\n", c.Crystal, c.Position, c.WithCrystal, c.WithPosition, c.Why)
+			said.add("", c.Crystal+"/"+c.Position+" and "+c.WithCrystal+"/"+c.WithPosition, c.Why)
 		}
 	}
 	for _, x := range d.Warnings {
-		fmt.Fprintf(&b, "%s: %s\n", x.Where, x.Text)
+		if x.Code != "reindexed" && x.Code != "indexing-ambiguous" { // said of the indexing
+			said.add("", x.Where, x.Text)
+		}
+	}
+	for _, x := range said {
+		fmt.Fprintln(&b, x.line())
 	}
 	return b.String()
 }
@@ -161,4 +176,37 @@ func dash(v float64, decimals int) string {
 		return "-"
 	}
 	return fmt.Sprintf("%.*f", decimals, v)
+}
+
+// saying is one sentence and the places it is said of.
+type saying struct {
+	what, text string
+	where      []string
+}
+
+// sayings keep the order in which sentences were first said.
+type sayings []saying
+
+func (s *sayings) add(what, where, text string) {
+	for k := range *s {
+		if x := &(*s)[k]; x.what == what && x.text == text {
+			x.where = append(x.where, where)
+			return
+		}
+	}
+	*s = append(*s, saying{what, text, []string{where}})
+}
+
+// mostPlaces is the number of places that a sentence names before it counts.
+const mostPlaces = 4
+
+func (s *saying) line() string {
+	places := strings.Join(s.where, ", ")
+	if n := len(s.where); n > mostPlaces {
+		places = fmt.Sprintf("%s and %d more", strings.Join(s.where[:mostPlaces-1], ", "), n-mostPlaces+1)
+	}
+	if places == "" {
+		return s.what + s.text
+	}
+	return s.what + places + ": " + s.text
 }
