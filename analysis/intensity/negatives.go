@@ -23,7 +23,7 @@ type Negatives struct {
 	// reflections are filled; Missing, that fewer lie there than Least allows as well, by
 	// three standard errors: no intensities make that, but removal does.
 	Few, Missing bool
-	Warnings []Warning
+	Warnings     []Warning
 }
 
 // CountNegatives counts over the allowed observations of one position, on any
