@@ -118,12 +118,27 @@ func chain(seed resample.Seed, n, positions int, rho float64) [][]float64 {
 }
 
 // ExchangeBetween returns the true m of the contrast of two positions of one
-// crystal, 1 - (1-m_thick)/(1-m_thin), NaN with Plan.Law or when m_thin is 1. It panics
-// for numbers out of range.
+// crystal, 1 - (1-m_thick)/(1-m_thin) of ExchangeMean, NaN with Plan.Law or when m_thin
+// is 1. It panics for numbers out of range.
 func (s *Series) ExchangeBetween(specimen, thin, thick int) float64 {
-	a, b := s.Specimens[specimen].Positions[thin].Plan, s.Specimens[specimen].Positions[thick].Plan
-	if s.Plan.Law != nil || a.Exchange == 1 {
+	a, b := &s.Specimens[specimen].Positions[thin], &s.Specimens[specimen].Positions[thick]
+	left := 1 - a.ExchangeMean()
+	if s.Plan.Law != nil || left == 0 {
 		return math.NaN()
 	}
-	return 1 - (1-b.Exchange)/(1-a.Exchange)
+	return 1 - (1-b.ExchangeMean())/left
+}
+
+// ExchangeMean is the exchange of the position: that of its plan or, where the
+// path grows with tilt, its mean over the rows, 1 - <(1-m)^(1/cos(phi - TiltZeroDeg))>.
+func (m *Measured) ExchangeMean() float64 {
+	p := &m.Plan
+	if !p.TiltThickens || m.Rows.Len() == 0 {
+		return p.Exchange
+	}
+	left := 0.0
+	for _, phi := range m.Rows.Phi {
+		left += math.Pow(1-p.Exchange, 1/math.Cos((phi-p.TiltZeroDeg)*math.Pi/180))
+	}
+	return 1 - left/float64(m.Rows.Len())
 }

@@ -157,9 +157,15 @@ func TestTiltThickens(t *testing.T) {
 	p.Common.Exchange, p.Common.TiltThickens, p.Common.TiltZeroDeg = 0.2, true, 5
 	s := invent(t, p)
 	m := s.Specimens[0].Positions[0]
+	sum := 0.0
 	for i, u := range m.Unique {
 		left := math.Pow(0.8, 1/math.Cos((m.Rows.Phi[i]-5)*math.Pi/180))
+		sum += left
 		floatcmp.Check(t, "exchange at tilt", m.Expected[i], 200*(left*s.Truth.J[u]+(1-left)*s.Truth.Local[u]), 0, 1e-10)
+	}
+	floatcmp.Check(t, "mean over the rows", m.ExchangeMean(), 1-sum/float64(m.Rows.Len()), 0, 1e-12)
+	if !(m.ExchangeMean() > 0.22) {
+		t.Errorf("a tilted slab exchanges %g", m.ExchangeMean())
 	}
 }
 

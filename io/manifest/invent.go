@@ -207,7 +207,8 @@ type TruthContrast struct {
 	M       float64 `json:"m"`
 }
 
-// TruthPosition is what one position was made with. M, Q, O and Deviation are null when
+// TruthPosition is what one position was made with, M as its mean over the rows where
+// the path grows with tilt. M, Q, O and Deviation are null when
 // the intensities come from a law of their own, in which they have no meaning: not
 // 0, which would say that thickness does nothing.
 type TruthPosition struct {
@@ -233,7 +234,8 @@ func truthOf(s *simulate.Series) *Truth {
 			p := &list[j].Plan
 			made := TruthPosition{Crystal: s.Specimens[i].Name, Position: p.Name, ThicknessNM: p.ThicknessNM, B: list[j].B, Rows: list[j].Rows.Len()}
 			if s.Plan.Law == nil {
-				made.M, made.Q, made.O, made.Deviation = &p.Exchange, &p.Curb, &p.Offset, &p.Deviation
+				m := list[j].ExchangeMean()
+				made.M, made.Q, made.O, made.Deviation = &m, &p.Curb, &p.Offset, &p.Deviation
 			}
 			t.Positions = append(t.Positions, made)
 			for k := range list {
