@@ -22,7 +22,8 @@ const tiltShare = 0.4
 // the one between positions. ExtraNM is how much longer the way is on the mean at high
 // tilt, M the exchange from low to high tilt by one number, the model (m), SE its error, and Slope
 // mu = -ln(1-M) per 100 nm of way; on invented slabs it comes out 5 to 10 % low. Between is
-// the slope of the primary contrast by the same model, per 100 nm of thickness.
+// the slope of the primary contrast by its leading model, per 100 nm by which the mean way
+// through the thick position is longer than that through the thin.
 type TiltSlope struct {
 	Crystal  string   `json:"crystal"`
 	Position string   `json:"position"`
@@ -93,11 +94,11 @@ func (s *Study) tiltSlope(ctx context.Context, x *Compared) (*TiltSlope, error) 
 	t.Pairs, t.M, t.SE = pairs.Len(), intervalOf(v.M), v.M.SE
 	t.ExtraNM = p.ThicknessNM * extraWay(x.thick, pairs, a, b, zero)
 	t.Slope = s.perWay(v.M.Value, v.M.SE, t.ExtraNM)
-	for _, m := range x.Result.Models {
-		if m.Model == size.M.String() && x.Contrast.Crystal == x.Contrast.ThickCrystal {
-			step := p.ThicknessNM - s.Series.Crystals[x.Contrast.Crystal].Positions[x.Contrast.Thin].ThicknessNM
-			t.Between = s.perWay(m.M.Value, (m.M.Hi-m.M.Lo)/2/zOf(s.settings.Level), step)
-		}
+	thin := &s.Series.Crystals[x.Contrast.Crystal].Positions[x.Contrast.Thin]
+	if e := x.Result.Exchange; x.Contrast.Crystal == x.Contrast.ThickCrystal && thin.HasTiltZero && x.thin.Phi != nil {
+		before := s.intake.Positions[x.Contrast.Crystal][x.Contrast.Thin].Turn.Of(thin.TiltZeroDeg)
+		step := p.ThicknessNM*meanWay(x.thick, zero) - thin.ThicknessNM*meanWay(x.thin, before)
+		t.Between = s.perWay(e.M, e.SE, step)
 	}
 	return t, nil
 }
@@ -110,6 +111,22 @@ func (s *Study) perWay(m, se, nm float64) Interval {
 	per := 100 / nm
 	mu, half := -math.Log(1-m)*per, zOf(s.settings.Level)*se/(1-m)*per
 	return interval(mu, mu-half, mu+half, "")
+}
+
+// meanWay is the mean of 1/cos of the tilt, with the weights of the observations.
+func meanWay(p *intensity.Scaled, zero float64) float64 {
+	sum, weight := 0.0, 0.0
+	for o, v := range p.Var {
+		sum += wayOf(p.Phi[o], zero) / v
+		weight += 1 / v
+	}
+	return sum / weight
+}
+
+// wayOf is 1/cos of the tilt; edge-on, where that has no end, 85 degrees stand for what
+// lies beyond.
+func wayOf(phi, zero float64) float64 {
+	return 1 / math.Cos(math.Min(tiltOf(phi, zero), 85)*math.Pi/180)
 }
 
 // tiltParts gives the rows at low and at high tilt.
@@ -134,14 +151,13 @@ func tiltParts(phi []float64, zero float64) (low, high []int) {
 }
 
 // extraWay is the mean over the pairs of 1/cos of the tilt behind their thick side, the rows
-// high, less that behind their thin side, with the weights of their observations. Edge-on,
-// where 1/cos has no end, 85 degrees stand for what lies beyond.
+// high, less that behind their thin side, with the weights of their observations.
 func extraWay(p *intensity.Scaled, pairs *difference.Pairs, low, high []int, zero float64) float64 {
 	way := func(rows []int) map[int32]float64 {
 		sum, weight := map[int32]float64{}, map[int32]float64{}
 		for _, o := range rows {
 			w := 1 / p.Var[o]
-			sum[p.Unique[o]] += w / math.Cos(math.Min(tiltOf(p.Phi[o], zero), 85)*math.Pi/180)
+			sum[p.Unique[o]] += w * wayOf(p.Phi[o], zero)
 			weight[p.Unique[o]] += w
 		}
 		for u, w := range weight {

@@ -35,6 +35,8 @@ func TestTiltParts(t *testing.T) {
 	// Weights: an observation at 60 degrees three times as good as one at 0 on the high side, one
 	// at 0 on the low side.
 	two := &intensity.Scaled{Unique: []int32{0, 0, 0}, Phi: []float64{0, 0, 60}, Var: []float64{1, 3, 1}}
+	floatcmp.Check(t, "mean way", meanWay(two, 0), (1+1.0/3+2)/(2+1.0/3), 1e-12, 0)
+	floatcmp.Check(t, "edge-on", wayOf(90, 0), 1/math.Cos(85*math.Pi/180), 1e-9, 0)
 	floatcmp.Check(t, "weighted", extraWay(two, pairs, []int{0}, []int{1, 2}, 0), 0.75*2+0.25-1, 1e-12, 0)
 }
 
@@ -82,6 +84,11 @@ func TestTiltSlope(t *testing.T) {
 			sum += (got.Slope.Value - want) / (se * se)
 			weight += 1 / (se * se)
 			chi2 += (got.Slope.Value - want) * (got.Slope.Value - want) / (se * se)
+			step := p.ThicknessNM*meanWay(x.thick, 0) - s.Series.Crystals[c.Crystal].Positions[c.Thin].ThicknessNM*meanWay(x.thin, 0)
+			floatcmp.Check(t, "slope between", got.Between.Value, -math.Log(1-x.Result.Exchange.M)*100/step, 0, 1e-12)
+			if !(step > p.ThicknessNM-s.Series.Crystals[c.Crystal].Positions[c.Thin].ThicknessNM) {
+				t.Errorf("the way through a tilted slab grows by %g nm only", step)
+			}
 			floatcmp.Check(t, "slope of m", got.Slope.Value, -math.Log(1-got.M.Value)*100/got.ExtraNM, 0, 1e-12)
 			t.Logf("thickens %v, %s: %.3f (%.3f to %.3f) per 100 nm, true %.3f; between positions %.3f (%.3f to %.3f); way %.0f nm, %d pairs", thickens, got.Crystal, got.Slope.Value, got.Slope.Lo, got.Slope.Hi, want, got.Between.Value, got.Between.Lo, got.Between.Hi, got.ExtraNM, got.Pairs)
 			if thickens && !(got.Slope.Lo > 0) || !(got.Between.Lo > 0) {
