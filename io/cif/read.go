@@ -82,6 +82,11 @@ func (l *list) warnings() []intensity.Warning {
 	if len(p.angles) > 0 {
 		add("setting-angles", "setting angles ("+strings.Join(p.angles, ", ")+") are there but no scan angle; they were not used, as their convention is not fixed")
 	}
+	for j, name := range l.names {
+		if j < len(p.roles) && p.roles[j] == roleSkip && strings.Contains(strings.ToLower(name), "twin") {
+			add("twin-column", "the column "+name+" names twin components and was not used: if there are several, unlike reflections are averaged as equivalents; supply the list of one component, separated before")
+		}
+	}
 	if p.item[roleScaleGroup] != "" && l.raw.Frame != nil {
 		add("scale-group-frames", "the scale-group codes were taken as image numbers")
 	}

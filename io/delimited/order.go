@@ -23,7 +23,12 @@ var roleNames = [...]string{"skip", "h", "k", "l", "intensity", "sigma", "phi", 
 
 const knownNames = "h, k, l, intensity, sigma, phi, frame, partiality, skip"
 
+// roleOf reads a name in either case, and I, the symbol of an intensity; a small i is the
+// third of four hexagonal indices.
 func roleOf(name string) (role, bool) {
+	if strings.TrimSpace(name) == "I" {
+		return roleIntensity, true
+	}
 	low := strings.ToLower(strings.TrimSpace(name))
 	for r, n := range roleNames {
 		if n == low {
