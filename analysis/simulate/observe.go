@@ -149,6 +149,9 @@ func (o *observer) expect(c *crossing, h crystal.HKL) (bool, error) {
 		if p.Polarity > 0 {
 			j = math.Max(0, j+p.Polarity*o.side[c.raw]*math.Sqrt(j*o.truth.Local[u]))
 		}
+		if o.list.absent[c.raw] == absentCentring {
+			j = 0 // no lattice point: an exchange fills what screws and glides forbid, never this
+		}
 	}
 	c.signal = p.Counts * j * math.Exp(p.lnK(c.phi)-2*o.totalB*o.truth.S2[u])
 	if p.CurbForm == CurbRate {

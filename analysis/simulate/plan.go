@@ -170,7 +170,7 @@ type Position struct {
 	Bleed        float64  `toml:"bleed,omitempty"`       // share of the signal of lattice neighbours on the same frame
 
 	OmitForbidden bool   `toml:"omit_forbidden,omitempty"` // screw-axis and glide absences are not recorded
-	WithCentring  bool   `toml:"with_centring,omitempty"`  // centring absences are recorded too
+	WithCentring  bool   `toml:"with_centring,omitempty"`  // centring absences are recorded too, with no signal of their own
 	Once          bool   `toml:"once,omitempty"`           // only the first observation of each unique reflection is recorded
 	Reindex       string `toml:"reindex,omitempty"`        // written indices as "k,h,-l" of the true ones
 	Copies        int    `toml:"copies,omitempty"`         // rows of each observation, on consecutive frames, 1

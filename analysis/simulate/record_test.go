@@ -269,3 +269,37 @@ func TestIceRingsStandAtTheirPlaces(t *testing.T) {
 		floatcmp.Check(t, "ice", m.Expected[i]-plain.Expected[i], 100*iceAt(s.Truth.S2[u]), 1e-9, 0)
 	}
 }
+
+// An exchange of 30 % fills what the glide of C 1 2/c 1 forbids, and nothing where the
+// centring forbids, as no lattice point is there: only the offset, in units of Counts.
+func TestExchangeFillsNoCentringAbsence(t *testing.T) {
+	p := small()
+	p.SpaceGroup, p.Common.WithCentring = "C 1 2/c 1", true
+	p.Common.Exchange = 0.3
+	for _, offset := range []float64{0, 0.05} {
+		p.Common.Offset = offset
+		s := invent(t, p)
+		m := &s.Specimens[0].Positions[0]
+		var sum, n [2]float64
+		for i, u := range m.Unique {
+			h := s.Truth.HKL[u]
+			if !s.Truth.Absent[u] {
+				continue
+			}
+			k := 0
+			if (h.H+h.K)%2 != 0 {
+				k = 1
+			}
+			sum[k] += m.Rows.I[i]
+			n[k]++
+		}
+		if n[0] < 5 || n[1] < 500 {
+			t.Fatalf("%g of the glide, %g of the centring", n[0], n[1])
+		}
+		counts := s.Plan.Crystals[0].Positions[0].Counts
+		floatcmp.Check(t, "centring", sum[1]/n[1]/counts, offset, 1e-12, 0)
+		if glide := sum[0]/n[0]/counts - offset; !(glide > 0.1 && glide < 0.4) {
+			t.Errorf("the glide's are filled with %.3f of Counts", glide)
+		}
+	}
+}
