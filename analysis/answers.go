@@ -7,7 +7,6 @@ import (
 
 	"gonum.org/v1/gonum/stat/distuv"
 
-	"thinward/analysis/intensity"
 	"thinward/analysis/resample"
 	"thinward/analysis/size"
 )
@@ -207,71 +206,6 @@ func answerResolution(list []*ContrastResult) Answer {
 		a.Text = fmt.Sprintf("No trend with resolution is seen; a difference in B of %s \u00c5\u00b2 would have been seen in each crystal with 80 %% power.", short(size.MinimumVisible(worst, 0.95, 0.8))) + below
 	}
 	return a
-}
-
-func answerForbidden(r *Result, list []*ContrastResult) Answer {
-	a := Answer{Question: "Are forbidden reflections filled?", Section: "forbidden", Verdict: VerdictUnknown}
-	up, known := 0, 0
-	none := len(r.Forbidden) > 0
-	for i := range r.Forbidden {
-		none = none && r.Forbidden[i].Why == intensity.NoneForbidden
-	}
-	var z []float64
-	worst := 0.0
-	for _, c := range list {
-		thin, thick := forbiddenOf(r, c.Crystal, c.Thin), forbiddenOf(r, c.Crystal, c.Thick)
-		if c.ThickCrystal != "" {
-			thick = forbiddenOf(r, c.ThickCrystal, c.Thick)
-		}
-		if thin == nil || thick == nil || thin.N == 0 || thick.N == 0 {
-			continue
-		}
-		known++
-		su := math.Hypot(thick.SU, thin.SU)
-		z, worst = append(z, (thick.Ratio-thin.Ratio)/su), math.Max(worst, su)
-		a.Detail = append(a.Detail, fmt.Sprintf("%s %s to %s", label(c), pm(thin.Ratio, thin.SU), pm(thick.Ratio, thick.SU)))
-	}
-	for _, v := range z {
-		if v > 2*asking(list, known) {
-			up++
-		}
-	}
-	switch {
-	case none:
-		a.Text = "The space group forbids no reflection, so there is nothing to look at."
-	case known == 0:
-		a.Text = "Not recorded: the lists hold no forbidden reflection in both positions, so nothing can be said, and not that they are absent."
-	case filledThroughout(r):
-		a.Verdict = VerdictUnsure
-		a.Text = "At every thickness they are about as strong as allowed ones: the space group is wrong, and says nothing of scattering more than once. Below, their mean over the local mean, thin to thick."
-	case up > 0:
-		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("They rise with thickness in %d of %d crystals that recorded them in both positions. No scale can do this, but background left in the intensities and spots that run into each other can; a wrong space group fills them at every thickness. Below, their mean over the local mean, thin to thick.", up, known)
-	default:
-		a.Verdict = VerdictNo
-		a.Text = fmt.Sprintf("No rise with thickness is seen; one of %s of the local mean would have been seen in each crystal with 80 %% power. Below, their mean over the local mean, thin to thick.", short(size.MinimumVisible(worst, 0.95, 0.8)))
-	}
-	return a
-}
-
-// filledThroughout reports whether the ledger calls the space group wrong.
-func filledThroughout(r *Result) bool {
-	for _, e := range r.Ledger {
-		if e.Check == checkGroup && e.Verdict == VerdictFails {
-			return true
-		}
-	}
-	return false
-}
-
-func forbiddenOf(r *Result, crystal, position string) *Forbidden {
-	for i := range r.Forbidden {
-		f := &r.Forbidden[i]
-		if f.Crystal == crystal && f.Position == position && f.Element == "all" {
-			return f
-		}
-	}
-	return nil
 }
 
 func answerThickness(r *Result) *Answer {

@@ -5,7 +5,6 @@ import (
 	"strings"
 	"testing"
 
-	"thinward/analysis/intensity"
 	"thinward/analysis/internal/floatcmp"
 )
 
@@ -47,27 +46,6 @@ func TestAnswerExchangeSaysWhatWeakensIt(t *testing.T) {
 				t.Errorf("%s: %q says %q", c.name, text, s)
 			}
 		}
-	}
-}
-
-func TestAnswerForbiddenCountsOnlyWhatWasRecorded(t *testing.T) {
-	list := []*ContrastResult{{Crystal: "L1", Thin: "a", Thick: "b"}, {Crystal: "L2", Thin: "a", Thick: "b"}}
-	row := func(crystal, position string, n int, ratio float64) Forbidden {
-		return Forbidden{Crystal: crystal, Position: position, Element: "all", N: n, Ratio: ratio, SU: 0.01}
-	}
-	r := &Result{Forbidden: []Forbidden{row("L1", "a", 5, 0), row("L1", "b", 5, 0.1), row("L2", "a", 0, math.NaN()), row("L2", "b", 3, 0.1)}}
-	if a := answerForbidden(r, list); a.Verdict != VerdictYes || !strings.Contains(a.Text, "1 of 1 crystals that recorded them") {
-		t.Errorf("%q: %s", a.Verdict, a.Text)
-	}
-	r.Ledger = []LedgerEntry{{Check: checkGroup, Verdict: VerdictFails}}
-	if a := answerForbidden(r, list); a.Verdict != VerdictUnsure || !strings.Contains(a.Text, "the space group is wrong") {
-		t.Errorf("%q: %s", a.Verdict, a.Text)
-	}
-	for i := range r.Forbidden {
-		r.Forbidden[i].N, r.Forbidden[i].Why = 0, intensity.NoneForbidden
-	}
-	if a := answerForbidden(r, list); a.Verdict != VerdictUnknown || !strings.Contains(a.Text, "forbids no reflection") {
-		t.Errorf("%q: %s", a.Verdict, a.Text)
 	}
 }
 

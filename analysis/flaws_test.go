@@ -69,8 +69,9 @@ func wantVerdict(t *testing.T, entries []LedgerEntry, check string, want ...stri
 }
 
 // three are the checks that three crystals without a replicate, or any series, cannot
-// be fine in: what sound series of three must say.
-var three = map[string]string{checkReplicates: VerdictUnknown, checkCrystals: VerdictCaution, checkDouble: VerdictUnknown}
+// be fine in: what sound series of three must say. A primitive lattice has no null of a
+// centring.
+var three = map[string]string{checkReplicates: VerdictUnknown, checkCrystals: VerdictCaution, checkDouble: VerdictUnknown, checkNull: ""}
 
 // A series without a flaw is fine in every check of the ledger.
 func TestSoundSeriesHasACleanLedger(t *testing.T) {
@@ -138,6 +139,7 @@ var trips = []struct {
 	{simulate.FlawCentringHigh, false, map[string][]string{checkGroup: {VerdictFails}}},
 	{simulate.FlawLaueHigh, true, map[string][]string{checkLaue: {VerdictFails}, checkScatter: {VerdictUnknown}, checkSigmas: {VerdictUnknown}}},
 	{simulate.FlawReplicates, false, map[string][]string{checkReplicates: {VerdictFails, VerdictCaution}}},
+	{simulate.FlawCentringNull, false, map[string][]string{checkNull: {VerdictCaution}, checkOffset: {VerdictCaution, VerdictFails}}},
 }
 
 // Every check has a flaw that trips it, and the sound series that does not is the one

@@ -8,7 +8,8 @@ import (
 
 // Forbidden measures the reflections that symmetry forbids, position by
 // position and symmetry element by symmetry element. No scale and no choice of
-// axis can move a forbidden reflection, but a wrong space group fills them too.
+// axis can move a forbidden reflection, but a wrong space group fills them too. Those of a
+// centring stand apart: scattering cannot fill them (see intensity.Forbidden).
 func (s *Study) Forbidden(ctx context.Context) ([]Forbidden, error) {
 	s.mu.Lock()
 	defer s.mu.Unlock()
@@ -30,7 +31,7 @@ func (s *Study) Forbidden(ctx context.Context) ([]Forbidden, error) {
 			for _, f := range intensity.MeasureForbidden(m, cat, sh) {
 				s.forbidden = append(s.forbidden, Forbidden{
 					Crystal: s.Series.Crystals[i].Name, Position: s.Series.Crystals[i].Positions[j].Name,
-					Element: f.Element, N: f.N, Ratio: f.Ratio, SU: f.SU, Z: f.Ratio / f.SU, MeanIS: f.MeanZ, Why: f.Why,
+					Element: f.Element, Centring: f.Centring, N: f.N, Ratio: f.Ratio, SU: f.SU, Z: f.Ratio / f.SU, MeanIS: f.MeanZ, Why: f.Why,
 				})
 			}
 		}

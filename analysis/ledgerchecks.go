@@ -40,6 +40,7 @@ const (
 	checkDoseGrowth = "growth of B with dose"
 	checkCrystals   = "number of crystals"
 	checkForbidden  = "forbidden reflections"
+	checkNull       = "null of the centring"
 	checkGroup      = "space group"
 	checkLaue       = "Laue class"
 	checkReplicates = "replicate position"
@@ -53,7 +54,7 @@ func LedgerChecks() []string {
 		checkAxis, checkDeviations, checkOffset, checkHighCounts, checkModel, checkThird, checkWeighted, checkGhost, checkBlocks, checkGiants,
 		checkBleed, checkDouble, checkFrames, checkTilt, checkIce, checkCommon, checkLying, checkTipping, checkGroup,
 		checkScale, checkAnchors, checkExclusions, checkFriedel,
-		checkDoseOrder, checkDoseGrowth, checkCrystals, checkForbidden, checkReplicates,
+		checkDoseOrder, checkDoseGrowth, checkCrystals, checkForbidden, checkNull, checkReplicates,
 	}
 }
 

@@ -5,6 +5,7 @@ import (
 	"sort"
 
 	"thinward/analysis/evidence"
+	"thinward/analysis/intensity"
 )
 
 // ledgerSeries judges what belongs to the series as a whole.
@@ -16,16 +17,8 @@ func (s *Study) ledgerSeries(b *ledgerBook) {
 	together, known := s.doseOrder()
 	b.add(checkDoseOrder, "", evidence.DoseOrder(together, known, growth, se))
 	b.add(checkDoseGrowth, "", evidence.DoseGrowth(growth, se))
-	b.add(checkCrystals, "", evidence.Crystals(len(s.primaryContrasts())))
-	if s.forbidden != nil {
-		n := 0
-		for _, f := range s.forbidden {
-			if f.Element == "all" {
-				n += f.N
-			}
-		}
-		b.add(checkForbidden, "", evidence.Recorded(n))
-	}
+	s.ledgerCrystals(b)
+	s.ledgerForbidden(b)
 	measured, failed := 0, 0
 	for i := range s.Series.Crystals {
 		for j := range s.Series.Crystals[i].Positions {
@@ -40,6 +33,63 @@ func (s *Study) ledgerSeries(b *ledgerBook) {
 		}
 	}
 	b.add(checkReplicates, "", evidence.ReplicateOf(measured, failed))
+}
+
+// ledgerCrystals counts the crystals, and names pairs of positions that lie on two.
+func (s *Study) ledgerCrystals(b *ledgerBook) {
+	within := len(s.primaryContrasts())
+	var pairs []placed
+	for _, c := range s.list {
+		if c.Across() {
+			pairs = append(pairs, placed{s.Name(c), evidence.TwoSpecimens()})
+		}
+	}
+	b.fold(checkCrystals, "pairs", 2, pairs)
+	if within > 0 || len(pairs) == 0 {
+		b.add(checkCrystals, "", evidence.Crystals(within))
+	}
+}
+
+// ledgerForbidden says whether forbidden reflections that can be filled were recorded, and
+// judges those of the centring, which cannot.
+func (s *Study) ledgerForbidden(b *ledgerBook) {
+	if s.forbidden == nil {
+		return
+	}
+	n, centring, why := 0, "", ""
+	for i := range s.forbidden {
+		f := &s.forbidden[i]
+		switch {
+		case f.Element == "all":
+			n += f.N
+			if f.Why == intensity.NoneForbidden || f.Why == intensity.OnlyCentring {
+				why = f.Why
+			}
+		case f.Centring:
+			centring = f.Element
+		}
+	}
+	if why != "" {
+		b.add(checkForbidden, "", evidence.Finding{Value: math.NaN(), Verdict: evidence.NotKnown, Why: why})
+	} else {
+		b.add(checkForbidden, "", evidence.Recorded(n))
+	}
+	if centring == "" {
+		return
+	}
+	var nulls []placed
+	for _, c := range s.list {
+		if !c.Primary {
+			continue
+		}
+		thin, thick := &s.Series.Crystals[c.Crystal], &s.Series.Crystals[c.ThickCrystal]
+		one := forbiddenOf(s.forbidden, thin.Name, thin.Positions[c.Thin].Name, centring)
+		two := forbiddenOf(s.forbidden, thick.Name, thick.Positions[c.Thick].Name, centring)
+		if one != nil && two != nil {
+			nulls = append(nulls, placed{s.Name(c), evidence.CentringNull(one.Ratio, one.SU, two.Ratio, two.SU)})
+		}
+	}
+	b.fold(checkNull, "contrasts", 0, nulls)
 }
 
 // doseOrder counts the crystals whose dose, or order of measurement, rises with

@@ -3,6 +3,7 @@ package analysis
 import (
 	"math"
 
+	"thinward/analysis/crystal"
 	"thinward/analysis/evidence"
 	"thinward/analysis/intensity"
 )
@@ -15,7 +16,7 @@ func (s *Study) symmetry() evidence.Finding {
 	classes := make([]evidence.SymmetryClass, 0, len(elements))
 	members := make([][]bool, len(elements))
 	for e := range elements {
-		classes = append(classes, evidence.SymmetryClass{Name: elements[e].Name, Forbidden: true})
+		classes = append(classes, evidence.SymmetryClass{Name: elements[e].Name, Forbidden: true, Centring: elements[e].Kind == crystal.CentringElement})
 		members[e] = make([]bool, cat.Len())
 	}
 	for u, h := range cat.HKL {

@@ -121,12 +121,15 @@ type Interval struct {
 }
 
 // Forbidden is the mean intensity of reflections that symmetry forbids, over
-// the local mean of the allowed ones, for one symmetry element ("all" for the
-// whole). N is 0 and Why says so when the list has none.
+// the local mean of the allowed ones, for one symmetry element, or for all that screw
+// axes and glide planes forbid ("all"). What a centring forbids has no lattice point that
+// scattering could fill: it stands apart, marked by Centring, as a null for background and
+// overlap. N is 0 and Why says so when the list has none.
 type Forbidden struct {
 	Crystal  string  `json:"crystal"`
 	Position string  `json:"position"`
 	Element  string  `json:"element"`
+	Centring bool    `json:"by_centring,omitempty"`
 	N        int     `json:"n"`
 	Ratio    float64 `json:"ratio"`
 	SU       float64 `json:"su"`

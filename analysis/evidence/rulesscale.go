@@ -251,6 +251,12 @@ func Crystals(k int) Finding {
 	return f
 }
 
+// TwoSpecimens judges a contrast whose positions lie on two crystals: caution, whatever
+// is found.
+func TwoSpecimens() Finding {
+	return Finding{Value: 2, Unit: "specimens", Verdict: Caution, Why: "two specimens: the thin and the thick position lie on two crystals, which differ in orientation, order, damage and background as well as in thickness, so that no difference between them is shown to come from thickness"}
+}
+
 // ReplicateOf judges the replicate positions: how many there are and how many of
 // their contrasts read an effect where there is none.
 func ReplicateOf(measured, failed int) Finding {
@@ -268,11 +274,11 @@ func ReplicateOf(measured, failed int) Finding {
 	return f
 }
 
-// Recorded judges whether the lists hold forbidden reflections at all; n is how many
-// were measured, over all positions.
+// Recorded judges whether the lists hold reflections that screw axes or glide planes forbid;
+// n is how many were measured, over all positions.
 func Recorded(n int) Finding {
 	if n == 0 {
-		return unknown("not recorded: the lists hold no forbidden reflection, so nothing can be said of them, and not that they are absent")
+		return unknown("not recorded: the lists hold no reflection that a screw axis or glide plane forbids, so nothing can be said of them, and not that they are absent")
 	}
 	return Finding{Value: float64(n), Unit: "forbidden reflections measured", Verdict: Fine, Why: "forbidden reflections stand in the lists, so their filling can be measured"}
 }

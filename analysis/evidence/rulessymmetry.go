@@ -15,6 +15,9 @@ type SymmetryClass struct {
 	Name string // the element: "2_1 along c"
 	// Forbidden says that the group has the element.
 	Forbidden bool
+	// Centring says that the element is one: what it forbids has no lattice point that
+	// scattering more than once could fill.
+	Centring  bool
 	Positions []ClassMean
 	// Within are the numbers of classes in the list that hold all of this one and more: an
 	// empty zone empties the axis in it, and only the zone is then named.
@@ -62,10 +65,13 @@ const (
 // standard uncertainties in every position and no weaker than allowed ones can be at the same
 // chance: caution, and fails when the least it can stand for is above one half.
 func SymmetryOf(classes []SymmetryClass) Finding {
-	asked := map[bool]int{}
+	asked, of := map[bool]int{}, 0
 	for _, c := range classes {
 		if len(c.Positions) > 0 {
 			asked[c.Forbidden]++
+		}
+		if c.Forbidden {
+			of++
 		}
 	}
 	if asked[true]+asked[false] == 0 {
@@ -94,13 +100,25 @@ func SymmetryOf(classes []SymmetryClass) Finding {
 		return f
 	}
 	f.Why = fmt.Sprintf("no class that the group allows is empty (%d looked at)", asked[false])
-	switch n := asked[true]; {
-	case n == 1:
-		f.Why += ", and what its one symmetry element forbids is weaker than allowed reflections can be, or too weak or too few to tell"
-	case n > 1:
-		f.Why += fmt.Sprintf(", and what its %d symmetry elements forbid is weaker than allowed reflections can be, or too weak or too few to tell", n)
-	}
+	f.Why += forbiddenFine(asked[true], of)
 	return f
+}
+
+// forbiddenFine says that what n of the group's elements forbid is no reason for doubt, those
+// whose reflections were measured.
+func forbiddenFine(n, of int) string {
+	const weak = "weaker than allowed reflections can be, or too weak or too few to tell"
+	switch {
+	case n == 0:
+		return ""
+	case of == 1:
+		return ", and what its one symmetry element forbids is " + weak
+	case n == of:
+		return fmt.Sprintf(", and what its %d symmetry elements forbid is %s", n, weak)
+	case n == 1:
+		return fmt.Sprintf(", and what one of its %d symmetry elements forbids is %s; of the others nothing was measured", of, weak)
+	}
+	return fmt.Sprintf(", and what %d of its %d symmetry elements forbid is %s; of the others nothing was measured", n, of, weak)
 }
 
 type judgement struct {
@@ -132,6 +150,9 @@ func (c *SymmetryClass) judge(chance float64) judgement {
 	case least > filledAlways:
 		out.verdict = Fails
 		out.why = fmt.Sprintf("%s that %s forbids: as strong as allowed ones at every thickness, %s of them where weakest, so that the space group is wrong; what it forbids is left out of the analysis", reflections(n), c.Name, num(out.ratio))
+	case c.Centring:
+		out.verdict = Caution
+		out.why = fmt.Sprintf("%s that %s forbids: %s of what allowed ones are in the position where they are weakest, and so few allowed ones can be that weak by chance: the lattice is another, or background or neighbours stand there at every thickness; scattering cannot, as no lattice point is there", reflections(n), c.Name, num(out.ratio))
 	default:
 		out.verdict = Caution
 		out.why = fmt.Sprintf("%s that %s forbids: %s of what allowed ones are in the position where they are weakest, and so few allowed ones can be that weak by chance: the group is wrong there, or scattering more than once fills them at every thickness", reflections(n), c.Name, num(out.ratio))

@@ -91,6 +91,9 @@ func TestSymmetryOf(t *testing.T) {
 		{"allowed though forbidden, many", []SymmetryClass{{Name: "C centring", Forbidden: true, Positions: many(700, 0.01, 1.02, 0.97)}}, Fails, "as strong as allowed ones at every thickness"},
 		{"allowed though forbidden, few", []SymmetryClass{{Name: "2_1 along c", Forbidden: true, Positions: at(6, 0.02, 0.9, 0.8)}}, Caution, "or scattering more than once"},
 		{"filled in the thick position only", []SymmetryClass{{Name: "2_1 along c", Forbidden: true, Positions: at(6, 0.005, 0.02, 0.9)}}, Fine, ""},
+		{"filled though there is no lattice point", []SymmetryClass{{Name: "C centring", Forbidden: true, Centring: true, Positions: at(6, 0.02, 0.9, 0.8)}}, Caution, "scattering cannot, as no lattice point is there"},
+		{"two of three measured", []SymmetryClass{{Name: "2_1 along a", Forbidden: true, Positions: at(6, 0.01, 0.01)}, {Name: "2_1 along b", Forbidden: true, Positions: at(6, 0.01, 0.01)}, {Name: "2_1 along c", Forbidden: true}}, Fine, "what 2 of its 3 symmetry elements forbid is weaker than allowed reflections can be, or too weak or too few to tell; of the others nothing was measured"},
+		{"one of three measured", []SymmetryClass{{Name: "2_1 along a", Forbidden: true, Positions: at(6, 0.01, 0.01)}, {Name: "2_1 along b", Forbidden: true}, {Name: "2_1 along c", Forbidden: true}}, Fine, "what one of its 3 symmetry elements forbids"},
 		{"too noisy to be anything", []SymmetryClass{{Name: "2_1 along c", Forbidden: true, Positions: at(6, 0.4, 0.5, 0.7)}}, Fine, "too weak or too few"},
 	} {
 		f := SymmetryOf(c.classes)

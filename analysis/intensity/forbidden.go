@@ -1,6 +1,10 @@
 package intensity
 
-import "math"
+import (
+	"math"
+
+	"thinward/analysis/crystal"
+)
 
 // Forbidden describes the reflections that one symmetry element of the group
 // forbids, as measured in one position. Ratio is the mean of J over the local
@@ -8,21 +12,33 @@ import "math"
 // uncertainty: from the variances, or from the scatter of the ratios where there are
 // five or more and that is larger (of a few it may be small by chance). MeanZ is the mean of J/sqrt(Var). With N = 0
 // the three are NaN and Why says so in words.
+//
+// Where a screw axis or glide plane forbids a reflection there is a lattice point, and
+// scattering more than once can fill it. Where a centring forbids one there is none: waves
+// of the crystal differ by vectors of the reciprocal lattice, however often they scatter
+// (International Tables for Crystallography B, 5.2), so that what is measured there is
+// background, overlap or a wrong lattice. Centring tells such a row, and "all" leaves
+// these reflections out.
 type Forbidden struct {
-	Element string // "all" for every forbidden reflection
-	N       int
-	Ratio   float64
-	SU      float64
-	MeanZ   float64
-	Why     string // empty when N is above zero
+	Element  string // "all" for every reflection that a screw axis or glide plane forbids
+	Centring bool
+	N        int
+	Ratio    float64
+	SU       float64
+	MeanZ    float64
+	Why      string // empty when N is above zero
 }
 
-// NoneForbidden is the Why of a group without systematic absences.
-const NoneForbidden = "the group forbids none"
+// Why of the row "all" in a group without systematic absences, and in one whose centring
+// alone makes some.
+const (
+	NoneForbidden = "the group forbids none"
+	OnlyCentring  = "the group has no screw axis or glide plane that forbids any, and where its centring does there is no lattice point to be filled"
+)
 
-// MeasureForbidden returns a row for all forbidden reflections and one for each
-// element of the group that forbids any, in the order of Group.Elements; a
-// reflection that several elements forbid counts in each. The shells must be
+// MeasureForbidden returns a row for all reflections that screw axes and glide planes
+// forbid and one for each element of the group that forbids any, centring too, in the
+// order of Group.Elements; a reflection that several elements forbid counts in each. The shells must be
 // of cat.Shells; forbidden reflections outside them, or in one whose mean is
 // not above zero, are not used.
 func MeasureForbidden(m *Merged, cat *Catalogue, sh *Shells) []Forbidden {
@@ -36,8 +52,11 @@ func MeasureForbidden(m *Merged, cat *Catalogue, sh *Shells) []Forbidden {
 			continue
 		}
 		r, v := m.J[u]/mean[s], m.Var[u]/(mean[s]*mean[s])
-		ratio[0], relVar[0] = append(ratio[0], r), append(relVar[0], v)
-		for _, e := range cat.Group.ForbiddenBy(h) {
+		by := cat.Group.ForbiddenBy(h)
+		if elements[by[0]].Kind != crystal.CentringElement {
+			ratio[0], relVar[0] = append(ratio[0], r), append(relVar[0], v)
+		}
+		for _, e := range by {
 			ratio[e+1], relVar[e+1] = append(ratio[e+1], r), append(relVar[e+1], v)
 		}
 	}
@@ -45,13 +64,25 @@ func MeasureForbidden(m *Merged, cat *Catalogue, sh *Shells) []Forbidden {
 	for k := range out {
 		out[k] = summarise(ratio[k], relVar[k])
 		out[k].Element = "all"
-		if k > 0 {
-			out[k].Element = elements[k-1].Name
-		} else if len(elements) == 0 {
+		switch {
+		case k > 0:
+			out[k].Element, out[k].Centring = elements[k-1].Name, elements[k-1].Kind == crystal.CentringElement
+		case len(elements) == 0:
 			out[k].Why = NoneForbidden
+		case onlyCentring(elements):
+			out[k].Why = OnlyCentring
 		}
 	}
 	return out
+}
+
+func onlyCentring(elements []crystal.Element) bool {
+	for i := range elements {
+		if elements[i].Kind != crystal.CentringElement {
+			return false
+		}
+	}
+	return true
 }
 
 func summarise(ratio, relVar []float64) Forbidden {

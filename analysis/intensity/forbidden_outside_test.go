@@ -49,3 +49,44 @@ func TestForbiddenOverItsOwnShell(t *testing.T) {
 		floatcmp.Check(t, f.Element, f.Ratio, 0.1, 0, 1e-12)
 	}
 }
+
+// There is no lattice point where a centring forbids: what is measured there stands apart
+// from what a screw axis forbids, which is a tenth of the mean here, and half where the
+// centring does.
+func TestCentringStandsApart(t *testing.T) {
+	hkl, _, err := Possible(tarnCell, lookup(t, "P 2 2 2"), 0.06, false)
+	if err != nil {
+		t.Fatal(err)
+	}
+	measured := func(symbol string) []Forbidden {
+		cat, err := NewCatalogue(tarnCell, lookup(t, symbol), indices(hkl...))
+		if err != nil {
+			t.Fatal(err)
+		}
+		m := &Merged{J: make([]float64, cat.Len()), Var: make([]float64, cat.Len()), N: make([]int32, cat.Len())}
+		for u, h := range cat.HKL {
+			m.N[u], m.Var[u] = 1, 1
+			switch {
+			case (h.H+h.K)%2 != 0:
+				m.J[u] = 50
+			case cat.Absent[u]:
+				m.J[u] = 10
+			default:
+				m.J[u] = 100 * float64(cat.Epsilon[u])
+			}
+		}
+		return MeasureForbidden(m, cat, cat.Shells(4, m))
+	}
+	f := measured("C 2 2 21")
+	if len(f) != 3 || f[0].Centring || !f[1].Centring || f[2].Centring {
+		t.Fatalf("%+v", f)
+	}
+	if f[0].N == 0 || f[0].N != f[2].N || f[1].N < 100 {
+		t.Errorf("%d in all, %d of the centring, %d of the screw", f[0].N, f[1].N, f[2].N)
+	}
+	floatcmp.Check(t, "all", f[0].Ratio, 0.1, 0, 1e-12)
+	floatcmp.Check(t, "the centring", f[1].Ratio, 0.5, 0, 1e-12)
+	if f = measured("C 2 2 2"); f[0].N != 0 || f[0].Why != OnlyCentring || f[1].N < 100 {
+		t.Errorf("a centring alone: %+v", f)
+	}
+}

@@ -38,13 +38,14 @@ const (
 	FlawCentringHigh             // C 2 2 21 declared, P 2 2 21 true
 	FlawLaueHigh                 // P 21 21 21 declared, P 1 21 1 true
 	FlawReplicates               // replicate positions of the thin ones with an exchange of 15 %
+	FlawCentringNull             // C 2 2 21 with background left in the thick positions, also where the centring forbids
 	flaws
 )
 
 var flawNames = [flaws]string{
 	"offset", "copies", "deviations", "negatives", "dead counts", "bleed", "tilt", "scale", "scatter", "dose",
 	"sigma", "indexing", "coverage", "ice", "one crystal", "jitter", "flicker", "forbidden", "exchange", "curb",
-	"mates", "once", "background", "saturation", "alike", "group low", "group high", "centring low", "centring high", "Laue class high", "replicates",
+	"mates", "once", "background", "saturation", "alike", "group low", "group high", "centring low", "centring high", "Laue class high", "replicates", "centring null",
 }
 
 // String returns the flaw in a word or two.
@@ -91,6 +92,8 @@ func Flawed(f Flaw, seed uint64) *Plan {
 		p.SpaceGroup, p.Declared = "P 2 2 21", "C 2 2 21"
 	case FlawLaueHigh:
 		p.SpaceGroup, p.Declared = "P 1 21 1", "P 21 21 21"
+	case FlawCentringNull:
+		p.SpaceGroup, p.Common.WithCentring = "C 2 2 21", true
 	case FlawReplicates:
 		p.Crystals = Replicates(seed).Crystals
 		for i := range p.Crystals {
@@ -140,7 +143,7 @@ func spoil(f Flaw, j int, q *Position) {
 		q.Offset, q.Cos, q.Sin = 0.15, []float64{0.9}, []float64{-0.4}
 	case f == FlawSaturation && thick:
 		q.DeadCounts = 1 / 560.
-	case f == FlawOffset && thick:
+	case (f == FlawOffset || f == FlawCentringNull) && thick:
 		q.Offset = 0.03
 	case f == FlawDeadCounts && thick:
 		q.DeadCounts = 1e-4

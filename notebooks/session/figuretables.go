@@ -8,6 +8,7 @@ import (
 
 	"thinward/analysis"
 	"thinward/analysis/figure"
+	"thinward/analysis/intensity"
 )
 
 // ScaleCurves shows ln K against the rotation angle.
@@ -241,7 +242,12 @@ func (s *Session) ForbiddenFigure() *View { return forbiddenFigure(s.upTo(stepFo
 
 func forbiddenFigure(r *analysis.Result) *View {
 	fv := &figureView{title: "Forbidden reflections against thickness", empty: "No forbidden reflection was recorded.",
-		caption: "Scattering more than once fills forbidden reflections the more the thicker the crystal, and no scale can imitate that; background left in the intensities and strong neighbours that run over can (see offset and bleed in the ledger). A level that stays at every thickness points to a wrong space group instead. Axial reflections fill in some orientations and not in others, so that a few of them say little."}
+		caption: "Scattering more than once fills what screw axes and glide planes forbid, the more the thicker the crystal, and no scale can imitate that; background left in the intensities and strong neighbours that run over can (see offset and bleed in the ledger). Where a centring forbids there is no lattice point to be filled: such reflections are left out here and stand in the table apart, as a null for background. A level that stays at every thickness points to a wrong space group instead. Axial reflections fill in some orientations and not in others, so that a few of them say little."}
+	for i := range r.Forbidden {
+		if w := r.Forbidden[i].Why; w == intensity.OnlyCentring || w == intensity.NoneForbidden {
+			fv.empty = "Nothing to draw: " + w + "."
+		}
+	}
 	thick := map[string]float64{}
 	for i := range r.Intake {
 		thick[r.Intake[i].Crystal+"/"+r.Intake[i].Position] = r.Intake[i].ThicknessNM

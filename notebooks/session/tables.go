@@ -144,7 +144,8 @@ func (s *Session) Brackets() *View {
 }
 
 // Forbidden shows the forbidden reflections by position and symmetry element, with
-// the growth per 100 nm of thickness in the row of the thickest position.
+// the growth per 100 nm of thickness in the row of the thickest position. The row "all" is of
+// screw axes and glide planes; that of a centring is a null for background.
 func (s *Session) Forbidden() *View { return forbiddenTable(s.upTo(stepForbidden)) }
 
 func forbiddenTable(r *analysis.Result) *View {
@@ -166,9 +167,17 @@ func forbiddenTable(r *analysis.Result) *View {
 		if t, ok := growth[f.Crystal+"/"+f.Position+"/"+f.Element]; ok && !math.IsNaN(t.Slope) {
 			slope, su = number(t.Slope, 4), number(t.SU, 4)
 		}
-		g.add(f.Crystal+"/"+f.Position, f.Element, count(f.N), number(f.Ratio, 4), number(f.SU, 4), number(f.Z, 1), number(f.MeanIS, 1), slope, su, f.Why)
+		g.add(f.Crystal+"/"+f.Position, f.Element, count(f.N), number(f.Ratio, 4), number(f.SU, 4), number(f.Z, 1), number(f.MeanIS, 1), slope, su, forbiddenRemark(f))
 	}
 	return g.view("Forbidden reflections")
+}
+
+// forbiddenRemark says what a row is short of, or what it is good for.
+func forbiddenRemark(f analysis.Forbidden) string {
+	if f.Centring && f.Why == "" {
+		return "no lattice point: a null for background, not in all"
+	}
+	return f.Why
 }
 
 // Scaling shows scale and noise model by position.

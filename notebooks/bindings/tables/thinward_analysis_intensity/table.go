@@ -37,6 +37,7 @@ func init() {
 			"NewCatalogueApart": reflect.ValueOf(intensity.NewCatalogueApart),
 			"NewColumns":        reflect.ValueOf(intensity.NewColumns),
 			"NoneForbidden":     reflect.ValueOf(intensity.NoneForbidden),
+			"OnlyCentring":      reflect.ValueOf(intensity.OnlyCentring),
 			"ParseRowPolicy":    reflect.ValueOf(intensity.ParseRowPolicy),
 			"Possible":          reflect.ValueOf(intensity.Possible),
 			"Posterior":         reflect.ValueOf(intensity.Posterior),
@@ -78,6 +79,7 @@ func init() {
 			"LimitOfRows":   "float:1/20",
 			"MaxIndex":      "int:32767",
 			"NoneForbidden": "string:the group forbids none",
+			"OnlyCentring":  "string:the group has no screw axis or glide plane that forbids any, and where its centring does there is no lattice point to be filled",
 			"WindowDeg":     "int:5",
 		},
 	}

@@ -24,6 +24,7 @@ func init() {
 			"FlawBleed":            reflect.ValueOf(simulate.FlawBleed),
 			"FlawCentringHigh":     reflect.ValueOf(simulate.FlawCentringHigh),
 			"FlawCentringLow":      reflect.ValueOf(simulate.FlawCentringLow),
+			"FlawCentringNull":     reflect.ValueOf(simulate.FlawCentringNull),
 			"FlawCopies":           reflect.ValueOf(simulate.FlawCopies),
 			"FlawCoverage":         reflect.ValueOf(simulate.FlawCoverage),
 			"FlawCurb":             reflect.ValueOf(simulate.FlawCurb),
