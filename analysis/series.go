@@ -263,7 +263,7 @@ func (s *Series) contrasts() ([]Contrast, error) {
 		out = append(out, c)
 	}
 	if len(out) == 0 {
-		return nil, errors.New("no contrast: no crystal has two positions of different thickness; a contrast between two crystals must be asked for with [[between]]")
+		return nil, errors.New("no contrast: no crystal has two positions of different thickness: put the positions of one crystal under one [[crystal]]; a contrast between two crystals must be asked for with [[between]]")
 	}
 	return out, nil
 }

@@ -23,6 +23,7 @@ func Draft(paths []string) ([]byte, error) {
 			return nil, err
 		}
 	}
+	d.order()
 	return d.manifest(), nil
 }
 
@@ -31,13 +32,15 @@ type drafter struct {
 	group     string
 	cell      bool
 	columns   bool
+	sorted    bool // positions stand from thin to thick by what names or files say
 	positions []draftPosition
 }
 
 type draftPosition struct {
 	name, file, block string
 	notes             []string
-	thickness         float64
+	thickness         float64 // as the file says, in unit; 0 when it does not
+	unit              string
 }
 
 func (d *drafter) file(path string) error {
@@ -108,6 +111,7 @@ func (d *drafter) list(f *cif.File, path, base, pick string, l cif.List) {
 		p.notes = append(p.notes, w.Text)
 	}
 	for _, t := range r.Thickness {
+		p.thickness, p.unit = t.Value, t.Unit
 		p.notes = append(p.notes, fmt.Sprintf("the file says %s = %g %s", t.Item, t.Value, t.Unit))
 	}
 	if r.Columns.Phi == nil {
@@ -179,6 +183,9 @@ func (d *drafter) manifest() []byte {
 		b.WriteString("\n[columns]   # of column text without a header of these names\norder = [\"h\", \"k\", \"l\", \"intensity\", \"sigma\"]   # ??? in the order of the file, phi (degrees) and frame if there, skip for others\n")
 	}
 	b.WriteString("\n# ??? Put the positions of one crystal below one [[crystal]].\n")
+	if !d.sorted && len(d.positions) > 1 {
+		b.WriteString("# They stand in the order of the files: nothing says which is thinner.\n")
+	}
 	for i, p := range d.positions {
 		fmt.Fprintf(&b, "\n[[crystal]]\nname = \"C%d\"\n\n[[crystal.position]]\n", i+1)
 		fmt.Fprintf(&b, "name = %q\nthickness_nm = 0.0   # ??? nanometres\n# thickness_su_nm = 15.0\n# order = 1             # of measurement\n# dose_e_per_A2 = 1.2\nfiles = [%q]\n", p.name, p.file)
