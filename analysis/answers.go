@@ -89,7 +89,7 @@ func answerDiffer(list []*ContrastResult) Answer {
 		worst = math.Max(worst, (m.Hi-m.Lo)/2/zOf(0.95))
 		parts = append(parts, fmt.Sprintf("%s r = %s, moment ratio %s", label(c), span(r.R, r.Lo, r.Hi), span(m.M, m.Lo, m.Hi)))
 	}
-	const same = "(identical positions have a true correlation r of 1 and a moment ratio of 0"
+	const same = "(r = 1 would mean no difference"
 	switch {
 	case known == 0:
 		a.Verdict = VerdictUnknown
@@ -98,7 +98,7 @@ func answerDiffer(list []*ContrastResult) Answer {
 		a.Text = "Beyond counting noise no difference between thinnest and thickest position is seen " + same + fmt.Sprintf("; one of %s would have been seen in each crystal with 80 %% power).", short(size.MinimumVisible(worst, 0.95, 0.8)))
 	default:
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("Thinnest and thickest position differ beyond counting noise in %s %s; %d tests are allowed for). Bending, mosaicity, dose and errors of frames lower r as thickness does.", crystalsOf(n, list), same, 2*known)
+		a.Text = fmt.Sprintf("Thinnest and thickest position differ beyond counting noise in %s %s). Bending, mosaicity, dose and errors of frames lower r as thickness does.", crystalsOf(n, list), same)
 		if merged > 0 {
 			a.Text += fmt.Sprintf(" In %s the observations could not be matched by angle, so that another geometry lowers r too.", crystalsOf(merged, list))
 		}
@@ -303,59 +303,6 @@ func straight(lines []ThicknessLine) float64 {
 		return math.NaN()
 	}
 	return distuv.ChiSquared{K: float64(df)}.Survival(chi2)
-}
-
-func answerElse(r *Result) Answer {
-	a := Answer{Question: "Could something else have done it?", Section: "cautions", Verdict: VerdictFine}
-	var cautions, fails, controls []string
-	seen := map[string]bool{}
-	for _, c := range r.Controls {
-		if c.Verdict == VerdictFails && !seen[c.Control] {
-			seen[c.Control] = true
-			controls = append(controls, c.Control)
-		}
-	}
-	for _, e := range r.Ledger {
-		if seen[e.Check+e.Verdict] {
-			continue
-		}
-		seen[e.Check+e.Verdict] = true
-		switch e.Verdict {
-		case VerdictCaution:
-			cautions = append(cautions, e.Check)
-		case VerdictFails:
-			fails = append(fails, e.Check)
-		}
-	}
-	switch {
-	case len(fails) > 0:
-		a.Verdict = VerdictFails
-		a.Text = "Checks of the ledger fail."
-		if len(controls) > 0 {
-			a.Text = "Checks of the ledger and controls fail."
-		}
-		a.Detail = append(a.Detail, "fails: "+strings.Join(fails, ", "))
-		if len(cautions) > 0 {
-			a.Detail = append(a.Detail, "caution: "+strings.Join(cautions, ", "))
-		}
-	case len(controls) > 0:
-		a.Verdict = VerdictCaution
-		a.Text = fmt.Sprintf("No check of the ledger fails and %d give a caution, but controls fail: read there by how much the pipeline errs on these data.", len(cautions))
-		if len(cautions) > 0 {
-			a.Detail = append(a.Detail, "caution: "+strings.Join(cautions, ", "))
-		}
-	case len(cautions) > 0:
-		a.Verdict = VerdictCaution
-		a.Text = fmt.Sprintf("No check fails; %d give a caution.", len(cautions))
-		a.Detail = append(a.Detail, "caution: "+strings.Join(cautions, ", "))
-	default:
-		a.Text = "No check of the ledger gives a caution. That does not exclude what no check can see."
-	}
-	if len(controls) > 0 {
-		a.Detail = append(a.Detail, "controls that fail: "+strings.Join(controls, ", "))
-	}
-	a.Text += " What the numbers mean for a structure needs a practitioner's judgement."
-	return a
 }
 
 // span writes a value with its interval, "0.081 (0.052 to 0.110)".

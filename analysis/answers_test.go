@@ -52,7 +52,7 @@ func TestAnswerExchangeSaysWhatWeakensIt(t *testing.T) {
 func TestAnswerElseNamesFailedControls(t *testing.T) {
 	r := &Result{Ledger: []LedgerEntry{{Check: "giants", Verdict: VerdictCaution}}, Controls: []ControlResult{{Control: "swapped positions", Verdict: VerdictFails}, {Control: "halves", Verdict: VerdictFine}}}
 	a := answerElse(r)
-	if all := a.Text + strings.Join(a.Detail, " "); a.Verdict != VerdictCaution || !strings.Contains(all, "controls that fail: swapped positions") || strings.Contains(all, "halves") {
+	if all := a.Text + strings.Join(a.Detail, " "); a.Verdict != VerdictFails || !strings.Contains(all, "controls that fail: swapped positions") || strings.Contains(all, "halves") {
 		t.Errorf("%q: %s", a.Verdict, all)
 	}
 	r.Ledger, r.Controls = nil, nil
