@@ -75,6 +75,18 @@ var sizeMutations = []mutation{
 		killedBy: []string{"TestBracketEndsErrOnTheirSides"},
 	},
 	{
+		name: "the bracket leaves one slope out", file: "analysis/sizes.go", pkg: "analysis",
+		old:      `b.Hi = max(b.Thin.Hi, b.Thick.Hi, b.ThinSlope.Hi, b.ThickSlope.Hi)`,
+		new:      `b.Hi = max(b.Thin.Hi, b.Thick.Hi)`,
+		killedBy: []string{"TestBracketHoldsWhatTheModelMisses"},
+	},
+	{
+		name: "a curb without an inverse is allowed for in the swapped pair", file: "analysis/controlsswap.go", pkg: "analysis",
+		old:      `const turnsOver = 1. / 6`,
+		new:      `const turnsOver = 10.`,
+		killedBy: []string{"TestSwappedPairFailsUnderSaturation"},
+	},
+	{
 		name: "minimum m is 0", file: "analysis/sizes.go", pkg: "analysis",
 		old:      `r.MinimumM = size.MinimumVisible(f.M.SE, s.settings.Level, 0.8)`,
 		new:      `r.MinimumM = 0 * f.M.SE`,
