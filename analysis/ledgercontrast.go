@@ -51,9 +51,9 @@ func (s *Study) judgeContrast(x *Compared, put func(check, where string, f evide
 		}
 		switch a.Axis {
 		case difference.AxisThird.String():
-			put(checkThird, where, evidence.AgainstLeading(a.Delta.Value, a.Delta.Lo, a.Delta.Hi, "deviations that neighbouring positions of this crystal share"))
+			put(checkThird, where, evidence.AgainstLeading(a.Delta.Value, a.Delta.Lo, a.Delta.Hi, s.movedByAxis(r.Crystal, a.Axis), "deviations that neighbouring positions of this crystal share"))
 		case difference.AxisInverseVariance.String():
-			put(checkWeighted, where, evidence.AgainstLeading(a.Delta.Value, a.Delta.Lo, a.Delta.Hi, "position-specific deviations, or a wrong ratio of sigmas"))
+			put(checkWeighted, where, evidence.AgainstLeading(a.Delta.Value, a.Delta.Lo, a.Delta.Hi, s.movedByAxis(r.Crystal, a.Axis), "position-specific deviations, or a wrong ratio of sigmas"))
 		}
 	}
 	worst := 0.0
@@ -64,6 +64,23 @@ func (s *Study) judgeContrast(x *Compared, put func(check, where string, f evide
 	if b := r.AngleBlocks; b != nil {
 		put(checkBlocks, where, evidence.BlocksOf(b.Width, b.WidthSE, b.Deg, b.Why))
 	}
+}
+
+// movedByAxis is m of the leading model on another axis minus that on the leading one, from
+// the specification table; NaN where it has none.
+func (s *Study) movedByAxis(crystal, axis string) float64 {
+	lead, other := math.NaN(), math.NaN()
+	for i := range s.spec {
+		row := &s.spec[i]
+		switch {
+		case row.Crystal != crystal:
+		case row.Leading:
+			lead = row.M.Value
+		case row.Choice == choiceAxis && row.Level == axis:
+			other = row.M.Value
+		}
+	}
+	return other - lead
 }
 
 // ledgerChoices judges how far m moves under other choices, from the

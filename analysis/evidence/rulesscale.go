@@ -316,15 +316,26 @@ func LyingOf(deg float64, other string) Finding {
 	return f
 }
 
-// AgainstLeading judges m on another axis against the leading one: caution when the
-// interval of the difference excludes 0 and it is more than 0.01; cause is said.
-func AgainstLeading(d, lo, hi float64, cause string) Finding {
+// AgainstLeading judges m on another axis against the leading one, both by one slope (the
+// instrument), in which deviations that an axis shares with the difference show first:
+// caution when the interval of the difference excludes 0 and it is more than 0.01; cause is
+// said. model is the same difference by the leading model, whose m is the one to quote, and
+// is said beside it; NaN where it was not fitted.
+func AgainstLeading(d, lo, hi, model float64, cause string) Finding {
 	if math.IsNaN(d) {
 		return unknown("the difference from the leading axis is not estimable")
 	}
-	f := Finding{Value: d, Unit: "difference of m", Verdict: Fine, Why: "agrees with the leading axis"}
+	beside := ""
+	switch {
+	case math.IsNaN(model):
+	case math.Abs(model) <= 0.01:
+		beside = fmt.Sprintf("; by the leading model, whose m is the one to quote, the axis moves m by %s only", num(model))
+	default:
+		beside = fmt.Sprintf("; by the leading model, whose m is the one to quote, the axis moves m by %s too", num(model))
+	}
+	f := Finding{Value: d, Unit: "difference of m by one slope", Verdict: Fine, Why: "agrees with the leading axis" + beside}
 	if (lo > 0 || hi < 0) && math.Abs(d) > 0.01 {
-		f.Verdict, f.Why = Caution, "differs from the leading axis, most likely by "+cause
+		f.Verdict, f.Why = Caution, "by one slope m differs from that on the leading axis, most likely by "+cause+": take no m from this axis"+beside
 	}
 	return f
 }
