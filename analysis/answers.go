@@ -233,9 +233,7 @@ func answerThickness(r *Result) *Answer {
 		a.Detail = append(a.Detail, fmt.Sprintf("between %s, by the step in thickness of each: %s, with %s where the step is 0", plural(len(x.Crystals), "crystal"),
 			span(x.Slope.Value, x.Slope.Lo, x.Slope.Hi), span(x.Intercept.Value, x.Intercept.Lo, x.Intercept.Hi)))
 	}
-	if text := withinText(t.Tilt); text != "" {
-		a.Detail = append(a.Detail, text)
-	}
+	a.Detail = append(a.Detail, withinTilt(t.Tilt)...)
 	switch {
 	case positions < 3:
 		a.Verdict = VerdictUnsure
@@ -260,34 +258,6 @@ func plural(n int, thing string) string {
 		return "1 " + thing
 	}
 	return fmt.Sprintf("%d %ss", n, thing)
-}
-
-// withinText says what tilt within one position adds; empty when it is known nowhere.
-func withinText(list []TiltSlope) string {
-	var parts []string
-	less := 0
-	for i := range list {
-		if x := &list[i]; !math.IsNaN(x.Slope.Value) {
-			parts = append(parts, fmt.Sprintf("%s %s, between positions %s", x.Crystal, span(x.Slope.Value, x.Slope.Lo, x.Slope.Hi), span(x.Between.Value, x.Between.Lo, x.Between.Hi)))
-			// Three standard errors of the difference, half widths being 1.96 of each.
-			if x.Between.Value-x.Slope.Value > 3*math.Hypot(x.Slope.Hi-x.Slope.Lo, x.Between.Hi-x.Between.Lo)/2/zOf(0.95) {
-				less++
-			}
-		}
-	}
-	if len(parts) == 0 {
-		return ""
-	}
-	return "within the thick position, at high against low tilt and by m alone (no curb, no offset): " + strings.Join(parts, "; ") + lessByTilt(less, len(parts))
-}
-
-// lessByTilt says what it means when a longer way through one place does less than a
-// thicker place.
-func lessByTilt(n, of int) string {
-	if n == 0 {
-		return ""
-	}
-	return fmt.Sprintf("; in %d of %d the longer way does less than the thicker place, so that something else of the place may have a part in it: dose, background, bending", n, of)
 }
 
 // straight is the p-value of the points of all crystals against their lines through the

@@ -161,7 +161,8 @@ func TestAnswersAllowForCrystals(t *testing.T) {
 
 func TestBracketAnswerBySign(t *testing.T) {
 	at := func(lo, hi float64) *ContrastResult {
-		return &ContrastResult{Crystal: "L1", StrengthAxis: leadBracket, Bracket: Bracket{Thick: interval(lo, lo, lo, ""), Thin: interval(hi, hi, hi, ""), Lo: lo, Hi: hi}}
+		return &ContrastResult{Crystal: "L1", StrengthAxis: leadBracket, Bracket: Bracket{Thick: interval(lo, lo, lo, ""), Thin: interval(hi, hi, hi, ""), Lo: lo, Hi: hi},
+			MomentRatio: MomentRatio{M: lo, Lo: lo, Hi: hi}}
 	}
 	nan := math.NaN()
 	for _, c := range []struct {
@@ -211,16 +212,19 @@ func TestAnswerThicknessAsksForALine(t *testing.T) {
 	line.Why = "too few"
 	tilt := []TiltSlope{{Crystal: "L1", Slope: Interval{Value: 0.061, Lo: 0.05, Hi: 0.07}, Between: Interval{Value: 0.072, Lo: 0.06, Hi: 0.08}}, {Crystal: "L2", Slope: none(), Why: "no rotation angles"}}
 	tilted := answerThickness(&Result{Thickness: &ThicknessResult{Slope: flat.Slope, Lines: []ThicknessLine{flat}, Tilt: tilt}})
-	if last := tilted.Detail[len(tilted.Detail)-1]; len(tilted.Detail) != 2 || !strings.Contains(last, "L1 0.061 (0.050 to 0.070), between positions 0.072") || strings.Contains(last, "L2") {
+	if last := tilted.Detail[len(tilted.Detail)-1]; len(tilted.Detail) != 2 || !strings.Contains(last, "L1 by tilt of the thick position alone: 0.061 (0.050 to 0.070); by its thicker positions, by the same one slope: 0.072") || strings.Contains(last, "L2") {
 		t.Errorf("%q", tilted.Detail)
 	}
-	if text := withinText(tilt[1:]); text != "" {
-		t.Error(text)
+	if lines := withinTilt(tilt[1:]); lines != nil {
+		t.Error(lines)
+	}
+	if lines := withinTilt([]TiltSlope{tilt[0], tilt[0]}); len(lines) != 2 {
+		t.Errorf("not a line a crystal: %q", lines)
 	}
 	// Standard errors of 0.0051 each: 0.0216 is three of the difference.
 	for between, less := range map[float64]bool{0.080: false, 0.085: true} {
 		tilt[0].Between = Interval{Value: between, Lo: between - 0.01, Hi: between + 0.01}
-		if text := withinText(tilt[:1]); strings.Contains(text, "in 1 of 1 the longer way does less") != less {
+		if text := strings.Join(withinTilt(tilt[:1]), ""); strings.Contains(text, "The longer way does less") != less {
 			t.Errorf("%g: %s", between, text)
 		}
 	}

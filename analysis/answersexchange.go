@@ -31,7 +31,7 @@ func answerExchange(r *Result, list []*ContrastResult) Answer {
 		a.Detail = append(a.Detail, fmt.Sprintf("%s m = %s%s", label(c), span(e.M, e.Lo, e.Hi), note))
 	}
 	if list[0].StrengthAxis == leadBracket {
-		return bracketAnswer(a, list)
+		return asToThickness(bracketAnswer(a, list), list)
 	}
 	together := ""
 	limit := fmt.Sprintf(" An exchange of m = %s would have been seen in each crystal with 80 %% power", short(worst))
@@ -54,7 +54,7 @@ func answerExchange(r *Result, list []*ContrastResult) Answer {
 	if a.Verdict == VerdictYes && 2*misfits(list) > len(list) {
 		a.Verdict = VerdictUnsure
 	}
-	return a
+	return asToThickness(a, list)
 }
 
 // misfits counts the contrasts whose curve the leading model does not describe.
@@ -179,49 +179,4 @@ func qualified(r *Result, list []*ContrastResult) string {
 		}
 	}
 	return text
-}
-
-// bracketAnswer says what one crystal, or a pair of crystals, can say.
-func bracketAnswer(a Answer, list []*ContrastResult) Answer {
-	var parts []string
-	known, up, down := 0, 0, 0
-	lo, hi := math.Inf(1), math.Inf(-1)
-	for _, c := range list {
-		b := c.Bracket
-		parts = append(parts, fmt.Sprintf("%s: by the model with a curb, which can take deviations for one, m = %s from half of the thick position and %s from half of the thin; moment ratio %s",
-			label(c), span(b.Thick.Value, b.Thick.Lo, b.Thick.Hi), span(b.Thin.Value, b.Thin.Lo, b.Thin.Hi), span(c.MomentRatio.M, c.MomentRatio.Lo, c.MomentRatio.Hi)))
-		if !math.IsNaN(b.ThickSlope.Value) && !math.IsNaN(b.ThinSlope.Value) {
-			parts = append(parts, fmt.Sprintf("%s: by one slope, which reads curb and offset as exchange, m = %s from half of the thick position, whose own deviations take it down, and %s from half of the thin, whose own take it up", label(c),
-				span(b.ThickSlope.Value, b.ThickSlope.Lo, b.ThickSlope.Hi), span(b.ThinSlope.Value, b.ThinSlope.Lo, b.ThinSlope.Hi)))
-		}
-		if math.IsNaN(b.Lo) || math.IsNaN(b.Hi) || math.IsNaN(b.Thick.Value) || math.IsNaN(b.Thin.Value) {
-			continue
-		}
-		known++
-		lo, hi = math.Min(lo, b.Lo), math.Max(hi, b.Hi)
-		switch {
-		case b.Lo > 0:
-			up++
-		case b.Hi < 0:
-			down++
-		}
-	}
-	a.Detail = parts
-	const why = " Only a bracket can be given, since no other crystal of the series says how strong each reflection is."
-	width := fmt.Sprintf("m lies between %s and %s, the ends of all that halves of either position say", short(lo), short(hi))
-	const unrelated = "This holds only if the deviations of the two positions are unrelated."
-	switch {
-	case known == 0:
-		a.Verdict, a.Text = VerdictUnknown, "It cannot be said: strengths would have to come from halves of the same position, and too few symmetry equivalents are there to make them."
-	case up == len(list):
-		a.Verdict, a.Text = VerdictYes, "Yes, as far as a bracket tells: "+width+"."+why+" "+unrelated
-	case down == len(list):
-		a.Verdict, a.Text = VerdictNo, "No, as far as a bracket tells, rather the reverse: "+width+"."+why+" "+unrelated
-	default:
-		a.Verdict, a.Text = VerdictUnsure, "Undecided: "+width+"."+why
-	}
-	if list[0].ThickCrystal != "" {
-		a.Text += " The two positions lie on two crystals: nothing here attributes a difference to thickness."
-	}
-	return a
 }
