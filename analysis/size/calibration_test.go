@@ -30,7 +30,7 @@ func TestCoverage(t *testing.T) {
 		t.Run(c.name, func(t *testing.T) {
 			var m, se, cover, moments tally
 			g := stream(41)
-			for range repeats(250, 1500) {
+			for range repeats(150, 1500) {
 				in := c.p.draw(g)
 				f, err := Moments(in, nil, M, nil)
 				moments.add(within(c.p.m, must(t, f, err).M))

@@ -230,8 +230,9 @@ func (s *system) sums(rows [][]float64) *weighted {
 			wu[i] = w * u[i]
 		}
 		uf := make([][]float64, len(c.f))
+		room := make([]float64, len(u)*len(uf))
 		for k, f := range c.middle {
-			uf[k] = make([]float64, len(f))
+			uf[k] = room[k*len(u) : (k+1)*len(u)]
 			for i, v := range f {
 				uf[k][i] = u[i] * v
 			}
@@ -365,8 +366,10 @@ func (s *system) leverage(m *weighted, k *mat.Dense) []float64 {
 // psi over 1 - h where h is given.
 func (s *system) covarianceOfMoments(m *weighted, theta, h []float64) *mat.SymDense {
 	psi := make([][]float64, len(m.f[0]))
+	n := len(s.weight)
+	room := make([]float64, n*len(psi))
 	for k := range psi {
-		psi[k] = make([]float64, len(s.weight))
+		psi[k] = room[k*n : (k+1)*n]
 	}
 	for l, c := range s.legs {
 		c.influence(psi, m.uf[l], m.wu[l], theta, m.f[l])

@@ -29,7 +29,7 @@ func (s *system) variances(theta []float64) [][]float64 {
 }
 
 func (c *conditions) variances(r []float64) []float64 {
-	var law squares
+	law := make(squares, 0, len(r))
 	a, n := make([]float64, c.in.Shells), make([]float64, c.in.Shells)
 	for i, s := range c.in.Shell {
 		if c.w[i]*c.u[i] > 0 {
