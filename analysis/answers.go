@@ -3,7 +3,6 @@ package analysis
 import (
 	"fmt"
 	"math"
-	"strings"
 
 	"gonum.org/v1/gonum/stat/distuv"
 
