@@ -94,7 +94,7 @@ func answerDiffer(list []*ContrastResult) Answer {
 		a.Verdict = VerdictUnknown
 		a.Text = "It cannot be said: no position has enough symmetry equivalents to take the noise out of a correlation."
 	case n == 0:
-		a.Text = "Beyond counting noise no difference between thinnest and thickest position is seen " + same + fmt.Sprintf("; one of %s would have been seen in each crystal with 80 %% power).", short(size.MinimumVisible(worst, 0.95, 0.8)))
+		a.Text = "Beyond counting noise no difference between thinnest and thickest position is seen " + same + fmt.Sprintf("; a moment ratio of %s would have been seen in each crystal with 80 %% power).", short(size.MinimumVisible(worst, 0.95, 0.8)))
 	default:
 		a.Verdict = VerdictYes
 		a.Text = fmt.Sprintf("Thinnest and thickest position differ beyond counting noise in %s %s). Bending, mosaicity, dose and errors of frames lower r as thickness does.", crystalsOf(n, list), same)

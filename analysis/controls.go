@@ -132,6 +132,11 @@ func (r *reading) nullPassed(e evidence.Estimate, p float64) bool {
 	return math.Abs(e.Value) <= r.deviate()*e.SE && !(p < r.alarm)
 }
 
+// threshold says when nullPassed fails.
+func (r *reading) threshold() string {
+	return fmt.Sprintf("fails when the curve has p below %.2g or m is beyond %.1f standard errors, at the 5 %% error rate that all controls share", r.alarm, r.deviate())
+}
+
 // deviate is the normal deviate beyond which, on either side, a reading fails.
 func (r *reading) deviate() float64 { return zOf(1 - r.alarm) }
 
@@ -161,7 +166,7 @@ func (s *Study) halvesControl(ctx context.Context, r *reading) ([]ControlResult,
 			continue
 		}
 		x := ControlResult{Control: controlHalves, Crystal: r.x.Result.Crystal, M: intervalOf(v.M), Q: intervalOf(v.Q), P: v.P, Rejections: math.NaN(), Draws: 1,
-			Through: "merging on", Can: can, Cannot: cannot, Why: "counting noise only; equivalents of position " + name + " in two halves by index"}
+			Through: "merging on", Can: can, Cannot: cannot, Why: "counting noise only; equivalents of position " + name + " in two halves by index; " + r.threshold()}
 		x.judge(r.nullPassed(v.M, v.P))
 		out = append(out, x)
 	}
@@ -208,7 +213,7 @@ func (s *Study) replicateControl(ctx context.Context, r *reading) ([]ControlResu
 			continue
 		}
 		x := ControlResult{Control: controlReplicate, Crystal: c.Name, M: intervalOf(v.M), Q: intervalOf(v.Q), P: v.P, Rejections: math.NaN(), Draws: 1,
-			Through: "pairing on, both places on the crystal's one scale", Can: can, Cannot: cannot, Why: names}
+			Through: "pairing on, both places on the crystal's one scale", Can: can, Cannot: cannot, Why: names + "; " + r.threshold()}
 		x.judge(r.nullPassed(v.M, v.P))
 		out = append(out, x)
 	}

@@ -77,8 +77,9 @@ func (s *Study) nullResult(name string, null *evidence.Replicated, alarm float64
 		P: math.NaN(), Rejections: null.CurveRejects, Misses: null.Missed, Draws: null.N, Through: through, Can: can, Cannot: cannot}
 	x.Why = fmt.Sprintf("mean m of %d replicas %s ± %s; their interval misses 0 in %s", null.N, short(null.M.Mean), short(null.M.MeanSE), percent(null.Missed))
 	if !math.IsNaN(null.CurveRejects) {
-		x.Why += fmt.Sprintf(", the test of the curve rejects in %s (5 %% nominal)", percent(null.CurveRejects))
+		x.Why += fmt.Sprintf(", the test of the curve rejects in %s", percent(null.CurveRejects))
 	}
+	x.Why += fmt.Sprintf(" (5 %% nominal; above %s fails, at the 5 %% error rate that all controls share)", percent(null.Allowed(alarm)))
 	x.judge(null.Clean(alarm))
 	return x
 }

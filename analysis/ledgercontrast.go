@@ -99,14 +99,18 @@ func (s *Study) ledgerChoices(b *ledgerBook) {
 				continue
 			}
 			turn := evidence.Turn{Lo: math.Inf(1), Hi: math.Inf(-1)}
-			lead, se := math.NaN(), math.NaN()
+			lead, se, level := math.NaN(), math.NaN(), ""
 			for _, row := range s.spec {
 				if row.Crystal == x.Result.Crystal && row.Leading {
 					lead, se = row.M.Value, (row.M.Hi-row.M.Lo)/2/zOf(s.settings.Level)
 				}
 				if row.Crystal == x.Result.Crystal && row.Choice == kind.choice && !math.IsNaN(row.M.Value) {
 					turn.Lo, turn.Hi, turn.N = math.Min(turn.Lo, row.M.Value), math.Max(turn.Hi, row.M.Value), turn.N+1
+					level = row.Level
 				}
+			}
+			if turn.N == 1 {
+				turn.Only, turn.Leading = onlyChoice(kind.choice, level)
 			}
 			if turn.N > 0 {
 				list = append(list, placed{x.Result.Crystal, evidence.ChoiceOf(kind.what, lead, se, turn)})
@@ -114,4 +118,16 @@ func (s *Study) ledgerChoices(b *ledgerBook) {
 		}
 		b.fold(kind.check, "crystals", 0, list)
 	}
+}
+
+// onlyChoice names the level of a choice that is the only other one, and what leads.
+func onlyChoice(choice, level string) (only, leading string) {
+	if choice != choiceFriedel {
+		return level, "in the leading analysis"
+	}
+	leading = friedelTogether
+	if level == friedelTogether {
+		leading = friedelApart
+	}
+	return "mates " + level, leading
 }

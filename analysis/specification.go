@@ -295,6 +295,12 @@ type friedel struct {
 	unique [][][]int32
 }
 
+// Levels of the treatment of Friedel mates.
+const (
+	friedelApart    = "apart"
+	friedelTogether = "together"
+)
+
 // otherFriedel numbers the observations the other way; nil for a
 // centrosymmetric group, whose mates are equivalent anyway.
 func (s *Study) otherFriedel() (*friedel, error) {
@@ -307,10 +313,10 @@ func (s *Study) otherFriedel() (*friedel, error) {
 			sets = append(sets, s.intake.Positions[i][j].Observations)
 		}
 	}
-	f := &friedel{level: "apart", study: s, unique: make([][][]int32, len(s.intake.Positions))}
+	f := &friedel{level: friedelApart, study: s, unique: make([][][]int32, len(s.intake.Positions))}
 	build := intensity.NewCatalogueApart
 	if s.Series.FriedelApart {
-		f.level, build = "together", intensity.NewCatalogue
+		f.level, build = friedelTogether, intensity.NewCatalogue
 	}
 	var err error
 	if f.cat, err = build(s.Series.Cell, s.Series.Group, sets...); err != nil {

@@ -135,9 +135,7 @@ const (
 // DoubleScattering asks whether an observation h gains when pairs g, h-g were
 // excited on its frame: U(h) = sum J_g J_(h-g) over the reflections on the frame,
 // within equivalents, the frame's total as covariate. It is drawn without a verdict:
-// in the one real pair it was tried on it was stronger in the thin crystal, the wrong
-// order for multiple scattering, so that it may be what frames leave of their
-// scale. Errors as of Bleed.
+// what frames leave of their scale can look the same. Errors as of Bleed.
 func DoubleScattering(c *Crossings) (*Slope, error) {
 	d, err := c.double()
 	if err != nil {

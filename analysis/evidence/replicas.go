@@ -179,6 +179,15 @@ func (r *Replicated) Clean(alarm float64) bool {
 		(math.IsNaN(r.CurveRejects) || likely(r.CurveRejects, r.N, alarm))
 }
 
+// Allowed is the largest share of r.N draws that Clean takes for chance at 5 % each.
+func (r *Replicated) Allowed(alarm float64) float64 {
+	k := 0
+	for k < r.N && likely(float64(k+1)/float64(r.N), r.N, alarm) {
+		k++
+	}
+	return float64(k) / float64(r.N)
+}
+
 // likely says whether so large a share of n is more likely than alarm when each
 // comes with a chance of 5 %.
 func likely(share float64, n int, alarm float64) bool {

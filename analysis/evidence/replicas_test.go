@@ -85,6 +85,8 @@ func TestReplicateSeesABiasAndTooNarrowAnInterval(t *testing.T) {
 			t.Errorf("%g of 100 at 0.05: likely is %t at a level of 0.002", k, !want)
 		}
 	}
+	floatcmp.Check(t, "most that is chance", (&Replicated{N: 100}).Allowed(0.002), 0.12, 1e-15, 0)
+	floatcmp.Check(t, "most that is chance, all", (&Replicated{N: 1}).Allowed(0.002), 1, 1e-15, 0)
 }
 
 func TestReplicateCountsFailures(t *testing.T) {

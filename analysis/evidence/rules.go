@@ -200,7 +200,7 @@ func DoubleOf(s *Slope, err error) Finding {
 		return unknown("%s", err.Error())
 	}
 	return Finding{Value: s.Z, Unit: "z within equivalents", Verdict: NotKnown,
-		Why: "gain where pairs of reflections that add up to it stood on the same frame; drawn without a verdict: in a real pair it was stronger in the thin crystal, the wrong order for multiple scattering, so it may be what frames leave of their scale"}
+		Why: "gain where pairs of reflections that add up to it stood on the same frame; not judged: scale errors of frames can look the same"}
 }
 
 // TiltOf judges the exchange between equivalents at low and at high tilt within

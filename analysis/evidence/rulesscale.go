@@ -96,6 +96,8 @@ func TippingOf(p, up, down, lo, hi float64) Finding {
 type Turn struct {
 	Lo, Hi float64 // least and largest of the estimates, the leading one included
 	N      int     // choices that gave one
+	// Only names the choice when there is a single one, and Leading what leads instead.
+	Only, Leading string
 }
 
 // ChoiceOf judges how far other choices of one kind move m. se is that of the
@@ -107,17 +109,33 @@ func ChoiceOf(what string, lead, se float64, t Turn) Finding {
 		return unknown("m is not estimable under other choices of the %s", what)
 	}
 	far := math.Max(t.Hi-lead, lead-t.Lo)
-	choices := "choices"
-	if t.N == 1 {
-		choices = "choice"
-	}
 	f := Finding{Value: far, Unit: "largest change of m", Verdict: Fine,
-		Why: fmt.Sprintf("m lies between %s and %s under %d other %s of the %s", num(t.Lo), num(t.Hi), t.N, choices, what)}
+		Why: fmt.Sprintf("m lies between %s and %s under %d other choices of the %s", num(t.Lo), num(t.Hi), t.N, what)}
+	if t.N == 1 {
+		other := t.Lo
+		if t.Hi-lead > lead-t.Lo {
+			other = t.Hi
+		}
+		f.Unit = "change of m"
+		f.Why = fmt.Sprintf("m is %s with another %s", num(other), what)
+		if t.Only != "" {
+			f.Why = fmt.Sprintf("m is %s with %s", num(other), t.Only)
+		}
+		f.Why += fmt.Sprintf(" (%s%s)", num(lead), spaced(t.Leading))
+	}
 	if far > math.Max(se, 0.01) {
 		f.Verdict = Caution
 		f.Why += ", more than its standard error from the leading one"
 	}
 	return f
+}
+
+// spaced puts a space before words, if there are any.
+func spaced(words string) string {
+	if words == "" {
+		return ""
+	}
+	return " " + words
 }
 
 // Indexing judges the margin of the chosen way to index.
