@@ -9,7 +9,7 @@ func undecidedByLaue(r *Result, list []Answer) []Answer {
 	}
 	for k := range list[:len(list)-1] {
 		list[k].Verdict = VerdictUnsure
-		list[k].Text = "The space group makes reflections equivalent that are not (see \"" + checkLaue + "\" in the ledger), so that the numbers are means of unlike ones and answer nothing. They say: " + list[k].Text
+		list[k].Text = "The space group makes reflections equivalent that are not (see \"" + checkLaue + "\" in the ledger): what follows is of means of unlike ones. " + list[k].Text
 	}
 	return list
 }

@@ -83,7 +83,7 @@ func TestFailedLaueClassLeavesNoAnswer(t *testing.T) {
 			t.Errorf("answer %d is %q, want %q", k, list[k].Verdict, want)
 		}
 	}
-	if !strings.Contains(list[0].Text, "answer nothing. They say: They differ.") {
+	if !strings.Contains(list[0].Text, "of means of unlike ones. They differ.") {
 		t.Error(list[0].Text)
 	}
 	r.Ledger[0].Verdict = VerdictCaution

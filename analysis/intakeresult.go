@@ -52,7 +52,7 @@ func (s *Study) intakeResults(ctx context.Context) ([]IntakeResult, error) {
 	s.sharing, s.centring, s.remarks = s.commonResults(list), s.centringResults(list), remarks
 	s.laueClass = s.laue()
 	if v := s.laueFinding.Verdict; v == evidence.Caution || v == evidence.Fails {
-		s.warn("laue-class", "", "%s", s.laueClass.Why)
+		s.warn("laue-class", "every position", "%s", s.laueClass.Why)
 	}
 	for _, c := range s.centring {
 		if c.Verdict == evidence.Caution.String() || c.Verdict == evidence.Fails.String() {
