@@ -20,6 +20,8 @@ func TestCheckNamesTheFault(t *testing.T) {
 		{"d_min -2", func(p *Plan) { p.DMin = -2 }},
 		{"shells -1", func(p *Plan) { p.Shells = -1 }},
 		{"simulate: cell:", func(p *Plan) { p.Cell.A = -3 }},
+		{"simulate: declared: cell", func(p *Plan) { p.Declared = "P 4" }},
+		{"simulate: declared:", func(p *Plan) { p.Declared = "Q 7" }},
 		{"simulate: space_group:", func(p *Plan) { p.SpaceGroup = "Q 7" }},
 		{"do not have the symmetry of P 41", func(p *Plan) { p.SpaceGroup = "P 41" }},
 		{"min_distance -1", func(p *Plan) { p.Structure.MinDistance = -1 }},
