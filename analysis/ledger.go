@@ -103,9 +103,34 @@ func (s *Study) ledgerIntake(b *ledgerBook) {
 		cut = append(cut, placed{where, f})
 	}
 	b.fold(checkRows, "positions", 1, rows)
+	from := len(b.entries)
 	b.fold(checkNegatives, "positions", 1, negatives)
+	for i := from; i < len(b.entries); i++ {
+		b.entries[i].Why += fewNegatives(s.table)
+	}
 	b.fold(checkCut, "positions", 0, cut)
 	b.add(checkLaue, "", s.laueFinding)
+}
+
+// fewNegatives names the position with the fewest observations below zero against Wilson's
+// law, where they are under half of 20 or more that it expects, and says what that means
+// when no cut is seen.
+func fewNegatives(table []IntakeResult) string {
+	worst, least := -1, 0.5
+	for i := range table {
+		r := &table[i]
+		if len(r.Negative) == 0 || len(r.NegativeExp) == 0 || r.NegativeExp[0] < 20 {
+			continue
+		}
+		if share := float64(r.Negative[0]) / r.NegativeExp[0]; share < least {
+			worst, least = i, share
+		}
+	}
+	if worst < 0 {
+		return ""
+	}
+	r := &table[worst]
+	return fmt.Sprintf(". Fewest below zero in %s/%s: %d, and Wilson's law expects %.0f. That law is of a kinematic crystal: an exchange or an offset lifts the weak and so empties the negatives too, without a step at zero", r.Crystal, r.Position, r.Negative[0], r.NegativeExp[0])
 }
 
 // nearZero counts observations with I/sigma from -0.5 to 0, to 0.5 and to 1.
