@@ -69,6 +69,10 @@ type PlanCrystal struct {
 	NoiseShare   float64 `json:"noise_share"`
 	Seen         float64 `json:"seen"`
 	Why          string  `json:"why,omitempty"`
+	// Assumed says that SE is that of the fit to half of the thin position: without another
+	// crystal m is known as a bracket only, and that further crystals give strengths with
+	// which it is known as well as that is an assumption.
+	Assumed bool `json:"assumed,omitempty"`
 }
 
 // PlanNeed is the number of crystals like the typical one that see M; 0 with a
@@ -167,6 +171,9 @@ func (s *Study) Plan(ctx context.Context, set *PlanSettings) (*Planning, error) 
 		p.Tau, p.TauWhy = o.Spread, ""
 	case math.IsNaN(p.Tau):
 		p.Tau = 0
+		if len(m) == 0 && p.assumed() > 0 {
+			p.TauWhy = "brackets tell no spread between crystals"
+		}
 	}
 	if err := p.fill(o.Spread > 0); err != nil {
 		return nil, err
@@ -182,6 +189,11 @@ func (s *Study) planCrystal(x *Compared, p *Planning) (PlanCrystal, error) {
 		k.Multiplicity += float64(x.Pairs.NThin[i]+x.Pairs.NThick[i]) / 2
 	}
 	k.Multiplicity /= k.Pairs
+	if half := &x.Result.Bracket.Thin; x.Leading == leadBracket && !(k.SE > 0) {
+		if se := (half.Hi - half.Lo) / 2 / zOf(p.Level); se > 0 && !math.IsInf(se, 1) && !math.IsNaN(half.Value) {
+			k.SE, k.Assumed = se, true
+		}
+	}
 	if k.Seen = math.NaN(); k.SE > 0 {
 		k.Seen = pool.Visible(k.SE, 1-p.Level, p.Power)
 	}
@@ -319,8 +331,22 @@ func needed(d pool.Design, m, k, level, power float64) (pairs, multiplicity floa
 	return pairs, multiplicity
 }
 
+// assumed counts the crystals whose error is that of half of the thin position.
+func (p *Planning) assumed() int {
+	n := 0
+	for i := range p.Measured {
+		if p.Measured[i].Assumed {
+			n++
+		}
+	}
+	return n
+}
+
 func (p *Planning) caution(given bool) {
 	k, level := len(p.Measured), 100*p.Level
+	if n := p.assumed(); n > 0 {
+		p.Cautions = append(p.Cautions, fmt.Sprintf("An assumption: in %d of %s m is known as a bracket only, which one crystal never leaves. Its error here is that of half of the thin position, taken to hold for further crystals once each has strengths from the others: plan for two at least.", n, plural(k, "crystal")))
+	}
 	switch {
 	case given && p.TauHi < p.Tau:
 		p.Cautions = append(p.Cautions, fmt.Sprintf("The spread between crystals is taken as %.3f, as given; these crystals allow no more than %.3f (Q-profile, %.0f %%).", p.Tau, p.TauHi, level))
@@ -331,6 +357,8 @@ func (p *Planning) caution(given bool) {
 	case p.Wide == nil:
 	case p.TauHi == 0:
 		p.Cautions = append(p.Cautions, fmt.Sprintf("%s: the first table takes none, the second one as large as the error of one crystal, %.3f. These %d crystals agree better than their errors lead one to expect, so that they set no limit.", p.TauWhy, p.Wide.Tau, k))
+	case math.IsInf(p.TauHi, 1) && p.assumed() > 0:
+		p.Cautions = append(p.Cautions, fmt.Sprintf("%s: the first table takes none, the second one as large as the error of one crystal, %.3f. Give one to plan with.", p.TauWhy, p.Wide.Tau))
 	case math.IsInf(p.TauHi, 1):
 		p.Cautions = append(p.Cautions, fmt.Sprintf("%s: the first table takes none, the second one as large as the error of one crystal, %.3f. One crystal allows any spread; give one to plan with.", p.TauWhy, p.Wide.Tau))
 	default:

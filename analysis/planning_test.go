@@ -117,6 +117,32 @@ func checkWide(t *testing.T, p *Planning) {
 	}
 }
 
+// One crystal asks how many to measure: its error is that of half of the thin position, and
+// the plan says that this is an assumption.
+func TestPlanOfOneCrystalAssumes(t *testing.T) {
+	s := studyOf(t, smallPlan(1), &Settings{Replicates: 20, Flips: 20})
+	p, err := s.Plan(context.Background(), nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	k := p.Measured[0]
+	half := s.compared[s.list[0]].Result.Bracket.Thin
+	if !k.Assumed || len(p.Measured) != 1 || !(p.Typical.SE > 0) {
+		t.Fatalf("%+v", p)
+	}
+	floatcmp.Check(t, "SE", k.SE, (half.Hi-half.Lo)/2/1.959964, 0, 1e-6)
+	if all := strings.Join(p.Cautions, " "); !strings.HasPrefix(all, "An assumption: in 1 of 1 crystal ") || !strings.Contains(all, "brackets tell no spread between crystals: the first table takes none") || p.Wide == nil {
+		t.Errorf("%s", all)
+	}
+	if p, err = s.Plan(context.Background(), &PlanSettings{Spread: 0.02}); err != nil || p.Wide != nil || p.Tau != 0.02 {
+		t.Errorf("with a spread: %+v, %v", p, err)
+	}
+	three, err := studyOf(t, smallPlan(3), &Settings{Replicates: 20, Flips: 20}).Plan(context.Background(), nil)
+	if err != nil || three.assumed() != 0 || strings.Contains(strings.Join(three.Cautions, " "), "An assumption") {
+		t.Errorf("three crystals: %+v, %v", three, err)
+	}
+}
+
 func TestPlanRefuses(t *testing.T) {
 	s := studyOf(t, smallPlan(1), &Settings{Replicates: 20, Flips: 20})
 	for _, set := range []PlanSettings{{M: -0.1}, {M: 1}, {M: math.NaN()}, {Power: 0.4}, {Power: 1}, {Spread: -0.1}, {Spread: 1}} {
