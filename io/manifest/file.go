@@ -118,48 +118,17 @@ func Parse(name string, data []byte) (*File, error) {
 	f := new(File)
 	d := toml.NewDecoder(bytes.NewReader(data))
 	d.DisallowUnknownFields()
-	if err := d.Decode(f); err != nil {
-		return nil, decodeError(name, err)
+	err := d.Decode(f)
+	if left := unanswered(name, data); left != nil && !looksLikeCIF(data) {
+		return nil, left
+	}
+	if err != nil {
+		return nil, decodeError(name, data, err)
 	}
 	if err := f.check(name, data); err != nil {
 		return nil, err
 	}
 	return f, nil
-}
-
-func decodeError(name string, err error) error {
-	var strict *toml.StrictMissingError
-	if errors.As(err, &strict) && len(strict.Errors) > 0 {
-		first := &strict.Errors[0]
-		line, _ := first.Position()
-		key := strings.Join(first.Key(), ".")
-		return &Error{File: name, Line: line, Key: key, Problem: "unknown key", Remedy: suggestion(first.Key()), Err: err}
-	}
-	var bad *toml.DecodeError
-	if errors.As(err, &bad) {
-		line, _ := bad.Position()
-		problem, remedy := plainly(strings.TrimPrefix(bad.Error(), "toml: "))
-		return &Error{File: name, Line: line, Key: strings.Join(bad.Key(), "."), Problem: problem, Remedy: remedy, Err: err}
-	}
-	return &Error{File: name, Problem: strings.TrimPrefix(err.Error(), "toml: "), Remedy: "see the manifest section of the README", Err: err}
-}
-
-// plainly says what the TOML decoder says in words of the manifest.
-func plainly(problem string) (plain, remedy string) {
-	remedy = "see the manifest section of the README"
-	switch {
-	case strings.Contains(problem, "into struct field") && strings.Contains(problem, "of type float64"):
-		return "a number is wanted here", "write it without quotes, with a decimal point and without its unit, such as 140.0"
-	case strings.Contains(problem, "into struct field") && strings.Contains(problem, "type []string"):
-		return "a list is wanted here", `write it in brackets, such as ["a", "b"]`
-	case strings.Contains(problem, "into struct field") && strings.Contains(problem, "of type string"):
-		return "a text is wanted here", "write it in double quotes"
-	case strings.Contains(problem, "U+002C ','"):
-		return problem, "TOML has decimal points, and commas only inside lists"
-	case strings.Contains(problem, "invalid character"):
-		return problem, "a manifest is text in TOML, as thinward draft FILES writes it; thinward peek shows what a reflection file holds"
-	}
-	return problem, remedy
 }
 
 var known = map[string][]string{

@@ -26,7 +26,7 @@ func ReadPlan(path string) (*simulate.Plan, error) {
 	d := toml.NewDecoder(bytes.NewReader(data))
 	d.DisallowUnknownFields()
 	if err := d.Decode(p); err != nil {
-		e := decodeError(path, err)
+		e := decodeError(path, data, err)
 		if m, ok := e.(*Error); ok {
 			m.Remedy = "see the plan that invent writes beside a series"
 		}

@@ -96,6 +96,7 @@ func (l *loader) series() (*analysis.Series, error) {
 		}
 		l.out.Crystals = append(l.out.Crystals, specimen)
 	}
+	l.out.Warnings = append(l.out.Warnings, f.doubts(l.out.EnergyKeV)...)
 	for _, b := range f.Between {
 		l.out.Between = append(l.out.Between, between(b))
 	}
@@ -149,6 +150,9 @@ func (l *loader) position(p *Position, at place, crystalName string) (*analysis.
 		case r.energyKeV > 0 && math.Abs(r.energyKeV/l.out.EnergyKeV-1) > energyTolerance:
 			l.out.Warnings = append(l.out.Warnings, intensity.Warning{Code: "energy-differs", Where: where + ", " + filepath.Base(name),
 				Text: fmt.Sprintf("the file gives %.4g keV, the series uses %.4g", r.energyKeV, l.out.EnergyKeV)})
+		}
+		if text := notElectrons(r.probe, r.wavelengthA, l.out.EnergyKeV, r.energyKeV > 0); text != "" {
+			r.warnings = append(r.warnings, intensity.Warning{Code: "wavelength", Text: text})
 		}
 		for _, w := range r.warnings {
 			w.Where = where + ", " + filepath.Base(name)

@@ -17,14 +17,16 @@ import (
 
 // reflections is what one file gave, whatever its kind.
 type reflections struct {
-	columns   *intensity.Columns
-	cell      *crystal.Cell
-	group     *crystal.Group
-	energyKeV float64
-	merged    bool
-	rows      int
-	aside     []analysis.SetAside
-	warnings  []intensity.Warning
+	columns     *intensity.Columns
+	cell        *crystal.Cell
+	group       *crystal.Group
+	energyKeV   float64
+	wavelengthA float64 // 0 where the file gives none
+	probe       string  // "" where the file gives none
+	merged      bool
+	rows        int
+	aside       []analysis.SetAside
+	warnings    []intensity.Warning
 }
 
 func (l *loader) read(path, pick string, at place) (*reflections, error) {
@@ -54,27 +56,30 @@ func LooksLikeCIF(path string) (bool, error) {
 	if err != nil && err != io.ErrUnexpectedEOF && err != io.EOF {
 		return false, err
 	}
-	head = head[:n]
+	return looksLikeCIF(head[:n]), nil
+}
+
+func looksLikeCIF(head []byte) bool {
 	if bytes.HasPrefix(head, []byte{0x1f, 0x8b}) {
 		z, err := gzip.NewReader(bytes.NewReader(head))
 		if err != nil {
-			return false, nil // the reader of the file says what is wrong with it
+			return false // the reader of the file says what is wrong with it
 		}
 		plain, _ := io.ReadAll(io.LimitReader(z, 64<<10)) // cut short on purpose
 		head = plain
 	}
 	text := strings.TrimPrefix(string(head), "\ufeff")
 	if strings.HasPrefix(text, `#\#CIF`) {
-		return true, nil
+		return true
 	}
 	for line := range strings.Lines(strings.ReplaceAll(text, "\r", "\n")) {
 		line = strings.TrimSpace(line)
 		if line == "" || line[0] == '#' {
 			continue
 		}
-		return len(line) >= 5 && strings.EqualFold(line[:5], "data_") || line[0] == '_' || strings.HasPrefix(strings.ToLower(line), "loop_"), nil
+		return len(line) >= 5 && strings.EqualFold(line[:5], "data_") || line[0] == '_' || strings.HasPrefix(strings.ToLower(line), "loop_")
 	}
-	return false, nil
+	return false
 }
 
 func readCIF(path, pick string) (*reflections, error) {
@@ -86,7 +91,7 @@ func readCIF(path, pick string) (*reflections, error) {
 	if err != nil {
 		return nil, err
 	}
-	out := &reflections{columns: r.Columns, cell: r.Cell, energyKeV: r.EnergyKeV, merged: r.Merged, rows: r.Rows, warnings: r.Warnings}
+	out := &reflections{columns: r.Columns, cell: r.Cell, energyKeV: r.EnergyKeV, wavelengthA: r.WavelengthA, probe: r.Probe, merged: r.Merged, rows: r.Rows, warnings: r.Warnings}
 	for _, a := range r.SetAside {
 		out.aside = append(out.aside, analysis.SetAside{Reason: a.Reason, N: a.Count, FirstLine: a.FirstLine})
 	}
