@@ -45,6 +45,7 @@ const rowsOfShell = 200
 // alone is a position by itself: the strength of each reflection, Friedel mates joined,
 // as the signed root of the intensity over its local mean.
 type alone struct {
+	hkl      []crystal.HKL // in ascending order
 	strength map[crystal.HKL]float64
 	repeats  [][2]float64 // observations of one reflection or of its mate, by two
 }
@@ -60,7 +61,7 @@ func ofMates(h crystal.HKL) crystal.HKL {
 // alone gives the strengths of a position. Reflections that some rotation of the Laue class
 // leaves in place, or that the group forbids, are left out: the former may be equivalent by
 // a lower class in ways that general ones are not.
-func (s *Study) alone(c *intensity.Columns) *alone {
+func (s *Study) alone(c *intensity.Columns, ways []crystal.Reindexing) *alone {
 	g, metric := s.Series.Group, s.Series.Cell.ReciprocalMetric()
 	general := 0
 	var rows []int
@@ -81,7 +82,11 @@ func (s *Study) alone(c *intensity.Columns) *alone {
 	}
 	seen := map[crystal.HKL][]float64{}
 	out := &alone{strength: map[crystal.HKL]float64{}}
+	stride := 1 + len(rows)/laueSample
 	for _, r := range rows {
+		if stride > 1 && int(s.orbit(crystal.HKL{H: int(c.H[r]), K: int(c.K[r]), L: int(c.L[r])}, ways))%stride != 0 {
+			continue
+		}
 		h := ofMates(crystal.HKL{H: int(c.H[r]), K: int(c.K[r]), L: int(c.L[r])})
 		if g.Multiplicity(h) < general || math.IsNaN(ratio[r]) {
 			continue
@@ -94,8 +99,30 @@ func (s *Study) alone(c *intensity.Columns) *alone {
 	}
 	for h, v := range seen {
 		out.strength[h] = mean(v)
+		out.hkl = append(out.hkl, h)
 	}
+	slices.SortFunc(out.hkl, compareHKL)
 	return out
+}
+
+// laueSample is the number of observations of a position beyond which a share of the
+// reflections is enough to ask.
+const laueSample = 40000
+
+// orbit numbers what the group and the ways to index the lattice make of a reflection: all of
+// it has one number, drawn by a hash (Knuth 1973, vol. 3, 6.4).
+func (s *Study) orbit(h crystal.HKL, ways []crystal.Reindexing) uint32 {
+	first := s.Series.Group.Canonical(h)
+	for _, by := range ways {
+		if !by.Maps(h) {
+			continue
+		}
+		if image := s.Series.Group.Canonical(by.Apply(h)); compareHKL(image, first) < 0 {
+			first = image
+		}
+	}
+	key := uint32(first.H)*73856093 ^ uint32(first.K)*19349663 ^ uint32(first.L)*83492791
+	return key * 2654435769 >> 8
 }
 
 // flatten divides the values at the given rows by their mean among neighbours in by; NaN where
@@ -156,7 +183,7 @@ func (p *pairing) agreement(name string) evidence.LaueAgreement {
 // pairsUnder are the pairs of reflections that an operation makes equivalent, each once.
 func (a *alone) pairsUnder(image func(crystal.HKL) (crystal.HKL, bool)) [][2]float64 {
 	var out [][2]float64
-	for _, h := range sortedHKL(a.strength) {
+	for _, h := range a.hkl {
 		to, ok := image(h)
 		if to = ofMates(to); !ok || to == h {
 			continue
@@ -178,21 +205,13 @@ func compareHKL(a, b crystal.HKL) int {
 	return cmp.Or(cmp.Compare(a.H, b.H), cmp.Compare(a.K, b.K), cmp.Compare(a.L, b.L))
 }
 
-func sortedHKL(m map[crystal.HKL]float64) []crystal.HKL {
-	out := make([]crystal.HKL, 0, len(m))
-	for h := range m {
-		out = append(out, h)
-	}
-	slices.SortFunc(out, compareHKL)
-	return out
-}
-
 // laue asks the intensities for every operation of the Laue class.
 func (s *Study) laue() *LaueResult {
+	ways := crystal.AlternativeIndexings(s.Series.Group, s.Series.Cell, latticeToleranceDeg)
 	lists := make([][]*alone, len(s.intake.Positions))
 	for i := range s.intake.Positions {
 		for j := range s.intake.Positions[i] {
-			lists[i] = append(lists[i], s.alone(s.intake.Positions[i][j].Observations))
+			lists[i] = append(lists[i], s.alone(s.intake.Positions[i][j].Observations, ways))
 		}
 	}
 	over := func(name string, of func(*alone) [][2]float64) evidence.LaueAgreement {
@@ -234,7 +253,7 @@ func (s *Study) laue() *LaueResult {
 		out.Subgroup = largestAllowed(s.Series.Group, rotations, refused)
 	}
 	var beyond []string
-	for _, r := range crystal.AlternativeIndexings(s.Series.Group, s.Series.Cell, latticeToleranceDeg) {
+	for _, r := range ways {
 		if r.Identity() {
 			continue
 		}
@@ -270,7 +289,7 @@ func (r *LaueResult) reference(same evidence.LaueAgreement, operators []evidence
 		var positions [][][2]float64
 		for j := 1; j < len(list); j++ {
 			var pairs [][2]float64
-			for _, h := range sortedHKL(list[j].strength) {
+			for _, h := range list[j].hkl {
 				if v, ok := list[j-1].strength[h]; ok {
 					pairs = append(pairs, [2]float64{v, list[j].strength[h]})
 				}

@@ -148,3 +148,33 @@ func TestPairingCorrelation(t *testing.T) {
 		t.Errorf("no pair: %g", a.R)
 	}
 }
+
+// The number of an orbit is that of all its members, under the group and under the ways to
+// index alike.
+func TestOrbit(t *testing.T) {
+	s := studyOf(t, declaredPlan("P 3", "P 3", simulate.Cell{A: 14, B: 14, C: 11, Gamma: 120}), nil)
+	ways := crystal.AlternativeIndexings(s.Series.Group, s.Series.Cell, latticeToleranceDeg)
+	if len(ways) != 4 {
+		t.Fatalf("%d ways", len(ways))
+	}
+	numbers := map[uint32]bool{}
+	for h := 1; h < 6; h++ {
+		for k := 1; k < h; k++ {
+			for l := 1; l < 6; l++ {
+				hkl := crystal.HKL{H: h, K: k, L: l}
+				want := s.orbit(hkl, ways)
+				numbers[want] = true
+				for _, by := range ways {
+					for _, e := range s.Series.Group.Equivalents(by.Apply(hkl)) {
+						if got := s.orbit(e, ways); got != want {
+							t.Errorf("%v, equal to %v, has the number %d and not %d", e, hkl, got, want)
+						}
+					}
+				}
+			}
+		}
+	}
+	if len(numbers) < 40 {
+		t.Errorf("%d numbers of 50 orbits", len(numbers))
+	}
+}
