@@ -29,6 +29,7 @@ func Draft(paths []string) ([]byte, error) {
 
 type drafter struct {
 	energy    float64
+	doubt     string // why a file may hold no electron data
 	group     string
 	cell      bool
 	columns   bool
@@ -106,7 +107,7 @@ func (d *drafter) list(f *cif.File, path, base, pick string, l cif.List) {
 		d.positions = append(d.positions, p)
 		return
 	}
-	p.notes = append(p.notes, fmt.Sprintf("%d rows, %d usable", r.Rows, r.Columns.Len()))
+	p.notes = append(p.notes, fmt.Sprintf("%d rows, %d usable; %s", r.Rows, r.Columns.Len(), untold))
 	for _, w := range r.Warnings {
 		p.notes = append(p.notes, w.Text)
 	}
@@ -118,7 +119,12 @@ func (d *drafter) list(f *cif.File, path, base, pick string, l cif.List) {
 		p.notes = append(p.notes, noAngles)
 	}
 	d.cell = d.cell || r.Cell != nil
-	if d.energy == 0 {
+	if text := notElectrons(r.Probe, r.WavelengthA, 0, true); text != "" {
+		p.notes = append(p.notes, text)
+		if d.doubt == "" {
+			d.doubt = text
+		}
+	} else if d.energy == 0 {
 		d.energy = r.EnergyKeV
 	}
 	if d.group == "" {
@@ -144,13 +150,16 @@ func (d *drafter) text(path, base string) {
 		}
 		p.notes = append(p.notes, "??? declare its columns in [columns]: "+why)
 	} else {
-		p.notes = append(p.notes, fmt.Sprintf("%d rows, %d usable; columns %s", r.Rows, r.Columns.Len(), strings.Join(r.Order, " ")))
+		p.notes = append(p.notes, fmt.Sprintf("%d rows, %d usable; %s; columns %s", r.Rows, r.Columns.Len(), untold, strings.Join(r.Order, " ")))
 		if r.Columns.Phi == nil {
 			p.notes = append(p.notes, noAngles)
 		}
 	}
 	d.positions = append(d.positions, p)
 }
+
+// untold stands beside a number of rows, which may be many times that of observations.
+const untold = "copies and repeats are told apart by intake"
 
 const noAngles = "no rotation angles: observations of two positions cannot be matched"
 
@@ -167,7 +176,11 @@ func (d *drafter) manifest() []byte {
 	if d.energy > 0 {
 		fmt.Fprintf(&b, "energy_keV = %.1f   # from the files\n", d.energy)
 	} else {
-		b.WriteString("# energy_keV = 300.0   # ??? the files do not say\n")
+		why := "the files do not say"
+		if d.doubt != "" {
+			why = "as far as electrons made these data: " + d.doubt
+		}
+		fmt.Fprintf(&b, "# energy_keV = 300.0   # ??? %s\n", why)
 	}
 	switch {
 	case d.group == "":
@@ -177,7 +190,7 @@ func (d *drafter) manifest() []byte {
 	}
 	b.WriteString("seed = 1   # any number; the same one gives the same results\n# thickness_scale_su = 0.1   # relative uncertainty that all thicknesses share\n")
 	if !d.cell {
-		b.WriteString("\n[cell]   # ??? the files do not say\na = 0.0\nb = 0.0\nc = 0.0\nalpha = 90.0\nbeta = 90.0\ngamma = 90.0\n")
+		b.WriteString("\n[cell]   # ??? the files do not say\na = \"???\"   # angstrom\nb = \"???\"\nc = \"???\"\nalpha = 90.0\nbeta = 90.0\ngamma = 90.0\n")
 	}
 	if d.columns {
 		b.WriteString("\n[columns]   # of column text without a header of these names\norder = [\"h\", \"k\", \"l\", \"intensity\", \"sigma\"]   # ??? in the order of the file, phi (degrees) and frame if there, skip for others\n")
@@ -188,7 +201,7 @@ func (d *drafter) manifest() []byte {
 	}
 	for i, p := range d.positions {
 		fmt.Fprintf(&b, "\n[[crystal]]\nname = \"C%d\"\n\n[[crystal.position]]\n", i+1)
-		fmt.Fprintf(&b, "name = %q\nthickness_nm = 0.0   # ??? nanometres\n# thickness_su_nm = 15.0\n# order = 1             # of measurement\n# dose_e_per_A2 = 1.2\nfiles = [%q]\n", p.name, p.file)
+		fmt.Fprintf(&b, "name = %q\nthickness_nm = \"???\"   # nanometres, without quotes\n# thickness_su_nm = 15.0\n# order = 1             # of measurement\n# dose_e_per_A2 = 1.2\nfiles = [%q]\n", p.name, p.file)
 		if p.block != "" {
 			fmt.Fprintf(&b, "block = %q\n", p.block)
 		}
