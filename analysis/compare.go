@@ -3,7 +3,6 @@ package analysis
 import (
 	"context"
 	"errors"
-	"fmt"
 	"math"
 
 	"thinward/analysis/curve"
@@ -189,7 +188,7 @@ func (s *Study) chooseAxis(x *Compared) error {
 		x.Leading, x.Axis, x.Strengths = wanted, axis, x.Pairs.Naive(axis)
 		return nil
 	}
-	return fmt.Errorf("axis %q is not known: use crystals, bracket, third, inverse-variance, thin, thick or mean", wanted)
+	return s.settings.CheckAxis()
 }
 
 // refit gives the differences the variance at the strength that the other

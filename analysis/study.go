@@ -26,7 +26,7 @@ type Settings struct {
 	// MaxShells bounds the number of shells; 0 = 20.
 	ShellPairs, MaxShells int
 	// Axis names the leading strength axis: "crystals", "bracket", "third",
-	// "inverse variance" or "" for the default of the series.
+	// "inverse-variance", "thin", "thick", "mean" or "" for the default of the series.
 	Axis string
 	// Long makes the controls take more draws.
 	Long bool
@@ -92,6 +92,9 @@ type Study struct {
 // New checks a series and makes a Study of it; set may be nil. The columns of
 // the series are not changed.
 func New(series Series, set *Settings) (*Study, error) {
+	if err := series.checkAxis(set); err != nil {
+		return nil, err
+	}
 	if err := series.check(); err != nil {
 		return nil, err
 	}
