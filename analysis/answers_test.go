@@ -256,8 +256,14 @@ func TestAnswerExchangeSaysWhatACurbTakes(t *testing.T) {
 		{"not in the model", []*ContrastResult{with(nan, nan, nan)}, ""},
 	} {
 		a := answerExchange(&Result{}, c.list)
-		if got := strings.Contains(a.Text, "curb"); got != (c.says != "") || !strings.Contains(a.Text, c.says) || got && !strings.Contains(a.Text, "gives m = 0.110") {
+		got := strings.Contains(a.Text, "curb")
+		if got != (c.says != "") || !strings.Contains(a.Text, c.says) {
 			t.Errorf("%s: %s", c.name, a.Text)
+		}
+		for _, line := range a.Detail {
+			if strings.HasSuffix(line, "L1 m = 0.030 (0.010 to 0.050); by one slope 0.110") != got {
+				t.Errorf("%s: %s", c.name, line)
+			}
 		}
 	}
 }

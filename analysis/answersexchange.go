@@ -3,7 +3,6 @@ package analysis
 import (
 	"fmt"
 	"math"
-	"strings"
 
 	"thinward/analysis/size"
 )
@@ -49,7 +48,13 @@ func answerExchange(r *Result, list []*ContrastResult) Answer {
 		a.Text += limit + "."
 	}
 	if seen.estimable > 0 {
-		a.Text += besides(list) + qualified(r, list)
+		curb := besides(list)
+		a.Text += curb + qualified(r, list)
+		for i, c := range list {
+			if m := slopeOf(c); curb != "" && !math.IsNaN(m) && !math.IsNaN(c.Exchange.M) {
+				a.Detail[i] += "; by one slope " + short(m)
+			}
+		}
 	}
 	if a.Verdict == VerdictYes && 2*misfits(list) > len(list) {
 		a.Verdict = VerdictUnsure
@@ -145,25 +150,25 @@ func besides(list []*ContrastResult) string {
 		}
 	}
 	f := asking(list, known)
-	var slopes []string
 	for _, c := range list {
 		if side(c.Curb.Q, c.Curb.Lo, c.Curb.Hi, 0, f) > 0 {
 			seen++
-		}
-		for _, m := range c.Models {
-			if m.Model == "instrument" && !math.IsNaN(m.M.Value) {
-				slopes = append(slopes, short(m.M.Value))
-			}
 		}
 	}
 	if seen == 0 {
 		return ""
 	}
-	text := fmt.Sprintf(" A curb q, a loss that grows with strength, is seen beside it in %s and is no part of this m: dynamical scattering makes both, a detector that saturates makes a curb.", crystalsOf(seen, list))
-	if len(slopes) == len(list) {
-		text += fmt.Sprintf(" One slope, which takes both together, gives m = %s.", strings.Join(slopes, ", "))
+	return fmt.Sprintf(" A curb q, a loss that grows with strength, is seen beside it in %s and is no part of this m: dynamical scattering makes both, a detector that saturates makes a curb. One slope takes both together.", crystalsOf(seen, list))
+}
+
+// slopeOf is m by the instrument, one slope; NaN where it was not fitted.
+func slopeOf(c *ContrastResult) float64 {
+	for _, m := range c.Models {
+		if m.Model == "instrument" {
+			return m.M.Value
+		}
 	}
-	return text
+	return math.NaN()
 }
 
 // qualified says what keeps m from being taken at its word: a curve of another shape

@@ -194,7 +194,10 @@ func (s *Study) planCrystal(x *Compared, p *Planning) (PlanCrystal, error) {
 			k.SE, k.Assumed = se, true
 		}
 	}
-	if k.Seen = math.NaN(); k.SE > 0 {
+	switch k.Seen = math.NaN(); {
+	case k.Assumed:
+		k.Seen = math.Inf(1)
+	case k.SE > 0:
 		k.Seen = pool.Visible(k.SE, 1-p.Level, p.Power)
 	}
 	possible, _, err := intensity.Possible(s.Series.Cell, s.Series.Group, s2max, s.Series.FriedelApart)
@@ -247,7 +250,11 @@ func (p *Planning) fill(given bool) error {
 // spread is the plan for crystals like d.
 func (p *Planning) spread(d pool.Design) *PlanWide {
 	out := &PlanWide{Tau: d.Tau}
+	alone := p.assumed() > 0 && p.assumed() == len(p.Measured) // a bracket is all that one gives
 	seen := func(k, pairs, mult float64) float64 {
+		if k == 1 && alone {
+			return math.Inf(1)
+		}
 		return pool.Visible(d.SEFor(k, pairs*d.Pairs, mult*d.Multiplicity), 1-p.Level, p.Power)
 	}
 	list := append([]float64(nil), plannedM...)
@@ -260,12 +267,17 @@ func (p *Planning) spread(d pool.Design) *PlanWide {
 		var err error
 		if need.Crystals, err = d.Crystals(m, 1-p.Level, p.Power); err != nil {
 			need.Why = err.Error()
+		} else if alone {
+			need.Crystals = max(2, need.Crystals)
 		}
 		out.Needs = append(out.Needs, need)
 		for _, k := range plannedCrystals {
 			c := PlanCell{M: m, Crystals: k}
 			c.Pairs, c.Multiplicity = needed(d, m, float64(k), 1-p.Level, p.Power)
 			c.Multiplicity = math.Max(1, c.Multiplicity)
+			if k == 1 && alone {
+				c.Pairs, c.Multiplicity = math.Inf(1), math.Inf(1)
+			}
 			out.Table = append(out.Table, c)
 		}
 	}
@@ -307,6 +319,9 @@ func (p *Planning) typical() (pool.Design, error) {
 	p.Typical = PlanCrystal{
 		Crystal: "typical", SE: d.SE, Pairs: d.Pairs, Possible: int(possible / n), Multiplicity: d.Multiplicity, NoiseShare: d.NoiseShare,
 		Seen: pool.Visible(d.SE, 1-p.Level, p.Power),
+	}
+	if p.assumed() == len(p.Measured) {
+		p.Typical.Assumed, p.Typical.Seen = true, math.Inf(1)
 	}
 	return d, nil
 }

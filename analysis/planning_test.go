@@ -134,6 +134,9 @@ func TestPlanOfOneCrystalAssumes(t *testing.T) {
 	if all := strings.Join(p.Cautions, " "); !strings.HasPrefix(all, "An assumption: in 1 of 1 crystal ") || !strings.Contains(all, "brackets tell no spread between crystals: the first table takes none") || p.Wide == nil {
 		t.Errorf("%s", all)
 	}
+	if !math.IsInf(k.Seen, 1) || !math.IsInf(p.Seen, 1) || !math.IsInf(p.Curve[0].Seen, 1) || math.IsInf(p.Curve[1].Seen, 1) || p.Needs[len(p.Needs)-1].Crystals < 2 || !math.IsInf(p.Table[0].Pairs, 1) {
+		t.Errorf("one crystal is said to see m: %+v", p)
+	}
 	if p, err = s.Plan(context.Background(), &PlanSettings{Spread: 0.02}); err != nil || p.Wide != nil || p.Tau != 0.02 {
 		t.Errorf("with a spread: %+v, %v", p, err)
 	}

@@ -63,7 +63,7 @@ func writePlanning(w io.Writer, p *analysis.Planning) error {
 	t := tabwriter.NewWriter(&b, 0, 0, 2, ' ', tabwriter.AlignRight)
 	fmt.Fprintln(t, "measured\tSE of m\tpairs\tof possible\tmultiplicity\tshare of counting noise\tm seen alone\t")
 	for _, k := range append(append([]analysis.PlanCrystal(nil), p.Measured...), p.Typical) {
-		fmt.Fprintf(t, "%s\t%s\t%.0f\t%d\t%.1f\t%s\t%s\t\n", k.Crystal, dash(k.SE, 4), k.Pairs, k.Possible, k.Multiplicity, dash(100*k.NoiseShare, 0)+" %", dash(k.Seen, 3))
+		fmt.Fprintf(t, "%s\t%s\t%.0f\t%d\t%.1f\t%s\t%s\t\n", k.Crystal, dash(k.SE, 4), k.Pairs, k.Possible, k.Multiplicity, dash(100*k.NoiseShare, 0)+" %", visible(k.Seen, 3))
 	}
 	if err := t.Flush(); err != nil {
 		return err
@@ -82,9 +82,14 @@ func writePlanning(w io.Writer, p *analysis.Planning) error {
 		b.WriteString(c + "\n")
 	}
 	needs, crystals := needText(p.M, p.Needs), plural(len(p.Measured), "crystal")
-	if p.Wide == nil {
+	switch {
+	case math.IsInf(p.Seen, 1) && p.Wide == nil:
+		fmt.Fprintf(&b, "With one crystal m is known as a bracket only; for m = %g %s.\n", p.M, needs)
+	case math.IsInf(p.Seen, 1):
+		fmt.Fprintf(&b, "With one crystal m is known as a bracket only; for m = %g %s (with more spread %s).\n", p.M, needs, needText(p.M, p.Wide.Needs))
+	case p.Wide == nil:
 		fmt.Fprintf(&b, "With %s as measured here an exchange of %.3f would be seen; for m = %g %s.\n", crystals, p.Seen, p.M, needs)
-	} else {
+	default:
 		fmt.Fprintf(&b, "With %s as measured here an exchange of %.3f would be seen (%.3f with more spread); for m = %g %s (with more spread %s).\n",
 			crystals, p.Seen, p.Wide.Seen, p.M, needs, needText(p.M, p.Wide.Needs))
 	}
@@ -128,10 +133,18 @@ func writeReach(b *strings.Builder, p *analysis.Planning, w *analysis.PlanWide) 
 	fmt.Fprintln(t, "crystals\tas measured\ttwice the multiplicity\ttwice the pairs\t")
 	for _, c := range w.Curve {
 		if k := c.Crystals; k <= 6 || k%5 == 0 {
-			fmt.Fprintf(t, "%d\t%.4f\t%.4f\t%.4f\t\n", k, c.Seen, c.TwiceMultiplicity, c.TwicePairs)
+			fmt.Fprintf(t, "%d\t%s\t%s\t%s\t\n", k, visible(c.Seen, 4), visible(c.TwiceMultiplicity, 4), visible(c.TwicePairs, 4))
 		}
 	}
 	return t.Flush()
+}
+
+// visible writes the smallest m seen, a dash where none is.
+func visible(v float64, decimals int) string {
+	if math.IsInf(v, 1) {
+		return "-"
+	}
+	return dash(v, decimals)
 }
 
 func needText(m float64, needs []analysis.PlanNeed) string {
