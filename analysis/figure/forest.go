@@ -53,13 +53,15 @@ func (f *Forest) Draw() (*Figure, error) {
 	height, group, places := 14.0, "", decimals(rows)
 	for i, r := range rows {
 		labels[i] = interval(&r, places)
-		names, values = max(names, width(textStyle, r.Name)), max(values, width(textStyle, labels[i]))
+		st := textStyle
+		st.bold = r.Lead || r.Summary
+		names, values = max(names, width(st, r.Name)), max(values, width(st, labels[i]))
 		if r.Group != group {
 			names, height, group = max(names, width(nameStyle, r.Group)), height+groupHeight, r.Group
 		}
 		height += rowHeight
 	}
-	names, values = min(names+24, 0.42*w), min(values+14, 0.36*w)
+	names, values = min(names+24, 0.42*w), min(values+18, 0.36*w)
 	s := newSheet(w, height+footRoom+4)
 	fr := &frame{x0: names, y0: 6, x1: w - values, y1: height, x: x, y: newScaler(Axis{}, nil, nil)}
 	f.ground(s, fr)
