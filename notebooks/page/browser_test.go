@@ -189,7 +189,7 @@ func TestReportInABrowser(t *testing.T) {
 		}
 	})
 	t.Run("what is fine opens for print, numbers and code stay folded", func(t *testing.T) {
-		const folded = `[document.querySelectorAll("details:not([open]):not(.numbers):not(.cell)").length, document.querySelectorAll(".numbers[open], .cell[open]").length, document.querySelectorAll(".numbers:not([open])").length].join()`
+		const folded = `[document.querySelectorAll("details:not([open]):not(.numbers):not(.cell):not(.fine)").length, document.querySelectorAll(".numbers[open], .cell[open], .fine[open]").length, document.querySelectorAll(".numbers:not([open])").length].join()`
 		before := ask[string](t, ctx, folded)
 		paper := ask[string](t, ctx, `dispatchEvent(new Event("beforeprint")), `+folded)
 		after := ask[string](t, ctx, `dispatchEvent(new Event("afterprint")), `+folded)

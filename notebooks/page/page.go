@@ -42,8 +42,8 @@ var styleSource string
 //go:embed script.js
 var script string
 
-// style is the style sheet with the rules that let radio buttons choose.
-var style = withPicks(styleSource)
+// style is the style sheet on one line, with the rules that let radio buttons choose.
+var style = withPicks(strings.ReplaceAll(styleSource, "}\n", "}"))
 
 // picks is the number of alternatives a figure can offer.
 const picks = 12
@@ -166,7 +166,7 @@ func (d *document) top(b *strings.Builder, r *analysis.Result, o *Options) {
 	if r != nil {
 		numbers = " and, with all others, in result.json"
 	}
-	b.WriteString(`<p class="paper">On paper the numbers under each figure and the code of the cells are left out; they are in the page` + numbers + `. What is unfolded there before printing is printed.</p>`)
+	b.WriteString(`<p class="paper">On paper the numbers under each figure, the checks that are fine and the code of the cells are left out; they are in the page` + numbers + `. What is unfolded there before printing is printed.</p>`)
 	b.WriteString(`</div><div class="tools"><button type="button" id="theme">Light or dark</button><button type="button" id="print">Print</button><button type="button" id="link">Copy link</button></div></div><div class="wedge"></div></header>`)
 }
 

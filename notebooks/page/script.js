@@ -65,9 +65,10 @@
     copy(location.href.split("#")[0] + (now ? now.getAttribute("href") : ""), "Link copied");
   });
 
-  // On paper details are open, save numbers of figures and code, which stay as they are.
+  // On paper details are open, save numbers of figures, code and the checks that are fine,
+  // which stay as they are.
   var opened = [];
-  window.addEventListener("beforeprint", function () { opened = all("details:not([open]):not(.numbers):not(.cell)"); opened.forEach(function (d) { d.open = true; }); });
+  window.addEventListener("beforeprint", function () { opened = all("details:not([open]):not(.numbers):not(.cell):not(.fine)"); opened.forEach(function (d) { d.open = true; }); });
   window.addEventListener("afterprint", function () { opened.forEach(function (d) { d.open = false; }); });
 
   if (window.IntersectionObserver) {

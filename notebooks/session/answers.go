@@ -3,19 +3,25 @@ package session
 import (
 	"fmt"
 	"html"
+	"math"
 	"strings"
 
 	"thinward/analysis"
 )
 
 // Answer runs what has not run and shows one card a question.
-func (s *Session) Answer() *View {
-	r := s.Result()
+func (s *Session) Answer() *View { return answerCards(s.Result()) }
+
+func answerCards(r *analysis.Result) *View {
 	var b, p strings.Builder
 	b.WriteString(`<div class="cards">`)
 	for _, a := range r.Answers {
-		fmt.Fprintf(&b, `<article class="card verdict-%s"><h3>%s</h3><p class="verdict">%s%s</p><p>%s</p>%s<p class="more"><a href="#%s">Where this comes from</a></p></article>`,
-			strings.ReplaceAll(a.Verdict, " ", "-"), html.EscapeString(a.Question), mark(a.Verdict), html.EscapeString(a.Verdict), html.EscapeString(prose(a.Text)), bullets(a.Detail), a.Section)
+		also := ""
+		if n := r.WarningCount(); n > 0 && a.Section == "cautions" {
+			also = fmt.Sprintf(` \u00b7 <a href="#%s">%s</a>`, warningsID, plural(n, "warning"))
+		}
+		fmt.Fprintf(&b, `<article class="card verdict-%s"><h3>%s</h3><p class="verdict">%s%s</p><p>%s</p>%s<p class="more"><a href="#%s">Where this comes from</a>%s</p></article>`,
+			strings.ReplaceAll(a.Verdict, " ", "-"), html.EscapeString(a.Question), mark(a.Verdict), html.EscapeString(a.Verdict), html.EscapeString(prose(a.Text)), bullets(a.Detail), a.Section, also)
 		fmt.Fprintf(&p, "%s [%s]\n  %s\n", a.Question, a.Verdict, prose(a.Text))
 		for _, d := range a.Detail {
 			fmt.Fprintf(&p, "  - %s\n", prose(d))
@@ -47,7 +53,7 @@ func cautions(r *analysis.Result) *View {
 			if place != "" {
 				where += ", farthest in " + place
 			}
-			row := []string{e.Check, where, auto(e.Value), e.Unit, e.Verdict, why}
+			row := []string{e.Check, where, figureOf(&e), e.Unit, e.Verdict, why}
 			all.add(row...)
 			if verdict == analysis.VerdictFine {
 				fine.add(row...)
@@ -66,10 +72,21 @@ func cautions(r *analysis.Result) *View {
 		if len(fine.rows) == 1 {
 			checks = "check that is"
 		}
-		v.HTML = care.html() + fmt.Sprintf("<details><summary>%d %s fine</summary>%s</details>", len(fine.rows), checks, fine.html())
+		v.HTML = care.html() + fmt.Sprintf("<details class=\"fine\"><summary>%d %s fine</summary>%s</details>", len(fine.rows), checks, fine.html())
 	}
 	return v
 }
+
+// figureOf writes the figure of an entry. A tipping ratio without end was looked for up to 3.
+func figureOf(e *analysis.LedgerEntry) string {
+	if math.IsInf(e.Value, 1) && e.Check == "tipping ratio" {
+		return "> 3"
+	}
+	return auto(e.Value)
+}
+
+// warningsID is the place of the warnings on the page.
+const warningsID = "warnings"
 
 // places lists the names that an entry of the ledger can be about.
 func places(r *analysis.Result) []string {
@@ -98,7 +115,9 @@ func (s *Session) Warnings() *View {
 	if len(g.rows) == 0 {
 		g.add("everywhere", "nothing to warn of")
 	}
-	return g.view("Warnings")
+	v := g.view("Warnings")
+	v.HTML = `<div id="` + warningsID + `">` + v.HTML + "</div>"
+	return v
 }
 
 func bullets(list []string) string {

@@ -18,7 +18,7 @@ func (s *Session) DoubleScattering() *View {
 
 func doubleFigure(list []analysis.Predicted) *View {
 	fv := &figureView{title: "Predictor of double scattering", pick: "Crystal", empty: "No position has frame numbers and equivalents.",
-		caption: "An observation against its equivalents, by how much reflections g and h \u2212 g that add up to it stood on its frame, what the whole frame holds taken off. Scattering twice makes the line rise, the more the thicker; so may what frames leave of their scale. In a real pair it was steeper in the thin crystal, the wrong order, so that it is drawn without a verdict."}
+		caption: "An observation against its equivalents, by how much reflections g and h \u2212 g that add up to it stood on its frame, what the whole frame holds taken off. Scattering twice makes the line rise, the more the thicker; scale errors of frames can look the same, so that it is drawn without a verdict."}
 	g := newGrid("Predictor of double scattering", "position", "observations", "z within equivalents", "gain in the highest bin", "s.e.", "remark").words(5)
 	var order []string
 	panels := map[string]*figure.Panels{}

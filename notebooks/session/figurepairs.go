@@ -92,7 +92,7 @@ func byChange(list []*analysis.PairRow) []int {
 
 func changedTable(c *analysis.ContrastResult, list []*analysis.PairRow, order []int) *grid {
 	thin, thick := (&pairing{list: []*analysis.ContrastResult{c}}).sides()
-	g := newGrid("The most changed reflections of "+contrastName(c), "h k l", "d (\u00c5)", "strength", "J "+thin, "J "+thick, thin+" \u2212 "+thick+", local means", "z")
+	g := newGrid("The most changed reflections of "+contrastName(c)+"; J is the mean intensity on the common scale of the crystal", "h k l", "d (\u00c5)", "strength", "J "+thin, "J "+thick, thin+" \u2212 "+thick+", local means", "z")
 	for _, k := range order[:min(len(order), changed)] {
 		p := list[k]
 		g.add(fmt.Sprint(p.HKL.H, " ", p.HKL.K, " ", p.HKL.L), number(p.D, 2), number(p.Strength, 2), auto(p.JThin)+" \u00b1 "+auto(p.SUThin), auto(p.JThick)+" \u00b1 "+auto(p.SUThick), number(p.Eps, 3), number(p.Z, 1))

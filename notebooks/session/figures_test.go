@@ -70,7 +70,7 @@ func madePairs(n int) []analysis.PairRow {
 // views are all figures of a result.
 func views(r *analysis.Result, pairs []analysis.PairRow) map[string]*View {
 	return map[string]*View{
-		"strength": byStrength(r), "naive": naive(r), "resolution": byResolution(r), "pairs": pairsView(r, pairs), "scale": scaleCurves(r), "sizes": sizesFigure(r),
+		"strength": byStrength(r), "naive": naive(r), "resolution": byResolution(r), "pairs": pairsView(r, pairs), "scale": scaleCurves(r), "sizes": sizesFigure(r, "by default"),
 		"thickness": thicknessFigure(r), "specification": specificationFigure(r), "controls": controlsFigure(r), "forbidden": forbiddenFigure(r), "budget": budgetFigure(r), "curb": curbFigure(r), "distributions": distributionsFigure(r),
 	}
 }

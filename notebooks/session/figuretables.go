@@ -67,11 +67,22 @@ func crystalsOf(r *analysis.Result) []string {
 }
 
 // SizesFigure shows the exchange of every contrast with its interval.
-func (s *Session) SizesFigure() *View { return sizesFigure(s.upTo(stepCrystals)) }
+func (s *Session) SizesFigure() *View {
+	r := s.upTo(stepCrystals)
+	return sizesFigure(r, chosen(s.study.Series.Primary))
+}
 
-func sizesFigure(r *analysis.Result) *View {
+// chosen says how the primary contrasts came to be.
+func chosen(p analysis.Primary) string {
+	if p.Thin == "" && p.Thick == "" {
+		return "by default, thinnest against thickest"
+	}
+	return "named in the manifest"
+}
+
+func sizesFigure(r *analysis.Result, chosen string) *View {
 	fv := &figureView{title: "Exchange of every contrast", empty: "No exchange was estimated.",
-		caption: "Each interval holds m, the share of intensity moved from strong to weak reflections; intervals that clear zero on the right show it. Squares are the primary contrasts, fixed before looking; diamonds are all crystals together."}
+		caption: "Each interval holds m, the share of intensity moved from strong to weak reflections; intervals that clear zero on the right show it. Squares are the primary contrasts (" + chosen + "); diamonds are all crystals together."}
 	g := newGrid("Exchange of every contrast", "contrast", "m", "interval")
 	f := &figure.Forest{Title: "Exchange m of every contrast", Desc: "Estimate and interval of m by crystal and contrast. ", X: figure.Axis{Label: "exchange m", Zero: true}}
 	for i := range r.Contrasts {
@@ -205,8 +216,9 @@ func controlsFigure(r *analysis.Result) *View {
 	g := newGrid("Controls", "control", "crystal", "expected m", "found m").words(1)
 	f := &figure.Forest{Title: "Controls: m found and expected", Desc: "Estimate and interval of m in each control, with the expected value.", X: figure.Axis{Label: "exchange m", Zero: true}}
 	for _, c := range byControl(r.Controls) {
-		f.Rows = append(f.Rows, figure.Row{Group: c.Control, Name: allCrystals(c.Crystal), Value: c.M.Value, Lo: c.M.Lo, Hi: c.M.Hi, Target: c.Expected, HasTarget: !math.IsNaN(c.Expected), Note: c.Why})
-		g.add(c.Control, allCrystals(c.Crystal), number(c.Expected, 3), withInterval(c.M, 3))
+		m := bounded(c.M)
+		f.Rows = append(f.Rows, figure.Row{Group: c.Control, Name: allCrystals(c.Crystal), Value: m.Value, Lo: m.Lo, Hi: m.Hi, Target: c.Expected, HasTarget: !math.IsNaN(c.Expected), Note: c.Why})
+		g.add(c.Control, allCrystals(c.Crystal), number(c.Expected, 3), withInterval(m, 3))
 	}
 	fv.summary = g
 	if len(f.Rows) > 0 {
@@ -288,10 +300,13 @@ func (s *Session) BudgetFigure() *View { return budgetFigure(s.upTo(stepExpectat
 
 func budgetFigure(r *analysis.Result) *View {
 	fv := &figureView{title: "Scattering budget", empty: "No mean free paths are known: neither given nor to be had from a composition.",
-		caption: "How many electrons were scattered once, several times or inelastically at each thickness, by mean free paths that are uncertain by 20 to 40 %: an aid to interpretation, not a prediction of m."}
+		caption: "How many electrons were scattered once, several times or inelastically at each thickness, by mean free paths: an aid to interpretation, not a prediction of m."}
 	e := r.Expectation
 	if e == nil || len(e.Budget) == 0 {
 		return fv.view()
+	}
+	if e.Uncertainty > 0 {
+		fv.caption += " Those that were estimated are uncertain by " + percent(e.Uncertainty, 0) + "; the ranges in the table are what that leaves open."
 	}
 	f := &figure.Shares{Title: "Fate of the electrons against thickness", Desc: "Shares that are unscattered, scattered once elastically, several times elastically, and inelastically.",
 		X: figure.Axis{Label: "thickness (nm)"}, Y: figure.Axis{Label: "share of the electrons"}}

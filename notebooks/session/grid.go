@@ -54,7 +54,7 @@ func (g *grid) add(cells ...string) {
 const (
 	longWords    = 40
 	denseColumns = 10
-	tallRows     = 16
+	tallRows     = 30
 	shortHeading = 26
 )
 

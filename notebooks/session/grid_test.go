@@ -51,7 +51,7 @@ func ledger() *analysis.Result {
 func TestCautionsFoldWhatIsFine(t *testing.T) {
 	r := ledger()
 	v := cautions(r)
-	open, folded, ok := strings.Cut(v.HTML, "<details><summary>1 check that is fine</summary>")
+	open, folded, ok := strings.Cut(v.HTML, `<details class="fine"><summary>1 check that is fine</summary>`)
 	if !ok || !strings.Contains(open, "deviations") || !strings.Contains(open, "replicate") || strings.Contains(open, "rows for") || !strings.Contains(folded, ">rows<") {
 		t.Errorf("cautions %s", v.HTML)
 	}

@@ -56,6 +56,14 @@ func between(lo, hi float64, decimals int) string {
 	return number(lo, decimals) + " to " + number(hi, decimals)
 }
 
+// bounded takes both ends off an interval that is open on both sides: it bounds nothing.
+func bounded(i analysis.Interval) analysis.Interval {
+	if math.IsInf(i.Lo, -1) && math.IsInf(i.Hi, 1) {
+		i.Lo, i.Hi = math.NaN(), math.NaN()
+	}
+	return i
+}
+
 // withInterval writes "0.081 (0.052 to 0.110)", or why there is none.
 func withInterval(i analysis.Interval, decimals int) string {
 	if math.IsNaN(i.Value) {
@@ -86,6 +94,14 @@ func percent(v float64, decimals int) string {
 }
 
 func count(n int) string { return strconv.Itoa(n) }
+
+// plural writes a number of things.
+func plural(n int, thing string) string {
+	if n == 1 {
+		return "1 " + thing
+	}
+	return count(n) + " " + thing + "s"
+}
 
 // contrastName gives "L1: thin - thick".
 func contrastName(c *analysis.ContrastResult) string {

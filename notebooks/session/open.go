@@ -54,6 +54,10 @@ func Open(path string) *Session { return OpenWith(path, Options{}) }
 
 // OpenWith is Open with options.
 func OpenWith(path string, o Options) *Session {
+	set := &analysis.Settings{Axis: o.Axis, Replicates: o.Replicates, Long: o.Long}
+	if err := set.CheckAxis(); err != nil {
+		panic(&Error{Step: "reading", Err: err, Remedy: "Correct axis in the cell of parameters, or give --set axis=NAME."})
+	}
 	path = locate(path)
 	s := &Session{Path: path, sofar: map[string]*analysis.Result{}, out: os.Getenv(OutEnv), step: "reading"}
 	Report(Progress{Step: "reading", Text: filepath.Base(path)})
@@ -67,7 +71,7 @@ func OpenWith(path string, o Options) *Session {
 	if o.Seed != 0 {
 		series.Seed = uint64(o.Seed)
 	}
-	set := &analysis.Settings{Axis: o.Axis, Replicates: o.Replicates, Long: o.Long, Progress: s.progress}
+	set.Progress = s.progress
 	if s.study, err = analysis.New(*series, set); err != nil {
 		panic(&Error{Step: "reading", Err: err, Remedy: "Correct " + path + "."})
 	}

@@ -53,7 +53,7 @@ func angles(lo, hi float64) string {
 // Correlations shows whether positions differ at all.
 func (s *Session) Correlations() *View {
 	r := s.upTo(stepDifferences)
-	g := newGrid("Do positions differ at all: true correlation and moment ratio", "contrast", "thickness (nm)", "pairs", "paired", "r", "interval", "moment ratio m", "interval", "remark").words(3, 8)
+	g := newGrid("Do positions differ at all: true correlation and moment ratio", "contrast", "thickness (nm)", "pairs", "paired", "r", "interval", "moment ratio", "interval", "remark").words(3, 8)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
 		paired := "merged"
@@ -63,7 +63,9 @@ func (s *Session) Correlations() *View {
 		g.add(contrastName(c), number(c.ThicknessNM[0], 0)+", "+number(c.ThicknessNM[1], 0), count(c.Pairs), paired,
 			number(c.Correlation.R, 3), between(c.Correlation.Lo, c.Correlation.Hi, 3), number(c.MomentRatio.M, 3), between(c.MomentRatio.Lo, c.MomentRatio.Hi, 3), c.Correlation.Why)
 	}
-	return g.view("Correlation")
+	v := g.view("Correlation")
+	v.note("The moment ratio is 1 \u2212 \u221a(variance thick/thin) of the strengths: 0 when nothing is compressed; curb and deviations move it too, so that it need not equal m.")
+	return v
 }
 
 // Sizes shows exchange, curb and offset of every contrast.
@@ -93,7 +95,7 @@ func (s *Session) Models() *View {
 		}
 		for _, v := range c.Giants {
 			if !math.IsInf(v.Above, 1) {
-				g.add(contrastName(c), fmt.Sprintf("instrument, without %d above %g", v.N, v.Above), withInterval(v.M, 3), "\u2013", "\u2013", "\u2013")
+				g.add(contrastName(c), fmt.Sprintf("instrument, without the %d reflections above %g local means", v.N, v.Above), withInterval(v.M, 3), "\u2013", "\u2013", "\u2013")
 			}
 		}
 	}
@@ -135,10 +137,11 @@ func (s *Session) Classes() *View {
 // Brackets shows m from halves of either position, by the leading model and by one slope.
 func (s *Session) Brackets() *View {
 	r := s.upTo(stepDifferences)
-	g := newGrid("Bracket of m from halves of the same positions", "contrast", "with curb: half of the thick position", "with curb: half of the thin", "one slope: half of the thick (its own deviations lower it)", "one slope: half of the thin (its own raise it)", "bracket: hull of the four", "moment ratio", "remark").words(7)
+	g := newGrid("Bracket of m: strength from half of a position, whose own deviations lower m when it is the thick one and raise it when it is the thin one", "contrast", "strength from half of", "m with curb", "m by one slope", "bracket: hull of the four", "moment ratio", "remark").words(1, 6)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
-		g.add(contrastName(c), withInterval(c.Bracket.Thick, 3), withInterval(c.Bracket.Thin, 3), withInterval(c.Bracket.ThickSlope, 3), withInterval(c.Bracket.ThinSlope, 3), between(c.Bracket.Lo, c.Bracket.Hi, 3), number(c.MomentRatio.M, 3), c.Bracket.Why)
+		g.add(contrastName(c), "thick", withInterval(c.Bracket.Thick, 3), withInterval(c.Bracket.ThickSlope, 3), between(c.Bracket.Lo, c.Bracket.Hi, 3), number(c.MomentRatio.M, 3), c.Bracket.Why)
+		g.add(contrastName(c), "thin", withInterval(c.Bracket.Thin, 3), withInterval(c.Bracket.ThinSlope, 3), "", "", "")
 	}
 	return g.view("Bracket")
 }
@@ -232,12 +235,16 @@ func (s *Session) Specification() *View {
 func (s *Session) Controls() *View { return controls(s.upTo(stepControls)) }
 
 func controls(r *analysis.Result) *View {
-	g := newGrid("Controls: the same pipeline on data where the answer is known", "control", "crystal", "expected m", "found m", "p", "verdict", "what was done").words(1, 5, 6)
+	g := newGrid("Controls: the same pipeline on data where the answer is known", "control", "crystal", "expected m", "found m", "p of the curve", "verdict", "what was done").words(1, 5, 6)
 	g.verdict = 5
 	reach := newGrid("What each control can and cannot see", "control", "can see", "cannot see").words(1, 2)
 	said := map[string]bool{}
 	for _, c := range byControl(r.Controls) {
-		g.add(c.Control, allCrystals(c.Crystal), number(c.Expected, 3), withInterval(c.M, 3), pvalue(c.P), c.Verdict, c.Why)
+		p := c.P
+		if c.Crystal == "" {
+			p = math.NaN() // of another test, which the words name
+		}
+		g.add(c.Control, allCrystals(c.Crystal), number(c.Expected, 3), withInterval(bounded(c.M), 3), pvalue(p), c.Verdict, c.Why)
 		if key := c.Control + c.Can + c.Cannot; !said[key] {
 			said[key] = true
 			reach.add(c.Control, c.Can, c.Cannot)
@@ -257,7 +264,7 @@ func (s *Session) Crystals() *View {
 		g.add("tau\u00b2, I\u00b2", auto(c.Tau2)+", "+percent(c.I2, 0), c.Why)
 		g.add("crystals of one sign", fmt.Sprintf("%d of %d", c.SameSign, c.N), fmt.Sprintf("p = %s, at the smallest %s", pvalue(c.SignP), pvalue(c.SmallestP)))
 		if !math.IsNaN(c.PageL) {
-			g.add("Page's trend over positions", number(c.PageL, 1), fmt.Sprintf("p = %s, at the smallest %s", pvalue(c.PageP), pvalue(c.PageBest)))
+			g.add("Page's trend over positions", number(c.PageL, 1), fmt.Sprintf("p = %s, at the smallest %s; Page compares positions within crystals and takes their order as exchangeable", pvalue(c.PageP), pvalue(c.PageBest)))
 		}
 		g.add("mean correlation with the other crystals", number(c.MeanAgree, 3), "")
 		for _, l := range c.LeaveOut {
