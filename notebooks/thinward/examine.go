@@ -54,6 +54,9 @@ Values that --set changes:
 			if _, ok := values["series"]; ok {
 				return usageError{errors.New("the series is the argument of examine, not a value to set")}
 			}
+			if err := checkSet(values); err != nil {
+				return err
+			}
 			return a.report(c.Context(), args[0], out, values, timeout)
 		},
 	}
@@ -99,6 +102,7 @@ func (a *app) report(ctx context.Context, series, out string, set map[string]str
 			positions += len(file.Crystal[i].Position)
 		}
 		fmt.Fprintf(a.err, "thinward examine: %s   %s, %s\n", file.Title, plural(len(file.Crystal), "crystal"), plural(positions, "position"))
+		fmt.Fprint(a.err, thinnestFirst(file))
 	}
 	m := a.meter()
 	binary, err := a.ensure(ctx, m)
@@ -258,20 +262,41 @@ func failureOf(err error, step string) *page.Failure {
 	return f
 }
 
-// oneLine is the last line a run prints: the answer and the number of cautions.
+// oneLine is the last line a run prints: the answer, and how much speaks against it.
 func oneLine(r *analysis.Result) string {
-	cautions := 0
+	against := tally(r) + "."
+	for _, a := range r.Answers {
+		if a.Section == "sizes" {
+			return fmt.Sprintf("%s %s %s", a.Question, a.Text, against)
+		}
+	}
+	return against
+}
+
+// tally counts the failing checks of the ledger and controls, where there are any, the
+// cautions, and the warnings.
+func tally(r *analysis.Result) string {
+	fails, cautions := 0, 0
 	for _, e := range r.Ledger {
-		if e.Verdict == analysis.VerdictCaution || e.Verdict == analysis.VerdictFails {
+		switch e.Verdict {
+		case analysis.VerdictFails:
+			fails++
+		case analysis.VerdictCaution:
 			cautions++
 		}
 	}
-	for _, a := range r.Answers {
-		if a.Section == "sizes" {
-			return fmt.Sprintf("%s %s %s.", a.Question, a.Text, plural(cautions, "caution"))
-		}
+	var parts []string
+	if fails > 0 {
+		parts = append(parts, plural(fails, "failing check"))
 	}
-	return plural(cautions, "caution") + "."
+	if n := len(r.FailingControls()); n > 0 {
+		parts = append(parts, plural(n, "failing control"))
+	}
+	parts = append(parts, plural(cautions, "caution"))
+	if n := r.WarningCount(); n > 0 {
+		parts = append(parts, plural(n, "warning"))
+	}
+	return strings.Join(parts, ", ")
 }
 
 // plainText replaces what a terminal without UTF-8 cannot show.
