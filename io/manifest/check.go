@@ -99,12 +99,47 @@ func (f *File) check(name string, data []byte) error {
 	if err := f.checkFilesOnce(c); err != nil {
 		return err
 	}
+	if err := f.checkContrast(c); err != nil {
+		return err
+	}
 	for i := range f.Between {
 		for _, s := range []string{f.Between[i].Thin, f.Between[i].Thick} {
 			if strings.Count(s, "/") != 1 {
 				return c.fail(place{"between", -1, -1}, "thin", fmt.Sprintf("%q is not CRYSTAL/POSITION", s), `write for instance thin = "L1/thin"`)
 			}
 		}
+	}
+	return nil
+}
+
+// checkContrast refuses a crystal of several positions of one thickness, and crystals of
+// which none has two positions when no contrast between them is asked for: nothing can
+// be compared.
+func (f *File) checkContrast(c *checker) error {
+	several := false
+	for i := range f.Crystal {
+		k := &f.Crystal[i]
+		first, second, differ := -1, -1, false
+		for j := range k.Position {
+			switch {
+			case k.Position[j].ReplicateOf != "":
+			case first < 0:
+				first = j
+			default:
+				second = j
+				differ = differ || k.Position[j].ThicknessNM != k.Position[first].ThicknessNM
+			}
+		}
+		if second >= 0 && !differ {
+			return c.fail(place{"crystal.position", i, second}, "thickness_nm",
+				fmt.Sprintf("no contrast: all positions of crystal %s are given one thickness, %g nm", k.Name, k.Position[first].ThicknessNM),
+				fmt.Sprintf("correct thickness_nm, or write replicate_of = %q for a second place of equal thickness", k.Position[first].Name))
+		}
+		several = several || second >= 0
+	}
+	if !several && len(f.Between) == 0 {
+		return c.fail(place{"crystal", 0, -1}, "position", "no contrast: no crystal has two positions of different thickness",
+			"put the positions of one crystal under one [[crystal]]; a contrast between two crystals must be asked for with [[between]]")
 	}
 	return nil
 }

@@ -84,3 +84,15 @@ func TestOpenWithoutASeries(t *testing.T) {
 	Open("none.toml")
 	t.Error("a manifest that is not there was opened")
 }
+
+// An axis that is not known is refused before the series is read.
+func TestOpenWithAnUnknownAxis(t *testing.T) {
+	defer func() {
+		e, ok := recover().(*Error)
+		if !ok || e.Step != "reading" || !strings.Contains(e.Error(), `axis "foo" is not known: use crystals`) || !strings.Contains(e.Remedy, "--set axis=NAME") {
+			t.Errorf("%v", e)
+		}
+	}()
+	OpenWith("none.toml", Options{Axis: "foo"})
+	t.Error("an axis that is not known was taken")
+}

@@ -18,11 +18,11 @@ func (a *app) intake() *cobra.Command {
 	c := &cobra.Command{
 		Use:   "intake SERIES.toml",
 		Short: "What came in, without a report: rows against observations, truncation, indexing, overlap",
-		Long: `Reads a series and says what it holds, before any scaling: for each position rows
-and observations, completeness to its own and to the common limit, angles, negatives
-and sigmas against what noise would give, the agreement of its cell with that of the
-series; what positions have in common; lattice centring, angles, indexing; and what
-was set aside.
+		Long: `Reads a series and says what it holds, before any scaling: the positions of
+each crystal from thin to thick; for each position rows and observations, completeness
+to its own and to the common limit, angles, negatives and sigmas against what noise
+would give, the agreement of its cell with that of the series; what positions have in
+common; lattice centring, angles, indexing; and what was set aside.
 
 With --json one object with the keys
   positions   one entry a position: counts, limits, cell, sigmas
@@ -38,6 +38,10 @@ Not-a-number is null with a why beside it.`,
 		Example: "  thinward intake fixtures/tarn/series.toml",
 		Args:    cobra.ExactArgs(1),
 		RunE: func(c *cobra.Command, args []string) error {
+			file, err := manifest.Read(args[0])
+			if err != nil {
+				return err
+			}
 			study, err := manifest.Load(args[0])
 			if err != nil {
 				return err
@@ -48,6 +52,9 @@ Not-a-number is null with a why beside it.`,
 			}
 			if a.json {
 				return result.EncodeAny(a.out, d)
+			}
+			if _, err := fmt.Fprintln(a.out, thinnestFirst(file)); err != nil {
+				return err
 			}
 			return printIntake(a.out, d)
 		},
