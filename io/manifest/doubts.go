@@ -86,7 +86,7 @@ func (f *File) mostNM(energyKeV float64) (nm float64, from string) {
 	if f.MeanFreePath != nil {
 		return -math.Log(leastUnscattered) * f.MeanFreePath.InelasticNM, "by the inelastic mean free path given"
 	}
-	at := fmt.Sprintf("%g keV", energyKeV)
+	at := fmt.Sprintf("%.4g keV", energyKeV)
 	if energyKeV == 0 {
 		energyKeV, at = usualKeV, fmt.Sprintf("%g keV, as no energy is given", usualKeV)
 	}
@@ -131,7 +131,7 @@ func notElectrons(probe string, wavelengthA, energyKeV float64, given bool) stri
 		return fmt.Sprintf("wavelength %g Å is not that of electrons of 40 keV or more; are these X-ray data?", wavelengthA)
 	case energyKeV > 0 && !given:
 		if l := electron.Wavelength(energyKeV); math.Abs(wavelengthA/l-1) > energyTolerance {
-			return fmt.Sprintf("wavelength %g Å is not that of electrons of %g keV, %.4f Å: correct energy_keV or the file", wavelengthA, energyKeV, l)
+			return fmt.Sprintf("wavelength %g Å is not that of electrons of %.4g keV, %.4f Å: correct energy_keV or the file", wavelengthA, energyKeV, l)
 		}
 	}
 	return ""
