@@ -79,7 +79,7 @@ func (s *Study) nullResult(name string, null *evidence.Replicated, alarm float64
 	if !math.IsNaN(null.CurveRejects) {
 		x.Why += fmt.Sprintf(", the test of the curve rejects in %s", percent(null.CurveRejects))
 	}
-	x.Why += fmt.Sprintf(" (5 %% nominal; above %s fails, at the 5 %% error rate that all controls share)", percent(null.Allowed(alarm)))
+	x.Why += fmt.Sprintf(" (5 %% nominal, above %s fails)", percent(null.Allowed(alarm)))
 	x.judge(null.Clean(alarm))
 	return x
 }

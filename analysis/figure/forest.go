@@ -61,7 +61,7 @@ func (f *Forest) Draw() (*Figure, error) {
 		}
 		height += rowHeight
 	}
-	names, values = min(names+24, 0.42*w), min(values+18, 0.36*w)
+	names, values = min(names+24, 0.42*w), min(values+28, 0.38*w)
 	s := newSheet(w, height+footRoom+4)
 	fr := &frame{x0: names, y0: 6, x1: w - values, y1: height, x: x, y: newScaler(Axis{}, nil, nil)}
 	f.ground(s, fr)
