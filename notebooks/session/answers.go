@@ -18,7 +18,7 @@ func answerCards(r *analysis.Result) *View {
 	for _, a := range r.Answers {
 		also := ""
 		if n := r.WarningCount(); n > 0 && a.Section == "cautions" {
-			also = fmt.Sprintf(` \u00b7 <a href="#%s">%s</a>`, warningsID, plural(n, "warning"))
+			also = " \u00b7 " + fmt.Sprintf(`<a href="#%s">%s</a>`, warningsID, plural(n, "warning"))
 		}
 		fmt.Fprintf(&b, `<article class="card verdict-%s"><h3>%s</h3><p class="verdict">%s%s</p><p>%s</p>%s<p class="more"><a href="#%s">Where this comes from</a>%s</p></article>`,
 			strings.ReplaceAll(a.Verdict, " ", "-"), html.EscapeString(a.Question), mark(a.Verdict), html.EscapeString(a.Verdict), html.EscapeString(prose(a.Text)), bullets(a.Detail), a.Section, also)

@@ -16,7 +16,7 @@ func TestLastCardLeadsToWarnings(t *testing.T) {
 	}
 	r.Warnings = make([]analysis.WarningResult, 2)
 	got := answerCards(r).HTML
-	if strings.Count(got, `<a href="#warnings">2 warnings</a>`) != 1 || strings.Index(got, "#warnings") < strings.Index(got, "Something else?") {
+	if strings.Count(got, "</a> \u00b7 <a href=\"#warnings\">2 warnings</a>") != 1 || strings.Index(got, "#warnings") < strings.Index(got, "Something else?") {
 		t.Errorf("no link to the warnings: %s", got)
 	}
 }
