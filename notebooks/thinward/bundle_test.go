@@ -22,7 +22,7 @@ type entry struct {
 	mode       fs.FileMode
 }
 
-const goodManifest = "title = \"Tarn\"\n[[crystal]]\nname = \"L1\"\n[[crystal.position]]\nname = \"thin\"\nthickness_nm = 140.0\nfiles = [\"a.cif\"]\n"
+const goodManifest = "title = \"Tarn\"\n[[crystal]]\nname = \"L1\"\n[[crystal.position]]\nname = \"thin\"\nthickness_nm = 140.0\nfiles = [\"a.cif\"]\nblock = \"#1\"\n[[crystal.position]]\nname = \"thick\"\nthickness_nm = 310.0\nfiles = [\"a.cif\"]\nblock = \"#2\"\n"
 
 // zipOf makes a zip with checksums of the entries, more behind them.
 func zipOf(t *testing.T, summed []entry, more ...entry) string {

@@ -28,7 +28,8 @@ func fakeReport(t *testing.T, manifestText string) (dir, series string) {
 	}
 	put(series, manifestText)
 	put(filepath.Join(root, "data", "a.cif"), "data_a\n")
-	put(filepath.Join(dir, session.ResultFile), `{"schema": "thinward.result/1", "inputs": [{"path": "a.cif", "sha256": "`+sumOf([]byte("data_a\n"))+`"}]}`)
+	input := `{"path": "a.cif", "sha256": "` + sumOf([]byte("data_a\n")) + `"}` // two blocks of one file
+	put(filepath.Join(dir, session.ResultFile), `{"schema": "thinward.result/1", "inputs": [`+input+`, `+input+`]}`)
 	for _, name := range []string{pageFile, session.PairsFile} {
 		put(filepath.Join(dir, name), name)
 	}
