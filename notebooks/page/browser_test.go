@@ -188,8 +188,12 @@ func TestReportInABrowser(t *testing.T) {
 			t.Errorf("hash %q after a jump", where)
 		}
 	})
-	t.Run("what is fine opens for print, numbers and code stay folded", func(t *testing.T) {
+	t.Run("what is fine, numbers and code stay folded on paper, other parts open", func(t *testing.T) {
 		const folded = `[document.querySelectorAll("details:not([open]):not(.numbers):not(.cell):not(.fine)").length, document.querySelectorAll(".numbers[open], .cell[open], .fine[open]").length, document.querySelectorAll(".numbers:not([open])").length].join()`
+		if n := ask[int](t, ctx, `document.querySelectorAll(".fine:not([open])").length`); n != 1 {
+			t.Errorf("%d folded tables of what is fine", n)
+		}
+		ask[bool](t, ctx, `document.querySelector("main").appendChild(document.createElement("details")) != null`)
 		before := ask[string](t, ctx, folded)
 		paper := ask[string](t, ctx, `dispatchEvent(new Event("beforeprint")), `+folded)
 		after := ask[string](t, ctx, `dispatchEvent(new Event("afterprint")), `+folded)
