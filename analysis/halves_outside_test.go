@@ -12,7 +12,7 @@ import (
 // are equal, while halves of different names are independent counts of different equivalents.
 func TestHalvesOfEqualRowsAreEqual(t *testing.T) {
 	p := small()
-	p.DMin = 1.6
+	p.DMin, p.Common.TiltThickens = 1.6, false
 	series := seriesOf(t, p)
 	for i := range series.Crystals {
 		at := series.Crystals[i].Positions
