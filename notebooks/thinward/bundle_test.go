@@ -201,7 +201,7 @@ func TestBundlePlaces(t *testing.T) {
 }
 
 func TestRewriteManifest(t *testing.T) {
-	f, err := manifest.Parse("m.toml", []byte(strings.Replace(goodManifest, "a.cif", "/data/a.cif", 1)))
+	f, err := manifest.Parse("m.toml", []byte(strings.ReplaceAll(goodManifest, "a.cif", "/data/a.cif")))
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -214,7 +214,7 @@ func TestRewriteManifest(t *testing.T) {
 	if err != nil {
 		t.Fatalf("%v in\n%s", err, text)
 	}
-	if diff := cmp.Diff([]string{"elsewhere/1/a.cif"}, inputFiles(got)); diff != "" || got.Crystal[0].Position[0].ThicknessNM != 140 || got.Title != "Tarn" {
+	if diff := cmp.Diff([]string{"elsewhere/1/a.cif", "elsewhere/1/a.cif"}, inputFiles(got)); diff != "" || got.Crystal[0].Position[0].ThicknessNM != 140 || got.Title != "Tarn" {
 		t.Errorf("%s %+v", diff, got)
 	}
 }
