@@ -134,7 +134,7 @@ func (r *reading) nullPassed(e evidence.Estimate, p float64) bool {
 
 // threshold says when nullPassed fails.
 func (r *reading) threshold() string {
-	return fmt.Sprintf("fails at p of the curve below %.2g or m beyond %.1f standard errors (all controls share 5 %% of false alarms)", r.alarm, r.deviate())
+	return fmt.Sprintf("fails at p below %.2g or m beyond %.1f standard errors", r.alarm, r.deviate())
 }
 
 // deviate is the normal deviate beyond which, on either side, a reading fails.

@@ -212,7 +212,7 @@ func (s *Session) ControlsFigure() *View { return controlsFigure(s.upTo(stepCont
 
 func controlsFigure(r *analysis.Result) *View {
 	fv := &figureView{title: "Controls", empty: "No control was run.",
-		caption: "The dashed tick is the m that the control must find; an interval that misses it says that this pipeline errs on these data, and the table says what each control can and cannot see."}
+		caption: "The dashed tick is the m that the control must find; an interval that misses it by more than chance allows says that this pipeline errs on these data; the table gives the verdicts and says what each control can and cannot see."}
 	g := newGrid("Controls", "control", "crystal", "expected m", "found m").words(1)
 	f := &figure.Forest{Title: "Controls: m found and expected", Desc: "Estimate and interval of m in each control, with the expected value.", X: figure.Axis{Label: "exchange m", Zero: true}}
 	for _, c := range byControl(r.Controls) {

@@ -95,7 +95,11 @@ func (s *Session) Models() *View {
 		}
 		for _, v := range c.Giants {
 			if !math.IsInf(v.Above, 1) {
-				g.add(contrastName(c), fmt.Sprintf("instrument, without the %d reflections above %g local means", v.N, v.Above), withInterval(v.M, 3), "\u2013", "\u2013", "\u2013")
+				name := fmt.Sprintf("instrument, without the %d reflections above %g local means", v.N, v.Above)
+				if v.N == 0 {
+					name = fmt.Sprintf("instrument; no reflection is above %g local means", v.Above)
+				}
+				g.add(contrastName(c), name, withInterval(v.M, 3), "\u2013", "\u2013", "\u2013")
 			}
 		}
 	}
@@ -250,7 +254,9 @@ func controls(r *analysis.Result) *View {
 			reach.add(c.Control, c.Can, c.Cannot)
 		}
 	}
-	return Together(g.view("Controls"), reach.view("Controls"))
+	v := g.view("Controls")
+	v.note("p of the curve is of the test that the control's curve is flat, not of the m beside it. All controls together have a chance of 5 % to fail in sound data, so that a single interval may miss narrowly and the control be fine.")
+	return Together(v, reach.view("Controls"))
 }
 
 // Crystals shows what the crystals say together.
