@@ -119,7 +119,7 @@ func TestRendering(t *testing.T) {
 
 func TestKernelDeaths(t *testing.T) {
 	for _, c := range []struct{ name, cell, state, said string }{
-		{"goroutine panic", "go func() { panic(\"lost one\") }()\nselect {}", "exit status 2", "panic: lost one"},
+		{"goroutine panic", "import \"time\"\ngo func() { panic(\"lost one\") }()\ntime.Sleep(time.Minute)", "exit status 2", "panic: lost one"},
 		{"exit", "import \"os\"\nos.Exit(3)", "exit status 3", ""},
 		{"stack", "func deep(n int) int { return deep(n+1) + 1 }\ndeep(0)", "exit status 2", "stack"},
 	} {
