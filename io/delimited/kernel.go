@@ -214,8 +214,11 @@ func (r *reader) slow(line []byte, n int) error {
 		return r.fault(r.i+j, "", "the line holds a NUL byte", "the file is damaged or not text; copy it again")
 	}
 	fields := r.split(line)
-	if r.delimiter == ' ' && len(fields) > len(r.roles) && (fields[len(r.roles)][0] == '#' || fields[len(r.roles)][0] == '!') {
-		fields = fields[:len(r.roles)]
+	if r.delimiter == ' ' && len(fields) > len(r.roles) {
+		// A field of form feeds alone is trimmed to nothing.
+		if next := fields[len(r.roles)]; len(next) > 0 && (next[0] == '#' || next[0] == '!') {
+			fields = fields[:len(r.roles)]
+		}
 	}
 	r.raw.H[n], r.raw.K[n], r.raw.L[n] = 1, 1, 1
 	for j := 0; j < min(len(fields), len(r.roles)); j++ {
