@@ -162,7 +162,7 @@ func (s *Sigmas) warn() {
 	}
 	switch {
 	case s.Same > 0.5:
-		add("sigma-same", "%.0f %% of the sigmas are exactly %g: a placeholder, no uncertainty; give the column of uncertainties", 100*s.Same, s.SameValue)
+		add("sigma-same", "%.0f %% of the sigmas are exactly %g: one number in place of an uncertainty; give the column of uncertainties", 100*s.Same, s.SameValue)
 	case s.Proportional > 0.5:
 		add("sigma-proportional", "%.0f %% of the sigmas are %.3g of the intensity: they were made from it, and weak reflections, whose true errors are larger, get too much weight", 100*s.Proportional, s.Relative)
 	case s.Ceiling > highestCeiling:
