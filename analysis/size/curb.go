@@ -105,11 +105,11 @@ func curbSystem(f *frame, model Model, form CurbForm, set *Settings) (*system, e
 		return nil, err
 	}
 	top := topKnots(set.knots())
-	sys.addFunctions(set.knots(), nil)
-	sys.addFunctions(middleKnots(set.knots()), sys.inverseMean)
-	sys.addFunctions(top, sys.shellLevel)
+	sys.addFunctions(set.knots(), plain())
+	sys.addFunctions(middleKnots(set.knots()), inverseMean())
+	sys.addFunctions(top, shellLevel())
 	if f.in.Exposure != nil {
-		sys.addFunctions(top, exposure)
+		sys.addFunctions(top, exposure())
 	}
 	return sys, nil
 }

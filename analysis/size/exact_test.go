@@ -74,7 +74,7 @@ func TestExactRecovery(t *testing.T) {
 	} {
 		in := noiseless(c.m, c.q, c.o, c.curb)
 		for _, flat := range []bool{false, true} {
-			fit, err := Moments(in, nil, c.model, &Settings{Curb: c.curb, FlatShells: flat, FirstOrder: true})
+			fit, err := Moments(in, nil, c.model, &Settings{Curb: c.curb, FlatShells: flat, FirstOrder: true, AsFound: true})
 			fit = must(t, fit, err)
 			if !fit.Estimable {
 				t.Fatal(fit.Why)
@@ -122,7 +122,7 @@ func TestCurbToSecondOrder(t *testing.T) {
 				in.Thick[i] = .9*in.Thick[i] + .1*mean
 			}
 		}
-		f, err := Moments(in, nil, MQ, &Settings{FirstOrder: first, FlatShells: true})
+		f, err := Moments(in, nil, MQ, &Settings{FirstOrder: first, FlatShells: true, AsFound: true})
 		f = must(t, f, err)
 		floatcmp.Check(t, "m", f.M.Value, .1, .1*q, 0)
 		return f.Q.Value/q - 1
@@ -175,6 +175,7 @@ func TestIdentities(t *testing.T) {
 			c.Thin[i] *= k * k
 			c.VarThin[i] *= k * k * k * k
 			c.Thick[i] /= k
+			c.VarThick[i] /= k * k
 		}
 		x, err := Exchange(c, nil)
 		floatcmp.Check(t, "m", must(t, x, err).M, want[0], 0, 1e-9)

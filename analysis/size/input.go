@@ -41,6 +41,7 @@ type Settings struct {
 	Curb       CurbForm  // what the curb grows with; CurbCommon
 	FlatShells bool      // Moments weights all reflections alike; default false: by their expected residual variance
 	FirstOrder bool      // Moments takes J (1 - q u) for the curb; default false: J exp(-q u) to second order in q
+	AsFound    bool      // Moments leaves out the correction of the jackknife; default false
 }
 
 // Interval is closed; an open end is an infinity.
@@ -75,6 +76,8 @@ func (s *Settings) curb() CurbForm {
 }
 
 func (s *Settings) flat() bool { return s != nil && s.FlatShells }
+
+func (s *Settings) asFound() bool { return s != nil && s.AsFound }
 
 func (s *Settings) firstOrder() bool { return s != nil && s.FirstOrder }
 

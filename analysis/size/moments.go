@@ -98,14 +98,21 @@ func Leads(in *Input, w []float64) (model Model, span float64, err error) {
 // how m_s varies with 1/S_s.
 //
 // The first step weights all reflections alike, the second by the inverse of the
-// variance of their residual, a_s + b z^2 by shell and axis (FlatShells keeps them alike),
+// variance of their residual, a v_s + b z^2 with v_s the mean variance of both positions in the
+// shell, or by a_s + b z^2 where variances are not known (FlatShells keeps them alike),
 // and the moments by the inverse of their covariance. Without the b z^2 few strong
 // reflections decide what the data say of their own weight, and the error of q comes out a
-// fifth too small. The covariance of the moments and the sandwich covariance of the estimate
+// fifth too small; with a free a_s for each shell a large m reads 2 % low. The covariance of
+// the moments and the sandwich covariance of the estimate
 // include the influence of the shell means and of <t>, the sandwich in the
 // jackknife form of ExchangeWith; each interval is Student's with the degrees of freedom of
 // its own variance. J is the over-identification statistic with JDF degrees of freedom: a
 // small JP says that these numbers do not describe the curve.
+//
+// Estimates and intervals are moved by what the delete-one jackknife says of the bias of
+// order 1/N (Quenouille 1956, Biometrika 43:353), which shell means of a sample make: m = 0.15
+// reads 0.003 low and o 0.003 high without it. No correction is made where it would exceed a
+// standard error (AsFound leaves it out always).
 //
 // Errors as in ExchangeWith, and a curb without VarThin or halves, CurbRate without
 // Exposure.
@@ -137,9 +144,9 @@ func moments(legs []*frame, model Model, set *Settings) (*Fit, error) {
 	if err != nil {
 		return nil, err
 	}
-	sys.addFunctions(set.knots(), nil)
+	sys.addFunctions(set.knots(), plain())
 	if model == MQO {
-		sys.addFunctions(middleKnots(set.knots()), sys.inverseMean)
+		sys.addFunctions(middleKnots(set.knots()), inverseMean())
 	}
 	return sys.fit(set)
 }
@@ -192,7 +199,7 @@ func (s *system) describe(out *Fit, sol *solution) {
 	for i := range p {
 		grad.Set(i, i, 1)
 	}
-	theta := append([]float64(nil), sol.theta...)
+	theta := append([]float64(nil), sol.unbiased...)
 	for k := 1; k < p; k++ {
 		m, slope := theta[0], theta[k]
 		theta[k] = slope / (1 - m)

@@ -73,7 +73,7 @@ func TestLeastSquares(t *testing.T) {
 	_, slope := stat.LinearRegression(e1, e2, nil, false)
 	x, err := ExchangeWith(in, nil, &Settings{Clip: 1e9})
 	floatcmp.Check(t, "slope", 1-must(t, x, err).M, slope, 1e-12, 0)
-	f, err := Moments(in, nil, M, &Settings{Knots: []float64{1e9}})
+	f, err := Moments(in, nil, M, &Settings{Knots: []float64{1e9}, AsFound: true})
 	floatcmp.Check(t, "slope by moments", 1-must(t, f, err).M.Value, slope, 1e-12, 0)
 }
 
@@ -104,14 +104,14 @@ func TestTwoInstruments(t *testing.T) {
 	for i := range n {
 		m2 += x.At(i, 2) / float64(n)
 	}
-	f, err := Moments(in, nil, MQ, &Settings{Knots: []float64{1, 5}, Curb: CurbStrength, FirstOrder: true})
+	f, err := Moments(in, nil, MQ, &Settings{Knots: []float64{1, 5}, Curb: CurbStrength, FirstOrder: true, AsFound: true})
 	f = must(t, f, err)
 	floatcmp.Check(t, "m", f.M.Value, 1+slope*m2-beta.AtVec(1), 1e-10, 0)
 	floatcmp.Check(t, "q", f.Q.Value, slope/(1-f.M.Value), 1e-10, 0)
 	if f.JDF != 0 || f.J > 1e-12 || f.JP != 1 {
 		t.Errorf("just identified: J = %g with %d", f.J, f.JDF)
 	}
-	one, err := Moments(in, nil, M, &Settings{Knots: []float64{6}})
+	one, err := Moments(in, nil, M, &Settings{Knots: []float64{6}, AsFound: true})
 	ex, err2 := Exchange(in, nil)
 	floatcmp.Check(t, "m", must(t, one, err).M.Value, must(t, ex, err2).M, 1e-12, 0)
 	floatcmp.Check(t, "SE", one.M.SE, ex.SE, 0, 1e-9)

@@ -21,12 +21,14 @@ type solution struct {
 	lever     *mat.Dense    // theta = lever g
 	ch        *mat.Cholesky // of the weight of the moments
 	exact     bool          // nothing is left over
+	unbiased  []float64     // theta with its correction
 }
 
 // weighted holds the weighted, centred functions and the linear moment sums
 // g - a theta.
 type weighted struct {
 	f  [][][]float64 // by leg, function, row
+	of []int         // which functions these are
 	u  [][]float64   // by leg, row
 	uf [][][]float64 // u f
 	wu [][]float64   // by leg, row: u times the counts
@@ -45,7 +47,7 @@ func (s *system) solve(set *Settings) *solution {
 	once := s.model < MQ || set.firstOrder()
 	sol := s.solveFrom(nil, set.flat())
 	if once {
-		return s.finish(sol)
+		return s.finish(sol, set)
 	}
 	for range 8 {
 		if sol == nil {
@@ -59,7 +61,7 @@ func (s *system) solve(set *Settings) *solution {
 			break
 		}
 	}
-	return s.finish(sol)
+	return s.finish(sol, set)
 }
 
 // solveFrom takes the law of the residual from theta or, when that is nil, from a
@@ -142,12 +144,18 @@ func (s *system) errors(sol *solution) {
 }
 
 // finish adds all that does not steer the search for theta; nil stays.
-func (s *system) finish(sol *solution) *solution {
+func (s *system) finish(sol *solution, set *Settings) *solution {
 	if sol == nil {
 		return nil
 	}
 	s.errors(sol)
 	sol.width = s.width(sol.m, sol.lever, sol.theta)
+	sol.unbiased = append([]float64(nil), sol.theta...)
+	if !set.asFound() {
+		for i, c := range s.correction(sol) {
+			sol.unbiased[i] += c
+		}
+	}
 	if !sol.exact {
 		sol.j = distance(sol.m, sol.theta, sol.ch)
 	}
@@ -242,6 +250,7 @@ func (s *system) sums(rows [][]float64) *weighted {
 	}
 	full := s.gram(m.uf)
 	keep := independent(full)
+	m.of = keep
 	for l := range m.f {
 		var f, uf [][]float64
 		for _, k := range keep {

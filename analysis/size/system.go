@@ -18,6 +18,15 @@ type system struct {
 	present    float64
 	shells     int
 	weight     []float64 // of each row, the same in every leg that has it
+	functions  []function
+	bent       float64 // q at which the curb is taken to second order
+}
+
+// function is min(z, knot) times a factor that goes as powers of the two shell means.
+type function struct {
+	knot        float64
+	factor      func(s *system, c *conditions, i int) float64 // nil for one
+	thin, thick int
 }
 
 // conditions are the columns of one leg: x[p][i] multiplies parameter p.
@@ -198,20 +207,23 @@ func (s *system) bend(q float64) {
 		most := mostCurbed / s.strongest
 		q = math.Max(-most, math.Min(q, most))
 	}
+	s.bent = q
 	for _, c := range s.legs {
 		c.bend(q)
 	}
 }
 
-// addFunctions appends min(z, knot), times factor where that is not nil.
-func (s *system) addFunctions(knots []float64, factor func(c *conditions, i int) float64) {
-	for _, c := range s.legs {
-		for _, k := range knots {
+// addFunctions appends min(z, knot), times the factor of like where that has one.
+func (s *system) addFunctions(knots []float64, like function) {
+	for _, k := range knots {
+		like.knot = k
+		s.functions = append(s.functions, like)
+		for _, c := range s.legs {
 			f := make([]float64, len(c.w))
 			for i, z := range c.z {
 				f[i] = min(z, k)
-				if factor != nil {
-					f[i] *= factor(c, i)
+				if like.factor != nil {
+					f[i] *= like.factor(s, c, i)
 				}
 			}
 			c.f, c.middle = append(c.f, f), append(c.middle, c.centred(f))
@@ -219,13 +231,22 @@ func (s *system) addFunctions(knots []float64, factor func(c *conditions, i int)
 	}
 }
 
+// plain has no factor.
+func plain() function { return function{} }
+
 // inverseMean is the reference over the shell mean of the thick position.
-func (s *system) inverseMean(c *conditions, i int) float64 { return s.ref2 / c.mean2[c.in.Shell[i]] }
+func inverseMean() function {
+	return function{factor: func(s *system, c *conditions, i int) float64 { return s.ref2 / c.mean2[c.in.Shell[i]] }, thick: -1}
+}
 
 // shellLevel is the shell mean of the thin position over the reference.
-func (s *system) shellLevel(c *conditions, i int) float64 { return c.mean1[c.in.Shell[i]] / s.ref1 }
+func shellLevel() function {
+	return function{factor: func(s *system, c *conditions, i int) float64 { return c.mean1[c.in.Shell[i]] / s.ref1 }, thin: 1}
+}
 
-func exposure(c *conditions, i int) float64 { return c.in.Exposure[i] }
+func exposure() function {
+	return function{factor: func(_ *system, c *conditions, i int) float64 { return c.in.Exposure[i] }}
+}
 
 // residual is y1 - y2 less the model.
 func (c *conditions) residual(theta []float64) []float64 {
