@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"math"
 	"os"
+	"slices"
 	"strconv"
 	"strings"
 	"testing"
@@ -14,6 +15,7 @@ import (
 	"thinward/analysis/internal/floatcmp"
 	"thinward/analysis/internal/parallel"
 	"thinward/analysis/resample"
+	"thinward/analysis/simulate"
 	"thinward/analysis/size"
 )
 
@@ -141,18 +143,23 @@ func repeats(otherwise int) int {
 type covered struct{ three, two, one, curb, offset hits }
 
 // reply is what one series says.
-type reply struct{ three, two, one []*ContrastResult }
+type reply struct {
+	three, two, one []*ContrastResult
+	offset          []float64 // of the thick position by crystal, as the model means it
+}
 
 func (c cell) measure(t *testing.T, n int, first uint64) *covered {
 	got := make([]reply, n)
 	err := parallel.For(context.Background(), n, 0, func(ctx context.Context, k int) error {
-		s, err := New(seriesOf(t, c.plan(first+uint64(k))), &Settings{Workers: 1, Replicates: 50, Flips: 50})
+		v := invented(t, c.plan(first+uint64(k)))
+		s, err := New(readOf(v), &Settings{Workers: 1, Replicates: 50, Flips: 50})
 		if err != nil {
 			return err
 		}
 		if _, err := s.Scale(ctx); err != nil {
 			return err
 		}
+		got[k].offset = c.offsets(t, v, first+uint64(k))
 		read := func(s *Study, into *[]*ContrastResult) error {
 			for _, contrast := range s.primaryContrasts() {
 				x, err := s.paired(ctx, contrast)
@@ -185,6 +192,41 @@ func (c cell) measure(t *testing.T, n int, first uint64) *covered {
 	out := &covered{}
 	for k := range got {
 		out.take(c, &got[k])
+	}
+	return out
+}
+
+// offsets is the additive constant in the thick position of each crystal on the common
+// scale, a share of the mean of the lowest third: the plan's one is in recorded units, before
+// the Lorentz factor and the scale are divided out.
+func (c cell) offsets(t *testing.T, v *simulate.Series, seed uint64) []float64 {
+	out := make([]float64, len(v.Specimens))
+	if c.offset == 0 {
+		return out
+	}
+	none := c
+	none.offset = 0
+	bare := invented(t, none.plan(seed))
+	for i := range out {
+		at := len(v.Specimens[i].Positions) - 1
+		p, b := &v.Specimens[i].Positions[at], &bare.Specimens[i].Positions[at]
+		if len(p.Expected) != len(b.Expected) {
+			t.Fatal("an offset changes what is recorded")
+		}
+		added := 0.0
+		for k, e := range p.Expected {
+			g, _ := slices.BinarySearch(p.AngleDeg, p.Rows.Phi[k])
+			lnK := p.LnK[min(g, len(p.LnK)-1)]
+			added += (e - b.Expected[k]) * math.Exp(2*p.B*v.Truth.S2[p.Unique[k]]-lnK) / float64(len(p.Expected))
+		}
+		mean, n := 0.0, 0.0
+		for u, j := range p.Law[:len(p.Law)/3] {
+			if !v.Truth.Absent[u] {
+				mean += j / float64(v.Truth.Epsilon[u])
+				n++
+			}
+		}
+		out[i] = added / (mean/n + added)
 	}
 	return out
 }
@@ -222,10 +264,10 @@ func (v *covered) take(c cell, a *reply) {
 	for _, h := range []*hits{&v.three, &v.two, &v.one, &v.curb, &v.offset} {
 		h.open()
 	}
-	for _, r := range a.three {
+	for i, r := range a.three {
 		v.three.add(r.Exchange.M, r.Exchange.Lo, r.Exchange.Hi, c.m)
 		v.curb.add(r.Curb.Q, r.Curb.Lo, r.Curb.Hi, c.curb)
-		v.offset.add(r.Offset.O, r.Offset.Lo, r.Offset.Hi, c.offset)
+		v.offset.add(r.Offset.O, r.Offset.Lo, r.Offset.Hi, a.offset[i])
 	}
 	for _, r := range a.two {
 		v.two.add(r.Exchange.M, r.Exchange.Lo, r.Exchange.Hi, c.m)
@@ -244,12 +286,12 @@ func (v *covered) join(w *covered) {
 }
 
 // header names the columns of row.
-const header = "contrasts of three | three crystals cover | (95 %) | bias of m | claimed over true error | two crystals cover | bias of m | one: bracket holds m | curb covers | bias of q | claimed over true error | offset covers |"
+const header = "contrasts of three | three crystals cover | (95 %) | bias of m | claimed over true error | two crystals cover | bias of m | one: bracket holds m | curb covers | bias of q | claimed over true error | offset covers | bias of o |"
 
 func (v *covered) row() string {
 	lo, hi := v.three.interval()
-	return fmt.Sprintf("%d | %.3f | %.3f-%.3f | %+.4f | %.2f | %.3f | %+.4f | %.3f | %.3f | %+.4f | %.2f | %.3f |", v.three.n, v.three.share(), lo, hi, v.three.bias(), v.three.ratio(),
-		v.two.share(), v.two.bias(), v.one.share(), v.curb.share(), v.curb.bias(), v.curb.ratio(), v.offset.share())
+	return fmt.Sprintf("%d | %.3f | %.3f-%.3f | %+.4f | %.2f | %.3f | %+.4f | %.3f | %.3f | %+.4f | %.2f | %.3f | %+.4f |", v.three.n, v.three.share(), lo, hi, v.three.bias(), v.three.ratio(),
+		v.two.share(), v.two.bias(), v.one.share(), v.curb.share(), v.curb.bias(), v.curb.ratio(), v.offset.share(), v.offset.bias())
 }
 
 // grid gathers kinds of series, each and by what they have in common.

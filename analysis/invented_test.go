@@ -14,10 +14,19 @@ func full() bool { return os.Getenv("THINWARD_FULL") == "1" }
 // seriesOf invents a series and hands it over as a reader of files would.
 func seriesOf(t testing.TB, p *simulate.Plan) Series {
 	t.Helper()
+	return readOf(invented(t, p))
+}
+
+func invented(t testing.TB, p *simulate.Plan) *simulate.Series {
+	t.Helper()
 	v, err := simulate.Invent(context.Background(), p)
 	if err != nil {
 		t.Fatal(err)
 	}
+	return v
+}
+
+func readOf(v *simulate.Series) Series {
 	out := Series{Title: v.Plan.Title, EnergyKeV: v.Plan.EnergyKeV, Seed: v.Plan.Seed, Group: v.Group, ThicknessScaleSU: v.Plan.ThicknessScaleSU}
 	c := v.Plan.Cell
 	out.Cell.A, out.Cell.B, out.Cell.C, out.Cell.Alpha, out.Cell.Beta, out.Cell.Gamma = c.A, c.B, c.C, c.Alpha, c.Beta, c.Gamma
