@@ -107,7 +107,7 @@ func answerDiffer(list []*ContrastResult) Answer {
 }
 
 func answerWhere(list []*ContrastResult) Answer {
-	a := Answer{Question: "In weak or in strong reflections?", Section: "strength", Verdict: VerdictNo}
+	a := Answer{Question: "Does it depend on strength?", Section: "strength", Verdict: VerdictNo}
 	seen, weak, strong := 0, 0, 0
 	known, err := jointly(list)
 	for _, p := range known {
@@ -173,7 +173,7 @@ func jointly(list []*ContrastResult) ([]float64, error) {
 }
 
 func answerResolution(list []*ContrastResult) Answer {
-	a := Answer{Question: "At low or at high resolution?", Section: "resolution", Verdict: VerdictNo}
+	a := Answer{Question: "Does it depend on resolution?", Section: "resolution", Verdict: VerdictNo}
 	seen, known := 0, 0
 	for _, c := range list {
 		if !math.IsNaN(c.Resolution.DeltaB) {

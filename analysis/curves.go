@@ -112,7 +112,8 @@ func reconciled(r *Resolution, se float64) string {
 	if math.IsNaN(d) || math.IsNaN(most) {
 		return ""
 	}
-	text := fmt.Sprintf("sums by shell say %s, the fitted scale %s +- %s", span(r.DeltaB, r.DeltaBLo, r.DeltaBHi), short(r.FittedB), short(r.FittedBSE))
+	half := zOf(0.95) * r.FittedBSE
+	text := fmt.Sprintf("sums by shell say %s, the fitted scale %s", span(r.DeltaB, r.DeltaBLo, r.DeltaBHi), span(r.FittedB, r.FittedB-half, r.FittedB+half))
 	if math.Abs(d) <= most {
 		return text + ": the same within their errors"
 	}

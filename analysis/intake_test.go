@@ -303,3 +303,19 @@ func TestForbiddenAloneIsRefused(t *testing.T) {
 		t.Errorf("%v", err)
 	}
 }
+
+// A remark on sigmas goes by chi-square of near equivalents: none within a quarter of the
+// sigma or three standard errors of 1.
+func TestSigmaRemark(t *testing.T) {
+	for _, c := range []struct {
+		chi2, se float64
+		want     string
+	}{
+		{1.02, 0.05, ""}, {1.5, 0.01, ""}, {2.25, 0.5, ""}, {2.25, 0.2, "scatter 1.5 times"}, {0.25, 0.02, "scatter 0.5 times"}, {math.NaN(), math.NaN(), "7 pairs of near equivalents are too few"},
+	} {
+		got := sigmaResult(&intensity.Sigmas{Chi2: c.chi2, Chi2SE: c.se, Pairs: 7}).Why
+		if !strings.Contains(got, c.want) || (c.want == "") != (got == "") {
+			t.Errorf("chi2 %g +- %g: %q, want %q", c.chi2, c.se, got, c.want)
+		}
+	}
+}

@@ -146,8 +146,12 @@ func (s *Study) intakeResult(ctx context.Context, x *standing, thin int) (*Intak
 
 func sigmaResult(c *intensity.Sigmas) SigmaResult {
 	r := SigmaResult{Same: c.Same, Proportional: c.Proportional, Ceiling: c.Ceiling, Chi2: c.Chi2, Chi2SE: c.Chi2SE, Pairs: c.Pairs, AnyAngle: c.AnyAngle}
-	if math.IsNaN(c.Chi2) {
+	switch far := math.Abs(c.Chi2-1) > 3*c.Chi2SE; {
+	case math.IsNaN(c.Chi2):
 		r.Why = fmt.Sprintf("%d pairs of near equivalents are too few to check the size of the sigmas", c.Pairs)
+	case far && !(c.Chi2 > 0.64 && c.Chi2 < 1.56):
+		// A quarter off in sigma; at any angle the scale is in it.
+		r.Why = fmt.Sprintf("near equivalents scatter %.1f times as far as their sigmas say; what scaling leaves of that the noise model fits, and the ledger judges", math.Sqrt(c.Chi2))
 	}
 	return r
 }

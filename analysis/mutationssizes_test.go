@@ -33,6 +33,24 @@ var sizeMutations = []mutation{
 		killedBy: []string{"TestJackknife"},
 	},
 	{
+		name: "bias of the order 1/N left in", file: "analysis/size/jackknife.go", pkg: "analysis/size",
+		old:      `sum[j] *= (n - 1) / n`,
+		new:      `sum[j] *= 0 / n`,
+		killedBy: []string{"TestCorrectionOfALargeExchange"},
+	},
+	{
+		name: "a deletion leaves the mean of the axis", file: "analysis/size/jackknife.go", pkg: "analysis/size",
+		old:      `grown = 1/ch.axis - 1`,
+		new:      `grown = 0 * ch.axis`,
+		killedBy: []string{"TestDeletionIsThatOfAnEstimateMadeAnew"},
+	},
+	{
+		name: "a shell weights itself by its own residuals", file: "analysis/size/variance.go", pkg: "analysis/size",
+		old:      `shape := c.shellVariances()`,
+		new:      `var shape []float64`,
+		killedBy: []string{"TestVarianceLawHasNoConstantOfItsOwnForEachShell"},
+	},
+	{
 		name: "giants not clipped", file: "analysis/size/instrument.go", pkg: "analysis/size",
 		old:      `g[i] = math.Min(z, clip)`,
 		new:      `g[i] = math.Min(z, 1e6*clip)`,

@@ -59,3 +59,40 @@ func TestVarianceLaw(t *testing.T) {
 		t.Error("a row that takes no part has a variance")
 	}
 }
+
+// With the variances of both positions the law follows their means by shell up to one
+// factor: a shell whose residuals are three times as far as the others' does not weigh itself down.
+func TestVarianceLawHasNoConstantOfItsOwnForEachShell(t *testing.T) {
+	g := stream(63)
+	n := 30000
+	in := &Input{Shells: 3, Shell: make([]int32, n), VarThin: make([]float64, n), VarThick: make([]float64, n)}
+	c := &conditions{frame: &frame{in: in, w: make([]float64, n), u: make([]float64, n), z: make([]float64, n), sum: make([]float64, 3), mean1: []float64{2, 1, 1}, mean2: []float64{1, 1, .5}}}
+	r := make([]float64, n)
+	for i := range r {
+		s := i % 3
+		in.Shell[i], c.w[i], c.u[i], c.z[i] = int32(s), 1, 1, g.ExpFloat64()
+		c.sum[s]++
+		// v_s = .2, .2, .4 in units of the shell means.
+		in.VarThin[i], in.VarThick[i] = []float64{.4, .1, .2}[s], []float64{.1, .1, .05}[s]
+		sd := math.Sqrt(.5*[]float64{.2, .2, .4}[s] + .05*c.z[i]*c.z[i])
+		if s == 1 && i >= n/2 {
+			sd *= 3
+		}
+		r[i] = sd * g.NormFloat64()
+	}
+	got := c.variances(r)
+	floor := [3]float64{math.Inf(1), math.Inf(1), math.Inf(1)}
+	for i, v := range got {
+		floor[i%3] = min(floor[i%3], v)
+	}
+	floatcmp.Check(t, "second shell over the first", floor[1]/floor[0], 1, .01, 0)
+	floatcmp.Check(t, "third shell over the first", floor[2]/floor[0], 2, .02, 0)
+	in.VarThin[0] = 0
+	for i := 3; i < n; i += 3 {
+		in.VarThin[i], in.VarThick[i] = 0, 0
+	}
+	in.VarThick[0] = 0
+	if c.shellVariances() != nil {
+		t.Error("a shell without a variance passes")
+	}
+}

@@ -3,6 +3,7 @@ package session
 import (
 	"fmt"
 	"math"
+	"strings"
 
 	"thinward/analysis"
 )
@@ -54,7 +55,7 @@ func (v *View) note(text string) {
 // Intensities shows, before scaling, whether intensities and sigmas look as measured.
 func (s *Session) Intensities() *View {
 	d := s.intake()
-	negatives := newGrid("Observations below zero: seen, and expected by Wilson's law with the reported sigmas", "position", "I/\u03c3", "below 0", "expected", "below \u22121\u03c3", "expected", "below \u22122\u03c3", "expected", "below \u22123\u03c3", "expected", "cut or clipped").words(10)
+	negatives := newGrid("Observations below zero: seen, and expected by Wilson's law with the reported sigmas; far fewer than expected mean that negatives were cut or set to zero, far more that background was taken off too freely or sigmas are too small", "position", "I/\u03c3", "below 0", "expected", "below \u22121\u03c3", "expected", "below \u22122\u03c3", "expected", "below \u22123\u03c3", "expected", "cut or clipped").words(10)
 	for _, r := range d.Positions {
 		cells := []string{place(&r), number(r.MeanISigma, 1)}
 		for k := range r.Negative {
@@ -70,8 +71,8 @@ func (s *Session) Intensities() *View {
 	for _, r := range d.Positions {
 		c := &r.Sigmas
 		remark := c.Why
-		if remark == "" && c.AnyAngle {
-			remark = "at any angle: holds changes of the scale too"
+		if c.AnyAngle && !math.IsNaN(c.Chi2) {
+			remark = strings.TrimPrefix(remark+"; at any angle: holds changes of the scale too", "; ")
 		}
 		sigmas.add(place(&r), percent(c.Same, 1), percent(c.Proportional, 1), number(c.Ceiling, 0), number(c.Chi2, 2), number(c.Chi2SE, 2), count(c.Pairs), remark)
 	}

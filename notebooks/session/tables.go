@@ -296,8 +296,25 @@ func (s *Session) Thickness() *View {
 			g.add(l.Crystal, strings.Join(nm, ", "), strings.Join(mu, ", "), withInterval(l.Slope, 3), fmt.Sprintf("%s (%d)", number(l.Chi2, 2), l.DF), l.Why)
 		}
 		g.add("together", "", "", withInterval(t.Slope, 3), "", t.Why)
+		if x := t.Across; x != nil {
+			g.add("between crystals", "", "", withInterval(x.Slope, 3), "", x.Why)
+		}
 	}
-	return g.view("Thickness")
+	return Together(g.view("Thickness"), withinPosition(r.Thickness).view("Tilt"))
+}
+
+// withinPosition lists what the tilt of one position says of the growth.
+func withinPosition(t *analysis.ThicknessResult) *grid {
+	g := newGrid("Growth within one position, whose slab the beam crosses on a longer way at high tilt, beside that between positions; both per 100 nm of path",
+		"crystal", "position", "pairs", "longer by (nm)", "m, low against high tilt", "by tilt", "between positions", "remark").words(1, 7)
+	if t == nil {
+		return g
+	}
+	for i := range t.Tilt {
+		x := &t.Tilt[i]
+		g.add(x.Crystal, x.Position, count(x.Pairs), number(x.ExtraNM, 0), withInterval(x.M, 3), withInterval(x.Slope, 3), withInterval(x.Between, 3), x.Why)
+	}
+	return g
 }
 
 // Provenance shows inputs, seed, versions and times.
