@@ -34,8 +34,8 @@ var sizeMutations = []mutation{
 	},
 	{
 		name: "bias of the order 1/N left in", file: "analysis/size/jackknife.go", pkg: "analysis/size",
-		old:      `sum[j] *= (n - 1) / n`,
-		new:      `sum[j] *= 0 / n`,
+		old:      `shift[j] = (n - 1) / n * sum[j]`,
+		new:      `shift[j] = 0 * n * sum[j]`,
 		killedBy: []string{"TestCorrectionOfALargeExchange"},
 	},
 	{

@@ -41,7 +41,7 @@ type Settings struct {
 	Curb       CurbForm  // what the curb grows with; CurbCommon
 	FlatShells bool      // Moments weights all reflections alike; default false: by their expected residual variance
 	FirstOrder bool      // Moments takes J (1 - q u) for the curb; default false: J exp(-q u) to second order in q
-	AsFound    bool      // Moments leaves out the correction of the jackknife; default false
+	AsFound    bool      // Moments leaves out the jackknife: no correction, sandwich errors; default false
 }
 
 // Interval is closed; an open end is an infinity.

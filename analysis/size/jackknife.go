@@ -37,49 +37,62 @@ type deletion struct {
 	moved   []linearSums
 }
 
-// correction is what the delete-one jackknife adds to theta,
+// jackknife gives what the deletion of one reflection at a time says of theta, its
+// bias and its covariance,
 //
-//	(n-1)/n sum_i w_i (theta - theta_i),
+//	shift = (n-1)/n sum_i w_i (theta - theta_i)
+//	cov   = (n-1)/n sum_i w_i (theta_i - <theta_i>)(theta_i - <theta_i>)'
 //
-// theta_i without one count of reflection i (Quenouille 1956, Biometrika 43:353; for
-// estimates from moments Newey & Smith 2004, Econometrica 72:219, list what is of this
-// order). A shell mean of a sample stands in both positions, in the column of the curb and in
-// that of the offset, and its chance pulls m toward 0 by a few hundredths of itself, and
-// o up. Zeros where a deletion leaves a shell without a positive mean, and where a
-// correction is beyond a standard error: then the expansion in 1/n says nothing.
-func (s *system) correction(sol *solution) []float64 {
-	p := s.parameters()
-	out := make([]float64, p)
+// theta_i without one count of reflection i (Quenouille 1956, Biometrika 43:353; Tukey
+// 1958, Ann. Math. Stat. 29:614; for estimates from moments Newey & Smith 2004,
+// Econometrica 72:219, list what is of this order). A shell mean of a sample stands in
+// both positions, in the column of the curb and in that of the offset, and its chance pulls m
+// toward 0 by a few hundredths of itself, and o up. Nil where a deletion leaves a shell without
+// a positive mean, and where a shift is beyond a standard error: then the expansion in 1/n
+// says nothing.
+func (s *system) jackknife(sol *solution) (shift []float64, cov *mat.Dense) {
 	if sol.exact {
-		return out
+		return nil, nil
 	}
 	d := s.deletion(sol)
 	if d == nil {
-		return out
+		return nil, nil
 	}
 	base := d.solve(d.whole)
-	sum, n := make([]float64, p), 0.0
+	var sum linearSums
+	var squares [3][3]float64
+	n := 0.0
 	for i, w := range s.weight {
 		if w == 0 {
 			continue
 		}
 		moved, ok := d.without(i)
 		if !ok {
-			return out
+			return nil, nil
 		}
 		n += w
 		theta := d.solve(moved)
-		for j := range sum {
-			sum[j] += w * (base[j] - theta[j])
+		for j := range d.p {
+			off := base[j] - theta[j]
+			sum[j] += w * off
+			for k := range j + 1 {
+				squares[j][k] += w * off * (base[k] - theta[k])
+			}
 		}
 	}
-	for j := range sum {
-		sum[j] *= (n - 1) / n
-		if se := math.Sqrt(sol.cov.At(j, j)); !(math.Abs(sum[j]) <= se) {
-			return out
+	shift, cov = make([]float64, d.p), mat.NewDense(d.p, d.p, nil)
+	for j := range d.p {
+		shift[j] = (n - 1) / n * sum[j]
+		if se := math.Sqrt(sol.cov.At(j, j)); !(math.Abs(shift[j]) <= se) {
+			return nil, nil
+		}
+		for k := range j + 1 {
+			v := (n - 1) / n * (squares[j][k] - sum[j]*sum[k]/n)
+			cov.Set(j, k, v)
+			cov.Set(k, j, v)
 		}
 	}
-	return sum
+	return shift, cov
 }
 
 // deletion is nil when the weight of the moments has no inverse.

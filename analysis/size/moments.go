@@ -103,16 +103,17 @@ func Leads(in *Input, w []float64) (model Model, span float64, err error) {
 // and the moments by the inverse of their covariance. Without the b z^2 few strong
 // reflections decide what the data say of their own weight, and the error of q comes out a
 // fifth too small; with a free a_s for each shell a large m reads 2 % low. The covariance of
-// the moments and the sandwich covariance of the estimate
-// include the influence of the shell means and of <t>, the sandwich in the
-// jackknife form of ExchangeWith; each interval is Student's with the degrees of freedom of
-// its own variance. J is the over-identification statistic with JDF degrees of freedom: a
-// small JP says that these numbers do not describe the curve.
+// the moments includes the influence of the shell means and of <t>; each interval is
+// Student's with the degrees of freedom of its own variance. J is the over-identification
+// statistic with JDF degrees of freedom: a small JP says that these numbers do not describe
+// the curve.
 //
-// Estimates and intervals are moved by what the delete-one jackknife says of the bias of
-// order 1/N (Quenouille 1956, Biometrika 43:353), which shell means of a sample make: m = 0.15
-// reads 0.003 low and o 0.003 high without it. No correction is made where it would exceed a
-// standard error (AsFound leaves it out always).
+// Estimates are moved by what the delete-one jackknife says of their bias of order 1/N
+// (Quenouille 1956, Biometrika 43:353), which shell means of a sample make: m = 0.15 reads
+// 0.003 low and o 0.003 high without it. Their covariance is that of the same
+// deletions (Tukey 1958, Ann. Math. Stat. 29:614), which knows what the correction adds. Where
+// the correction would exceed a standard error, and with AsFound, there is none, and the
+// covariance is the sandwich in the jackknife form of ExchangeWith.
 //
 // Errors as in ExchangeWith, and a curb without VarThin or halves, CurbRate without
 // Exposure.

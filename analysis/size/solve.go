@@ -152,8 +152,11 @@ func (s *system) finish(sol *solution, set *Settings) *solution {
 	sol.width = s.width(sol.m, sol.lever, sol.theta)
 	sol.unbiased = append([]float64(nil), sol.theta...)
 	if !set.asFound() {
-		for i, c := range s.correction(sol) {
-			sol.unbiased[i] += c
+		if shift, cov := s.jackknife(sol); shift != nil {
+			sol.cov = cov
+			for i, c := range shift {
+				sol.unbiased[i] += c
+			}
 		}
 	}
 	if !sol.exact {
