@@ -86,7 +86,7 @@ func answerDiffer(list []*ContrastResult) Answer {
 			n++
 		}
 		worst = math.Max(worst, (m.Hi-m.Lo)/2/zOf(0.95))
-		parts = append(parts, fmt.Sprintf("%s r = %s, moment ratio %s", label(c), span(r.R, r.Lo, r.Hi), span(m.M, m.Lo, m.Hi)))
+		parts = append(parts, fmt.Sprintf("%s r = %s; pairs differ by %s of their intensity beyond their noise (root mean square)", label(c), span(r.R, r.Lo, r.Hi), percentOf(c.PairNoise)))
 	}
 	const same = "(r = 1 would mean no difference"
 	switch {
@@ -94,7 +94,7 @@ func answerDiffer(list []*ContrastResult) Answer {
 		a.Verdict = VerdictUnknown
 		a.Text = "It cannot be said: no position has enough symmetry equivalents to take the noise out of a correlation."
 	case n == 0:
-		a.Text = "Beyond counting noise no difference between thinnest and thickest position is seen " + same + fmt.Sprintf("; a moment ratio of %s would have been seen in each crystal with 80 %% power).", short(size.MinimumVisible(worst, 0.95, 0.8)))
+		a.Text = "Beyond counting noise no difference between thinnest and thickest position is seen " + same + fmt.Sprintf("; a moment ratio of %s would have been seen in each crystal with 80 %% power).", short(visible(worst, f)))
 	default:
 		a.Verdict = VerdictYes
 		a.Text = fmt.Sprintf("Thinnest and thickest position differ beyond counting noise in %s %s). Bending, mosaicity, dose and errors of frames lower r as thickness does.", crystalsOf(n, list), same)
@@ -132,32 +132,32 @@ func answerWhere(list []*ContrastResult) Answer {
 	}
 	if seen > 0 {
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("The curve against strength is not flat in %s (joint test of each, p < 0.05 with all crystals allowed for): the weakest gain with thickness in %d, the strongest lose in %d.%s", crystalsOf(seen, list), weak, strong, units)
+		a.Text = fmt.Sprintf("The curve against strength is not flat in %s (p < 0.05 with all windows and crystals allowed for): the weakest gain with thickness in %d, the strongest lose in %d (each class at 95 %%).%s", crystalsOf(seen, list), weak, strong, units)
 		return a
 	}
 	if err != nil || len(known) == 0 {
 		a.Verdict, a.Text = VerdictUnknown, "The curve against strength could not be tested."+units
 		return a
 	}
-	a.Text = fmt.Sprintf("The curve against strength is flat within its noise in %s; a mean of %s in the weakest class, or of %s in the strongest, would have been seen in each crystal with 80 %% power.%s",
+	a.Text = fmt.Sprintf("The curve against strength is flat within its noise in %s; the mean of the weakest class is known to within %s, that of the strongest to within %s (95 %%), in the crystal where they are known worst.%s",
 		crystalsOf(len(known), list), leastClass(list, false), leastClass(list, true), units)
 	return a
 }
 
-// leastClass is the contrast of the weakest or strongest class that would have been seen
-// in the crystal where it is known worst.
+// leastClass is the half width of the interval of the weakest or strongest class in the
+// crystal where it is known worst.
 func leastClass(list []*ContrastResult, strongest bool) string {
-	worst := math.Inf(-1)
+	worst := math.NaN()
 	for _, c := range list {
 		k := c.Classes.Floor
 		if strongest {
 			k = c.Classes.Top
 		}
-		if half := (k.Hi - k.Lo) / 2; !math.IsNaN(half) {
-			worst = math.Max(worst, half/zOf(0.95))
+		if half := (k.Hi - k.Lo) / 2; math.IsNaN(worst) || half > worst {
+			worst = half
 		}
 	}
-	return short(size.MinimumVisible(math.Abs(worst), 0.95, 0.8))
+	return short(worst)
 }
 
 // jointly gives the p-values of the curves that were tested, the number of crystals
@@ -165,8 +165,8 @@ func leastClass(list []*ContrastResult, strongest bool) string {
 func jointly(list []*ContrastResult) ([]float64, error) {
 	var p []float64
 	for _, c := range list {
-		if !math.IsNaN(c.Strength.P) {
-			p = append(p, c.Strength.P)
+		if !math.IsNaN(c.Strength.PStrength) {
+			p = append(p, c.Strength.PStrength)
 		}
 	}
 	return resample.Holm(p)
@@ -174,7 +174,7 @@ func jointly(list []*ContrastResult) ([]float64, error) {
 
 func answerResolution(list []*ContrastResult) Answer {
 	a := Answer{Question: "Does it depend on resolution?", Section: "resolution", Verdict: VerdictNo}
-	seen, known := 0, 0
+	both, one, known := 0, 0, 0
 	for _, c := range list {
 		if !math.IsNaN(c.Resolution.DeltaB) {
 			known++
@@ -185,8 +185,12 @@ func answerResolution(list []*ContrastResult) Answer {
 	for _, c := range list {
 		r := c.Resolution
 		worst = math.Max(worst, (r.DeltaBHi-r.DeltaBLo)/2/zOf(0.95))
-		if side(r.DeltaB, r.DeltaBLo, r.DeltaBHi, 0, f) != 0 {
-			seen++
+		sums, scale := side(r.DeltaB, r.DeltaBLo, r.DeltaBHi, 0, f), fittedSide(&r, f)
+		switch {
+		case sums != 0 && (sums == scale || math.IsNaN(r.FittedBSE)):
+			both++
+		case sums != 0 || scale != 0:
+			one++
 		}
 		said := span(r.DeltaB, r.DeltaBLo, r.DeltaBHi) + " \u00c5\u00b2"
 		if r.Reconciled != "" {
@@ -195,16 +199,26 @@ func answerResolution(list []*ContrastResult) Answer {
 		a.Detail = append(a.Detail, label(c)+" "+said)
 	}
 	const below = " Below, B of the thick position minus B of the thin in \u00c5\u00b2, twice: by sums of intensity in shells, which few strong reflections carry and in which curb and offset count, and by the fitted scale, which weighs every reflection by its error."
+	const alike = " A B factor, radiation damage, redistribution by thickness, background and saturation of the detector look alike here; whether B goes with the dose stands in the ledger."
 	switch {
 	case known == 0:
 		a.Verdict, a.Text = VerdictUnknown, "The growth of the ratio with resolution could not be estimated."
-	case seen > 0:
+	case both > 0:
 		a.Verdict = VerdictYes
-		a.Text = fmt.Sprintf("The ratio of the positions falls or rises with resolution in %s. A B factor, radiation damage, redistribution by thickness, background and saturation of the detector look alike here.", crystalsOf(seen, list)) + below
+		a.Text = fmt.Sprintf("The ratio of the positions falls or rises with resolution in %s.", crystalsOf(both, list)) + alike + below
+	case one > 0:
+		a.Verdict = VerdictUnsure
+		a.Text = fmt.Sprintf("In %s one of two estimates of a trend with resolution is clear of 0 and the other is not, or says the opposite.", crystalsOf(one, list)) + alike + below
 	default:
-		a.Text = fmt.Sprintf("No trend with resolution is seen; a difference in B of %s \u00c5\u00b2 would have been seen in each crystal with 80 %% power.", short(size.MinimumVisible(worst, 0.95, 0.8))) + below
+		a.Text = fmt.Sprintf("No trend with resolution is seen; a difference in B of %s \u00c5\u00b2 would have been seen in each crystal with 80 %% power.", short(visible(worst, f))) + below
 	}
 	return a
+}
+
+// fittedSide is on which side of 0 the B of the scale lies.
+func fittedSide(r *Resolution, f float64) int {
+	half := zOf(0.95) * r.FittedBSE
+	return side(r.FittedB, r.FittedB-half, r.FittedB+half, 0, f)
 }
 
 func answerThickness(r *Result) *Answer {
@@ -282,8 +296,16 @@ func span(v, lo, hi float64) string {
 	return fmt.Sprintf("%s (%s to %s)", short(v), short(lo), short(hi))
 }
 
-// pm writes a value with its standard uncertainty.
-func pm(v, su float64) string { return short(v) + " \u00b1 " + short(su) }
+// within95 writes a value and its 95 % interval, by its standard uncertainty.
+func within95(v, su float64) string { return span(v, v-zOf(0.95)*su, v+zOf(0.95)*su) }
+
+// percentOf writes a share; a dash where there is none.
+func percentOf(share float64) string {
+	if math.IsNaN(share) {
+		return "\u2013"
+	}
+	return fmt.Sprintf("%.0f %%", 100*share)
+}
 
 // short writes a number with three decimals, or three digits when it is large.
 func short(v float64) string {

@@ -124,7 +124,7 @@ func TestAnswerExchangeAllowsForCrystals(t *testing.T) {
 func TestAnswersAllowForCrystals(t *testing.T) {
 	curve := func(p ...float64) (list []*ContrastResult) {
 		for _, v := range p {
-			list = append(list, &ContrastResult{StrengthAxis: "crystals", Strength: Curve{P: v}})
+			list = append(list, &ContrastResult{StrengthAxis: "crystals", Strength: Curve{PStrength: v}})
 		}
 		return list
 	}
@@ -138,7 +138,7 @@ func TestAnswersAllowForCrystals(t *testing.T) {
 	}
 	b := func(z ...float64) (list []*ContrastResult) {
 		for _, v := range z {
-			list = append(list, &ContrastResult{Resolution: Resolution{DeltaB: v, DeltaBLo: v - 1.96, DeltaBHi: v + 1.96},
+			list = append(list, &ContrastResult{Resolution: Resolution{DeltaB: v, DeltaBLo: v - 1.96, DeltaBHi: v + 1.96, FittedB: v, FittedBSE: 1},
 				Correlation: Correlation{R: 1, Lo: 0.9, Hi: 1.1}, MomentRatio: MomentRatio{M: v, Lo: v - 1.96, Hi: v + 1.96}})
 		}
 		return list
@@ -155,6 +155,17 @@ func TestAnswersAllowForCrystals(t *testing.T) {
 		}
 		if a := answerResolution(b(c.z...)); a.Verdict != c.resolved {
 			t.Errorf("resolution, z %v: %q: %s", c.z, a.Verdict, a.Text)
+		}
+	}
+	// Sums by shell and the fitted scale must say the same.
+	for _, c := range []struct {
+		fitted, se float64
+		verdict    string
+	}{{2.3, 1, VerdictYes}, {1, 1, VerdictUnsure}, {-2.3, 1, VerdictUnsure}, {0, math.NaN(), VerdictYes}} {
+		list := b(2.3)
+		list[0].Resolution.FittedB, list[0].Resolution.FittedBSE = c.fitted, c.se
+		if a := answerResolution(list); a.Verdict != c.verdict {
+			t.Errorf("sums at 2.3, scale at %g +- %g: %q: %s", c.fitted, c.se, a.Verdict, a.Text)
 		}
 	}
 }

@@ -33,7 +33,7 @@ func answerExchange(r *Result, list []*ContrastResult) Answer {
 		return asToThickness(bracketAnswer(a, list), list)
 	}
 	together := ""
-	limit := fmt.Sprintf(" An exchange of m = %s would have been seen in each crystal with 80 %% power", short(worst))
+	limit := fmt.Sprintf(" An exchange of m = %s would have been seen in each crystal with 80 %% power", short(worst*visible(1, f)/visible(1, 1)))
 	if p := r.Crystals; p != nil && p.N > 1 && !math.IsNaN(p.InThese.Value) {
 		together = fmt.Sprintf(" In these crystals together m = %s; in crystals like these m = %s.", span(p.InThese.Value, p.InThese.Lo, p.InThese.Hi), span(p.LikeThese.Value, p.LikeThese.Lo, p.LikeThese.Hi))
 		limit += fmt.Sprintf(", and of %s in the crystals together", short(size.MinimumVisible((p.InThese.Hi-p.InThese.Lo)/2/zOf(0.95), 0.95, 0.8)))

@@ -6,7 +6,6 @@ import (
 	"strings"
 
 	"thinward/analysis/intensity"
-	"thinward/analysis/size"
 )
 
 func answerForbidden(r *Result, list []*ContrastResult) Answer {
@@ -23,7 +22,7 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 		known++
 		su := math.Hypot(thick.SU, thin.SU)
 		z, worst = append(z, (thick.Ratio-thin.Ratio)/su), math.Max(worst, su)
-		a.Detail = append(a.Detail, fmt.Sprintf("%s %s to %s", label(c), pm(thin.Ratio, thin.SU), pm(thick.Ratio, thick.SU)))
+		a.Detail = append(a.Detail, fmt.Sprintf("%s thin %s, thick %s", label(c), within95(thin.Ratio, thin.SU), within95(thick.Ratio, thick.SU)))
 	}
 	f := asking(list, known)
 	for _, v := range z {
@@ -31,7 +30,7 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 			up++
 		}
 	}
-	const below = " Below, their mean over the local mean, thin to thick."
+	const below = " Below, their mean over the local mean."
 	pair := list[0].ThickCrystal != ""
 	null, lifted := centringNull(r, list, 2*f)
 	switch {
@@ -59,7 +58,7 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 		if pair {
 			what = "They are not seen to be stronger in the thick position"
 		}
-		a.Text = fmt.Sprintf("%s; one of %s of the local mean would have been seen in each %s with 80 %% power.", what, short(size.MinimumVisible(worst, 0.95, 0.8)), alike(pair)) + below
+		a.Text = fmt.Sprintf("%s; one of %s of the local mean would have been seen in each %s with 80 %% power.", what, short(visible(worst, 2*f/zOf(0.95))), alike(pair)) + below
 	}
 	if null != "" {
 		a.Detail = append(a.Detail, null)
@@ -103,7 +102,7 @@ func centringNull(r *Result, list []*ContrastResult, z float64) (text string, li
 		if thin == nil || thick == nil {
 			continue
 		}
-		parts = append(parts, fmt.Sprintf("%s %s to %s", label(c), pm(thin.Ratio, thin.SU), pm(thick.Ratio, thick.SU)))
+		parts = append(parts, fmt.Sprintf("%s thin %s, thick %s", label(c), within95(thin.Ratio, thin.SU), within95(thick.Ratio, thick.SU)))
 		lifted = lifted || thick.Ratio-thin.Ratio > z*math.Hypot(thin.SU, thick.SU)
 	}
 	if len(parts) == 0 {

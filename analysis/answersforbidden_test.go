@@ -51,7 +51,7 @@ func TestAnswerForbiddenLeavesTheCentringOut(t *testing.T) {
 		says    []string
 	}{
 		{"centring alone, rising", append(rows("all", false, intensity.OnlyCentring, math.NaN(), math.NaN()), rows("C centring", true, "", 0.023, 0.111)...),
-			VerdictUnknown, []string{"No screw axis or glide plane forbids any", "no lattice point", null + "0.023 \u00b1 0.003 to 0.111"}},
+			VerdictUnknown, []string{"No screw axis or glide plane forbids any", "no lattice point", null + "thin 0.023 (0.017 to 0.029), thick 0.111"}},
 		{"both rise", append(rows("all", false, "", 0.01, 0.1), rows("C centring", true, "", 0.023, 0.111)...),
 			VerdictUnsure, []string{"so is what was measured where the centring forbids", null}},
 		{"screw axes rise, the null does not", append(rows("all", false, "", 0.01, 0.1), rows("C centring", true, "", 0.001, 0.002)...),

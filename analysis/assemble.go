@@ -7,6 +7,7 @@ import (
 
 	"gonum.org/v1/gonum/stat/distuv"
 
+	"thinward/analysis/intensity"
 	"thinward/analysis/size"
 )
 
@@ -103,7 +104,8 @@ func (s *Study) PairRows() []PairRow {
 
 func (s *Study) rows(x *Compared) []PairRow {
 	cat := s.intake.Catalogue
-	phi := [2]map[int32]float64{meanAngles(x.thin.Unique, x.thin.Phi), meanAngles(x.thick.Unique, x.thick.Phi)}
+	phi := [2]map[int32]float64{oneAngle(x.thin.Unique, x.thin.Phi), oneAngle(x.thick.Unique, x.thick.Phi)}
+	tilt := [2]map[int32]float64{s.meanTilts(x.Contrast.Crystal, x.Contrast.Thin, x.thin), s.meanTilts(x.Contrast.ThickCrystal, x.Contrast.Thick, x.thick)}
 	eps, ivw := x.Pairs.Eps(), x.Pairs.InverseVariance(0).Z
 	out := make([]PairRow, x.Pairs.Len())
 	for i, u := range x.Pairs.Unique {
@@ -112,7 +114,7 @@ func (s *Study) rows(x *Compared) []PairRow {
 		r := &out[i]
 		*r = PairRow{
 			Crystal: x.Result.Crystal, Thin: x.Result.Thin, Thick: x.Result.Thick, HKL: cat.HKL[u], D: 1 / (2 * math.Sqrt(p.S2[i])),
-			PhiThin: angleOf(phi[0], u), PhiThick: angleOf(phi[1], u), NThin: int(p.NThin[i]), NThick: int(p.NThick[i]),
+			PhiThin: angleOf(phi[0], u), PhiThick: angleOf(phi[1], u), TiltThin: angleOf(tilt[0], u), TiltThick: angleOf(tilt[1], u), NThin: int(p.NThin[i]), NThick: int(p.NThick[i]),
 			JThin: p.Thin[i], SUThin: math.Sqrt(p.VarThin[i]), JThick: p.Thick[i], SUThick: math.Sqrt(p.VarThick[i]),
 			Strength: x.Strengths.Z[i], Axis: x.Strengths.Axis.String(), InverseVariance: ivw[i],
 			DI: p.Thin[i] - p.Thick[i], SUDI: su, Eps: eps[i], Z: (p.Thin[i] - p.Thick[i]) / su, Class: classOf(x.Strengths.Z[i]),
@@ -133,19 +135,45 @@ func (s *Study) rows(x *Compared) []PairRow {
 	return out
 }
 
-func meanAngles(unique []int32, phi []float64) map[int32]float64 {
-	if phi == nil {
+// oneCrossing is the widest range of angles, in degrees, of observations that have one angle.
+const oneCrossing = 5
+
+// oneAngle is the mean rotation angle of each unique reflection whose observations lie within
+// oneCrossing; equivalents met far apart have no angle in common.
+func oneAngle(unique []int32, phi []float64) map[int32]float64 {
+	type span struct{ sum, n, lo, hi float64 }
+	of := map[int32]*span{}
+	for o, v := range phi {
+		a := of[unique[o]]
+		if a == nil {
+			a = &span{lo: v, hi: v}
+			of[unique[o]] = a
+		}
+		a.sum, a.n, a.lo, a.hi = a.sum+v, a.n+1, min(a.lo, v), max(a.hi, v)
+	}
+	out := map[int32]float64{}
+	for u, a := range of {
+		if a.hi-a.lo <= oneCrossing {
+			out[u] = a.sum / a.n
+		}
+	}
+	return out
+}
+
+// meanTilts is the mean angle between beam and slab normal of the observations of each unique
+// reflection; nil where the angle at which the slab faces the beam is not given.
+func (s *Study) meanTilts(crystal, position int, x *intensity.Scaled) map[int32]float64 {
+	p := &s.Series.Crystals[crystal].Positions[position]
+	if x.Phi == nil || !p.HasTiltZero {
 		return nil
 	}
-	sum, n := map[int32]float64{}, map[int32]float64{}
-	for o, u := range unique {
-		sum[u] += phi[o]
+	zero := s.intake.Positions[crystal][position].Turn.Of(p.TiltZeroDeg)
+	out, n := map[int32]float64{}, map[int32]float64{}
+	for o, u := range x.Unique {
 		n[u]++
+		out[u] += (tiltOf(x.Phi[o], zero) - out[u]) / n[u]
 	}
-	for u := range sum {
-		sum[u] /= n[u]
-	}
-	return sum
+	return out
 }
 
 func angleOf(m map[int32]float64, u int32) float64 {

@@ -140,12 +140,14 @@ func repeats(otherwise int) int {
 
 // three, two and one are the crystals of the series, curb and offset those that three
 // find.
-type covered struct{ three, two, one, curb, offset hits }
+// pooled and like are those of the three together and of crystals like them.
+type covered struct{ three, two, one, curb, offset, pooled, like hits }
 
 // reply is what one series says.
 type reply struct {
 	three, two, one []*ContrastResult
 	offset          []float64 // of the thick position by crystal, as the model means it
+	together        *CrystalsResult
 }
 
 func (c cell) measure(t *testing.T, n int, first uint64) *covered {
@@ -160,7 +162,9 @@ func (c cell) measure(t *testing.T, n int, first uint64) *covered {
 			return err
 		}
 		got[k].offset = c.offsets(t, v, first+uint64(k))
+		var list []*Compared
 		read := func(s *Study, into *[]*ContrastResult) error {
+			list = nil
 			for _, contrast := range s.primaryContrasts() {
 				x, err := s.paired(ctx, contrast)
 				if err != nil {
@@ -170,12 +174,14 @@ func (c cell) measure(t *testing.T, n int, first uint64) *covered {
 					return err
 				}
 				*into = append(*into, &x.Result)
+				list = append(list, x)
 			}
 			return nil
 		}
 		if err := read(s, &got[k].three); err != nil {
 			return err
 		}
+		got[k].together = s.pool(list)
 		if err := read(some(t, s, 0, 2), &got[k].two); err != nil {
 			return err
 		}
@@ -261,7 +267,7 @@ func (s *Study) leadingOnly(ctx context.Context, x *Compared, check bool) error 
 }
 
 func (v *covered) take(c cell, a *reply) {
-	for _, h := range []*hits{&v.three, &v.two, &v.one, &v.curb, &v.offset} {
+	for _, h := range []*hits{&v.three, &v.two, &v.one, &v.curb, &v.offset, &v.pooled, &v.like} {
 		h.open()
 	}
 	for i, r := range a.three {
@@ -269,6 +275,8 @@ func (v *covered) take(c cell, a *reply) {
 		v.curb.add(r.Curb.Q, r.Curb.Lo, r.Curb.Hi, c.curb)
 		v.offset.add(r.Offset.O, r.Offset.Lo, r.Offset.Hi, a.offset[i])
 	}
+	v.pooled.add(a.together.InThese.Value, a.together.InThese.Lo, a.together.InThese.Hi, c.m)
+	v.like.add(a.together.LikeThese.Value, a.together.LikeThese.Lo, a.together.LikeThese.Hi, c.m)
 	for _, r := range a.two {
 		v.two.add(r.Exchange.M, r.Exchange.Lo, r.Exchange.Hi, c.m)
 	}
@@ -283,15 +291,17 @@ func (v *covered) join(w *covered) {
 	v.one.join(&w.one)
 	v.curb.join(&w.curb)
 	v.offset.join(&w.offset)
+	v.pooled.join(&w.pooled)
+	v.like.join(&w.like)
 }
 
 // header names the columns of row.
-const header = "contrasts of three | three crystals cover | (95 %) | bias of m | claimed over true error | two crystals cover | bias of m | one: bracket holds m | curb covers | bias of q | claimed over true error | offset covers | bias of o |"
+const header = "contrasts of three | three crystals cover | (95 %) | bias of m | claimed over true error | two crystals cover | bias of m | one: bracket holds m | curb covers | bias of q | claimed over true error | offset covers | bias of o | together cover m | claimed over true error | like these cover m |"
 
 func (v *covered) row() string {
 	lo, hi := v.three.interval()
-	return fmt.Sprintf("%d | %.3f | %.3f-%.3f | %+.4f | %.2f | %.3f | %+.4f | %.3f | %.3f | %+.4f | %.2f | %.3f | %+.4f |", v.three.n, v.three.share(), lo, hi, v.three.bias(), v.three.ratio(),
-		v.two.share(), v.two.bias(), v.one.share(), v.curb.share(), v.curb.bias(), v.curb.ratio(), v.offset.share(), v.offset.bias())
+	return fmt.Sprintf("%d | %.3f | %.3f-%.3f | %+.4f | %.2f | %.3f | %+.4f | %.3f | %.3f | %+.4f | %.2f | %.3f | %+.4f | %.3f | %.2f | %.3f |", v.three.n, v.three.share(), lo, hi, v.three.bias(), v.three.ratio(),
+		v.two.share(), v.two.bias(), v.one.share(), v.curb.share(), v.curb.bias(), v.curb.ratio(), v.offset.share(), v.offset.bias(), v.pooled.share(), v.pooled.ratio(), v.like.share())
 }
 
 // grid gathers kinds of series, each and by what they have in common.
@@ -332,14 +342,15 @@ func (g *grid) judge(t *testing.T) {
 		names []string
 		from  map[string]*covered
 	}{{"single kinds", g.names, g.cells}, {"kinds with one thing in common", g.grouped, g.common}} {
-		var three, two, curb []*hits
+		var three, two, curb, pooled []*hits
 		for _, name := range of.names {
 			v := of.from[name]
-			three, two, curb = append(three, &v.three), append(two, &v.two), append(curb, &v.curb)
+			three, two, curb, pooled = append(three, &v.three), append(two, &v.two), append(curb, &v.curb), append(pooled, &v.pooled)
 		}
 		judge(t, of.what+", m of three crystals", of.names, three)
 		judge(t, of.what+", m of two crystals", of.names, two)
 		judge(t, of.what+", q of three crystals", of.names, curb)
+		judge(t, of.what+", m of three crystals together", of.names, pooled)
 	}
 	// A bracket may hold m more often than an interval.
 	if s := g.common["all"].one.share(); s < leastCover {

@@ -73,7 +73,7 @@ func swappedOrder(m, q float64) float64 {
 
 // swapError is the standard error of m of the swapped pair less -m/(1-m). The two fits
 // share their reflections, so it is found by leaving out a twentieth of them in turn from both
-// (the grouped jackknife: Quenouille 1956, Biometrika 43:353). Where it exceeds the errors that
+// (the jackknife by groups: Tukey 1958, Ann. Math. Stat. 29:614). Where it exceeds the errors that
 // both fits claim, added up, it speaks against these claims and for no agreement: those
 // are the ones taken then, unless the axis is weak and its errors known to be too short.
 func (r *reading) swapError(ctx context.Context, swapped *difference.Pairs) (float64, error) {

@@ -42,7 +42,7 @@ func (s *Study) curves(ctx context.Context, x *Compared) error {
 		if ctx.Err() != nil {
 			return ctx.Err()
 		}
-		x.Result.Strength = Curve{P: math.NaN(), Why: err.Error()}
+		x.Result.Strength = Curve{P: math.NaN(), PStrength: math.NaN(), PResolution: math.NaN(), Why: err.Error()}
 		return nil
 	}
 	x.Band = b
@@ -57,7 +57,13 @@ func (s *Study) curves(ctx context.Context, x *Compared) error {
 }
 
 func curveResult(b *curve.Banded) Curve {
-	c := Curve{Grid: b.Grid, Mean: b.Mean, Lo: b.Lo, Hi: b.Hi, LoSim: b.LoSim, HiSim: b.HiSim, P: b.P, Level: b.Level}
+	c := Curve{Grid: b.Grid, Mean: b.Mean, Lo: b.Lo, Hi: b.Hi, LoSim: b.LoSim, HiSim: b.HiSim, P: b.P, PStrength: math.NaN(), PResolution: math.NaN(), Level: b.Level}
+	if b.Flip != nil {
+		c.PStrength = slices.Min(b.Flip.Adjusted[0])
+		if len(b.Flip.Adjusted) > 1 {
+			c.PResolution = slices.Min(b.Flip.Adjusted[1])
+		}
+	}
 	for _, n := range b.N {
 		c.Window = max(c.Window, n)
 	}

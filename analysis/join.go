@@ -65,13 +65,17 @@ func (s *Study) primaries() []*Compared {
 	return out
 }
 
-func (s *Study) poolCrystals() *CrystalsResult {
+func (s *Study) poolCrystals() *CrystalsResult { return s.pool(s.primaries()) }
+
+// pool says what contrasts of several crystals say together.
+func (s *Study) pool(contrasts []*Compared) *CrystalsResult {
 	r := &CrystalsResult{InThese: none(), LikeThese: none(), Q: math.NaN(), QP: math.NaN(), Tau2: math.NaN(), I2: math.NaN(),
 		PageL: math.NaN(), PageP: math.NaN(), PageBest: math.NaN(), MeanAgree: math.NaN()}
-	var m, se []float64
+	var m, se, same []float64
 	var names []string
+	var list []*Compared
 	agree, n := 0.0, 0
-	for _, x := range s.primaries() {
+	for _, x := range contrasts {
 		e := x.Result.Exchange
 		if a := x.Result.AxisAgreement; !math.IsNaN(a) {
 			agree += a
@@ -81,6 +85,7 @@ func (s *Study) poolCrystals() *CrystalsResult {
 			continue
 		}
 		m, se, names = append(m, e.M), append(se, e.SE), append(names, x.Result.Crystal)
+		list, same = append(list, x), append(same, 1)
 	}
 	if n > 0 {
 		r.MeanAgree = agree / float64(n)
@@ -91,7 +96,8 @@ func (s *Study) poolCrystals() *CrystalsResult {
 		r.Why = "m is estimable in no crystal"
 		return r
 	}
-	e, err := pool.Join(m, se, s.settings.Level)
+	r.SharedSE = sharedError(list, same, se)
+	e, err := pool.JoinSharing(m, se, r.SharedSE, s.settings.Level)
 	if err != nil {
 		r.Why = err.Error()
 		return r
@@ -107,7 +113,7 @@ func (s *Study) poolCrystals() *CrystalsResult {
 	if len(m) == 1 {
 		r.LikeThese.Why = "one crystal says nothing of others"
 	}
-	left, err := pool.LeaveOneOut(m, se, s.settings.Level)
+	left, err := pool.LeaveOneOut(m, se, r.SharedSE, s.settings.Level)
 	if err == nil {
 		for i, l := range left {
 			r.LeaveOut = append(r.LeaveOut, Left{Without: names[i], M: interval(l.Fixed, l.FixedLo, l.FixedHi, "")})
@@ -121,7 +127,8 @@ func (s *Study) poolCrystals() *CrystalsResult {
 // thinnest position share its errors.
 func (s *Study) growth(ctx context.Context) (*ThicknessResult, error) {
 	t := &ThicknessResult{Slope: none()}
-	var slopes, errors []float64
+	var slopes, errors, perM []float64
+	var list []*Compared
 	for i := range s.Series.Crystals {
 		line, se, err := s.crystalLine(ctx, i)
 		if err != nil {
@@ -133,13 +140,16 @@ func (s *Study) growth(ctx context.Context) (*ThicknessResult, error) {
 		t.Lines = append(t.Lines, *line)
 		if line.Why == "" {
 			slopes, errors = append(slopes, line.Slope.Value), append(errors, se)
+			x := s.againstThinnest(i)[0]
+			list = append(list, x)
+			perM = append(perM, 1/((1-x.Fit.M.Value)*(line.T[len(line.T)-1]-line.T[0])/100))
 		}
 	}
 	if len(slopes) == 0 {
 		t.Why = "no crystal has an estimable growth"
 		return t, nil
 	}
-	e, err := pool.Join(slopes, errors, s.settings.Level)
+	e, err := pool.JoinSharing(slopes, errors, sharedError(list, perM, errors), s.settings.Level)
 	if err != nil {
 		t.Why = err.Error()
 		return t, nil
@@ -234,9 +244,13 @@ func (l *ThicknessLine) ascend() {
 	l.T, l.Mu, l.MuSE = take(l.T, order), take(l.Mu, order), take(l.MuSE, order)
 }
 
-// muCovariance draws reflections of the whole catalogue once for all contrasts
-// of a crystal, so that what they share shows in the covariance.
+// muCovariance is that of the deletions of all contrasts of a crystal; where one has none,
+// reflections of the whole catalogue are drawn once for all contrasts, so that what they share
+// shows in the covariance.
 func (s *Study) muCovariance(ctx context.Context, list []*Compared) (*mat.SymDense, error) {
+	if cov := deletedMu(list); cov != nil {
+		return cov, nil
+	}
 	set := s.sizeSettings()
 	legs := make([][]*size.Input, len(list))
 	for k, x := range list {

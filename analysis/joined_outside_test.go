@@ -55,8 +55,8 @@ func TestJoinedCrystals(t *testing.T) {
 	floatcmp.Check(t, "three crystals of one sign", few.SignP, 0.25, 1e-15, 0)
 }
 
-// Beside a no stands the largest of the smallest m that each crystal would have shown,
-// and that of the crystals together: 2.8016 standard errors of the fixed effect (R
+// Beside a no stands the largest of the smallest m that each crystal would have shown, three
+// being asked (R qnorm(1-.025/3) + qnorm(.8) = 3.2356 for 2.8016), and that of the crystals together: 2.8016 standard errors of the fixed effect (R
 // qnorm(.975) + qnorm(.8)).
 func TestNothingFoundSaysWhatWouldBeSeen(t *testing.T) {
 	list, pooled := crystalsWith(0.001, -0.002, 0.001)
@@ -64,7 +64,7 @@ func TestNothingFoundSaysWhatWouldBeSeen(t *testing.T) {
 		c.MinimumM = 0.0281 + 0.01*float64(i)
 	}
 	a := answerExchange(&Result{Crystals: pooled}, list)
-	if a.Verdict != VerdictNo || !strings.Contains(a.Text, "m = 0.048 would have been seen in each crystal with 80 % power") || !strings.Contains(a.Text, "of 0.016 in the crystals together") {
+	if a.Verdict != VerdictNo || !strings.Contains(a.Text, "m = 0.056 would have been seen in each crystal with 80 % power") || !strings.Contains(a.Text, "of 0.016 in the crystals together") {
 		t.Errorf("%s: %s", a.Verdict, a.Text)
 	}
 }

@@ -96,7 +96,7 @@ var sizeMutations = []mutation{
 		name: "the bracket leaves one slope out", file: "analysis/sizes.go", pkg: "analysis",
 		old:      `b.Hi = max(b.Thin.Hi, b.Thick.Hi, b.ThinSlope.Hi, b.ThickSlope.Hi)`,
 		new:      `b.Hi = max(b.Thin.Hi, b.Thick.Hi)`,
-		killedBy: []string{"TestBracketHoldsWhatTheModelMisses"},
+		killedBy: []string{"TestBracketHoldsWhatEitherReadingMisses"},
 	},
 	{
 		name: "a curb without an inverse is allowed for in the swapped pair", file: "analysis/controlsswap.go", pkg: "analysis",

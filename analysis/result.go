@@ -143,6 +143,7 @@ type CrystalsResult struct {
 	N         int      `json:"n"`
 	InThese   Interval `json:"in_these_crystals"`
 	LikeThese Interval `json:"in_crystals_like_these"`
+	SharedSE  float64  `json:"shared_se"` // of what the errors of all crystals have in common
 	Q         float64  `json:"q"`
 	QP        float64  `json:"q_p"`
 	Tau2      float64  `json:"tau2"`

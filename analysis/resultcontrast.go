@@ -51,18 +51,23 @@ type MomentRatio struct {
 	Why string  `json:"why,omitempty"`
 }
 
-// Curve is a banded curve over strength. Mean and its bands are in eps units.
+// Curve is a banded curve over strength. Mean and its bands are in eps units. P is joint
+// over windows along strength and along resolution; PStrength and PResolution are the
+// smallest of either kind, adjusted for all windows of both (single-step maximum: Westfall &
+// Young 1993), so that P is the smaller of the two. NaN where nothing was tested.
 type Curve struct {
-	Grid   []float64 `json:"grid"`
-	Mean   []float64 `json:"mean"`
-	Lo     []float64 `json:"lo"`
-	Hi     []float64 `json:"hi"`
-	LoSim  []float64 `json:"lo_sim"`
-	HiSim  []float64 `json:"hi_sim"`
-	P      float64   `json:"p"`
-	Window int       `json:"window"`
-	Level  float64   `json:"level"`
-	Why    string    `json:"why,omitempty"`
+	Grid        []float64 `json:"grid"`
+	Mean        []float64 `json:"mean"`
+	Lo          []float64 `json:"lo"`
+	Hi          []float64 `json:"hi"`
+	LoSim       []float64 `json:"lo_sim"`
+	HiSim       []float64 `json:"hi_sim"`
+	P           float64   `json:"p"`
+	PStrength   float64   `json:"p_strength"`
+	PResolution float64   `json:"p_resolution"`
+	Window      int       `json:"window"`
+	Level       float64   `json:"level"`
+	Why         string    `json:"why,omitempty"`
 }
 
 // Resolution is ln(<I_thick>/<I_thin>) by shell of 1/d^2 with one overall scale,

@@ -30,7 +30,7 @@ func Negatives(near [3]int, observed []int, expected []float64) Finding {
 	below, above, next := float64(near[0]), float64(near[1]), float64(near[2])
 	want := math.Min(above*above/math.Max(next, 1)*math.Exp(-0.25), 4*above)
 	z := (want - below) / math.Sqrt(want+want*want*(4/math.Max(above, 1)+1/math.Max(next, 1)))
-	f := Finding{Value: below / want, Unit: "of the expected number just below zero", Verdict: Fine}
+	f := Finding{Value: below / want, Unit: "density of I/sigma just below zero over that just above", Verdict: Fine}
 	counts := ""
 	for k := range observed {
 		if k > 0 {
@@ -67,7 +67,7 @@ func beyond(v, lo, hi float64) bool { return math.Abs(v) > clearZ/1.96*(hi-lo)/2
 // lowest third in s^2, with its 95 % interval. Caution beyond 3.5 standard errors;
 // fails beyond 0.05 too, where shell means of weak shells are mostly offset.
 func OffsetOf(o, lo, hi float64) Finding {
-	f := Finding{Value: o, Unit: "of the mean of the strong third", Verdict: Fine, Why: "no additive offset between the positions is clear of its error; the fitted m allows for one"}
+	f := Finding{Value: o, Unit: "of the mean of the strong third", Verdict: Fine, Why: "no additive offset between the positions is beyond 3.5 errors, as so many are asked; the fitted m allows for one"}
 	switch {
 	case math.IsNaN(o):
 		return unknown("an offset is not part of the model that leads")
@@ -139,10 +139,10 @@ func HighCounts(forms []CurbForm) Finding {
 		told = told && (k == best || f.Refused)
 	}
 	lead := forms[best]
-	out := Finding{Value: lead.Q, Unit: "q of the form that fits best, " + lead.Name, Verdict: Fine}
+	out := Finding{Value: lead.Q, Unit: "q where forms of the curb are compared, best by " + lead.Name, Verdict: Fine}
 	switch {
 	case !(lead.Q > 0 && beyond(lead.Q, lead.Lo, lead.Hi)):
-		out.Why = "no loss of the strongest reflections is clear of its error"
+		out.Why = "beyond the exchange no loss of the strongest reflections is beyond 3.5 errors, as so many are asked"
 	case rate < 0:
 		out.Verdict, out.Why = Caution, "a loss of the strongest is seen; whether it goes with the count rate of the detector is not known"
 	case forms[rate].Refused:

@@ -32,7 +32,7 @@ func GiantsOf(lead float64, moves []Move) Finding {
 		}
 	}
 	f := Finding{Value: worst.Change, Unit: "change of m", Verdict: Fine,
-		Why: fmt.Sprintf("m, read by the instrument, is %s with all reflections and changes by %s +- %s without the %d reflections above %g local means", num(lead), num(worst.Change), num(worst.SE), worst.LeftOut, worst.Above)}
+		Why: fmt.Sprintf("m, read by one slope, is %s with all reflections and changes by %s +- %s without the %d reflections above %g local means", num(lead), num(worst.Change), num(worst.SE), worst.LeftOut, worst.Above)}
 	if math.Abs(worst.Change) > clearZ*worst.SE && math.Abs(worst.Change) > 0.01 {
 		f.Verdict = Caution
 		f.Why += ": it hangs on the strongest, as a curb, a loss at high counts or an outlier makes it; look at the curve and at the models with a curb"

@@ -11,7 +11,7 @@ import (
 // of it (common practice, no source).
 func ScaleRatio(k, t float64) Finding {
 	f := Finding{Value: k / t, Unit: "scale ratio over thickness ratio", Verdict: Fine,
-		Why: fmt.Sprintf("scale ratio %.2f, thickness ratio %.2f: what illuminated volume and inelastic loss allow", k, t)}
+		Why: fmt.Sprintf("scale ratio %.2f, thickness ratio %.2f: what illuminated volume allows, with inelastic loss from none to strong", k, t)}
 	if !(k/t <= 1.5 && k/t >= 0.25) {
 		f.Verdict = Caution
 		f.Why = fmt.Sprintf("scale ratio %.2f does not go with the thickness ratio %.2f: another exposure or illuminated volume, strong inelastic loss, or a wrong thickness", k, t)
@@ -199,7 +199,7 @@ func IceOf(rings []Ring) Finding {
 		}
 	}
 	f := Finding{Value: worst.Excess, Unit: "of the local mean, thin minus thick", Verdict: Fine,
-		Why: fmt.Sprintf("no ring of ice differs between the positions (largest at %.2f A, z = %.1f)", worst.D, worst.Z)}
+		Why: fmt.Sprintf("no ring of ice differs between the positions by more than 4 errors and 5 %% (most at %.2f A, z = %.1f)", worst.D, worst.Z)}
 	if math.Abs(worst.Z) > 4 && math.Abs(worst.Excess) > 0.05 {
 		f.Verdict = Caution
 		which := "thick"

@@ -41,19 +41,35 @@ type Effects struct {
 // beyond the estimates).
 const fewest = 5
 
-// Join pools the estimates y with standard errors se at the given confidence
-// level (0 = 0.95).
+// Join pools estimates that share nothing; see JoinSharing.
+func Join(y, se []float64, level float64) (*Effects, error) { return JoinSharing(y, se, 0, level) }
+
+// JoinSharing pools the estimates y with standard errors se at the given confidence
+// level (0 = 0.95), of which shared, a standard error, is that of something they have in
+// common: y_i = mu + common + own_i. What is common does not fall with the number of
+// estimates and makes none of them differ, so below se^2 stands for se^2 - shared^2, and
+// shared^2 is added to the squared error of every mean.
 //
 //	fixed: mu = sum w y / sum w, w = 1/se^2, SE = 1/sqrt(sum w)
 //	Q = sum w (y-mu)^2, tau^2 = max(0, (Q-df)/(sum w - sum w^2/sum w))   (DerSimonian & Laird 1986)
 //	random: w* = 1/(se^2+tau^2), SE^2 = sum w* (y-mu*)^2 / ((k-1) sum w*) (Hartung & Knapp 2001; Knapp & Hartung 2003)
 //
+// The weights are those of the best linear mean, since what is common moves all alike.
 // One estimate gives its own fixed effect and an unbounded random interval. An
-// empty list, unequal lengths, a value that is not finite and se <= 0 are errors.
-func Join(y, se []float64, level float64) (*Effects, error) {
+// empty list, unequal lengths, a value that is not finite, se <= 0 and a shared error that is
+// negative or not below every se are errors.
+func JoinSharing(y, se []float64, shared, level float64) (*Effects, error) {
 	if err := checkPairs(y, se); err != nil {
 		return nil, err
 	}
+	own := make([]float64, len(se))
+	for i, s := range se {
+		if !(shared >= 0 && shared < s) {
+			return nil, fmt.Errorf("pool: a shared error of %g beside %g of estimate %d: it must be smaller and not negative", shared, s, i)
+		}
+		own[i] = math.Sqrt(s*s - shared*shared)
+	}
+	se = own
 	if level == 0 {
 		level = 0.95
 	}
@@ -69,7 +85,7 @@ func Join(y, se []float64, level float64) (*Effects, error) {
 		sw2 += w * w
 	}
 	e.Fixed = weightedMean(y, se, 0)
-	e.FixedSE = 1 / math.Sqrt(sw)
+	e.FixedSE = math.Hypot(1/math.Sqrt(sw), shared)
 	z := distuv.UnitNormal.Quantile((1 + level) / 2)
 	e.FixedLo, e.FixedHi = e.Fixed-z*e.FixedSE, e.Fixed+z*e.FixedSE
 	df := float64(k - 1)
@@ -98,18 +114,20 @@ func Join(y, se []float64, level float64) (*Effects, error) {
 		ws += w
 		spread += w * d * d
 	}
-	e.NormalSE = 1 / math.Sqrt(ws)
-	e.RandomSE = math.Sqrt(spread / (df * ws))
+	normal, random := 1/math.Sqrt(ws), math.Sqrt(spread/(df*ws))
+	e.NormalSE, e.RandomSE = math.Hypot(normal, shared), math.Hypot(random, shared)
+	// What is common is known by its own error, not by the spread of so few.
 	t := distuv.StudentsT{Mu: 0, Sigma: 1, Nu: df}.Quantile((1 + level) / 2)
-	e.RandomLo, e.RandomHi = e.Random-t*e.RandomSE, e.Random+t*e.RandomSE
-	like := math.Max(e.RandomSE, e.NormalSE)
-	e.LikeLo, e.LikeHi = e.Random-t*like, e.Random+t*like
+	half := math.Hypot(t*random, z*shared)
+	e.RandomLo, e.RandomHi = e.Random-half, e.Random+half
+	half = math.Hypot(t*math.Max(random, normal), z*shared)
+	e.LikeLo, e.LikeHi = e.Random-half, e.Random+half
 	return e, nil
 }
 
-// LeaveOneOut returns the fixed effect without each estimate in turn; nil for
-// fewer than two.
-func LeaveOneOut(y, se []float64, level float64) ([]*Effects, error) {
+// LeaveOneOut returns the fixed effect without each estimate in turn, shared as in
+// JoinSharing; nil for fewer than two.
+func LeaveOneOut(y, se []float64, shared, level float64) ([]*Effects, error) {
 	if err := checkPairs(y, se); err != nil {
 		return nil, err
 	}
@@ -124,7 +142,7 @@ func LeaveOneOut(y, se []float64, level float64) ([]*Effects, error) {
 				a, b = append(a, y[j]), append(b, se[j])
 			}
 		}
-		e, err := Join(a, b, level)
+		e, err := JoinSharing(a, b, shared, level)
 		if err != nil {
 			return nil, err
 		}

@@ -238,7 +238,7 @@ func (f *fitter) lastWarnings(out *Fit) {
 		out.OutlierShare = append(out.OutlierShare, share)
 		if share > f.set.OutlierShare {
 			out.Warnings = append(out.Warnings, intensity.Warning{Code: "outliers", Where: where(p),
-				Text: fmt.Sprintf("%d observations (%.2g %%) have a relative weight below %.3g, more than %.3g %%: the noise model does not describe them",
+				Text: fmt.Sprintf("%d observations (%.2g %%) have a relative weight below %.3g, more than %.3g %%: they lie farther from the intensity that all positions share than their noise explains, by errors or by a real change with thickness",
 					c, 100*share, f.set.OutlierBelow, 100*f.set.OutlierShare)})
 		}
 		if f.joint[p] && !f.s.report && f.red.use[p].n > 0 {

@@ -88,7 +88,13 @@ func CompareCurbs(in *Input, w []float64, model Model, set *Settings) (*CurbComp
 		if !fit.Estimable {
 			return &CurbComparison{Why: fit.Why}, nil
 		}
-		sol := sys.solve(set)
+		// The jackknife of fit is not needed twice.
+		plain := Settings{AsFound: true}
+		if set != nil {
+			plain = *set
+			plain.AsFound = true
+		}
+		sol := sys.solve(&plain)
 		systems = append(systems, sys)
 		out.Rivals = append(out.Rivals, CurbRival{Form: form, Fit: fit})
 		if best == nil || sol.j < best.j {

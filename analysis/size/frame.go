@@ -144,18 +144,17 @@ func rowWeight(legs []*frame, i int) float64 {
 }
 
 // present returns legs without the rows that all of them lack, as a bootstrap draws a
-// third of the rows not at all.
-func present(legs []*frame) []*frame {
-	var rows []int
+// third of the rows not at all, and which rows these are; nil when it is all.
+func present(legs []*frame) (out []*frame, rows []int) {
 	for i := range legs[0].w {
 		if rowWeight(legs, i) > 0 {
 			rows = append(rows, i)
 		}
 	}
 	if len(rows) == len(legs[0].w) {
-		return legs
+		return legs, nil
 	}
-	out := make([]*frame, len(legs))
+	out = make([]*frame, len(legs))
 	for l, f := range legs {
 		in := *f.in
 		in.Shell = make([]int32, len(rows))
@@ -172,7 +171,7 @@ func present(legs []*frame) []*frame {
 		}
 		out[l] = &g
 	}
-	return out
+	return out, rows
 }
 
 // pick gives some rows of v; nil stays nil.

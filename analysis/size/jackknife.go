@@ -37,30 +37,37 @@ type deletion struct {
 	moved   []linearSums
 }
 
-// jackknife gives what the deletion of one reflection at a time says of theta, its
-// bias and its covariance,
+// jackknife is what the deletion of one reflection at a time says of theta: its bias, which
+// is to be added, and its covariance,
 //
 //	shift = (n-1)/n sum_i w_i (theta - theta_i)
 //	cov   = (n-1)/n sum_i w_i (theta_i - <theta_i>)(theta_i - <theta_i>)'
 //
 // theta_i without one count of reflection i (Quenouille 1956, Biometrika 43:353; Tukey
-// 1958, Ann. Math. Stat. 29:614; for estimates from moments Newey & Smith 2004,
-// Econometrica 72:219, list what is of this order). A shell mean of a sample stands in
-// both positions, in the column of the curb and in that of the offset, and its chance pulls m
-// toward 0 by a few hundredths of itself, and o up. Nil where a deletion leaves a shell without
-// a positive mean, and where a shift is beyond a standard error: then the expansion in 1/n
-// says nothing.
-func (s *system) jackknife(sol *solution) (shift []float64, cov *mat.Dense) {
+// 1958, Ann. Math. Stat. 29:614). Shell means, centres of functions and factors are worked out
+// anew, weights are not, so that of the terms of this order (Newey & Smith 2004,
+// Econometrica 72:219) it has those of the columns and of the shell means: a mean of a
+// sample stands in both positions, in the column of the curb and in that of the offset,
+// and its chance pulls m toward 0 by a few hundredths of itself, and o up.
+type jackknife struct {
+	shift []float64 // nil where one is beyond a standard error: then 1/n is no small number
+	cov   *mat.Dense
+	m     []float64 // by row, what its deletion takes off m, so that squares add up to its variance
+}
+
+// jackknife is nil where nothing is left over or a deletion leaves a shell without a
+// positive mean.
+func (s *system) jackknife(sol *solution) *jackknife {
 	if sol.exact {
-		return nil, nil
+		return nil
 	}
 	d := s.deletion(sol)
 	if d == nil {
-		return nil, nil
+		return nil
 	}
 	base := d.solve(d.whole)
-	var sum linearSums
-	var squares [3][3]float64
+	off := make([][3]float64, len(s.weight))
+	var mean [3]float64
 	n := 0.0
 	for i, w := range s.weight {
 		if w == 0 {
@@ -68,31 +75,40 @@ func (s *system) jackknife(sol *solution) (shift []float64, cov *mat.Dense) {
 		}
 		moved, ok := d.without(i)
 		if !ok {
-			return nil, nil
+			return nil
 		}
 		n += w
 		theta := d.solve(moved)
 		for j := range d.p {
-			off := base[j] - theta[j]
-			sum[j] += w * off
-			for k := range j + 1 {
-				squares[j][k] += w * off * (base[k] - theta[k])
+			off[i][j] = base[j] - theta[j]
+			mean[j] += w * off[i][j]
+		}
+	}
+	j := &jackknife{shift: make([]float64, d.p), cov: mat.NewDense(d.p, d.p, nil), m: make([]float64, s.all)}
+	for a := range d.p {
+		j.shift[a] = (n - 1) / n * mean[a]
+		mean[a] /= n
+	}
+	for i, w := range s.weight {
+		for a := range d.p {
+			for b := range d.p {
+				v := w * (n - 1) / n * (off[i][a] - mean[a]) * (off[i][b] - mean[b])
+				j.cov.Set(a, b, j.cov.At(a, b)+v)
 			}
 		}
-	}
-	shift, cov = make([]float64, d.p), mat.NewDense(d.p, d.p, nil)
-	for j := range d.p {
-		shift[j] = (n - 1) / n * sum[j]
-		if se := math.Sqrt(sol.cov.At(j, j)); !(math.Abs(shift[j]) <= se) {
-			return nil, nil
+		row := i
+		if s.rows != nil {
+			row = s.rows[i]
 		}
-		for k := range j + 1 {
-			v := (n - 1) / n * (squares[j][k] - sum[j]*sum[k]/n)
-			cov.Set(j, k, v)
-			cov.Set(k, j, v)
+		j.m[row] = math.Sqrt(w*(n-1)/n) * (off[i][0] - mean[0])
+	}
+	for a, v := range j.shift {
+		if !(math.Abs(v) <= math.Sqrt(j.cov.At(a, a))) {
+			j.shift = nil
+			break
 		}
 	}
-	return shift, cov
+	return j
 }
 
 // deletion is nil when the weight of the moments has no inverse.
@@ -206,6 +222,12 @@ type change struct {
 	centring          float64
 }
 
+// alone reports whether a shell has nothing to give without row i: a function less its mean is
+// 0 where it has one reflection.
+func (st *strata) alone(c *conditions, i int) bool {
+	return st.present <= 1 || (c.u[i] > 0 && (st.used <= 1 || st.centring <= c.u[i]))
+}
+
 // lost is the change by row i, none for i < 0; false when a mean is not positive.
 func (st *strata) lost(c *conditions, i int) (change, bool) {
 	ch := change{1, 1, 1, st.first, st.second, st.centring}
@@ -220,13 +242,17 @@ func (st *strata) lost(c *conditions, i int) (change, bool) {
 	if c.u[i] > 0 {
 		ch.axis = (st.used - c.z[i]) / (st.used - 1)
 	}
-	return ch, n > 1 && ch.thin > 0 && ch.thick > 0 && ch.axis > 0 && (ch.centring > 0 || st.used == 0)
+	return ch, ch.thin > 0 && ch.thick > 0 && ch.axis > 0
 }
 
 // moments works out what shell sh of leg l gives to each moment without one count of
 // row i; i < 0 leaves none out.
 func (d *deletion) moments(l, sh, i int, out []linearSums) bool {
 	c, st := d.s.legs[l], &d.shells[l][sh]
+	if i >= 0 && st.alone(c, i) {
+		clear(out)
+		return true
+	}
 	ch, ok := st.lost(c, i)
 	if !ok {
 		return false

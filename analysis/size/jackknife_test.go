@@ -2,6 +2,7 @@ package size
 
 import (
 	"math"
+	"math/rand/v2"
 	"testing"
 
 	"thinward/analysis/internal/floatcmp"
@@ -116,4 +117,85 @@ func TestCorrectionOfALargeExchange(t *testing.T) {
 	inBand(t, "error over that of the sandwich", ratio.mean(), 1.03, 1.12)
 	spread := 3 / math.Sqrt(2*float64(len(se.v)))
 	inBand(t, "claimed over true error of m", se.mean()/corrected.sd(), .93-spread, 1.07+spread)
+}
+
+// Squares of what deletions take off m add up to its variance, rows that do not take part
+// have none, and a shell of one reflection costs nothing.
+func TestDeletionsByRow(t *testing.T) {
+	in := plan{n: 600, shells: 6, m: .1, falloff: 4, noise: [3]float64{.1, .1, .1}, error: .2}.draw(stream(74))
+	w := make([]float64, len(in.Z))
+	for i := range w {
+		w[i] = float64(i % 3) // a third is not there, a third counts twice
+	}
+	in.Shells = 7
+	in.Shell[1], in.Thin[1], in.Thick[1] = 6, 1, 1 // alone in its shell
+	f, err := Moments(in, w, MQO, nil)
+	f = must(t, f, err)
+	sum := 0.0
+	for i, d := range f.MDeleted {
+		sum += d * d
+		if (w[i] == 0) != (d == 0) && i != 1 {
+			t.Fatalf("row %d of weight %g: %g", i, w[i], d)
+		}
+	}
+	if len(f.MDeleted) != len(in.Z) || !f.Corrected {
+		t.Fatalf("%d rows, corrected %t", len(f.MDeleted), f.Corrected)
+	}
+	floatcmp.Check(t, "variance of m", sum, f.Cov.At(0, 0), 0, 1e-9)
+	f, err = Moments(in, w, MQO, &Settings{AsFound: true})
+	if f = must(t, f, err); f.Corrected || f.MDeleted != nil {
+		t.Error("as found and yet corrected")
+	}
+}
+
+// Two estimates of the same reflections, each with its own noise, share the chance of the
+// shell means of the exchange: its variance is found as that of their mean beyond half of each.
+func TestDeletionsKnowWhatEstimatesShare(t *testing.T) {
+	var half, together, shared, own tally
+	g := stream(75)
+	p := plan{n: 1100, shells: 10, m: .15, falloff: 4, noise: [3]float64{.03, .03, .03}, error: .03}
+	for range repeats(60, 400) {
+		a, b := p.twoCrystals(g)
+		fa, err := Moments(a, nil, MQO, nil)
+		fa = must(t, fa, err)
+		fb, err := Moments(b, nil, MQO, nil)
+		fb = must(t, fb, err)
+		c := 0.0
+		for i := range fa.MDeleted {
+			c += fa.MDeleted[i] * fb.MDeleted[i]
+		}
+		shared.add(c)
+		own.add(fa.M.SE * fa.M.SE)
+		half.add((fa.M.Value - fb.M.Value) / 2)
+		together.add((fa.M.Value + fb.M.Value) / 2)
+	}
+	seen := together.sd()*together.sd() - half.sd()*half.sd()
+	t.Logf("covariance seen %.3g, by deletions %.3g, variance of one %.3g", seen, shared.mean(), own.mean())
+	// A variance of n series has a relative error of sqrt(2/n).
+	n := math.Sqrt(2 / float64(len(shared.v)))
+	inBand(t, "covariance by deletions over that seen", shared.mean()/seen, .9-3*n, 1.15+3*n)
+}
+
+// twoCrystals draws the strengths of n reflections once and measures them twice.
+func (p plan) twoCrystals(g *rand.Rand) (a, b *Input) {
+	base := p
+	base.noise, base.error, base.m = [3]float64{}, 0, 0
+	truth := base.draw(g)
+	measure := func() *Input {
+		in := *truth
+		in.Z, in.Thin, in.Thick = nil, nil, nil
+		in.VarThin, in.VarThick = nil, nil
+		for i, j := range truth.Thin {
+			scale := math.Exp(-p.falloff * truth.S2[i])
+			seen := func(j float64) float64 {
+				return j*math.Max(0, 1+p.error*g.NormFloat64()) + p.noise[1]*g.NormFloat64()
+			}
+			thick := (1-p.m)*j + p.m*scale
+			in.Z, in.Thin, in.Thick = append(in.Z, seen(j)/scale), append(in.Thin, seen(j)), append(in.Thick, seen(thick))
+			v := func(j float64) float64 { return p.noise[1]*p.noise[1] + p.error*p.error*j*j }
+			in.VarThin, in.VarThick = append(in.VarThin, v(j)), append(in.VarThick, v(thick))
+		}
+		return &in
+	}
+	return measure(), measure()
 }

@@ -56,6 +56,8 @@ type Fit struct {
 	Level                    float64
 	Estimable                bool
 	Why                      string
+	Corrected                bool      // the estimates were moved by their bias of order 1/N
+	MDeleted                 []float64 // by row, what its deletion takes off m; squares add up to the variance of m; nil with AsFound
 }
 
 // spanForOffset is how far shell means must range for the offset to lead.
@@ -102,7 +104,7 @@ func Leads(in *Input, w []float64) (model Model, span float64, err error) {
 // shell, or by a_s + b z^2 where variances are not known (FlatShells keeps them alike),
 // and the moments by the inverse of their covariance. Without the b z^2 few strong
 // reflections decide what the data say of their own weight, and the error of q comes out a
-// fifth too small; with a free a_s for each shell a large m reads 2 % low. The covariance of
+// fifth too small; with a free a_s for each shell a large m reads 3 % low. The covariance of
 // the moments includes the influence of the shell means and of <t>; each interval is
 // Student's with the degrees of freedom of its own variance. J is the over-identification
 // statistic with JDF degrees of freedom: a small JP says that these numbers do not describe
@@ -111,9 +113,10 @@ func Leads(in *Input, w []float64) (model Model, span float64, err error) {
 // Estimates are moved by what the delete-one jackknife says of their bias of order 1/N
 // (Quenouille 1956, Biometrika 43:353), which shell means of a sample make: m = 0.15 reads
 // 0.003 low and o 0.003 high without it. Their covariance is that of the same
-// deletions (Tukey 1958, Ann. Math. Stat. 29:614), which knows what the correction adds. Where
-// the correction would exceed a standard error, and with AsFound, there is none, and the
-// covariance is the sandwich in the jackknife form of ExchangeWith.
+// deletions (Tukey 1958, Ann. Math. Stat. 29:614), which knows what the correction adds; two
+// fits of the same reflections covary as their MDeleted do. Where a correction would
+// exceed a standard error none is made (Corrected is false). With AsFound there is none, and
+// the covariance is the sandwich in the jackknife form of ExchangeWith.
 //
 // Errors as in ExchangeWith, and a curb without VarThin or halves, CurbRate without
 // Exposure.
@@ -220,6 +223,9 @@ func (s *system) describe(out *Fit, sol *solution) {
 		*v = newValue(theta[i], math.Sqrt(math.Max(0, cov.At(i, i))), t)
 	}
 	out.Cov, out.Estimable = cov, true
+	if sol.jack != nil {
+		out.Corrected, out.MDeleted = sol.jack.shift != nil, sol.jack.m
+	}
 	out.J, out.JDF, out.JP = sol.j, sol.df, 1
 	if sol.df > 0 {
 		out.JP = distuv.ChiSquared{K: float64(sol.df)}.Survival(sol.j)

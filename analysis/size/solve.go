@@ -22,6 +22,7 @@ type solution struct {
 	ch        *mat.Cholesky // of the weight of the moments
 	exact     bool          // nothing is left over
 	unbiased  []float64     // theta with its correction
+	jack      *jackknife    // nil without one
 }
 
 // weighted holds the weighted, centred functions and the linear moment sums
@@ -152,11 +153,12 @@ func (s *system) finish(sol *solution, set *Settings) *solution {
 	sol.width = s.width(sol.m, sol.lever, sol.theta)
 	sol.unbiased = append([]float64(nil), sol.theta...)
 	if !set.asFound() {
-		if shift, cov := s.jackknife(sol); shift != nil {
-			sol.cov = cov
-			for i, c := range shift {
-				sol.unbiased[i] += c
-			}
+		sol.jack = s.jackknife(sol)
+	}
+	if sol.jack != nil {
+		sol.cov = sol.jack.cov
+		for i, c := range sol.jack.shift {
+			sol.unbiased[i] += c
 		}
 	}
 	if !sol.exact {

@@ -19,6 +19,8 @@ type system struct {
 	shells     int
 	weight     []float64 // of each row, the same in every leg that has it
 	functions  []function
+	rows       []int   // of the input that take part, nil for all of them
+	all        int     // rows of the input
 	bent       float64 // q at which the curb is taken to second order
 }
 
@@ -57,7 +59,9 @@ func newSystem(legs []*frame, model Model, curb CurbForm) (*system, error) {
 	s := &system{model: model, curb: curb}
 	s.used, s.present, s.shells = counts(legs)
 	s.references(legs)
-	legs = present(legs)
+	all := len(legs[0].w)
+	legs, s.rows = present(legs)
+	s.all = all
 	s.weight = make([]float64, len(legs[0].w))
 	for i := range s.weight {
 		s.weight[i] = rowWeight(legs, i)

@@ -18,7 +18,8 @@ const clipVariance = 8
 // and b common, z the axis between 0 and 8 shell means and u the weights that were
 // given. Weighted least squares alternate between a and b with weights 1/(a v_s + b z^2)^2,
 // as for squares of normal residuals; in b a square counts at most as nine variances. The
-// law depends on the axis and the shell only, so weights from it bias no moment; but a
+// law depends on the axis and the shell only, so that weights from it bias no moment but by what
+// v_s has of the chance of single reflections, of order 1/n; but a
 // constant for each shell would be found from the very residuals that it weights, and as
 // errors of the strongest are skew where an exchange makes those of one position smaller,
 // it takes 3 % off a large m. Without both variances, or with one of a shell that is not

@@ -14,7 +14,7 @@ import (
 // PairColumns are the columns of pairs.csv in order.
 func PairColumns() []string {
 	return []string{
-		"crystal", "thin", "thick", "h", "k", "l", "d_A", "phi_thin_deg", "phi_thick_deg", "n_thin", "n_thick",
+		"crystal", "thin", "thick", "h", "k", "l", "d_A", "phi_thin_deg", "phi_thick_deg", "tilt_thin_deg", "tilt_thick_deg", "n_thin", "n_thick",
 		"J_thin", "su_J_thin", "J_thick", "su_J_thick", "strength", "strength_axis", "strength_inverse_variance",
 		"dI", "su_dI", "eps", "z", "class", "flags",
 	}
@@ -33,7 +33,7 @@ func WritePairs(w io.Writer, rows []analysis.PairRow) error {
 		if err := c.Write([]string{
 			r.Crystal, r.Thin, r.Thick,
 			strconv.Itoa(r.HKL.H), strconv.Itoa(r.HKL.K), strconv.Itoa(r.HKL.L),
-			text(r.D), text(r.PhiThin), text(r.PhiThick), strconv.Itoa(r.NThin), strconv.Itoa(r.NThick),
+			text(r.D), text(r.PhiThin), text(r.PhiThick), text(r.TiltThin), text(r.TiltThick), strconv.Itoa(r.NThin), strconv.Itoa(r.NThick),
 			text(r.JThin), text(r.SUThin), text(r.JThick), text(r.SUThick),
 			text(r.Strength), r.Axis, text(r.InverseVariance),
 			text(r.DI), text(r.SUDI), text(r.Eps), text(r.Z), r.Class, r.Flags,
@@ -87,11 +87,11 @@ func ReadPairs(r io.Reader) ([]analysis.PairRow, error) {
 }
 
 func parsePair(f []string) (analysis.PairRow, error) {
-	r := analysis.PairRow{Crystal: f[0], Thin: f[1], Thick: f[2], Axis: f[16], Class: f[22], Flags: f[23]}
+	r := analysis.PairRow{Crystal: f[0], Thin: f[1], Thick: f[2], Axis: f[18], Class: f[24], Flags: f[25]}
 	for _, x := range []struct {
 		at  int
 		dst *int
-	}{{3, &r.HKL.H}, {4, &r.HKL.K}, {5, &r.HKL.L}, {9, &r.NThin}, {10, &r.NThick}} {
+	}{{3, &r.HKL.H}, {4, &r.HKL.K}, {5, &r.HKL.L}, {11, &r.NThin}, {12, &r.NThick}} {
 		n, err := strconv.Atoi(f[x.at])
 		if err != nil {
 			return r, fmt.Errorf("column %s: %q is no integer", PairColumns()[x.at], f[x.at])
@@ -102,8 +102,8 @@ func parsePair(f []string) (analysis.PairRow, error) {
 		at  int
 		dst *float64
 	}{
-		{6, &r.D}, {7, &r.PhiThin}, {8, &r.PhiThick}, {11, &r.JThin}, {12, &r.SUThin}, {13, &r.JThick}, {14, &r.SUThick},
-		{15, &r.Strength}, {17, &r.InverseVariance}, {18, &r.DI}, {19, &r.SUDI}, {20, &r.Eps}, {21, &r.Z},
+		{6, &r.D}, {7, &r.PhiThin}, {8, &r.PhiThick}, {9, &r.TiltThin}, {10, &r.TiltThick}, {13, &r.JThin}, {14, &r.SUThin}, {15, &r.JThick}, {16, &r.SUThick},
+		{17, &r.Strength}, {19, &r.InverseVariance}, {20, &r.DI}, {21, &r.SUDI}, {22, &r.Eps}, {23, &r.Z},
 	} {
 		if f[x.at] == "" {
 			*x.dst = math.NaN()

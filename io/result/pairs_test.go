@@ -15,10 +15,10 @@ import (
 
 func somePairs() []analysis.PairRow {
 	return []analysis.PairRow{
-		{Crystal: "L1", Thin: "thin", Thick: "thick", HKL: crystal.HKL{H: 1, K: -2, L: 3}, D: 2.5, PhiThin: -12.25, PhiThick: 13, NThin: 4, NThick: 3,
+		{Crystal: "L1", Thin: "thin", Thick: "thick", HKL: crystal.HKL{H: 1, K: -2, L: 3}, D: 2.5, PhiThin: -12.25, PhiThick: 13, TiltThin: 10.5, TiltThick: 11.75, NThin: 4, NThick: 3,
 			JThin: 1530.2, SUThin: 21.4, JThick: 1214.8, SUThick: 19.9, Strength: 1.1, Axis: "crystals", InverseVariance: 1.2,
 			DI: 315.4, SUDI: 29.2, Eps: 0.2, Z: 315.4 / 29.2, Class: "middle", Flags: "centric"},
-		{Crystal: "L, 2", Thin: "a \"b\"", Thick: "L1/c", HKL: crystal.HKL{H: 0, K: 0, L: -4}, D: 1.0 / 3, PhiThin: math.NaN(), PhiThick: math.NaN(), NThin: 1, NThick: 1,
+		{Crystal: "L, 2", Thin: "a \"b\"", Thick: "L1/c", HKL: crystal.HKL{H: 0, K: 0, L: -4}, D: 1.0 / 3, PhiThin: math.NaN(), PhiThick: math.NaN(), TiltThin: math.NaN(), TiltThick: math.NaN(), NThin: 1, NThick: 1,
 			JThin: -1e-300, SUThin: 0.1, JThick: 1e300, SUThick: math.Inf(1), Strength: math.NaN(), Axis: "bracket", InverseVariance: math.NaN(),
 			DI: math.Inf(-1), SUDI: math.NaN(), Eps: math.NaN(), Z: math.NaN(), Flags: "no-strength"},
 	}
@@ -42,7 +42,7 @@ func TestPairsRoundTrip(t *testing.T) {
 
 func TestReadPairsRefuses(t *testing.T) {
 	head := strings.Join(PairColumns(), ",")
-	good := `L1,thin,thick,1,-2,3,2.5,,,4,3,1,1,1,1,,crystals,,1,1,1,1,middle,`
+	good := `L1,thin,thick,1,-2,3,2.5,,,,,4,3,1,1,1,1,,crystals,,1,1,1,1,middle,`
 	for _, c := range []struct{ name, in, want string }{
 		{"empty", "", "no header"},
 		{"other header", strings.Replace(head, "d_A", "d", 1) + "\n", `column 7 is "d", not "d_A"`},

@@ -41,11 +41,11 @@ func ComparePairs(a, b []analysis.PairRow, relative float64, most int) (list []D
 	return list, n, largest
 }
 
-var numberColumns = [13]string{"d_A", "phi_thin_deg", "phi_thick_deg", "J_thin", "su_J_thin", "J_thick", "su_J_thick",
+var numberColumns = [15]string{"d_A", "phi_thin_deg", "phi_thick_deg", "tilt_thin_deg", "tilt_thick_deg", "J_thin", "su_J_thin", "J_thick", "su_J_thick",
 	"strength", "strength_inverse_variance", "dI", "su_dI", "eps", "z"}
 
-func numbersOf(r *analysis.PairRow) [13]float64 {
-	return [13]float64{r.D, r.PhiThin, r.PhiThick, r.JThin, r.SUThin, r.JThick, r.SUThick, r.Strength, r.InverseVariance, r.DI, r.SUDI, r.Eps, r.Z}
+func numbersOf(r *analysis.PairRow) [15]float64 {
+	return [15]float64{r.D, r.PhiThin, r.PhiThick, r.TiltThin, r.TiltThick, r.JThin, r.SUThin, r.JThick, r.SUThick, r.Strength, r.InverseVariance, r.DI, r.SUDI, r.Eps, r.Z}
 }
 
 func wordsOf(r *analysis.PairRow) string {

@@ -183,8 +183,8 @@ func WriteMergedCIF(w io.Writer, series *analysis.Series, tables []analysis.Merg
 // PairNames are the data names of the pairs loop behind "_prefix_pair_", in the
 // order of its columns.
 func PairNames() []string {
-	return []string{"index_h", "index_k", "index_l", "d_spacing", "n_thin", "intensity_thin", "intensity_thin_su", "angle_thin", "n_thick", "intensity_thick",
-		"intensity_thick_su", "angle_thick", "difference", "difference_su", "difference_over_mean", "z", "strength", "strength_inverse_variance", "class", "flags"}
+	return []string{"index_h", "index_k", "index_l", "d_spacing", "n_thin", "intensity_thin", "intensity_thin_su", "angle_thin", "tilt_thin", "n_thick", "intensity_thick",
+		"intensity_thick_su", "angle_thick", "tilt_thick", "difference", "difference_su", "difference_over_mean", "z", "strength", "strength_inverse_variance", "class", "flags"}
 }
 
 // WritePairsCIF writes pairs.csv as CIF, one block a contrast. Differences are
@@ -207,8 +207,8 @@ func WritePairsCIF(w io.Writer, series *analysis.Series, list []analysis.PairRow
 		c.loop(names...)
 		for k := from; k < to; k++ {
 			r := &list[k]
-			c.row(append(index(r.HKL), cif.Num(r.D), cif.Int(r.NThin), exists(r.JThin), exists(r.SUThin), exists(r.PhiThin), cif.Int(r.NThick), exists(r.JThick),
-				exists(r.SUThick), exists(r.PhiThick), exists(r.DI), exists(r.SUDI), exists(r.Eps), exists(r.Z), exists(r.Strength), exists(r.InverseVariance),
+			c.row(append(index(r.HKL), cif.Num(r.D), cif.Int(r.NThin), exists(r.JThin), exists(r.SUThin), exists(r.PhiThin), exists(r.TiltThin), cif.Int(r.NThick), exists(r.JThick),
+				exists(r.SUThick), exists(r.PhiThick), exists(r.TiltThick), exists(r.DI), exists(r.SUDI), exists(r.Eps), exists(r.Z), exists(r.Strength), exists(r.InverseVariance),
 				blank(r.Class), blank(r.Flags))...)
 		}
 		from = to

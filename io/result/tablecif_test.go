@@ -166,8 +166,8 @@ func readPairsCIF(t *testing.T, data []byte) []analysis.PairRow {
 			}
 			out = append(out, analysis.PairRow{
 				Crystal: sets[0].Text, HKL: crystal.HKL{H: int(num("index_h")), K: int(num("index_k")), L: int(num("index_l"))}, D: num("d_spacing"),
-				NThin: int(num("n_thin")), JThin: num("intensity_thin"), SUThin: num("intensity_thin_su"), PhiThin: num("angle_thin"),
-				NThick: int(num("n_thick")), JThick: num("intensity_thick"), SUThick: num("intensity_thick_su"), PhiThick: num("angle_thick"),
+				NThin: int(num("n_thin")), JThin: num("intensity_thin"), SUThin: num("intensity_thin_su"), PhiThin: num("angle_thin"), TiltThin: num("tilt_thin"),
+				NThick: int(num("n_thick")), JThick: num("intensity_thick"), SUThick: num("intensity_thick_su"), PhiThick: num("angle_thick"), TiltThick: num("tilt_thick"),
 				DI: num("difference"), SUDI: num("difference_su"), Eps: num("difference_over_mean"), Z: num("z"), Strength: num("strength"), Axis: axis,
 				InverseVariance: num("strength_inverse_variance"), Class: words("class"), Flags: words("flags"),
 			})

@@ -26,7 +26,7 @@ func (s *Session) Pairs() *View {
 func pairsView(r *analysis.Result, rows []analysis.PairRow) *View {
 	fv := &figureView{title: "Every pair", pick: "Crystal", empty: "No pair has a strength on the leading axis.",
 		caption: "One point a pair of reflections (hexagons of counts when there are many), with the moving mean over them: the pattern is small beside the scatter of single reflections, so no single reflection proves or refutes it. Draw a frame on the plot to list the reflections under it."}
-	g := newGrid("The most changed reflections by z", "contrast", "h k l", "d (\u00c5)", "strength", "difference, local means", "z").words(1)
+	g := newGrid("The most changed reflections, gains and losses; z is over noise and the deviations that pairs have anyway", "contrast", "h k l", "d (\u00c5)", "strength", "difference, local means", "over noise alone", "z").words(1)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
 		if !c.Primary {
@@ -56,9 +56,9 @@ func pairsView(r *analysis.Result, rows []analysis.PairRow) *View {
 		}
 		order := byChange(list)
 		fv.put(contrastName(c), drawn, []*figure.Figure{drawn}, brushData(list, places, order)+changedTable(c, list, order).html())
-		for _, k := range order[:min(len(order), 4)] {
+		for _, k := range bothWays(list, order, 2) {
 			p := list[k]
-			g.add(contrastName(c), fmt.Sprint(p.HKL.H, " ", p.HKL.K, " ", p.HKL.L), number(p.D, 2), number(p.Strength, 2), number(p.Eps, 3), number(p.Z, 1))
+			g.add(contrastName(c), fmt.Sprint(p.HKL.H, " ", p.HKL.K, " ", p.HKL.L), number(p.D, 2), number(p.Strength, 2), number(p.Eps, 3), number(overNoise(p), 1), number(p.Z, 1))
 		}
 	}
 	fv.summary = g
@@ -90,12 +90,31 @@ func byChange(list []*analysis.PairRow) []int {
 	return order
 }
 
+// bothWays are the first n of the order that gain with thickness, then the first n that
+// lose: errors in proportion to the intensity leave a gain more room in z than a loss.
+func bothWays(list []*analysis.PairRow, order []int, n int) []int {
+	var gains, losses []int
+	for _, k := range order {
+		switch z := list[k].Z; {
+		case z < 0 && len(gains) < n:
+			gains = append(gains, k)
+		case z > 0 && len(losses) < n:
+			losses = append(losses, k)
+		}
+	}
+	return append(gains, losses...)
+}
+
+// overNoise is the difference over the errors of the two intensities, without the
+// deviations that z allows for.
+func overNoise(p *analysis.PairRow) float64 { return p.DI / math.Hypot(p.SUThin, p.SUThick) }
+
 func changedTable(c *analysis.ContrastResult, list []*analysis.PairRow, order []int) *grid {
 	thin, thick := (&pairing{list: []*analysis.ContrastResult{c}}).sides()
-	g := newGrid("The most changed reflections of "+contrastName(c)+"; J is the mean intensity on the common scale of the crystal", "h k l", "d (\u00c5)", "strength", "J "+thin, "J "+thick, thin+" \u2212 "+thick+", local means", "z")
-	for _, k := range order[:min(len(order), changed)] {
+	g := newGrid("The most changed reflections of "+contrastName(c)+", gains first; J is the mean intensity on the common scale of the crystal, z is over noise and the deviations that pairs have anyway", "h k l", "d (\u00c5)", "strength", "J "+thin, "J "+thick, thin+" \u2212 "+thick+", local means", "over noise alone", "z")
+	for _, k := range bothWays(list, order, changed/2) {
 		p := list[k]
-		g.add(fmt.Sprint(p.HKL.H, " ", p.HKL.K, " ", p.HKL.L), number(p.D, 2), number(p.Strength, 2), auto(p.JThin)+" \u00b1 "+auto(p.SUThin), auto(p.JThick)+" \u00b1 "+auto(p.SUThick), number(p.Eps, 3), number(p.Z, 1))
+		g.add(fmt.Sprint(p.HKL.H, " ", p.HKL.K, " ", p.HKL.L), number(p.D, 2), number(p.Strength, 2), auto(p.JThin)+" \u00b1 "+auto(p.SUThin), auto(p.JThick)+" \u00b1 "+auto(p.SUThick), number(p.Eps, 3), number(overNoise(p), 1), number(p.Z, 1))
 	}
 	return g
 }

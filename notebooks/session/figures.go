@@ -24,7 +24,7 @@ func byStrength(r *analysis.Result) *View {
 			"The dark band holds at each strength alone, the pale one with dotted edges over the whole curve, both for the averaged curve on this axis. " +
 			"Bands by angle blocks draw 2.5 degrees of the rotation as one: a width ratio well above 1 says that neighbouring frames share an error, and the wider band is then the honest one.",
 	}
-	g := newGrid("Differences against strength, thin minus thick in local means", "contrast", "axis", "pairs", "p of the curve", "p by angle blocks", "width by angle blocks", "weakest: strength", "difference", "interval", "strongest: strength", "difference", "interval").words(1)
+	g := newGrid("Differences against strength, thin minus thick in local means", "contrast", "axis", "pairs", "p along strength", "p along resolution", "p by angle blocks", "width by angle blocks", "weakest: strength", "difference", "interval", "strongest: strength", "difference", "interval").words(1)
 	for _, set := range pairings(r) {
 		p := &figure.Panels{
 			Title: "Difference against strength, " + set.name, Desc: strengthDesc(set),
@@ -33,8 +33,8 @@ func byStrength(r *analysis.Result) *View {
 		}
 		for _, c := range set.list {
 			x := &c.Strength
-			p.Panel = append(p.Panel, figure.Panel{Name: c.Crystal, Note: pNote(x.P), Curves: []figure.Curve{{X: x.Grid, Y: x.Mean, Lo: x.Lo, Hi: x.Hi, LoSim: x.LoSim, HiSim: x.HiSim}}})
-			row := []string{contrastName(c), c.StrengthAxis, count(c.Pairs), pvalue(x.P)}
+			p.Panel = append(p.Panel, figure.Panel{Name: c.Crystal, Note: pNote(x.PStrength), Curves: []figure.Curve{{X: x.Grid, Y: x.Mean, Lo: x.Lo, Hi: x.Hi, LoSim: x.LoSim, HiSim: x.HiSim}}})
+			row := []string{contrastName(c), c.StrengthAxis, count(c.Pairs), pvalue(x.PStrength), pvalue(x.PResolution)}
 			row = append(row, blocksOf(c)...)
 			for _, i := range []int{0, len(x.Grid) - 1} {
 				if len(x.Grid) == 0 {
@@ -70,7 +70,7 @@ func strengthDesc(set pairing) string {
 			continue
 		}
 		n := len(x.Mean) - 1
-		text += fmt.Sprintf("%s: from %s at strength %s to %s at strength %s, p %s. ", c.Crystal, number(x.Mean[0], 3), number(x.Grid[0], 2), number(x.Mean[n], 3), number(x.Grid[n], 2), pvalue(x.P))
+		text += fmt.Sprintf("%s: from %s at strength %s to %s at strength %s, p %s. ", c.Crystal, number(x.Mean[0], 3), number(x.Grid[0], 2), number(x.Mean[n], 3), number(x.Grid[n], 2), pvalue(x.PStrength))
 	}
 	return "Moving mean of the difference of both positions with its bands, one panel a crystal. " + text
 }
@@ -139,7 +139,7 @@ func byResolution(r *analysis.Result) *View {
 		thin, thick := set.sides()
 		p := &figure.Panels{
 			Title: "Logarithm of the ratio of both positions against resolution, " + set.name, Desc: "Mean logarithm of the ratio by shell with intervals, and the line that a difference of B means, one panel a crystal. ",
-			X: figure.Axis{Label: "d (\u00c5), even in 1/d\u00b2", Column: "1/d\u00b2 (\u00c5\u207b\u00b2)"}, Y: figure.Axis{Label: "ln \u27e8I " + thick + "\u27e9 / \u27e8I " + thin + "\u27e9", Zero: true},
+			X: figure.Axis{Label: "d (\u00c5), even in 1/d\u00b2", Column: "1/d\u00b2 (\u00c5\u207b\u00b2)"}, Y: figure.Axis{Label: "ln(\u27e8I " + thick + "\u27e9 / \u27e8I " + thin + "\u27e9)", Zero: true},
 		}
 		var all []float64
 		for _, c := range set.list {

@@ -39,7 +39,7 @@ func made() *analysis.Result {
 				c.Strength.Lo, c.Strength.Hi = append(c.Strength.Lo, 0.1*(x-1)-0.02), append(c.Strength.Hi, 0.1*(x-1)+0.02)
 				c.Strength.LoSim, c.Strength.HiSim = append(c.Strength.LoSim, 0.1*(x-1)-0.03), append(c.Strength.HiSim, 0.1*(x-1)+0.03)
 			}
-			c.Strength.P = 0.0005
+			c.Strength.PStrength = 0.0005
 			c.Resolution = analysis.Resolution{D: []float64{3, 2, 1.5}, LogRatio: []float64{0.1, 0, -0.1}, Lo: []float64{0, -0.1, -0.2}, Hi: []float64{0.2, 0.1, 0}, Remainder: []float64{0.01, 0, -0.01}, DeltaB: -0.3}
 			c.Naive = map[string]analysis.Naive{"thin": {Score: 20, GhostScore: 8, Grid: []float64{0.1, 1, 4}, Mean: []float64{-0.1, 0, 0.2}, Ghost: []float64{-0.08, 0, 0.01}}}
 			c.Exchange = analysis.Exchange{M: 0.1, Lo: 0.07, Hi: 0.13}

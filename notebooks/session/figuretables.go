@@ -300,7 +300,7 @@ func (s *Session) BudgetFigure() *View { return budgetFigure(s.upTo(stepExpectat
 
 func budgetFigure(r *analysis.Result) *View {
 	fv := &figureView{title: "Scattering budget", empty: "No mean free paths are known: neither given nor to be had from a composition.",
-		caption: "How many electrons were scattered once, several times or inelastically at each thickness, by mean free paths: an aid to interpretation, not a prediction of m."}
+		caption: "How many electrons were scattered once, several times or inelastically at each thickness, by mean free paths: an aid to interpretation, not a prediction of m. Inelastic electrons count as lost, as behind a zero-loss filter; without one most of them stay in their spots."}
 	e := r.Expectation
 	if e == nil || len(e.Budget) == 0 {
 		return fv.view()

@@ -97,7 +97,7 @@ func TestContrastsNameTheirPositions(t *testing.T) {
 			t.Errorf("no axis says %q", want)
 		}
 	}
-	if text := byResolution(r).HTML; !strings.Contains(text, "ln \u27e8I mid\u27e9 / \u27e8I thin\u27e9") {
+	if text := byResolution(r).HTML; !strings.Contains(text, "ln(\u27e8I mid\u27e9 / \u27e8I thin\u27e9)") {
 		t.Error("the ratio of thin and mid does not name them")
 	}
 	r.Contrasts[1].Thin, r.Contrasts[1].Primary = "edge", true

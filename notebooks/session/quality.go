@@ -61,7 +61,7 @@ func (s *Session) Shells() *View {
 }
 
 func qualityTable(r *analysis.Result, caption string, wanted func(*analysis.Quality) bool) *View {
-	g := newGrid(caption, "position", "d (\u00c5)", "complete", "multiplicity", "observations", "unique", "within reach", "I/\u03c3", "R_merge", "R_meas", "R_pim", "CC1/2", "CC1/2 (\u03c3-\u03c4)", "CC*")
+	g := newGrid(caption, "position", "d (\u00c5)", "complete", "multiplicity", "observations", "unique", "possible", "mean merged I/\u03c3", "R_merge", "R_meas", "R_pim", "CC1/2", "CC1/2 (\u03c3-\u03c4)", "CC*")
 	for i := range r.Quality {
 		q := &r.Quality[i]
 		if !wanted(q) {

@@ -71,7 +71,7 @@ func (s *Session) Correlations() *View {
 // Sizes shows exchange, curb and offset of every contrast.
 func (s *Session) Sizes() *View {
 	r := s.upTo(stepDifferences)
-	g := newGrid("Exchange m, curb q and offset o", "contrast", "axis", "model", "m", "interval", "q", "interval", "o", "interval", "F", "p of the fit", "smallest m that would show").words(1, 2)
+	g := newGrid("Exchange m, curb q and offset o", "contrast", "axis", "model", "m", "interval", "q", "interval", "o", "interval", "first-stage F", "p of the fit", "smallest m that would show").words(1, 2)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
 		g.add(contrastName(c), c.StrengthAxis, c.Exchange.Model, number(c.Exchange.M, 3), between(c.Exchange.Lo, c.Exchange.Hi, 3), number(c.Curb.Q, 3), between(c.Curb.Lo, c.Curb.Hi, 3),
@@ -109,7 +109,7 @@ func (s *Session) Models() *View {
 // Axes shows m on every axis that can be built.
 func (s *Session) Axes() *View {
 	r := s.upTo(stepDifferences)
-	g := newGrid("Exchange on every strength axis, by the instrument: for comparing axes, not for quoting, since it reads curb and offset as exchange", "contrast", "axis", "pairs", "m", "difference from the leading axis", "remark").words(1, 5)
+	g := newGrid("Exchange on every strength axis, by one slope: for comparing axes, not for quoting, since it reads curb and offset as exchange", "contrast", "axis", "pairs", "m", "difference from the leading axis", "remark").words(1, 5)
 	for i := range r.Contrasts {
 		c := &r.Contrasts[i]
 		if !c.Primary {
@@ -205,7 +205,7 @@ func (s *Session) Scaling() *View {
 // Matters shows what the fitted exchange would do to amplitudes.
 func (s *Session) Matters() *View {
 	r := s.upTo(stepCrystals)
-	g := newGrid("Does it matter: what the fitted m does to amplitudes under Wilson's law", "crystal", "m", "agreement factor on |F| from the exchange alone", "mean |F| of reflections of strength below 0.2")
+	g := newGrid("Does it matter: what m, the thickest position against the thinnest, does to amplitudes under Wilson's law; what the thinnest has exchanged itself is not in it", "crystal", "m", "agreement factor on |F| from the exchange alone", "mean |F| of reflections of strength below 0.2")
 	for _, m := range r.Matters {
 		g.add(m.Crystal, number(m.M, 3), percent(m.AgreementShift, 1), signed(m.WeakShift))
 	}
@@ -266,11 +266,12 @@ func (s *Session) Crystals() *View {
 	if c := r.Crystals; c != nil {
 		g.add("m in these crystals (fixed effect)", withInterval(c.InThese, 3), fmt.Sprintf("%d crystals", c.N))
 		g.add("m in crystals like these (Hartung and Knapp)", withInterval(c.LikeThese, 3), likeThese(c))
+		g.add("standard error that the crystals share", number(c.SharedSE, 4), "of the chance of the shell means of the same reflections, and of noise that serves both as strength and as difference")
 		g.add("heterogeneity Q", number(c.Q, 2), "p = "+pvalue(c.QP))
 		g.add("tau\u00b2, I\u00b2", auto(c.Tau2)+", "+percent(c.I2, 0), c.Why)
 		g.add("crystals of one sign", fmt.Sprintf("%d of %d", c.SameSign, c.N), fmt.Sprintf("p = %s, at the smallest %s", pvalue(c.SignP), pvalue(c.SmallestP)))
 		if !math.IsNaN(c.PageL) {
-			g.add("Page's trend over positions", number(c.PageL, 1), fmt.Sprintf("p = %s, at the smallest %s; Page compares positions within crystals and takes their order as exchangeable", pvalue(c.PageP), pvalue(c.PageBest)))
+			g.add("Page's trend over positions", number(c.PageL, 1), fmt.Sprintf("one-sided p = %s, at the smallest %s; Page compares positions within crystals and takes their order as exchangeable", pvalue(c.PageP), pvalue(c.PageBest)))
 		}
 		g.add("mean correlation with the other crystals", number(c.MeanAgree, 3), "")
 		for _, l := range c.LeaveOut {
