@@ -37,7 +37,7 @@ func bracketAnswer(a Answer, list []*ContrastResult) Answer {
 	a.Detail = parts
 	apart := outside(list)
 	const why = " Only a bracket can be given, since no other crystal of the series says how strong each reflection is."
-	width := fmt.Sprintf("m lies between %s and %s, the ends of all that halves of either position say", short(lo), short(hi))
+	width := fmt.Sprintf("halves of either position give m from %s to %s, a bracket without a level of confidence", short(lo), short(hi))
 	const unrelated = "This holds only if the deviations of the two positions are unrelated."
 	switch {
 	case known == 0:
@@ -47,7 +47,7 @@ func bracketAnswer(a Answer, list []*ContrastResult) Answer {
 	case down == len(list):
 		a.Verdict, a.Text = VerdictNo, "No, as far as a bracket tells, rather the reverse: "+width+"."+why+" "+unrelated
 	default:
-		a.Verdict, a.Text = VerdictUnsure, "Undecided: "+width+"."+why
+		a.Verdict, a.Text = VerdictUnsure, "Undecided: "+width+"."+why+" "+unrelated
 	}
 	if apart != "" {
 		a.Text += apart

@@ -236,7 +236,7 @@ func (s *Study) seriesControls(list []*reading, per []ControlResult) []ControlRe
 	if w, err := evidence.Swap(m, back, se); err == nil {
 		out = append(out, ControlResult{Control: controlSwapped, M: interval(w.Pooled, math.Inf(-1), math.Inf(1), "no interval: a permutation"), Q: none(), Expected: math.NaN(), P: w.P, Rejections: math.NaN(),
 			Draws: w.Ways, Through: "fits of the crystals", Passed: true, Verdict: VerdictFine, Can: can, Cannot: cannot,
-			Why: fmt.Sprintf("all %d ways to swap %d crystals; p = %s is the share with a pooled |m| as large as measured, and %s the smallest there can be", w.Ways, len(m), short(w.P), short(w.Smallest))})
+			Why: fmt.Sprintf("no verdict is possible: all %d ways to swap %d crystals; p = %s is the share with a pooled |m| as large as measured, and %s the smallest there can be", w.Ways, len(m), short(w.P), short(w.Smallest))})
 	}
 	for _, c := range per {
 		if c.Control == controlReplicate {

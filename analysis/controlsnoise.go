@@ -55,7 +55,7 @@ func (s *Study) noiseControl(ctx context.Context, r *reading) ([]ControlResult, 
 	out := []ControlResult{s.nullResult(name, null, r.alarm, draw.through(), can, cannot)}
 	limit := null.Detectable(0.8)
 	own.flips = 0
-	with, err := evidence.Replicate(ctx, n, s.settings.Workers, draw.size(), limit, func(k int, dst []float64) { draw.fill(k, limit, dst) }, draw.pipeline(&own))
+	with, err := evidence.Replicate(ctx, n, s.settings.Workers, draw.size(), limit, func(k int, dst []float64) { draw.fill(n+k, limit, dst) }, draw.pipeline(&own))
 	switch {
 	case ctx.Err() != nil:
 		return nil, ctx.Err()
@@ -89,10 +89,10 @@ func detection(r *reading, through string, limit float64, with *evidence.Replica
 	const cannot = "what an artefact would add or hide"
 	x := ControlResult{Control: controlDetection, Crystal: r.x.Result.Crystal, M: interval(with.M.Mean, with.M.Lo, with.M.Hi, ""), Q: none(), Expected: limit, P: math.NaN(), Rejections: with.Power(), Draws: with.N,
 		Through: through, Can: can, Cannot: cannot}
-	x.Why = fmt.Sprintf("m = %s is the limit; put into replicas it is seen in %s and comes back as %s on the mean", short(limit), percent(with.Power()), short(with.M.Mean))
-	// The draws are those that gave the limit, so its power varies by the binomial law at
-	// most.
-	x.judge(math.Abs(with.Power()-0.8) <= r.deviate()*math.Sqrt(0.8*0.2/float64(with.N)))
+	x.Why = fmt.Sprintf("m = %s is the limit; put into other replicas it is seen in %s and comes back as %s on the mean", short(limit), percent(with.Power()), short(with.M.Mean))
+	// Other draws than those that gave the limit: the power varies by the binomial law with
+	// these and with those.
+	x.judge(math.Abs(with.Power()-0.8) <= r.deviate()*math.Sqrt(2*0.8*0.2/float64(with.N)))
 	return x
 }
 
