@@ -69,7 +69,7 @@ func (s *Study) poolCrystals() *CrystalsResult { return s.pool(s.primaries()) }
 
 // pool says what contrasts of several crystals say together.
 func (s *Study) pool(contrasts []*Compared) *CrystalsResult {
-	r := &CrystalsResult{InThese: none(), LikeThese: none(), Q: math.NaN(), QP: math.NaN(), Tau2: math.NaN(), I2: math.NaN(),
+	r := &CrystalsResult{InThese: none(), LikeThese: none(), SharedSE: math.NaN(), Q: math.NaN(), QP: math.NaN(), Tau2: math.NaN(), I2: math.NaN(),
 		PageL: math.NaN(), PageP: math.NaN(), PageBest: math.NaN(), MeanAgree: math.NaN()}
 	var m, se, same []float64
 	var names []string
@@ -96,12 +96,13 @@ func (s *Study) pool(contrasts []*Compared) *CrystalsResult {
 		r.Why = "m is estimable in no crystal"
 		return r
 	}
-	r.SharedSE = sharedError(list, same, se)
-	e, err := pool.JoinSharing(m, se, r.SharedSE, s.settings.Level)
+	cov := covarianceBetween(list, same, se)
+	e, err := pool.JoinCovariant(m, cov, s.settings.Level)
 	if err != nil {
 		r.Why = err.Error()
 		return r
 	}
+	r.SharedSE = e.SharedSE
 	r.InThese = interval(e.Fixed, e.FixedLo, e.FixedHi, "")
 	r.LikeThese = interval(e.Random, e.LikeLo, e.LikeHi, "")
 	r.Q, r.QP = e.Q, e.QP
@@ -113,7 +114,7 @@ func (s *Study) pool(contrasts []*Compared) *CrystalsResult {
 	if len(m) == 1 {
 		r.LikeThese.Why = "one crystal says nothing of others"
 	}
-	left, err := pool.LeaveOneOut(m, se, r.SharedSE, s.settings.Level)
+	left, err := pool.LeaveOneOut(m, cov, s.settings.Level)
 	if err == nil {
 		for i, l := range left {
 			r.LeaveOut = append(r.LeaveOut, Left{Without: names[i], M: interval(l.Fixed, l.FixedLo, l.FixedHi, "")})
@@ -149,7 +150,7 @@ func (s *Study) growth(ctx context.Context) (*ThicknessResult, error) {
 		t.Why = "no crystal has an estimable growth"
 		return t, nil
 	}
-	e, err := pool.JoinSharing(slopes, errors, sharedError(list, perM, errors), s.settings.Level)
+	e, err := pool.JoinCovariant(slopes, covarianceBetween(list, perM, errors), s.settings.Level)
 	if err != nil {
 		t.Why = err.Error()
 		return t, nil

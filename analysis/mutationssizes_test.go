@@ -34,8 +34,8 @@ var sizeMutations = []mutation{
 	},
 	{
 		name: "bias of the order 1/N left in", file: "analysis/size/jackknife.go", pkg: "analysis/size",
-		old:      `shift[j] = (n - 1) / n * sum[j]`,
-		new:      `shift[j] = 0 * n * sum[j]`,
+		old:      `j.shift[a] = (n - 1) / n * mean[a]`,
+		new:      `j.shift[a] = 0 * n * mean[a]`,
 		killedBy: []string{"TestCorrectionOfALargeExchange"},
 	},
 	{
@@ -49,6 +49,12 @@ var sizeMutations = []mutation{
 		old:      `shape := c.shellVariances()`,
 		new:      `var shape []float64`,
 		killedBy: []string{"TestVarianceLawHasNoConstantOfItsOwnForEachShell"},
+	},
+	{
+		name: "crystals taken as independent", file: "analysis/pool/effects.go", pkg: "analysis/pool",
+		old:      `quadratic += w[i] * w[j] * c`,
+		new:      `quadratic += w[i] * w[j] * c * float64(1-min(1, (i-j)*(i-j)))`,
+		killedBy: []string{"TestJoinCovariantCovers", "TestJoinCovariantOfEqualErrors"},
 	},
 	{
 		name: "giants not clipped", file: "analysis/size/instrument.go", pkg: "analysis/size",
@@ -136,14 +142,14 @@ var sizeMutations = []mutation{
 	},
 	{
 		name: "Hartung-Knapp with the plain error", file: "analysis/pool/effects.go", pkg: "analysis/pool",
-		old:      `e.RandomSE = math.Sqrt(spread / (df * ws))`,
-		new:      `e.RandomSE = e.NormalSE`,
+		old:      `e.NormalSE, e.RandomSE = math.Sqrt(r.v), math.Sqrt(spread+shared)`,
+		new:      `e.NormalSE, e.RandomSE = math.Sqrt(r.v), math.Sqrt(r.v)`,
 		killedBy: []string{"TestJoinBCG", "TestJoinBCGIntervals"},
 	},
 	{
 		name: "crystals that agree by chance say more of others than of themselves", file: "analysis/pool/effects.go", pkg: "analysis/pool",
-		old:      `like := math.Max(e.RandomSE, e.NormalSE)`,
-		new:      `like := e.RandomSE`,
+		old:      `math.Max(spread, expected)`,
+		new:      `spread`,
 		killedBy: []string{"TestJoinOfThreeThatAgree"},
 	},
 	{

@@ -6,8 +6,8 @@ import (
 	"gonum.org/v1/gonum/mat"
 )
 
-// mostShared is the largest share of a squared error that estimates may be thought to have
-// in common: covariances are estimates too, and weights need an error of one's own.
+// mostShared is the largest correlation that estimates of two crystals may be thought to have:
+// covariances are estimates too.
 const mostShared = 0.9
 
 // deletedCovariance is the covariance of m of two contrasts by the reflections that they have
@@ -29,25 +29,20 @@ func deletedCovariance(a, b *Compared) float64 {
 	return sum
 }
 
-// sharedError is the standard error that estimates of several crystals have in common: the
-// root of the mean of their covariances, each times the factors of its two, 0 where that mean is not
-// positive, and never so much that one of the errors se has nothing of its own.
-func sharedError(list []*Compared, factor, se []float64) float64 {
-	sum, n := 0.0, 0.0
-	least := math.Inf(1)
+// covarianceBetween is the covariance matrix of estimates of several crystals with errors
+// se, each a factor times the m of its contrast. A negative covariance counts as none, and
+// so does an unknown one.
+func covarianceBetween(list []*Compared, factor, se []float64) *mat.SymDense {
+	cov := mat.NewSymDense(max(len(list), 1), nil)
 	for i, a := range list {
-		least = math.Min(least, se[i])
+		cov.SetSym(i, i, se[i]*se[i])
 		for k, b := range list[:i] {
-			if c := deletedCovariance(a, b); !math.IsNaN(c) {
-				sum += c * factor[i] * factor[k]
-				n++
+			if c := factor[i] * factor[k] * deletedCovariance(a, b); c > 0 {
+				cov.SetSym(i, k, math.Min(c, mostShared*se[i]*se[k]))
 			}
 		}
 	}
-	if !(sum > 0) {
-		return 0
-	}
-	return math.Min(math.Sqrt(sum/n), math.Sqrt(mostShared)*least)
+	return cov
 }
 
 // deletedMu is the covariance of mu = -ln(1-m) of contrasts, nil where one has no deletions.

@@ -28,15 +28,15 @@ func TestCovarianceByDeletions(t *testing.T) {
 		t.Error("not symmetric")
 	}
 	se := []float64{math.Sqrt(30), 9}
-	floatcmp.Check(t, "shared", sharedError([]*Compared{a, b}, []float64{1, 1}, se), math.Sqrt(2), 1e-12, 0)
-	floatcmp.Check(t, "factors", sharedError([]*Compared{a, b}, []float64{2, 3}, se), math.Sqrt(12), 1e-12, 0)
-	floatcmp.Check(t, "never all of an error", sharedError([]*Compared{a, b}, []float64{100, 100}, se), math.Sqrt(0.9*30), 1e-12, 0)
-	c := deleted(0.2, []int32{7}, []float64{-4})
-	if s := sharedError([]*Compared{a, c}, []float64{1, 1}, se); s != 0 {
-		t.Errorf("a negative covariance is shared: %g", s)
+	between := func(b *Compared, factor ...float64) float64 {
+		return covarianceBetween([]*Compared{a, b}, factor, se).At(0, 1)
 	}
+	floatcmp.Check(t, "between", between(b, 1, 1), 2, 1e-12, 0)
+	floatcmp.Check(t, "factors", between(b, 2, 3), 12, 1e-12, 0)
+	floatcmp.Check(t, "never all of an error", between(b, 100, 100), 0.9*9*math.Sqrt(30), 1e-9, 0)
+	floatcmp.Check(t, "a negative covariance", between(deleted(0.2, []int32{7}, []float64{-4}), 1, 1), 0, 0, 0)
 	plain := deleted(0.2, []int32{7}, nil)
-	if !math.IsNaN(deletedCovariance(a, plain)) || deletedMu([]*Compared{a, plain}) != nil || sharedError([]*Compared{a, plain}, []float64{1, 1}, se) != 0 {
+	if !math.IsNaN(deletedCovariance(a, plain)) || deletedMu([]*Compared{a, plain}) != nil || between(plain, 1, 1) != 0 {
 		t.Error("a fit without deletions has a covariance")
 	}
 }

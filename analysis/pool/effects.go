@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"math"
 
+	"gonum.org/v1/gonum/mat"
 	"gonum.org/v1/gonum/stat/distuv"
 )
 
@@ -13,6 +14,8 @@ type Effects struct {
 	K int
 	// Fixed answers "in these": the inverse-variance mean.
 	Fixed, FixedSE, FixedLo, FixedHi float64
+	// SharedSE is the part of FixedSE that covariances make.
+	SharedSE float64
 	// Random answers "in others like these": the mean with between-variance Tau2
 	// and the interval of Hartung and Knapp with k-1 degrees of freedom.
 	Random, RandomSE, RandomLo, RandomHi float64
@@ -25,11 +28,11 @@ type Effects struct {
 	NormalSE float64
 	// Q is Cochran's heterogeneity with K-1 degrees of freedom and tail QP.
 	Q, QP float64
-	// Tau2 is the DerSimonian-Laird between-variance, I2 = max(0, (Q-df)/Q).
+	// Tau2 is the DerSimonian-Laird between-variance, I2 = max(0, (Q-E Q)/Q).
 	// Both are computed from two estimates on, but say little below five (see
 	// Estimable).
 	Tau2, I2 float64
-	// Birge is sqrt(Q/df).
+	// Birge is sqrt(Q/E Q).
 	Birge float64
 	// Estimable is false below five estimates: then Tau2 and I2 are not to be shown.
 	Estimable bool
@@ -41,51 +44,65 @@ type Effects struct {
 // beyond the estimates).
 const fewest = 5
 
-// Join pools estimates that share nothing; see JoinSharing.
-func Join(y, se []float64, level float64) (*Effects, error) { return JoinSharing(y, se, 0, level) }
-
-// JoinSharing pools the estimates y with standard errors se at the given confidence
-// level (0 = 0.95), of which shared, a standard error, is that of something they have in
-// common: y_i = mu + common + own_i. What is common does not fall with the number of
-// estimates and makes none of them differ, so below se^2 stands for se^2 - shared^2, and
-// shared^2 is added to the squared error of every mean.
-//
-//	fixed: mu = sum w y / sum w, w = 1/se^2, SE = 1/sqrt(sum w)
-//	Q = sum w (y-mu)^2, tau^2 = max(0, (Q-df)/(sum w - sum w^2/sum w))   (DerSimonian & Laird 1986)
-//	random: w* = 1/(se^2+tau^2), SE^2 = sum w* (y-mu*)^2 / ((k-1) sum w*) (Hartung & Knapp 2001; Knapp & Hartung 2003)
-//
-// The weights are those of the best linear mean, since what is common moves all alike.
-// One estimate gives its own fixed effect and an unbounded random interval. An
-// empty list, unequal lengths, a value that is not finite, se <= 0 and a shared error that is
-// negative or not below every se are errors.
-func JoinSharing(y, se []float64, shared, level float64) (*Effects, error) {
+// Join pools estimates that share nothing; se are their standard errors, everything else is as in
+// JoinCovariant.
+func Join(y, se []float64, level float64) (*Effects, error) {
 	if err := checkPairs(y, se); err != nil {
 		return nil, err
 	}
-	own := make([]float64, len(se))
+	cov := mat.NewSymDense(len(y), nil)
 	for i, s := range se {
-		if !(shared >= 0 && shared < s) {
-			return nil, fmt.Errorf("pool: a shared error of %g beside %g of estimate %d: it must be smaller and not negative", shared, s, i)
-		}
-		own[i] = math.Sqrt(s*s - shared*shared)
+		cov.SetSym(i, i, s*s)
 	}
-	se = own
+	return JoinCovariant(y, cov, level)
+}
+
+// JoinCovariant pools the estimates y with covariance matrix C at the given confidence
+// level (0 = 0.95), v_i = C_ii.
+//
+//	fixed: mu = sum w y / sum w, w = 1/v, SE^2 = w'Cw / (sum w)^2
+//	Q = sum w (y-mu)^2, E Q = sum w v - w'Cw/sum w                        (k-1 when nothing is shared)
+//	tau^2 = max(0, (Q - E Q)/(sum w - sum w^2/sum w))                      (DerSimonian & Laird 1986)
+//	random: w* = 1/(v+tau^2), s^2 = sum w* (y-mu*)^2 / ((k-1) sum w*) (Hartung & Knapp 2001; Knapp & Hartung 2003)
+//	SE^2 = s^2 + c, c = w*'Vw*/(sum w*)^2 - E s^2, V = C + tau^2
+//
+// The weights leave covariances out, which makes the mean a little less precise than the best
+// and keeps an estimate of a covariance from deciding who counts. What is shared moves
+// all estimates alike: the spread between them does not show it, so that it is added as c, and
+// Q is compared with its own expectation: QP is the tail of Q (k-1)/E Q.
+//
+// One estimate gives its own fixed effect and an unbounded random interval. An
+// empty list, unequal sizes, a value that is not finite and a variance that is not positive
+// are errors.
+func JoinCovariant(y []float64, cov *mat.SymDense, level float64) (*Effects, error) {
+	k := len(y)
+	if k > 0 && cov.SymmetricDim() != k {
+		return nil, fmt.Errorf("pool: %d estimates but a covariance matrix of %d", k, cov.SymmetricDim())
+	}
+	se := make([]float64, k)
+	for i := range se {
+		se[i] = math.Sqrt(cov.At(i, i))
+	}
+	if err := checkPairs(y, se); err != nil {
+		return nil, err
+	}
+	for i := range k {
+		for j := range i {
+			if c := cov.At(i, j); math.IsNaN(c) || math.IsInf(c, 0) {
+				return nil, fmt.Errorf("pool: covariance of estimates %d and %d is %g", i, j, c)
+			}
+		}
+	}
 	if level == 0 {
 		level = 0.95
 	}
 	if !(level > 0 && level < 1) {
 		return nil, fmt.Errorf("pool: level %g is not between 0 and 1", level)
 	}
-	k := len(y)
 	e := &Effects{K: k, Level: level, Estimable: k >= fewest}
-	var sw, sw2 float64
-	for _, s := range se {
-		w := 1 / (s * s)
-		sw += w
-		sw2 += w * w
-	}
-	e.Fixed = weightedMean(y, se, 0)
-	e.FixedSE = math.Hypot(1/math.Sqrt(sw), shared)
+	f := weigh(y, cov, 0)
+	e.Fixed, e.FixedSE = f.mean, math.Sqrt(f.v)
+	e.SharedSE = math.Sqrt(math.Max(0, f.v-f.alone))
 	z := distuv.UnitNormal.Quantile((1 + level) / 2)
 	e.FixedLo, e.FixedHi = e.Fixed-z*e.FixedSE, e.Fixed+z*e.FixedSE
 	df := float64(k - 1)
@@ -96,53 +113,90 @@ func JoinSharing(y, se []float64, shared, level float64) (*Effects, error) {
 		e.LikeLo, e.LikeHi = e.RandomLo, e.RandomHi
 		return e, nil
 	}
-	for i := range y {
-		d := y[i] - e.Fixed
-		e.Q += d * d / (se[i] * se[i])
+	if !(f.expected > 1e-9*df) {
+		return nil, fmt.Errorf("pool: the estimates have nothing of their own: the covariance matrix leaves no spread between them")
 	}
-	e.QP = distuv.ChiSquared{K: df}.Survival(e.Q)
-	e.Birge = math.Sqrt(e.Q / df)
-	e.Tau2 = math.Max(0, (e.Q-df)/(sw-sw2/sw))
+	e.Q = f.q
+	e.QP = distuv.ChiSquared{K: df}.Survival(e.Q * df / f.expected)
+	e.Birge = math.Sqrt(e.Q / f.expected)
+	e.Tau2 = math.Max(0, (e.Q-f.expected)/(f.sum-f.squares/f.sum))
 	if e.Q > 0 {
-		e.I2 = math.Max(0, (e.Q-df)/e.Q)
+		e.I2 = math.Max(0, (e.Q-f.expected)/e.Q)
 	}
-	e.Random = weightedMean(y, se, e.Tau2)
-	var ws, spread float64
-	for i := range y {
-		w := 1 / (se[i]*se[i] + e.Tau2)
-		d := y[i] - e.Random
-		ws += w
-		spread += w * d * d
-	}
-	normal, random := 1/math.Sqrt(ws), math.Sqrt(spread/(df*ws))
-	e.NormalSE, e.RandomSE = math.Hypot(normal, shared), math.Hypot(random, shared)
-	// What is common is known by its own error, not by the spread of so few.
+	r := weigh(y, cov, e.Tau2)
+	e.Random = r.mean
+	expected := r.expected / (df * r.sum)
+	shared := math.Max(0, r.v-expected)
+	spread := r.q / (df * r.sum)
+	e.NormalSE, e.RandomSE = math.Sqrt(r.v), math.Sqrt(spread+shared)
+	// What is shared is known by its own error, not by the spread of so few.
 	t := distuv.StudentsT{Mu: 0, Sigma: 1, Nu: df}.Quantile((1 + level) / 2)
-	half := math.Hypot(t*random, z*shared)
+	half := math.Sqrt(t*t*spread + z*z*shared)
 	e.RandomLo, e.RandomHi = e.Random-half, e.Random+half
-	half = math.Hypot(t*math.Max(random, normal), z*shared)
+	half = math.Sqrt(t*t*math.Max(spread, expected) + z*z*shared)
 	e.LikeLo, e.LikeHi = e.Random-half, e.Random+half
 	return e, nil
 }
 
-// LeaveOneOut returns the fixed effect without each estimate in turn, shared as in
-// JoinSharing; nil for fewer than two.
-func LeaveOneOut(y, se []float64, shared, level float64) ([]*Effects, error) {
-	if err := checkPairs(y, se); err != nil {
-		return nil, err
+// weighing is a mean with weights 1/(v + tau^2).
+type weighing struct {
+	mean, sum, squares float64 // sums of the weights and of their squares
+	v, alone           float64 // variance of the mean, and without covariances
+	q, expected        float64 // sum w (y-mean)^2 and what it is on the mean
+}
+
+func weigh(y []float64, cov *mat.SymDense, tau2 float64) weighing {
+	var r weighing
+	w := make([]float64, len(y))
+	for i := range y {
+		w[i] = 1 / (cov.At(i, i) + tau2)
+		r.sum += w[i]
+		r.squares += w[i] * w[i]
+		r.mean += w[i] * y[i]
 	}
+	r.mean /= r.sum
+	var quadratic, own float64
+	for i := range y {
+		for j := range y {
+			c := cov.At(i, j)
+			if i == j {
+				c += tau2
+				own += w[i] * w[i] * c
+				r.expected += w[i] * c
+			}
+			quadratic += w[i] * w[j] * c
+		}
+		d := y[i] - r.mean
+		r.q += w[i] * d * d
+	}
+	r.v, r.alone = quadratic/(r.sum*r.sum), own/(r.sum*r.sum)
+	r.expected -= quadratic / r.sum
+	return r
+}
+
+// LeaveOneOut returns the fixed effect without each estimate in turn; nil for
+// fewer than two. Errors as in JoinCovariant.
+func LeaveOneOut(y []float64, cov *mat.SymDense, level float64) ([]*Effects, error) {
 	if len(y) < 2 {
-		return nil, nil
+		_, err := JoinCovariant(y, cov, level)
+		return nil, err
 	}
 	out := make([]*Effects, len(y))
 	for i := range y {
-		var a, b []float64
+		var rest []float64
+		var rows []int
 		for j := range y {
 			if j != i {
-				a, b = append(a, y[j]), append(b, se[j])
+				rest, rows = append(rest, y[j]), append(rows, j)
 			}
 		}
-		e, err := JoinSharing(a, b, shared, level)
+		part := mat.NewSymDense(len(rows), nil)
+		for a, ra := range rows {
+			for b, rb := range rows[:a+1] {
+				part.SetSym(a, b, cov.At(ra, rb))
+			}
+		}
+		e, err := JoinCovariant(rest, part, level)
 		if err != nil {
 			return nil, err
 		}

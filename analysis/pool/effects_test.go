@@ -101,7 +101,7 @@ func TestJoinRefuses(t *testing.T) {
 
 func TestLeaveOneOut(t *testing.T) {
 	y, se := []float64{1, 2, 6}, []float64{1, 1, 1}
-	out, err := LeaveOneOut(y, se, 0, 0)
+	out, err := LeaveOneOut(y, shared(se, 0), 0)
 	if err != nil {
 		t.Fatal(err)
 	}
