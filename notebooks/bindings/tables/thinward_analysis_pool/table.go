@@ -17,7 +17,7 @@ func init() {
 		Name: "pool",
 		Binds: map[string]reflect.Value{
 			"Join":          reflect.ValueOf(pool.Join),
-			"JoinSharing":   reflect.ValueOf(pool.JoinSharing),
+			"JoinCovariant": reflect.ValueOf(pool.JoinCovariant),
 			"LeaveOneOut":   reflect.ValueOf(pool.LeaveOneOut),
 			"PauleMandel":   reflect.ValueOf(pool.PauleMandel),
 			"Signs":         reflect.ValueOf(pool.Signs),
