@@ -257,6 +257,8 @@ func answerThickness(r *Result) *Answer {
 		if p := straight(t.Lines); p < 0.05 {
 			a.Verdict = VerdictUnsure
 			a.Text = fmt.Sprintf("\u03bc = \u2212ln(1\u2212m) is above 0 in the thicker positions, by %s per 100 nm over %s, but does not grow in proportion to thickness (p = %s): look at the points.", slope, plural(used, "crystal"), short(p))
+		} else if !math.IsNaN(p) {
+			a.Text += fmt.Sprintf(" The positions between lie on a line through the thinnest within their errors (p = %s); that the thickest differs is what m says already.", short(p))
 		}
 	default:
 		a.Text = fmt.Sprintf("No growth is seen: \u03bc = \u2212ln(1\u2212m) changes by %s per 100 nm over %s; %s per 100 nm would have been seen with 80 %% power.", slope, plural(used, "crystal"),
@@ -295,9 +297,6 @@ func span(v, lo, hi float64) string {
 	}
 	return fmt.Sprintf("%s (%s to %s)", short(v), short(lo), short(hi))
 }
-
-// within95 writes a value and its 95 % interval, by its standard uncertainty.
-func within95(v, su float64) string { return span(v, v-zOf(0.95)*su, v+zOf(0.95)*su) }
 
 // percentOf writes a share; a dash where there is none.
 func percentOf(share float64) string {

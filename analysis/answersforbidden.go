@@ -5,6 +5,8 @@ import (
 	"math"
 	"strings"
 
+	"gonum.org/v1/gonum/stat/distuv"
+
 	"thinward/analysis/intensity"
 )
 
@@ -21,8 +23,8 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 		}
 		known++
 		su := math.Hypot(thick.SU, thin.SU)
-		z, worst = append(z, (thick.Ratio-thin.Ratio)/su), math.Max(worst, su)
-		a.Detail = append(a.Detail, fmt.Sprintf("%s thin %s, thick %s", label(c), within95(thin.Ratio, thin.SU), within95(thick.Ratio, thick.SU)))
+		z, worst = append(z, ofFew((thick.Ratio-thin.Ratio)/su, min(thin.N, thick.N))), math.Max(worst, su)
+		a.Detail = append(a.Detail, fmt.Sprintf("%s thin %s, thick %s; %d and %d reflections", label(c), forbiddenSpan(thin), forbiddenSpan(thick), thin.N, thick.N))
 	}
 	f := asking(list, known)
 	for _, v := range z {
@@ -102,8 +104,8 @@ func centringNull(r *Result, list []*ContrastResult, z float64) (text string, li
 		if thin == nil || thick == nil {
 			continue
 		}
-		parts = append(parts, fmt.Sprintf("%s thin %s, thick %s", label(c), within95(thin.Ratio, thin.SU), within95(thick.Ratio, thick.SU)))
-		lifted = lifted || thick.Ratio-thin.Ratio > z*math.Hypot(thin.SU, thick.SU)
+		parts = append(parts, fmt.Sprintf("%s thin %s, thick %s; %d and %d reflections", label(c), forbiddenSpan(thin), forbiddenSpan(thick), thin.N, thick.N))
+		lifted = lifted || ofFew((thick.Ratio-thin.Ratio)/math.Hypot(thin.SU, thick.SU), min(thin.N, thick.N)) > z
 	}
 	if len(parts) == 0 {
 		return "", false
@@ -139,4 +141,17 @@ func forbiddenOf(list []Forbidden, crystal, position, element string) *Forbidden
 		}
 	}
 	return nil
+}
+
+// ofFew is the normal deviate as rare as a ratio z of a difference to an error that comes
+// from the scatter of n reflections (Student 1908, Biometrika 6:1).
+func ofFew(z float64, n int) float64 {
+	p := distuv.StudentsT{Mu: 0, Sigma: 1, Nu: float64(max(n-1, 1))}.Survival(math.Abs(z))
+	return math.Copysign(math.Min(distuv.UnitNormal.Quantile(1-p), math.Abs(z)), z)
+}
+
+// forbiddenSpan writes a ratio with its 95 % interval.
+func forbiddenSpan(f *Forbidden) string {
+	half := f.SU * distuv.StudentsT{Mu: 0, Sigma: 1, Nu: float64(max(f.N-1, 1))}.Quantile(0.975)
+	return span(f.Ratio, f.Ratio-half, f.Ratio+half)
 }
