@@ -86,9 +86,9 @@ func answerDiffer(list []*ContrastResult) Answer {
 			n++
 		}
 		worst = math.Max(worst, (m.Hi-m.Lo)/2/zOf(0.95))
-		parts = append(parts, fmt.Sprintf("%s r = %s; pairs differ by %s of their intensity beyond their noise (root mean square)", label(c), span(r.R, r.Lo, r.Hi), percentOf(c.PairNoise)))
+		parts = append(parts, fmt.Sprintf("%s r = %s; pairs differ by %s beyond noise", label(c), span(r.R, r.Lo, r.Hi), percentOf(c.PairNoise)))
 	}
-	const same = "(r = 1 would mean no difference"
+	const same = "(r = 1 would mean no difference; below it, how far pairs differ, root mean square of their intensity"
 	switch {
 	case known == 0:
 		a.Verdict = VerdictUnknown
@@ -246,7 +246,8 @@ func answerThickness(r *Result) *Answer {
 		a.Detail = append(a.Detail, fmt.Sprintf("between %s, by the step in thickness of each: %s, with %s where the step is 0", plural(len(x.Crystals), "crystal"),
 			span(x.Slope.Value, x.Slope.Lo, x.Slope.Hi), span(x.Intercept.Value, x.Intercept.Lo, x.Intercept.Hi)))
 	}
-	a.Detail = append(a.Detail, withinTilt(t.Tilt)...)
+	tilts := withinTilt(t.Tilt)
+	a.Detail = append(a.Detail, tilts...)
 	switch {
 	case positions < 3:
 		a.Verdict = VerdictUnsure
@@ -263,6 +264,9 @@ func answerThickness(r *Result) *Answer {
 	default:
 		a.Text = fmt.Sprintf("No growth is seen: \u03bc = \u2212ln(1\u2212m) changes by %s per 100 nm over %s; %s per 100 nm would have been seen with 80 %% power.", slope, plural(used, "crystal"),
 			short(size.MinimumVisible((t.Slope.Hi-t.Slope.Lo)/2/zOf(0.95), 0.95, 0.8)))
+	}
+	if len(tilts) > 0 {
+		a.Text += tiltNote
 	}
 	return a
 }

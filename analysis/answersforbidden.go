@@ -23,18 +23,18 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 		}
 		known++
 		su := math.Hypot(thick.SU, thin.SU)
-		z, worst = append(z, ofFew((thick.Ratio-thin.Ratio)/su, min(thin.N, thick.N))), math.Max(worst, su)
+		z, worst = append(z, rise(thin, thick)), math.Max(worst, su)
 		a.Detail = append(a.Detail, fmt.Sprintf("%s thin %s, thick %s; %d and %d reflections", label(c), forbiddenSpan(thin), forbiddenSpan(thick), thin.N, thick.N))
 	}
 	f := asking(list, known)
 	for _, v := range z {
-		if v > 2*f {
+		if v > zOf(0.95)*f {
 			up++
 		}
 	}
 	const below = " Below, their mean over the local mean."
 	pair := list[0].ThickCrystal != ""
-	null, lifted := centringNull(r, list, 2*f)
+	null, lifted := centringNull(r, list, zOf(0.95)*f)
 	switch {
 	case none:
 		a.Text = "The space group forbids no reflection, so there is nothing to look at."
@@ -60,7 +60,7 @@ func answerForbidden(r *Result, list []*ContrastResult) Answer {
 		if pair {
 			what = "They are not seen to be stronger in the thick position"
 		}
-		a.Text = fmt.Sprintf("%s; one of %s of the local mean would have been seen in each %s with 80 %% power.", what, short(visible(worst, 2*f/zOf(0.95))), alike(pair)) + below
+		a.Text = fmt.Sprintf("%s; one of %s of the local mean would have been seen in each %s with 80 %% power.", what, short(visible(worst, f)), alike(pair)) + below
 	}
 	if null != "" {
 		a.Detail = append(a.Detail, null)
@@ -105,7 +105,7 @@ func centringNull(r *Result, list []*ContrastResult, z float64) (text string, li
 			continue
 		}
 		parts = append(parts, fmt.Sprintf("%s thin %s, thick %s; %d and %d reflections", label(c), forbiddenSpan(thin), forbiddenSpan(thick), thin.N, thick.N))
-		lifted = lifted || ofFew((thick.Ratio-thin.Ratio)/math.Hypot(thin.SU, thick.SU), min(thin.N, thick.N)) > z
+		lifted = lifted || rise(thin, thick) > z
 	}
 	if len(parts) == 0 {
 		return "", false
@@ -143,10 +143,14 @@ func forbiddenOf(list []Forbidden, crystal, position, element string) *Forbidden
 	return nil
 }
 
-// ofFew is the normal deviate as rare as a ratio z of a difference to an error that comes
-// from the scatter of n reflections (Student 1908, Biometrika 6:1).
-func ofFew(z float64, n int) float64 {
-	p := distuv.StudentsT{Mu: 0, Sigma: 1, Nu: float64(max(n-1, 1))}.Survival(math.Abs(z))
+// rise is the difference of two ratios over its error, as the normal deviate that is as rare:
+// errors from the scatter of a few reflections make large ratios likelier (Welch 1947,
+// Biometrika 34:28).
+func rise(thin, thick *Forbidden) float64 {
+	a, b := thin.SU*thin.SU, thick.SU*thick.SU
+	z := (thick.Ratio - thin.Ratio) / math.Sqrt(a+b)
+	df := (a + b) * (a + b) / (a*a/float64(max(thin.N-1, 1)) + b*b/float64(max(thick.N-1, 1)))
+	p := distuv.StudentsT{Mu: 0, Sigma: 1, Nu: df}.Survival(math.Abs(z))
 	return math.Copysign(math.Min(distuv.UnitNormal.Quantile(1-p), math.Abs(z)), z)
 }
 

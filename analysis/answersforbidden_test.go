@@ -4,6 +4,7 @@ import (
 	"math"
 	"strings"
 	"testing"
+	"thinward/analysis/internal/floatcmp"
 
 	"thinward/analysis/intensity"
 )
@@ -82,4 +83,14 @@ func TestAnswerForbiddenOfTwoCrystals(t *testing.T) {
 	if a = answerForbidden(&Result{Forbidden: rows}, list); a.Verdict != VerdictNo || strings.Contains(a.Text, "with thickness") || !strings.Contains(a.Text, "in each pair") {
 		t.Errorf("%q: %s", a.Verdict, a.Text)
 	}
+}
+
+// With n = 5 and 5, errors 0.024 and 0.019 the ratio 3.136 has 7.600 degrees of freedom (Welch
+// 1947); Student's tail by numerical integration and the normal quantile of Python's statistics:
+// p = 0.007408 one-sided, 2.4368.
+func TestRiseOfFew(t *testing.T) {
+	got := rise(&Forbidden{N: 5, Ratio: 0.043, SU: 0.024}, &Forbidden{N: 5, Ratio: 0.139, SU: 0.019})
+	floatcmp.Check(t, "few", got, 2.4368, 1e-3, 0)
+	got = rise(&Forbidden{N: 4000, Ratio: 0.139, SU: 0.019}, &Forbidden{N: 4000, Ratio: 0.043, SU: 0.024})
+	floatcmp.Check(t, "many", got, -3.136, 0.004, 0)
 }
