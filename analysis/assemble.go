@@ -15,7 +15,7 @@ import (
 func (s *Study) assemble() *Result {
 	r := &Result{
 		Schema: Schema, Series: s.Series.Title, Seed: s.Series.Seed,
-		Intake: s.table, Common: s.sharing, Remarks: s.remarks, Centring: s.centring, Turns: s.turns, Indexing: s.indexing, Forbidden: s.forbidden, Quality: s.quality, Distributions: s.distributions, Controls: s.controls, Specification: s.spec, Expectation: s.expected,
+		Intake: s.table, Common: s.sharing, Remarks: s.remarks, Centring: s.centring, Turns: s.turns, Indexing: s.indexing, Forbidden: s.forbidden, Quality: s.quality, Distributions: s.distributions, FriedelMates: s.mates, Controls: s.controls, Specification: s.spec, Expectation: s.expected,
 	}
 	for i := range s.Series.Crystals {
 		for j := range s.Series.Crystals[i].Positions {

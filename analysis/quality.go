@@ -53,8 +53,8 @@ type Distribution struct {
 // qualityShells is the number of resolution shells of the table.
 const qualityShells = 8
 
-// Quality measures the precision of every position on the common scale and
-// how its strengths are distributed.
+// Quality measures the precision of every position on the common scale, how its strengths
+// are distributed and how unequal its Friedel mates are (see FriedelMates).
 func (s *Study) Quality(ctx context.Context) ([]Quality, []Distribution, error) {
 	s.mu.Lock()
 	defer s.mu.Unlock()
@@ -67,6 +67,7 @@ func (s *Study) Quality(ctx context.Context) ([]Quality, []Distribution, error) 
 	}
 	var rows []Quality
 	var laws []Distribution
+	var mates []FriedelMates
 	for i, sc := range scaled {
 		c := s.Series.Crystals[i].Name
 		for j, p := range sc.Positions {
@@ -76,6 +77,7 @@ func (s *Study) Quality(ctx context.Context) ([]Quality, []Distribution, error) 
 			}
 			rows = append(rows, own...)
 			laws = append(laws, s.distributionsOf(p, c, s.Series.Crystals[i].Positions[j].Name)...)
+			mates = append(mates, s.friedelOf(p, c, s.Series.Crystals[i].Positions[j].Name)...)
 		}
 		if len(sc.Positions) > 1 {
 			across, err := s.precision(ctx, together(sc.Positions), c, AllPositions)
@@ -85,7 +87,7 @@ func (s *Study) Quality(ctx context.Context) ([]Quality, []Distribution, error) 
 			rows = append(rows, across...)
 		}
 	}
-	s.quality, s.distributions = rows, laws
+	s.quality, s.distributions, s.mates = rows, laws, mates
 	return rows, laws, nil
 }
 

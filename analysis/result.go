@@ -25,6 +25,7 @@ type Result struct {
 	Forbidden     []Forbidden      `json:"forbidden"`
 	Quality       []Quality        `json:"quality,omitempty"`
 	Distributions []Distribution   `json:"distributions,omitempty"`
+	FriedelMates  []FriedelMates   `json:"friedel_mates,omitempty"`
 	Crystals      *CrystalsResult  `json:"crystals,omitempty"`
 	Thickness     *ThicknessResult `json:"thickness,omitempty"`
 	Controls      []ControlResult  `json:"controls,omitempty"`

@@ -81,6 +81,7 @@ type Study struct {
 	forbidden     []Forbidden
 	quality       []Quality
 	distributions []Distribution
+	mates         []FriedelMates
 	pooled        *joined
 	controls      []ControlResult
 	spec          []Specification

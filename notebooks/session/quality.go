@@ -83,6 +83,18 @@ func (s *Session) Distributions() *View {
 	return g.view("Distributions")
 }
 
+// FriedelMates shows how unequal Friedel mates are in each position.
+func (s *Session) FriedelMates() *View {
+	r := s.upTo(stepQuality)
+	g := newGrid("Friedel mates: how unequal they are, root mean square over the mean beyond the scatter of each; the centric ones, whose mates are equivalents, are a null", "position", "kind", "pairs", "unequal by", "interval", "z", "remark").words(1, 6)
+	for _, f := range r.FriedelMates {
+		g.add(f.Crystal+"/"+f.Position, f.Kind, count(f.N), number(f.Share, 3), between(f.Lo, f.Hi, 3), number(f.Z, 1), f.Why)
+	}
+	v := g.view("Friedel mates")
+	v.note("One scattering makes mates equal. Scattering more than once makes acentric ones unequal, the more the thicker the crystal; no scale, sigma or strength axis has part in it, but equivalents that were measured at other angles have, so the null should be near 0. Where equivalents scatter much by their orientation, as in a crystal of many beams, unequal mates drown in that and nothing is seen. A negative number is a negative square.")
+	return v
+}
+
 // DistributionsFigure shows the share of reflections below each strength, N(z),
 // centric and acentric apart, beside Wilson's laws.
 func (s *Session) DistributionsFigure() *View { return distributionsFigure(s.upTo(stepQuality)) }

@@ -61,6 +61,7 @@ func init() {
 			"Expectation":     reflect.TypeOf((*analysis.Expectation)(nil)).Elem(),
 			"Forbidden":       reflect.TypeOf((*analysis.Forbidden)(nil)).Elem(),
 			"ForbiddenTrend":  reflect.TypeOf((*analysis.ForbiddenTrend)(nil)).Elem(),
+			"FriedelMates":    reflect.TypeOf((*analysis.FriedelMates)(nil)).Elem(),
 			"Giant":           reflect.TypeOf((*analysis.Giant)(nil)).Elem(),
 			"IndexingResult":  reflect.TypeOf((*analysis.IndexingResult)(nil)).Elem(),
 			"InputResult":     reflect.TypeOf((*analysis.InputResult)(nil)).Elem(),
