@@ -273,7 +273,9 @@ func (v *covered) take(c cell, a *reply) {
 	for i, r := range a.three {
 		v.three.add(r.Exchange.M, r.Exchange.Lo, r.Exchange.Hi, c.m)
 		v.curb.add(r.Curb.Q, r.Curb.Lo, r.Curb.Hi, c.curb)
-		v.offset.add(r.Offset.O, r.Offset.Lo, r.Offset.Hi, a.offset[i])
+		if !math.IsNaN(r.Offset.O) { // not part of the model where shell means span little
+			v.offset.add(r.Offset.O, r.Offset.Lo, r.Offset.Hi, a.offset[i])
+		}
 	}
 	v.pooled.add(a.together.InThese.Value, a.together.InThese.Lo, a.together.InThese.Hi, c.m)
 	v.like.add(a.together.LikeThese.Value, a.together.LikeThese.Lo, a.together.LikeThese.Hi, c.m)
