@@ -220,6 +220,7 @@ type change struct {
 	thin, thick, axis float64 // its means over what they were
 	first, second     float64 // means of h Q and h^2 T, in units of the old mean of thin
 	centring          float64
+	unit, cubic       float64 // what h Q and h^2 T are over what they were
 }
 
 // alone reports whether a shell has nothing to give without row i: a function less its mean is
@@ -230,7 +231,7 @@ func (st *strata) alone(c *conditions, i int) bool {
 
 // lost is the change by row i, none for i < 0; false when a mean is not positive.
 func (st *strata) lost(c *conditions, i int) (change, bool) {
-	ch := change{1, 1, 1, st.first, st.second, st.centring}
+	ch := change{1, 1, 1, st.first, st.second, st.centring, 1, 1}
 	if i < 0 {
 		return ch, true
 	}
@@ -241,6 +242,10 @@ func (st *strata) lost(c *conditions, i int) (change, bool) {
 	ch.centring -= c.u[i]
 	if c.u[i] > 0 {
 		ch.axis = (st.used - c.z[i]) / (st.used - 1)
+	}
+	ch.unit, ch.cubic = 1/ch.thin, 1/ch.thin // h Q goes as mean1^-power, h^2 T as mean1^(1-2 power)
+	if c.power == 2 {
+		ch.unit, ch.cubic = ch.unit*ch.unit, ch.unit*ch.unit*ch.unit
 	}
 	return ch, ch.thin > 0 && ch.thick > 0 && ch.axis > 0
 }
@@ -291,6 +296,8 @@ func power(x float64, n int) float64 {
 		return 1
 	case 1:
 		return x
+	case -1:
+		return 1 / x
 	}
 	return math.Pow(x, float64(n))
 }
@@ -302,11 +309,9 @@ func (d *deletion) linear(sum *columns, ch change, c *conditions, sh int, out *l
 	out[0] = y1 - sum[0]
 	if d.p > int(MQ) {
 		q := d.s.bent
-		unit := power(ch.thin, -int(c.power))     // h Q goes as mean1^-power
-		cubic := power(ch.thin, 1-2*int(c.power)) // h^2 T as mean1^(1-2 power)
-		first, second := ch.first*unit, ch.second*cubic
+		first, second := ch.first*ch.unit, ch.second*ch.cubic
 		mean := first + q*(first*first-second/2)
-		out[1] = sum[3]*unit*(1+q*first) - q*sum[4]*cubic/2 - mean*y1
+		out[1] = sum[3]*ch.unit*(1+q*first) - q*sum[4]*ch.cubic/2 - mean*y1
 	}
 	if d.p > int(MQO) {
 		out[2] = c.inverse[sh] / ch.thick * out[0]
