@@ -144,7 +144,7 @@ var sizeMutations = []mutation{
 		name: "Hartung-Knapp with the plain error", file: "analysis/pool/effects.go", pkg: "analysis/pool",
 		old:      `e.NormalSE, e.RandomSE = math.Sqrt(r.v), math.Sqrt(spread+shared)`,
 		new:      `e.NormalSE, e.RandomSE = math.Sqrt(r.v), math.Sqrt(r.v)`,
-		killedBy: []string{"TestJoinBCG", "TestJoinBCGIntervals"},
+		killedBy: []string{"TestJoinBCG"},
 	},
 	{
 		name: "crystals that agree by chance say more of others than of themselves", file: "analysis/pool/effects.go", pkg: "analysis/pool",

@@ -5,6 +5,8 @@ import (
 	"math"
 	"testing"
 
+	"gonum.org/v1/gonum/stat"
+
 	"thinward/analysis/intensity"
 	"thinward/analysis/internal/floatcmp"
 	"thinward/analysis/simulate"
@@ -91,6 +93,7 @@ func TestCopiedRows(t *testing.T) {
 		}
 		floatcmp.Check(t, "m", c.Result.Exchange.M, x.Result.Exchange.M, 0.05*x.Result.Exchange.SE, 0)
 		floatcmp.Check(t, "its error", c.Result.Exchange.SE, x.Result.Exchange.SE, 0, 0.02)
+		floatcmp.Check(t, "variances of the thin position", stat.Mean(c.Input.VarThin, nil), stat.Mean(x.Input.VarThin, nil), 0, 0.1)
 	}
 	for i := range a.intake.Positions {
 		for j := range a.intake.Positions[i] {

@@ -5,6 +5,8 @@ import (
 	"math"
 	"testing"
 
+	"gonum.org/v1/gonum/stat"
+
 	"thinward/analysis/difference"
 	"thinward/analysis/internal/floatcmp"
 	"thinward/analysis/size"
@@ -43,9 +45,9 @@ func TestBracketOfOneCrystal(t *testing.T) {
 }
 
 // Reported sigmas of one position that are all wrong by one factor change nothing: the
-// noise model takes the factor up.
+// noise model takes the factor up, in the variances of pairs too.
 func TestSizesIgnoreAFactorOnSigmas(t *testing.T) {
-	read := func(factor float64) (m, se, a float64) {
+	read := func(factor float64) (m, se, a, v float64) {
 		s := studyOf(t, cell{m: 0.05, deviation: 0.3, sigma: factor}.plan(1), quick())
 		if _, err := s.Scale(context.Background()); err != nil {
 			t.Fatal(err)
@@ -57,9 +59,10 @@ func TestSizesIgnoreAFactorOnSigmas(t *testing.T) {
 		if err := s.sizes(context.Background(), x); err != nil {
 			t.Fatal(err)
 		}
-		return x.Result.Exchange.M, x.Result.Exchange.SE, s.scaled[0].Noise.Position[0].A
+		return x.Result.Exchange.M, x.Result.Exchange.SE, s.scaled[0].Noise.Position[0].A, stat.Mean(x.Input.VarThin, nil)
 	}
-	m, se, a := read(1)
-	mHalf, seHalf, aHalf := read(0.5)
+	m, se, a, v := read(1)
+	mHalf, seHalf, aHalf, vHalf := read(0.5)
 	floatcmp.CheckSlice(t, "m, its error and a", []float64{mHalf, seHalf, aHalf / 2}, []float64{m, se, a}, 1e-4, 1e-6)
+	floatcmp.Check(t, "variances of the thin position", vHalf, v, 0, 1e-3)
 }
