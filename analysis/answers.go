@@ -307,7 +307,7 @@ func percentOf(share float64) string {
 	if math.IsNaN(share) {
 		return "\u2013"
 	}
-	return fmt.Sprintf("%.0f %%", 100*share)
+	return fmt.Sprintf("%.0f %%", 100*math.Max(share, 0))
 }
 
 // short writes a number with three decimals, or three digits when it is large.

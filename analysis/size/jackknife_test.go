@@ -3,6 +3,7 @@ package size
 import (
 	"math"
 	"math/rand/v2"
+	"strings"
 	"testing"
 
 	"thinward/analysis/internal/floatcmp"
@@ -198,4 +199,30 @@ func (p plan) twoCrystals(g *rand.Rand) (a, b *Input) {
 		return &in
 	}
 	return measure(), measure()
+}
+
+// Where a shift is beyond an error none is made, and the fit says so; its error stays that of the
+// deletions.
+func TestShiftsBeyondAnErrorAreNotMade(t *testing.T) {
+	g := stream(76)
+	seen := 0
+	for range 200 {
+		in := plan{n: 150, shells: 3, m: .05, falloff: 4, noise: [3]float64{.6, .2, .2}, error: .3}.draw(g)
+		f, err := Moments(in, nil, MQO, nil)
+		if err != nil {
+			continue // a shell mean is not positive
+		}
+		if !f.Estimable {
+			continue
+		}
+		if f.MDeleted == nil || f.Corrected == strings.Contains(f.Why, "too few reflections for a correction") {
+			t.Fatalf("corrected %t, deletions %d: %s", f.Corrected, len(f.MDeleted), f.Why)
+		}
+		if !f.Corrected {
+			seen++
+		}
+	}
+	if seen == 0 {
+		t.Error("no shift was beyond an error: it shows nothing")
+	}
 }

@@ -192,6 +192,12 @@ func (s *system) fit(set *Settings) (*Fit, error) {
 	if out.F < weakF {
 		out.Why = fmt.Sprintf("the axis is weak (first-stage F = %.3g, below %d): intervals are too short, see the Anderson-Rubin interval of the exchange", out.F, weakF)
 	}
+	if sol.jack != nil && !out.Corrected {
+		if out.Why != "" {
+			out.Why += "; "
+		}
+		out.Why += "too few reflections for a correction of the bias of order 1/N, which would be more than an error"
+	}
 	return out, nil
 }
 

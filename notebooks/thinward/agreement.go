@@ -36,7 +36,7 @@ var stepOrder = []struct {
 	{"differences", []string{"contrasts"}},
 	{pairsStep, []string{"pairs"}},
 	{"forbidden", []string{"forbidden"}},
-	{"quality", []string{"quality", "distributions"}},
+	{"quality", []string{"quality", "distributions", "friedel_mates"}},
 	{"crystals", []string{"crystals", "thickness"}},
 	{"controls", []string{"controls"}},
 	{"specification", []string{"specification"}},
