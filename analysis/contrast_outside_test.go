@@ -57,17 +57,7 @@ func TestBracketEndsErrOnTheirSides(t *testing.T) {
 	p := simulate.Null(3)
 	p.DMin, p.Crystals = 1.3, p.Crystals[:1]
 	p.Crystals[0].Neighbours = 0
-	s := studyOf(t, p, quick())
-	if _, err := s.Scale(context.Background()); err != nil {
-		t.Fatal(err)
-	}
-	x, err := s.paired(context.Background(), s.primaryContrasts()[0])
-	if err != nil {
-		t.Fatal(err)
-	}
-	if err := s.sizes(context.Background(), x); err != nil {
-		t.Fatal(err)
-	}
+	_, x := sized(t, p)
 	b := &x.Result.Bracket
 	t.Logf("half of thin %+v, half of thick %+v, by the leading model %+v, %+v", b.ThinSlope, b.ThickSlope, b.Thin, b.Thick)
 	if !(b.ThinSlope.Lo > 0 && b.ThinSlope.Value < 0.3 && b.ThickSlope.Hi < 0 && b.ThickSlope.Value > -0.4 && b.Lo < 0 && b.Hi > 0) {
@@ -87,17 +77,7 @@ func TestBracketHoldsWhatEitherReadingMisses(t *testing.T) {
 		p.Common.Deviation = deviation
 		at := &p.Crystals[0].Positions[2]
 		p.Crystals[0].Neighbours, at.Exchange, at.Curb, at.Offset = 0, exchange, curb, offset
-		s := studyOf(t, p, quick())
-		if _, err := s.Scale(context.Background()); err != nil {
-			t.Fatal(err)
-		}
-		x, err := s.paired(context.Background(), s.primaryContrasts()[0])
-		if err != nil {
-			t.Fatal(err)
-		}
-		if err := s.sizes(context.Background(), x); err != nil {
-			t.Fatal(err)
-		}
+		_, x := sized(t, p)
 		return &x.Result
 	}
 	r := read(0.3, 0.1, 0, 0)

@@ -52,3 +52,20 @@ func studyOf(t testing.TB, p *simulate.Plan, set *Settings) *Study {
 	}
 	return s
 }
+
+// sized is the first primary contrast of an invented series as far as its sizes.
+func sized(t testing.TB, p *simulate.Plan) (*Study, *Compared) {
+	t.Helper()
+	s := studyOf(t, p, quick())
+	if _, err := s.Scale(context.Background()); err != nil {
+		t.Fatal(err)
+	}
+	x, err := s.paired(context.Background(), s.primaryContrasts()[0])
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := s.sizes(context.Background(), x); err != nil {
+		t.Fatal(err)
+	}
+	return s, x
+}

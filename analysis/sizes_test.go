@@ -1,7 +1,6 @@
 package analysis
 
 import (
-	"context"
 	"math"
 	"testing"
 
@@ -19,17 +18,7 @@ func TestBracketOfOneCrystal(t *testing.T) {
 	for _, c := range []cell{{sigma: 1, curb: 0.02}, {sigma: 1, offset: 0.02}} {
 		p := c.plan(1)
 		p.Crystals = p.Crystals[:1]
-		s := studyOf(t, p, quick())
-		if _, err := s.Scale(context.Background()); err != nil {
-			t.Fatal(err)
-		}
-		x, err := s.paired(context.Background(), s.primaryContrasts()[0])
-		if err != nil {
-			t.Fatal(err)
-		}
-		if err := s.sizes(context.Background(), x); err != nil {
-			t.Fatal(err)
-		}
+		s, x := sized(t, p)
 		e := x.Result.Exchange
 		if b := x.Result.Bracket; !(b.Lo <= 0 && b.Hi >= 0) || b.Lo != e.Lo || b.Hi != e.Hi || !math.IsNaN(e.M) {
 			t.Errorf("%+v: bracket %+v, exchange %+v", c, b, e)
@@ -48,17 +37,7 @@ func TestBracketOfOneCrystal(t *testing.T) {
 // noise model takes the factor up, in the variances of pairs too.
 func TestSizesIgnoreAFactorOnSigmas(t *testing.T) {
 	read := func(factor float64) (m, se, a, v float64) {
-		s := studyOf(t, cell{m: 0.05, deviation: 0.3, sigma: factor}.plan(1), quick())
-		if _, err := s.Scale(context.Background()); err != nil {
-			t.Fatal(err)
-		}
-		x, err := s.paired(context.Background(), s.primaryContrasts()[0])
-		if err != nil {
-			t.Fatal(err)
-		}
-		if err := s.sizes(context.Background(), x); err != nil {
-			t.Fatal(err)
-		}
+		s, x := sized(t, cell{m: 0.05, deviation: 0.3, sigma: factor}.plan(1))
 		return x.Result.Exchange.M, x.Result.Exchange.SE, s.scaled[0].Noise.Position[0].A, stat.Mean(x.Input.VarThin, nil)
 	}
 	m, se, a, v := read(1)

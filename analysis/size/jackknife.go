@@ -13,8 +13,8 @@ type columns [5]float64
 // linearSums are those of a moment in theta: what multiplies each parameter, then y1 - y2.
 type linearSums [4]float64
 
-// strata is a resolution shell of one leg as a deletion sees it.
-type strata struct {
+// stratum is a resolution shell of one leg as a deletion sees it.
+type stratum struct {
 	present, used, centring float64 // counts: of all, of those with a strength; weights of the centring
 	first, second           float64 // means of h Q and h^2 T
 	one                     columns
@@ -31,7 +31,7 @@ type deletion struct {
 	p, k    int
 	inverse [][]float64 // of the weight of the moments
 	slope   [][][]float64
-	shells  [][]strata
+	shells  [][]stratum
 	whole   []linearSums
 	part    []linearSums
 	moved   []linearSums
@@ -179,9 +179,9 @@ func (v *linearSums) add(x *linearSums, times float64) {
 }
 
 // gather sums leg l by shell.
-func (d *deletion) gather(l int) []strata {
+func (d *deletion) gather(l int) []stratum {
 	c := d.s.legs[l]
-	out := make([]strata, c.in.Shells)
+	out := make([]stratum, c.in.Shells)
 	for sh := range out {
 		out[sh].f, out[sh].slope = make([]columns, d.k), make([]columns, d.k)
 		out[sh].whole = make([]linearSums, d.k)
@@ -225,12 +225,12 @@ type change struct {
 
 // alone reports whether a shell has nothing to give without row i: a function less its mean is
 // 0 where it has one reflection.
-func (st *strata) alone(c *conditions, i int) bool {
+func (st *stratum) alone(c *conditions, i int) bool {
 	return st.present <= 1 || (c.u[i] > 0 && (st.used <= 1 || st.centring <= c.u[i]))
 }
 
 // lost is the change by row i, none for i < 0; false when a mean is not positive.
-func (st *strata) lost(c *conditions, i int) (change, bool) {
+func (st *stratum) lost(c *conditions, i int) (change, bool) {
 	ch := change{1, 1, 1, st.first, st.second, st.centring, 1, 1}
 	if i < 0 {
 		return ch, true

@@ -176,7 +176,8 @@ func (s *system) rowWeights(theta []float64) [][]float64 {
 		for i, v := range out[l] {
 			out[l][i] = 1
 			if v > 1e-20 {
-				// A shell of a few reflections must not outweigh all others by chance.
+				// A shell of a few reflections whose constant is its own must not outweigh all others
+				// by chance; with a common one this tilts weights by little.
 				k := n[c.in.Shell[i]]
 				out[l][i] = (k - 1) / (k + 1) / v
 			}
